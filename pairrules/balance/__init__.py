@@ -1,0 +1,1 @@
+"""Source, cable and load models; how much common mode a link turns into signal, and which cause does it."""

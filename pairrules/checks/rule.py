@@ -1,0 +1,62 @@
+"""What a rule is, what it judges, and how the rules of this folder are found."""
+
+from __future__ import annotations
+
+import importlib
+import pkgutil
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from functools import cache
+
+from pairrules.board.board import Board
+from pairrules.geometry.pair_geometry import PairGeometry
+from pairrules.pairing.link import Link
+from pairrules.result import Finding, Measures
+from pairrules.settings.limit import Limit
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Subject:
+    """One pair with everything the earlier stages found out about it."""
+
+    board: Board
+    link: Link
+    geometry: PairGeometry
+    measures: Measures
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Undecided:
+    """A rule could not judge. `missing` says what would have to be known, in one sentence without a full stop."""
+
+    missing: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Rule:
+    """A rule: set as `RULE` in a file of this folder, whose name is the rule's (`leg_length.py` is `leg-length`).
+
+    Parameters
+    ----------
+    summary: what is wrong where it fires, in a few words. unit: of `Finding.measured` and `limit`, "" where none.
+    quantities: what its limit may say: key to dimension. required: keys of which at least one must be given.
+    judge: subject and limit to findings (empty: passed) or `Undecided`.
+    """
+
+    summary: str
+    unit: str
+    quantities: Mapping[str, str]
+    required: tuple[str, ...]
+    judge: Callable[[Subject, Limit], tuple[Finding, ...] | Undecided]
+
+
+@cache
+def all_rules() -> Mapping[str, Rule]:
+    """Every rule by name, sorted."""
+    package = importlib.import_module("pairrules.checks")
+    found: dict[str, Rule] = {}
+    for module in sorted(pkgutil.iter_modules(package.__path__), key=lambda m: m.name):
+        rule = getattr(importlib.import_module(f"pairrules.checks.{module.name}"), "RULE", None)
+        if isinstance(rule, Rule):
+            found[module.name.replace("_", "-")] = rule
+    return found

@@ -1,0 +1,1 @@
+"""Field solution of a cross-section, line matrices, chains of sections. Numbers in, numbers out; SI units unless named."""

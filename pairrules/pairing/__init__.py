@@ -1,0 +1,1 @@
+"""From nets to pairs, from pairs to links."""

@@ -1,0 +1,1 @@
+"""Readers: one a format, chosen by content, never by file name."""

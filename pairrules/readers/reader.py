@@ -1,0 +1,46 @@
+"""What a reader is, and which one understands a file's bytes."""
+
+from __future__ import annotations
+
+import importlib
+import pkgutil
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from pairrules.board.board import Board
+from pairrules.errors import BoardError
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Reader:
+    """A reader: set as `READER` in a module or package of this folder.
+
+    Parameters
+    ----------
+    summary: the format in a few words.
+    recognises: whether the (unpacked) bytes are of this format; looks at the beginning only, never raises.
+    read: bytes, the file's name for messages, and the wanted board's name ("" where the file must hold just one), to `Board`.
+    """
+
+    summary: str
+    recognises: Callable[[bytes], bool]
+    read: Callable[[bytes, str, str], Board]
+
+
+def read_board(data: bytes, name: str, *, step: str = "") -> Board:
+    """The board in `data`, whichever format and packing it has.
+
+    Parameters: data: the file's bytes. name: the file's name for messages. step: which board, where the file has several.
+    Raises: BoardError where no reader understands the bytes, or the one that does finds them wrong.
+    """
+    from pairrules.readers.packing import unpack
+
+    plain, label = unpack(data, name)
+    package = importlib.import_module("pairrules.readers")
+    for module in sorted(pkgutil.iter_modules(package.__path__), key=lambda m: m.name):
+        reader = getattr(importlib.import_module(f"pairrules.readers.{module.name}"), "READER", None)
+        if isinstance(reader, Reader) and reader.recognises(plain):
+            return reader.read(plain, label, step)
+    raise BoardError(
+        "this is no board file", file=label, remedy="give an IPC-2581 XML file or a plain JSON board (see `pairrules schema board`)"
+    )

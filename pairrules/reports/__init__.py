@@ -1,0 +1,1 @@
+"""Reports: one a file, `Result` to text."""

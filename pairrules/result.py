@@ -1,0 +1,156 @@
+"""The result of a check: plain frozen records, version 1 of the JSON result. `None` means unknown, with a word on why."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+RESULT_VERSION = 1
+SEVERITIES = ("blocker", "review", "note")
+"""Worst first."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Place:
+    """A place on the board, in millimetres. `layer` is "" where it is on none in particular."""
+
+    layer: str
+    x_mm: float
+    y_mm: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Measures:
+    """The figures of one pair; definitions in `GLOSSARY`. Where a figure cannot be known it is `None`."""
+
+    length_plus_mm: float | None = None
+    length_minus_mm: float | None = None
+    length_mismatch_mm: float | None = None
+    delay_plus_ps: float | None = None
+    delay_minus_ps: float | None = None
+    delay_mismatch_ps: float | None = None
+    gap_min_mm: float | None = None
+    gap_median_mm: float | None = None
+    gap_max_mm: float | None = None
+    coupled_mm: float | None = None
+    apart_mm: float | None = None
+    loop_area_mm2: float | None = None
+    net_loop_area_mm2: float | None = None
+    width_plus_mm: float | None = None
+    width_minus_mm: float | None = None
+    vias_plus: int | None = None
+    vias_minus: int | None = None
+    stub_plus_mm: float | None = None
+    stub_minus_mm: float | None = None
+    reference_uncovered_mm: float | None = None
+    impedance_diff_ohm: float | None = None
+    impedance_common_ohm: float | None = None
+    resistance_mismatch_ohm: float | None = None
+    capacitance_mismatch_pf: float | None = None
+    inductance_mismatch_nh: float | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class BalancePoint:
+    """How much common mode turns into signal at one frequency, by cause [dB]; `None` where that cause is not modelled."""
+
+    frequency_hz: float
+    source_db: float | None
+    trace_db: float | None
+    cable_db: float | None
+    load_db: float | None
+    total_db: float | None
+    rejection_db: float | None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Finding:
+    """One rule broken by one pair.
+
+    Parameters
+    ----------
+    measured, limit: in `unit`; `None` where the rule compares no number.
+    message: what was measured and what is allowed. advice: what to do about it.
+    source: where the limit comes from.
+    """
+
+    rule: str
+    severity: str
+    measured: float | None
+    limit: float | None
+    unit: str
+    message: str
+    advice: str
+    at: tuple[Place, ...] = ()
+    source: str = ""
+    waived: bool = False
+    fingerprint: str = ""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Unjudged:
+    """A rule that had a limit and could not judge, and what was missing."""
+
+    rule: str
+    missing: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SeriesPart:
+    """A part in series with the legs: its reference, value, and the leg ("plus", "minus" or "both")."""
+
+    ref: str
+    value: str
+    leg: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class PairResult:
+    """One pair: what it is, what was measured, what was found."""
+
+    name: str
+    plus: str
+    minus: str
+    klass: str | None
+    found_by: str
+    nets_plus: tuple[str, ...]
+    nets_minus: tuple[str, ...]
+    source: str
+    load: str
+    series: tuple[SeriesPart, ...]
+    routed: str
+    verdict: str
+    measures: Measures
+    balance: tuple[BalancePoint, ...] = ()
+    findings: tuple[Finding, ...] = ()
+    unjudged: tuple[Unjudged, ...] = ()
+    missing: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class BoardSummary:
+    """The file that was read."""
+
+    file: str
+    sha256: str
+    format: str
+    revision: str
+    units: str
+    name: str
+    complete: bool
+    missing: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Result:
+    """Everything a report may tell of one board."""
+
+    version: str
+    board: BoardSummary
+    pairs: tuple[PairResult, ...]
+    unpaired: tuple[str, ...]
+
+    @property
+    def summary(self) -> dict[str, int]:
+        """How many pairs there are and how many have each verdict."""
+        verdicts = [pair.verdict for pair in self.pairs]
+        return {"pairs": len(verdicts)} | {v: verdicts.count(v) for v in ("pass", "flag", "waived", "undecided")}

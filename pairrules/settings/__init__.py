@@ -1,0 +1,1 @@
+"""What a project asks for: rule sets, classes of pairs, limits with units, waivers."""
