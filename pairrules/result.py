@@ -104,6 +104,23 @@ class SeriesPart:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class FoundPair:
+    """One pair as it was found, before anything is measured. `source`, `load`: parts at its ends, "" where unknown."""
+
+    name: str
+    plus: str
+    minus: str
+    klass: str | None
+    found_by: str
+    nets_plus: tuple[str, ...]
+    nets_minus: tuple[str, ...]
+    source: str
+    load: str
+    series: tuple[SeriesPart, ...]
+    missing: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class PairResult:
     """One pair: what it is, what was measured, what was found."""
 
@@ -138,6 +155,15 @@ class BoardSummary:
     name: str
     complete: bool
     missing: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FoundPairs:
+    """The pairs of one board, and the nets that look like half a pair."""
+
+    board: BoardSummary
+    pairs: tuple[FoundPair, ...]
+    unpaired: tuple[str, ...]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

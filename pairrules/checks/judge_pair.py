@@ -1,0 +1,58 @@
+"""All limits of a pair's class judged, and the verdict they add up to."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
+
+from pairrules.checks.fingerprint import copper_digest, fingerprint
+from pairrules.checks.rule import Rule, Subject, Undecided
+from pairrules.result import SEVERITIES, Finding, Unjudged
+from pairrules.settings.limit import Limit
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Judgement:
+    """What the rules said of one pair.
+
+    Parameters
+    ----------
+    findings: worst severity first, then by rule. unjudged: rules that could not judge.
+    judged: names of the rules that did judge.
+    """
+
+    findings: tuple[Finding, ...]
+    unjudged: tuple[Unjudged, ...]
+    judged: tuple[str, ...]
+
+
+def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str, Rule]) -> Judgement:
+    """Every rule that has a limit, in the order of their names."""
+    findings: list[Finding] = []
+    unjudged: list[Unjudged] = []
+    judged: list[str] = []
+    for name in sorted(limits):
+        answer = rules[name].judge(subject, limits[name])
+        if isinstance(answer, Undecided):
+            unjudged.append(Unjudged(rule=name, missing=answer.missing))
+        else:
+            judged.append(name)
+            findings.extend(answer)
+    if findings:
+        digest = copper_digest(subject.board, subject.link)
+        findings = [replace(finding, fingerprint=fingerprint(finding.rule, digest)) for finding in findings]
+    findings.sort(key=lambda finding: SEVERITIES.index(finding.severity))
+    return Judgement(findings=tuple(findings), unjudged=tuple(unjudged), judged=tuple(judged))
+
+
+def verdict(judgement: Judgement, routed: str) -> str:
+    """What the judgement adds up to.
+
+    "flag" where an unwaived finding stands; else "undecided" where a rule could not judge, none did, or a leg is
+    broken; else "waived" where findings stand that are all waived; else "pass".
+    """
+    if any(not finding.waived for finding in judgement.findings):
+        return "flag"
+    if judgement.unjudged or not judgement.judged or routed != "complete":
+        return "undecided"
+    return "waived" if judgement.findings else "pass"

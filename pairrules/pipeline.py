@@ -1,0 +1,196 @@
+"""The whole line as one function: file → Board → links → measures → findings → Result."""
+
+from __future__ import annotations
+
+import hashlib
+from collections.abc import Callable
+from dataclasses import dataclass
+from fnmatch import fnmatchcase
+from pathlib import Path
+
+from pairrules import __version__
+from pairrules.board.board import Board
+from pairrules.checks.judge_pair import judge_pair, verdict
+from pairrules.checks.measures import geometric_measures
+from pairrules.checks.rule import Subject, all_rules
+from pairrules.errors import BoardError, UsageError
+from pairrules.geometry.measure import measure_link
+from pairrules.pairing.find_links import PairRequest, find_links
+from pairrules.pairing.link import Link
+from pairrules.pairing.reference_nets import reference_nets
+from pairrules.readers.reader import read_board
+from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart
+from pairrules.settings.limit import RuleForm
+from pairrules.settings.read_settings import Settings, find_settings, read_settings
+
+Progress = Callable[[str, int, int], None]
+"""Told what is being done, how much of it is done, and how much there is."""
+
+
+def check(
+    path: str | Path,
+    settings: str | Path | None = None,
+    *,
+    pairs: str = "*",
+    step: str = "",
+    progress: Progress | None = None,
+) -> Result:
+    """Read a board, measure its pairs, judge them.
+
+    Parameters
+    ----------
+    path: the board file. settings: the settings file; `None` takes the nearest `pairrules.yaml` upward from the board.
+    pairs: which pairs, a pattern (`*`, `?`, `[…]`) over pair and net names.
+    step: which board, where the file has several.
+    progress: called as the work goes on.
+
+    Raises
+    ------
+    BoardError: the file cannot be read or is no board. SettingsError: the settings are wrong, all faults at once.
+    UsageError: no pair matches `pairs`.
+    """
+    opened = _open(path, settings, pairs=pairs, step=step)
+    rules, board = all_rules(), opened.board
+    results = []
+    for done, link in enumerate(opened.links):
+        if progress is not None:
+            progress("measuring pairs", done, len(opened.links))
+        klass = opened.settings.class_of(link.name, _net_names(board, link), link.klass)
+        reach = None if klass is None else klass.reach_mm
+        geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference)
+        measures = geometric_measures(geometry)
+        subject = Subject(board=board, link=link, geometry=geometry, measures=measures)
+        limits = {} if klass is None else opened.settings.limits_for(klass)
+        judgement = judge_pair(subject, limits, rules)
+        found = _found_pair(board, link, None if klass is None else klass.name)
+        no_class = () if limits else ("no class with limits holds for this pair; give it one in the settings",)
+        results.append(
+            PairResult(
+                name=found.name,
+                plus=found.plus,
+                minus=found.minus,
+                klass=found.klass,
+                found_by=found.found_by,
+                nets_plus=found.nets_plus,
+                nets_minus=found.nets_minus,
+                source=found.source,
+                load=found.load,
+                series=found.series,
+                routed=geometry.routed,
+                verdict=verdict(judgement, geometry.routed),
+                measures=measures,
+                findings=judgement.findings,
+                unjudged=judgement.unjudged,
+                missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *no_class))),
+            )
+        )
+    return Result(version=__version__, board=opened.summary, pairs=tuple(results), unpaired=opened.unpaired)
+
+
+def find_pairs(path: str | Path, settings: str | Path | None = None, *, pairs: str = "*", step: str = "") -> FoundPairs:
+    """Which pairs a board has and how they were found, without measuring them. Parameters and errors as of `check`."""
+    opened = _open(path, settings, pairs=pairs, step=step)
+    found = []
+    for link in opened.links:
+        klass = opened.settings.class_of(link.name, _net_names(opened.board, link), link.klass)
+        found.append(_found_pair(opened.board, link, None if klass is None else klass.name))
+    return FoundPairs(board=opened.summary, pairs=tuple(found), unpaired=opened.unpaired)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class _Opened:
+    """A board read and its links found."""
+
+    board: Board
+    summary: BoardSummary
+    settings: Settings
+    reference: tuple[int, ...]
+    links: tuple[Link, ...]
+    unpaired: tuple[str, ...]
+
+
+def _open(path: str | Path, settings: str | Path | None, *, pairs: str, step: str) -> _Opened:
+    name = str(path)
+    forms = {rule: RuleForm(quantities=r.quantities, required=r.required) for rule, r in all_rules().items()}
+    data = _bytes(Path(path), name)
+    chosen = read_settings(_settings_path(path, settings), forms=forms)
+    board = read_board(data, name, step=step)
+    reference = reference_nets(board, chosen.reference_nets)
+    listed = tuple(PairRequest(plus=p.plus, minus=p.minus, name=p.name, place=p.place) for p in chosen.pairs)
+    pairing = find_links(board, listed=listed, ignore=chosen.ignore, reference=reference)
+    links = tuple(link for link in pairing.links if _wanted(board, link, pairs))
+    if pairs != "*" and not links:
+        raise UsageError(
+            f"no pair or net of a pair matches {pairs!r}", file=name, remedy="`pairrules pairs` lists them"
+        )
+    summary = BoardSummary(
+        file=name,
+        sha256=hashlib.sha256(data).hexdigest(),
+        format=board.format,
+        revision=board.revision,
+        units=board.units,
+        name=board.name,
+        complete=board.complete,
+        missing=tuple(dict.fromkeys((*board.missing, *pairing.missing))),
+    )
+    return _Opened(
+        board=board, summary=summary, settings=chosen, reference=reference, links=links, unpaired=pairing.unpaired
+    )
+
+
+def _bytes(path: Path, name: str) -> bytes:
+    try:
+        data = path.read_bytes()
+    except FileNotFoundError as error:
+        raise BoardError("there is no such file", file=name, remedy="check the path") from error
+    except IsADirectoryError as error:
+        raise BoardError("this is a folder", file=name, remedy="name the board file in it") from error
+    except PermissionError as error:
+        if path.is_dir():
+            raise BoardError("this is a folder", file=name, remedy="name the board file in it") from error
+        raise BoardError("the file may not be read", file=name, remedy="ask for the right to read it") from error
+    except (OSError, ValueError) as error:
+        reason = getattr(error, "strerror", None) or str(error)
+        raise BoardError(f"the file cannot be read ({reason})", file=name, remedy="check path and medium") from error
+    if not data:
+        raise BoardError("the file is empty", file=name, remedy="export the board again")
+    return data
+
+
+def _settings_path(board: str | Path, settings: str | Path | None) -> Path | None:
+    return find_settings(Path(board)) if settings is None else Path(settings)
+
+
+def _wanted(board: Board, link: Link, pattern: str) -> bool:
+    return any(fnmatchcase(name, pattern) for name in (link.name, *_net_names(board, link)))
+
+
+def _net_names(board: Board, link: Link) -> tuple[str, ...]:
+    hops = (*link.hops_plus, *link.hops_minus)
+    return tuple(dict.fromkeys(board.nets[net] for net in (link.plus, link.minus, *(hop.net for hop in hops))))
+
+
+def _found_pair(board: Board, link: Link, klass: str | None) -> FoundPair:
+    return FoundPair(
+        name=link.name,
+        plus=board.nets[link.plus],
+        minus=board.nets[link.minus],
+        klass=klass,
+        found_by=link.found_by,
+        nets_plus=tuple(board.nets[hop.net] for hop in link.hops_plus),
+        nets_minus=tuple(board.nets[hop.net] for hop in link.hops_minus),
+        source=board.parts[link.source].ref if link.source >= 0 else "",
+        load=board.parts[link.load].ref if link.load >= 0 else "",
+        series=tuple(part for step in link.series for part in _series(board, step.plus, step.minus)),
+        missing=link.missing,
+    )
+
+
+def _series(board: Board, plus: int, minus: int) -> tuple[SeriesPart, ...]:
+    if plus == minus:
+        return () if plus < 0 else (SeriesPart(ref=board.parts[plus].ref, value=board.parts[plus].value, leg="both"),)
+    return tuple(
+        SeriesPart(ref=board.parts[part].ref, value=board.parts[part].value, leg=leg)
+        for part, leg in ((plus, "plus"), (minus, "minus"))
+        if part >= 0
+    )
