@@ -152,6 +152,9 @@ class _Reading:
         return stackup
 
     def _layer(self, members: Members, key: str, *, all_too: bool = False) -> int:
+        written_name = members.get(key)
+        if isinstance(written_name, str) and written_name in self.layers:
+            return self.layers[written_name]
         names = tuple(self.layers) + ((ALL_LAYERS,) if all_too else ())
         remedy = f"give a copper layer of the stackup: {or_list(names)}"
         name = members.text(key, remedy)
@@ -341,9 +344,8 @@ class _Reading:
             times = "" if count == 1 else f" ({count} times)"
             self.missing.append(f"{kind}{times} is not understood and was left out")
         if self.document.cleaned:
-            self.missing.append(
-                f"{self.document.cleaned} texts held characters that cannot be printed, which were taken out"
-            )
+            texts = "text" if self.document.cleaned == 1 else "texts"
+            self.missing.append(f"unprintable characters were taken out of {self.document.cleaned} {texts}")
 
 
 @dataclass(slots=True)
