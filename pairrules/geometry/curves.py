@@ -1,0 +1,136 @@
+"""Straight and round pieces of a centre line, many at once: points, directions, lengths, nearest points, parts.
+
+A piece is given by `start`, `end`, `centre` (NaN where straight) and `sweep` (0 where straight), as in `Tracks`. Its
+parameter t runs from 0 at the start to 1 at the end, in proportion to length. Arcs are never replaced by chords.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+
+from pairrules.board.columns import Floats, Ints
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Curves:
+    """k pieces. start, end, centre: (k, 2) [mm]; sweep: (k,) [rad]."""
+
+    start: Floats
+    end: Floats
+    centre: Floats
+    sweep: Floats
+
+    def __len__(self) -> int:
+        return len(self.sweep)
+
+    def take(self, rows: Ints | npt.NDArray[np.bool_]) -> Curves:
+        """The pieces of the given rows."""
+        return Curves(start=self.start[rows], end=self.end[rows], centre=self.centre[rows], sweep=self.sweep[rows])
+
+
+def lengths(curves: Curves) -> Floats:
+    """Length [mm] of each piece; of an arc |sweep| times the mean of its radii at both ends."""
+    chord = np.hypot(*(curves.end - curves.start).T)
+    return np.where(curves.sweep == 0.0, chord, np.abs(curves.sweep) * _radius(curves))
+
+
+def points(curves: Curves, t: Floats) -> Floats:
+    """The point (k, 2) at parameter t (k,) of each piece; t = 0 and 1 give the stored ends exactly."""
+    chord = curves.start + (curves.end - curves.start) * t[:, None]
+    arc = curves.sweep != 0.0
+    if arc.any():
+        rows = np.flatnonzero(arc)
+        x, y = (curves.start[rows] - curves.centre[rows]).T
+        angle = curves.sweep[rows] * t[rows]
+        cos, sin = np.cos(angle), np.sin(angle)
+        turned = curves.centre[rows] + np.column_stack([x * cos - y * sin, x * sin + y * cos])
+        # A written arc's radii at both ends may differ in the last digit; the difference is spread along it.
+        full = curves.sweep[rows]
+        reached = curves.centre[rows] + np.column_stack(
+            [x * np.cos(full) - y * np.sin(full), x * np.sin(full) + y * np.cos(full)]
+        )
+        chord[rows] = turned + (curves.end[rows] - reached) * t[rows, None]
+    ends = t == 1.0
+    chord[ends] = curves.end[ends]
+    return chord
+
+
+def directions(curves: Curves, t: Floats) -> Floats:
+    """Direction [rad] of travel at parameter t of each piece."""
+    chord = curves.end - curves.start
+    angle = np.arctan2(chord[:, 1], chord[:, 0])
+    arc = curves.sweep != 0.0
+    if arc.any():
+        radial = curves.start[arc] - curves.centre[arc]
+        sweep = curves.sweep[arc]
+        angle[arc] = np.arctan2(radial[:, 1], radial[:, 0]) + sweep * t[arc] + np.copysign(np.pi / 2, sweep)
+    return angle
+
+
+def nearest(curves: Curves, at: Floats) -> tuple[Floats, Floats]:
+    """Where each piece comes nearest to its point `at` (k, 2): parameter t (k,) and distance (k,) [mm].
+
+    Source: foot of the perpendicular; for an arc the foot lies on the ray from its centre (elementary geometry).
+    """
+    chord = curves.end - curves.start
+    square = np.einsum("ij,ij->i", chord, chord)
+    offset = at - curves.start
+    t = np.einsum("ij,ij->i", offset, chord) / np.where(square > 0.0, square, 1.0)
+    t = np.clip(t, 0.0, 1.0)
+    away = offset - chord * t[:, None]
+    distance = np.hypot(away[:, 0], away[:, 1])
+    arc = np.flatnonzero(curves.sweep != 0.0)
+    if len(arc):
+        t[arc], distance[arc] = _nearest_on_arc(curves.take(arc), at[arc])
+    return t, distance
+
+
+def parts(curves: Curves, rows: Ints, t_from: Floats, t_to: Floats) -> Curves:
+    """The stretch from `t_from` to `t_to` of the piece in each of `rows`."""
+    of = curves.take(rows)
+    return Curves(
+        start=points(of, t_from),
+        end=points(of, t_to),
+        centre=of.centre,
+        sweep=np.where(of.sweep == 0.0, 0.0, of.sweep * (t_to - t_from)),
+    )
+
+
+def chords(curves: Curves, *, within: float) -> tuple[Floats, Ints]:
+    """Each piece as a run of points, for searching: points (n, 2) and the piece (n,) each belongs to.
+
+    `within`: greatest distance [mm] of a chord from its arc.
+    """
+    radius = np.where(curves.sweep == 0.0, 0.0, _radius(curves))
+    half = np.arccos(np.clip(1.0 - within / np.maximum(radius, within), -1.0, 1.0))
+    steps = np.where(curves.sweep == 0.0, 1, np.maximum(np.ceil(np.abs(curves.sweep) / (2 * half)), 2)).astype(np.int64)
+    rows = np.repeat(np.arange(len(curves)), steps + 1)
+    first = np.cumsum(steps + 1) - (steps + 1)
+    t = (np.arange(len(rows)) - first[rows]) / steps[rows]
+    return points(curves.take(rows), t), rows
+
+
+def _radius(curves: Curves) -> Floats:
+    first = np.hypot(*(curves.start - curves.centre).T)
+    last = np.hypot(*(curves.end - curves.centre).T)
+    return np.where(curves.sweep == 0.0, 0.0, (first + last) / 2)
+
+
+def _nearest_on_arc(arcs: Curves, at: Floats) -> tuple[Floats, Floats]:
+    radial, offset = arcs.start - arcs.centre, at - arcs.centre
+    cross = radial[:, 0] * offset[:, 1] - radial[:, 1] * offset[:, 0]
+    dot = np.einsum("ij,ij->i", radial, offset)
+    turn = np.arctan2(cross, dot) * np.sign(arcs.sweep)
+    turn = np.where(turn < 0.0, turn + 2 * np.pi, turn)
+    full = np.abs(arcs.sweep)
+    inside = np.clip(turn / full, 0.0, 1.0)
+    choices = np.stack([np.where(turn <= full, inside, 0.0), np.zeros(len(arcs)), np.ones(len(arcs))])
+    away = np.stack([np.hypot(*(points(arcs, t) - at).T) for t in choices])
+    # On the arc itself the distance to the circle is exact where the difference of points would lose digits.
+    away[0] = np.where(turn <= full, np.abs(np.hypot(offset[:, 0], offset[:, 1]) - _radius(arcs)), away[0])
+    best = np.argmin(away, axis=0)
+    every = np.arange(len(arcs))
+    return choices[best, every], away[best, every]

@@ -1,0 +1,104 @@
+"""Everything measured on the copper of one link: both routes, and what lies between them."""
+
+from __future__ import annotations
+
+import math
+
+from pairrules.board.board import Board
+from pairrules.geometry.copper_index import CopperIndex, index_copper
+from pairrules.geometry.leg_route import Break, leg_route
+from pairrules.geometry.loop_area import loop_area
+from pairrules.geometry.pair_geometry import LegRoute, PairGeometry
+from pairrules.geometry.reference_cover import ReferenceCopper, reference_cover
+from pairrules.geometry.spacing_profile import gap_figures, spacing_profiles
+from pairrules.pairing.link import Hop, Link
+
+
+def measure_link(
+    board: Board,
+    link: Link,
+    *,
+    reach_mm: float | None,
+    reference: tuple[int, ...],
+    index: CopperIndex | None = None,
+    copper: ReferenceCopper | None = None,
+) -> PairGeometry:
+    """The geometry of one link.
+
+    Parameters
+    ----------
+    reach_mm: within which a leg counts as beside the other; `None` for four times the pair's usual gap.
+    reference: indices of the nets whose copper counts as reference.
+    index, copper: of the board, where many links are measured; made here where absent.
+    """
+    index = index or index_copper(board)
+    plus = leg_route(board, index, link.hops_plus)
+    minus = leg_route(board, index, link.hops_minus)
+    if not isinstance(plus, LegRoute) or not isinstance(minus, LegRoute):
+        return _broken(board, index, link, plus, minus)
+    missing = list(link.missing)
+    if not plus.barrels_known or not minus.barrels_known:
+        missing.append("the stackup's thicknesses are unknown, so the barrels of its vias are left out of the lengths")
+    profile_plus, profile_minus, reach = spacing_profiles(plus.pieces, minus.pieces, reach_mm)
+    gaps = gap_figures(profile_plus)
+    apart = [
+        leg.track_mm - gap_figures(profile).coupled_mm
+        for leg, profile in ((plus, profile_plus), (minus, profile_minus))
+    ]
+    area = loop_area(plus.pieces, minus.pieces)
+    copper = copper or ReferenceCopper(board, reference)
+    covers = [reference_cover(leg.pieces, board, copper) for leg in (plus, minus)]
+    missing += sorted({cover.missing for cover in covers if cover.missing})
+    uncovered = [cover.uncovered_mm for cover in covers if cover.uncovered_mm is not None]
+    return PairGeometry(
+        routed="complete",
+        plus=plus,
+        minus=minus,
+        profile_plus=profile_plus,
+        profile_minus=profile_minus,
+        reach_mm=reach,
+        gap_min_mm=gaps.least,
+        gap_median_mm=gaps.median,
+        gap_max_mm=gaps.greatest,
+        coupled_mm=gaps.coupled_mm,
+        apart_mm=max(0.0, *apart),
+        loop_area_mm2=area.total_mm2,
+        net_loop_area_mm2=area.net_mm2,
+        reference_uncovered_mm=math.fsum(uncovered) if len(uncovered) == len(covers) else None,
+        missing=tuple(missing),
+    )
+
+
+def _broken(
+    board: Board,
+    index: CopperIndex,
+    link: Link,
+    plus: LegRoute | tuple[Break, ...],
+    minus: LegRoute | tuple[Break, ...],
+) -> PairGeometry:
+    bare = {leg for leg, hops in (("plus", link.hops_plus), ("minus", link.hops_minus)) if not _has_copper(index, hops)}
+    missing = list(link.missing)
+    places = []
+    for leg, route in (("plus", plus), ("minus", minus)):
+        if isinstance(route, LegRoute):
+            continue
+        if leg in bare:
+            missing.append(f"{leg} has no copper in the file")
+        for gap in route:
+            places.append((leg, gap.layer, gap.x_mm, gap.y_mm))
+            if leg not in bare:
+                where = (
+                    f" on {board.copper[gap.layer]} at ({gap.x_mm:.3f}, {gap.y_mm:.3f}) mm" if gap.layer >= 0 else ""
+                )
+                missing.append(f"{leg} is not routed from end to end: {gap.why}{where}")
+    return PairGeometry(
+        routed="none" if len(bare) == 2 else "partial",
+        plus=plus if isinstance(plus, LegRoute) else None,
+        minus=minus if isinstance(minus, LegRoute) else None,
+        broken=tuple(places),
+        missing=tuple(missing),
+    )
+
+
+def _has_copper(index: CopperIndex, hops: tuple[Hop, ...]) -> bool:
+    return any(len(index.rows(kind, hop.net)) for hop in hops for kind in ("tracks", "areas"))
