@@ -10,11 +10,14 @@ from pathlib import Path
 
 from pairrules import __version__
 from pairrules.board.board import Board
+from pairrules.board.given_stackup import with_stackup
 from pairrules.checks.judge_pair import judge_pair, verdict
 from pairrules.checks.measures import geometric_measures
 from pairrules.checks.rule import Subject, all_rules
-from pairrules.errors import BoardError, UsageError
+from pairrules.errors import BoardError, SettingsError, UsageError
+from pairrules.geometry.copper_index import index_copper
 from pairrules.geometry.measure import measure_link
+from pairrules.geometry.reference_copper import ReferenceCopper
 from pairrules.pairing.find_links import PairRequest, find_links
 from pairrules.pairing.link import Link
 from pairrules.pairing.reference_nets import reference_nets
@@ -51,13 +54,14 @@ def check(
     """
     opened = _open(path, settings, pairs=pairs, step=step)
     rules, board = all_rules(), opened.board
+    index, copper = index_copper(board), ReferenceCopper(board, opened.reference)
     results = []
     for done, link in enumerate(opened.links):
         if progress is not None:
             progress("measuring pairs", done, len(opened.links))
         klass = opened.settings.class_of(link.name, _net_names(board, link), link.klass)
         reach = None if klass is None else klass.reach_mm
-        geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference)
+        geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference, index=index, copper=copper)
         measures = geometric_measures(geometry)
         subject = Subject(board=board, link=link, geometry=geometry, measures=measures)
         limits = {} if klass is None else opened.settings.limits_for(klass)
@@ -114,7 +118,7 @@ def _open(path: str | Path, settings: str | Path | None, *, pairs: str, step: st
     forms = {rule: RuleForm(quantities=r.quantities, required=r.required) for rule, r in all_rules().items()}
     data = _bytes(Path(path), name)
     chosen = read_settings(_settings_path(path, settings), forms=forms)
-    board = read_board(data, name, step=step)
+    board = _stacked(read_board(data, name, step=step), chosen)
     reference = reference_nets(board, chosen.reference_nets)
     listed = tuple(PairRequest(plus=p.plus, minus=p.minus, name=p.name, place=p.place) for p in chosen.pairs)
     pairing = find_links(board, listed=listed, ignore=chosen.ignore, reference=reference)
@@ -136,6 +140,20 @@ def _open(path: str | Path, settings: str | Path | None, *, pairs: str, step: st
     return _Opened(
         board=board, summary=summary, settings=chosen, reference=reference, links=links, unpaired=pairing.unpaired
     )
+
+
+def _stacked(board: Board, settings: Settings) -> Board:
+    if settings.stackup is None:
+        return board
+    try:
+        return with_stackup(board, settings.stackup)
+    except ValueError as error:
+        raise SettingsError(
+            str(error),
+            file=settings.files[-1] if settings.files else "",
+            place="stackup",
+            remedy="name every copper layer as the board file does, top to bottom",
+        ) from error
 
 
 def _bytes(path: Path, name: str) -> bytes:

@@ -87,8 +87,8 @@ def _unknown_barrels(subject: Subject, leg: LegRoute) -> Counter[tuple[int, int]
 def _greatest_step(subject: Subject, plus: LegRoute, minus: LegRoute, sign: float) -> tuple[Place | None, float]:
     """Where the running difference of the legs' lengths grows most, and by how much [mm].
 
-    The legs are compared at each stretch where they run side by side: the middle of the stretch on plus against the nearest
-    point on minus, each measured from its own source end.
+    The legs are compared at each stretch where they run side by side: the middle of the stretch on plus against the
+    nearest point on minus, each measured from its own source end.
     """
     profile = subject.geometry.profile_plus
     if profile is None or not profile.coupled.any():

@@ -1,4 +1,4 @@
-"""From the geometry of a pair to the figures the result carries. The electrical figures are added by the later stages."""
+"""From the geometry of a pair to the figures the result carries; the electrical ones are added by later stages."""
 
 from __future__ import annotations
 
@@ -7,12 +7,12 @@ from pairrules.result import Measures
 
 
 def geometric_measures(geometry: PairGeometry) -> Measures:
-    """The figures that copper alone gives. A leg that is broken leaves its own figures and those of both `None`."""
+    """The figures that copper alone gives. Where a leg is broken the lengths are `None`, its own other figures too."""
     plus, minus = geometry.plus, geometry.minus
     both = plus is not None and minus is not None
     return Measures(
-        length_plus_mm=plus.length_mm if plus else None,
-        length_minus_mm=minus.length_mm if minus else None,
+        length_plus_mm=plus.length_mm if plus and both else None,
+        length_minus_mm=minus.length_mm if minus and both else None,
         length_mismatch_mm=plus.length_mm - minus.length_mm if plus and minus else None,
         gap_min_mm=geometry.gap_min_mm if both else None,
         gap_median_mm=geometry.gap_median_mm if both else None,

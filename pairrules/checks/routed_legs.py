@@ -1,4 +1,4 @@
-"""What every rule asks of a pair before it can judge: whether the legs, or the whole pair, are known from end to end."""
+"""What every rule asks of a pair before it can judge: whether its legs are known from end to end."""
 
 from __future__ import annotations
 

@@ -1,0 +1,103 @@
+"""The command line: one command a file, each imported only when it runs.
+
+`main` alone turns errors into lines and exit statuses: 0 nothing flagged, 1 something flagged, 2 wrong usage or
+settings, 3 a board could not be read.
+"""
+
+from __future__ import annotations
+
+import importlib
+import os
+import sys
+from collections.abc import Sequence
+
+import click
+
+from pairrules import __version__
+from pairrules.cli.error_lines import error_lines
+from pairrules.errors import UserError
+
+INTERRUPTED = 130
+BROKEN_PIPE = 141
+"""128 plus the number of the signal, as POSIX shells report them."""
+
+COMMANDS = {
+    "check": "Judge the pairs of boards against the limits of their classes.",
+    "measure": "Print all figures of a board's pairs, without judging.",
+    "pairs": "List a board's pairs and how they were found.",
+    "schema": "Print the JSON schema of a file that pairrules reads or writes.",
+}
+"""Each command's name (its file is of that name) and the line that `--help` shows, so that help imports no command."""
+
+
+class LazyGroup(click.Group):
+    """A group whose commands are imported when they are run."""
+
+    def list_commands(self, ctx: click.Context) -> list[str]:
+        """The names, sorted."""
+        del ctx
+        return sorted(COMMANDS)
+
+    def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:
+        """The command, or for the group's own help just its name and line."""
+        if cmd_name not in COMMANDS:
+            return None
+        if ctx.resilient_parsing or not _runs(ctx, cmd_name):
+            return click.Command(cmd_name, help=COMMANDS[cmd_name])
+        found: click.Command = importlib.import_module(f"pairrules.cli.{cmd_name}").command
+        return found
+
+    def resolve_command(
+        self, ctx: click.Context, args: list[str]
+    ) -> tuple[str | None, click.Command | None, list[str]]:
+        """Remember which command runs before it is looked up."""
+        ctx.meta["pairrules.runs"] = args[0] if args else ""
+        return super().resolve_command(ctx, args)
+
+
+def _runs(ctx: click.Context, name: str) -> bool:
+    return bool(ctx.meta.get("pairrules.runs") == name)
+
+
+@click.group(cls=LazyGroup, context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100})
+@click.version_option(__version__, prog_name="pairrules", message="%(prog)s %(version)s")
+def group() -> None:
+    """Checks the balanced pairs of an exported board: geometry, impedance, rejection of common mode."""
+
+
+def run(arguments: Sequence[str] | None = None) -> int:
+    """Run the command line and return its exit status; errors a user can mend become one line each on stderr."""
+    try:
+        status = group.main(
+            args=None if arguments is None else list(arguments), prog_name="pairrules", standalone_mode=False
+        )
+        sys.stdout.flush()
+    except click.exceptions.NoArgsIsHelpError as error:
+        click.echo(error.format_message(), err=True)
+        return 2
+    except click.ClickException as error:
+        click.echo(_usage_line(error), err=True)
+        return 2
+    except UserError as error:
+        for line in error_lines(error):
+            click.echo(line, err=True)
+        return error.exit_status
+    except (click.Abort, KeyboardInterrupt):
+        click.echo("pairrules: interrupted, nothing more is written", err=True)
+        return INTERRUPTED
+    except BrokenPipeError:
+        # The reader has gone; without this the interpreter would complain when it flushes at exit.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        return BROKEN_PIPE
+    return status if isinstance(status, int) else 0
+
+
+def main() -> None:
+    """Entry point."""
+    sys.exit(run())
+
+
+def _usage_line(error: click.ClickException) -> str:
+    command = error.ctx.command_path if isinstance(error, click.UsageError) and error.ctx is not None else "pairrules"
+    said = " ".join(error.format_message().split()).rstrip(".")
+    return f"{command}: {said[:1].lower()}{said[1:]}; see `{command} --help`"

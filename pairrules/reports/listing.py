@@ -1,0 +1,122 @@
+"""The listing: what is wrong with which pair, where, and what to do, worst first."""
+
+from __future__ import annotations
+
+import textwrap
+
+from pairrules.board.coordinates import coordinates
+from pairrules.reports.report import Look, Report
+from pairrules.reports.safe_text import safe
+from pairrules.result import SEVERITIES, Finding, PairResult, Place, Result
+
+CAUTIONS = (
+    "All figures are estimates from the exported copper. They are no proof of isolation, of electromagnetic "
+    "compatibility or of safety. Measure the built board; local codes and licensed practice decide."
+)
+_PLACES_SHOWN = 4
+_COLOURS = {"blocker": "1;31", "review": "1;33", "note": "1;36"}
+_SEVERITY = max(len(severity) for severity in SEVERITIES) + 4
+_SUMMARY = (("flag", "flagged"), ("undecided", "undecided"), ("waived", "waived"), ("pass", "passed"))
+
+
+def render(result: Result, look: Look) -> str:
+    """Summary; flagged, undecided, waived, passed pairs; left-over nets; what the file lacked; what figures are worth."""
+    lines = _summary(result, look)
+    for pair in sorted((pair for pair in result.pairs if pair.verdict == "flag"), key=_worst_first):
+        lines += ["", *_flagged(result, pair, look)]
+    undecided = [pair for pair in result.pairs if pair.verdict == "undecided"]
+    if undecided:
+        lines += ["", f"Undecided ({len(undecided)})"]
+        lines += [line for pair in undecided for line in _undecided(pair, look)]
+    for word, title in (("waived", "Waived"), ("pass", "Passed")):
+        names = [pair.name for pair in result.pairs if pair.verdict == word]
+        if names:
+            lines += ["", *_named(f"{title} ({len(names)}): ", names, look)]
+    if result.unpaired:
+        lines += ["", *_named("Named like half a pair, the other half is missing: ", result.unpaired, look)]
+    if result.board.missing:
+        lines += ["", "The file lacks"]
+        lines += [line for text in result.board.missing for line in _wrap(f"- {safe(text)}", look, "  ", "    ")]
+    lines += ["", *_wrap(CAUTIONS, look)]
+    return "\n".join(lines) + "\n"
+
+
+def _summary(result: Result, look: Look) -> list[str]:
+    board, summary = result.board, result.summary
+    counts = [f"{summary[key]} {word}" for key, word in _SUMMARY if summary[key]]
+    count = summary["pairs"]
+    pairs = "no pairs" if not count else f"{count} pair{'' if count == 1 else 's'}"
+    about = " ".join(word for word in (safe(board.format), safe(board.revision)) if word)
+    head = f"{safe(board.file)}: {pairs}{': ' if counts else ''}{', '.join(counts)}"
+    return _wrap(f"{head} ({about}, units {safe(board.units)})", look, "", "  ")
+
+
+def _worst_first(pair: PairResult) -> tuple[int, int, str]:
+    standing = [finding for finding in pair.findings if not finding.waived]
+    worst = min(SEVERITIES.index(finding.severity) for finding in standing)
+    return worst, -len(standing), pair.name
+
+
+def _flagged(result: Result, pair: PairResult, look: Look) -> list[str]:
+    klass = f", class {safe(pair.klass)}" if pair.klass else ""
+    lines = _wrap(f"{safe(pair.name)}  ({safe(pair.plus)} and {safe(pair.minus)}{klass})", look, "", "  ")
+    for finding in pair.findings:
+        lines += _finding(result, finding, look)
+    for rule in pair.unjudged:
+        lines += _labelled("undecided", f"{rule.rule}: {safe(rule.missing)}", look, "")
+    return lines
+
+
+def _finding(result: Result, finding: Finding, look: Look) -> list[str]:
+    word = "waived" if finding.waived else finding.severity
+    lines = _labelled(word, f"{finding.rule}: {safe(finding.message)}", look, _COLOURS.get(word, ""))
+    if finding.at:
+        shown = "; ".join(_place(result, place) for place in finding.at[:_PLACES_SHOWN])
+        rest = len(finding.at) - _PLACES_SHOWN
+        lines += _labelled("", f"at {shown}" + (f"; and {rest} more" if rest > 0 else ""), look, "")
+    if finding.advice:
+        lines += _labelled("", f"to do: {safe(finding.advice)}", look, "")
+    if finding.source:
+        lines += _labelled("", f"limit from: {safe(finding.source)}", look, "")
+    return lines
+
+
+def _undecided(pair: PairResult, look: Look) -> list[str]:
+    reasons: dict[str, list[str]] = {}
+    for rule in pair.unjudged:
+        reasons.setdefault(safe(rule.missing), []).append(rule.rule)
+    for text in pair.missing:
+        reasons.setdefault(safe(text), [])
+    lines = _wrap(safe(pair.name), look, "  ", "    ")
+    for text, rules in reasons.items():
+        lines += _wrap(text + (f" ({', '.join(rules)})" if rules else ""), look, "    ", "      ")
+    return lines
+
+
+def _place(result: Result, place: Place) -> str:
+    return f"{safe(place.layer)} {coordinates(place.x_mm, place.y_mm, result.board.units)}".strip()
+
+
+def _labelled(label: str, text: str, look: Look, colour: str) -> list[str]:
+    """The text wrapped in its own column, the label before its first line; colour is added after wrapping."""
+    lines = _wrap(text, look, " " * _SEVERITY, " " * _SEVERITY)
+    head = f"  {label}".ljust(_SEVERITY)
+    if len(label) + 3 > _SEVERITY:
+        lines = _wrap(text, look, f"  {label}  ", " " * _SEVERITY)
+        head = f"  {label}  "
+    if colour and look.colour:
+        head = head.replace(label, f"\x1b[{colour}m{label}\x1b[0m")
+    plain = len(f"  {label}  ") if len(label) + 3 > _SEVERITY else _SEVERITY
+    return [head + lines[0][plain:], *lines[1:]]
+
+
+def _named(head: str, names: list[str] | tuple[str, ...], look: Look) -> list[str]:
+    return _wrap(head + ", ".join(safe(name) for name in names), look, "", "  ")
+
+
+def _wrap(text: str, look: Look, first: str = "", later: str = "") -> list[str]:
+    """Lines of the look's width. Names are not cut at hyphens; only one longer than a whole line is cut at all."""
+    return textwrap.wrap(text, look.width, initial_indent=first, subsequent_indent=later, break_on_hyphens=False)
+
+
+REPORT = Report(name="listing", summary="what is wrong, where, what to do", commands=("check",), render=render)

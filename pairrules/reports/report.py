@@ -1,0 +1,60 @@
+"""What a report is, and how the reports of this folder are found."""
+
+from __future__ import annotations
+
+import importlib
+import pkgutil
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from functools import cache
+
+from pairrules.result import Result
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Look:
+    """How a report meant for people is drawn. `width`: columns. `colour`: whether terminal colours may be used."""
+
+    width: int = 80
+    colour: bool = False
+
+
+def apart(texts: tuple[str, ...]) -> str:
+    """Reports of several boards one after the other, an empty line between."""
+    return "\n".join(texts)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Report:
+    """A report: set as `REPORT` in a file of this folder.
+
+    Parameters
+    ----------
+    name: what `--format` calls it. summary: what it is, in a few words.
+    commands: the commands that offer it ("check", "measure").
+    render: the result as text, ending with a line break.
+    join: texts of several boards to one.
+    """
+
+    name: str
+    summary: str
+    commands: tuple[str, ...]
+    render: Callable[[Result, Look], str]
+    join: Callable[[tuple[str, ...]], str] = apart
+
+
+@cache
+def all_reports() -> Mapping[str, Report]:
+    """Every report by its file's name, sorted."""
+    package = importlib.import_module("pairrules.reports")
+    found: dict[str, Report] = {}
+    for module in sorted(pkgutil.iter_modules(package.__path__), key=lambda m: m.name):
+        report = getattr(importlib.import_module(f"pairrules.reports.{module.name}"), "REPORT", None)
+        if isinstance(report, Report):
+            found[module.name] = report
+    return found
+
+
+def reports_of(command: str) -> Mapping[str, Report]:
+    """The reports that a command offers, by the name that `--format` calls them."""
+    return {report.name: report for report in all_reports().values() if command in report.commands}
