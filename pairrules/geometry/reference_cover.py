@@ -1,0 +1,217 @@
+"""Where a leg runs over or under copper of a reference net, where not, and how far from that copper's edge."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+import shapely
+
+from pairrules.board.arcs import FLATTENING_MM
+from pairrules.board.board import Board
+from pairrules.board.columns import Bools, Floats, Ints, freeze
+from pairrules.geometry.copper_outlines import Shapes
+from pairrules.geometry.curve_edges import crossings, nearest_to_edges
+from pairrules.geometry.curves import Curves, chords, parts, points
+from pairrules.geometry.pair_geometry import TRACK, Pieces
+from pairrules.geometry.reference_copper import NO_NET, UNKNOWN, LayerCopper, ReferenceCopper
+
+__all__ = ["NO_NET", "UNKNOWN", "Cover", "ReferenceCopper", "reference_cover"]
+
+_SAME_MM = 1e-9
+"""Cuts nearer than this are one: far below any copper, far above rounding."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Cover:
+    """Reference cover along a leg's tracks, as stretches (columns of k rows, in order of s) of unchanged cover.
+
+    Parameters
+    ----------
+    s_from, s_to: [mm] track length from the source end (barrels, joins and series parts take none).
+    piece: row of `Pieces`. layer: index into `Board.copper`. start, end: (k, 2) [mm] the stretch's ends on the board.
+    above, below: the reference net (index into `Board.nets`) on the next copper layer above and below; `NO_NET` where
+        there is none, `UNKNOWN` where that layer is not in the file.
+    edge_above, edge_below: [mm] least distance, seen from above, from the stretch's centre line to the edge of the
+        reference copper that covers it; NaN where none does. The antipad of a via in a plane is such an edge.
+    edge_above_at, edge_below_at: (k, 2) [mm] where on the stretch that is.
+    uncovered_mm: track length with reference copper neither above nor below; `None` where unknown.
+    missing: why it is unknown, in one sentence; "" where it is known.
+    """
+
+    s_from: Floats
+    s_to: Floats
+    piece: Ints
+    layer: Ints
+    start: Floats
+    end: Floats
+    above: Ints
+    below: Ints
+    edge_above: Floats
+    edge_below: Floats
+    edge_above_at: Floats
+    edge_below_at: Floats
+    uncovered_mm: float | None
+    missing: str = ""
+
+    def __post_init__(self) -> None:
+        freeze(
+            self,
+            {
+                "s_from": (np.float64, ()),
+                "s_to": (np.float64, ()),
+                "piece": (np.int64, ()),
+                "layer": (np.int64, ()),
+                "start": (np.float64, (2,)),
+                "end": (np.float64, (2,)),
+                "above": (np.int64, ()),
+                "below": (np.int64, ()),
+                "edge_above": (np.float64, ()),
+                "edge_below": (np.float64, ()),
+                "edge_above_at": (np.float64, (2,)),
+                "edge_below_at": (np.float64, (2,)),
+            },
+        )
+
+    def __len__(self) -> int:
+        return len(self.piece)
+
+    @property
+    def uncovered(self) -> Bools:
+        """Whether each stretch is known to lack reference copper on both sides."""
+        bare: Bools = (self.above == NO_NET) & (self.below == NO_NET)
+        return bare
+
+
+def reference_cover(pieces: Pieces, board: Board, reference: tuple[int, ...] | ReferenceCopper) -> Cover:
+    """The cover of one leg by reference copper on the copper layers next to its own.
+
+    Parameters: pieces: the leg. reference: indices of the reference nets, or their copper where it is at hand from
+    another leg of the same board.
+    Returns: stretches cut exactly where a piece's centre line, arcs included, passes an edge of the copper.
+    Source: common practice, no source (a return current follows the nearest plane).
+    """
+    copper = reference if isinstance(reference, ReferenceCopper) else ReferenceCopper(board, reference)
+    length = pieces.length
+    row = np.flatnonzero((pieces.kind == TRACK) & (length > 0))
+    s_ends = np.concatenate([[0.0], np.cumsum(length[row])])
+    curves = Curves(start=pieces.start, end=pieces.end, centre=pieces.centre, sweep=pieces.sweep).take(row)
+    layer = pieces.layer[row]
+
+    track, t_from, t_to = _cut(copper, curves, layer, length[row])
+    middle = points(curves.take(track), (t_from + t_to) / 2)
+    nets = [_next_net(copper, layer[track] + step, middle) for step in (-1, 1)]
+    opens = np.ones(len(track), dtype=np.bool_)
+    opens[1:] = (track[1:] != track[:-1]) | (nets[0][1:] != nets[0][:-1]) | (nets[1][1:] != nets[1][:-1])
+    closes = np.append(opens[1:], True)[: len(opens)]
+    track, t_from, t_to, nets = track[opens], t_from[opens], t_to[closes], [net[opens] for net in nets]
+    stretches = parts(curves, track, t_from, t_to)
+    edges = [
+        _edge_distance(copper, stretches, layer[track] + step, net) for step, net in zip((-1, 1), nets, strict=True)
+    ]
+
+    s_from = s_ends[track] + t_from * length[row[track]]
+    s_to = np.where(t_to == 1.0, s_ends[track + 1], s_ends[track] + t_to * length[row[track]])
+    missing = _missing(copper, layer[track], nets)
+    bare = (nets[0] == NO_NET) & (nets[1] == NO_NET)
+    return Cover(
+        s_from=s_from,
+        s_to=s_to,
+        piece=row[track],
+        layer=layer[track],
+        start=stretches.start,
+        end=stretches.end,
+        above=nets[0],
+        below=nets[1],
+        edge_above=edges[0][0],
+        edge_below=edges[1][0],
+        edge_above_at=edges[0][1],
+        edge_below_at=edges[1][1],
+        uncovered_mm=None if missing else float((s_to - s_from)[bare].sum()),
+        missing=missing,
+    )
+
+
+def _missing(copper: ReferenceCopper, layer: Ints, nets: list[Ints]) -> str:
+    if not copper.reference:
+        return "no reference net is known; name them under `reference_nets` in the settings"
+    unsure = (np.minimum(nets[0], nets[1]) == UNKNOWN) & (np.maximum(nets[0], nets[1]) < 0)
+    if not unsure.any():
+        return ""
+    names = " and ".join(copper.board.copper[one] for one in np.unique(layer[unsure]))
+    return f"the copper layer next to {names} is not in the file, so the reference copper there is unknown"
+
+
+def _beside(copper: ReferenceCopper, layer: Ints) -> list[tuple[int, Bools]]:
+    """The known layers among `layer`, the layer beside each row, and the rows of each."""
+    return [
+        (int(one), layer == one)
+        for one in np.unique(layer)
+        if 0 <= one < len(copper.board.copper) and copper.known(int(one))
+    ]
+
+
+def _next_net(copper: ReferenceCopper, layer: Ints, at: Floats) -> Ints:
+    inside = (layer >= 0) & (layer < len(copper.board.copper))
+    net = np.where(inside, UNKNOWN, NO_NET)
+    for one, rows in _beside(copper, layer):
+        net[rows] = copper.layer(one).net_at(at[rows])
+    return net
+
+
+def _cut(copper: ReferenceCopper, curves: Curves, layer: Ints, length: Floats) -> tuple[Ints, Floats, Floats]:
+    """Row, from and to of the stretches between the places where the curves pass an edge above or below."""
+    every = np.arange(len(curves))
+    row, t = [every, every], [np.zeros(len(curves)), np.ones(len(curves))]
+    for step in (-1, 1):
+        for one, chosen in _beside(copper, layer + step):
+            mine = np.flatnonzero(chosen)
+            beside = copper.layer(one)
+            which, edge = _near(beside, curves.take(mine), 0.0)
+            for at in crossings(curves.take(mine[which]), beside.edges[edge]):
+                # NaN, where there is no crossing, fails both.
+                hit = (at * length[mine[which]] > _SAME_MM) & ((1 - at) * length[mine[which]] > _SAME_MM)
+                row.append(mine[which[hit]])
+                t.append(at[hit])
+    rows, ts = np.concatenate(row), np.concatenate(t)
+    order = np.lexsort((ts, rows))
+    rows, ts = rows[order], ts[order]
+    apart = np.ones(len(rows), dtype=np.bool_)
+    apart[1:] = (rows[1:] != rows[:-1]) | ((ts[1:] - ts[:-1]) * length[rows[1:]] > _SAME_MM)
+    rows, ts = rows[apart], ts[apart]
+    whole = rows[1:] == rows[:-1]
+    return rows[:-1][whole], ts[:-1][whole], ts[1:][whole]
+
+
+def _near(beside: LayerCopper, curves: Curves, distance: Floats | float) -> tuple[Ints, Ints]:
+    """Pairs of curve and edge nearer than `distance` [mm]; a few more, never fewer."""
+    which, edge = beside.tree.query(_lines(curves), predicate="dwithin", distance=distance + 2 * FLATTENING_MM)
+    return which, edge
+
+
+def _lines(curves: Curves) -> Shapes:
+    corners, piece = chords(curves, within=FLATTENING_MM)
+    if not len(corners):
+        return np.empty(0, dtype=np.object_)
+    return np.asarray(shapely.linestrings(corners, indices=piece), dtype=np.object_)
+
+
+def _edge_distance(copper: ReferenceCopper, stretches: Curves, layer: Ints, net: Ints) -> tuple[Floats, Floats]:
+    """Least distance (k,) from each covered stretch to the covering copper's edge, and where (k, 2) on the stretch."""
+    distance, at = np.full(len(layer), np.nan), np.full((len(layer), 2), np.nan)
+    for one, chosen in _beside(copper, layer):
+        mine = np.flatnonzero(chosen & (net >= 0))
+        if not len(mine):
+            continue
+        beside, curves = copper.layer(one), stretches.take(mine)
+        (which, _), about = beside.tree.query_nearest(_lines(curves), all_matches=False, return_distance=True)
+        bound = np.empty(len(mine))
+        bound[which] = about
+        which, edge = _near(beside, curves, bound)
+        t, apart = nearest_to_edges(curves.take(which), beside.edges[edge])
+        # The smallest of each stretch; of equal ones the nearest to its start.
+        order = np.lexsort((t, apart, which))
+        best = order[np.concatenate([[True], np.diff(which[order]) > 0])]
+        distance[mine[which[best]]] = apart[best]
+        at[mine[which[best]]] = points(curves.take(which[best]), t[best])
+    return distance, at
