@@ -109,7 +109,7 @@ class _Build:
             if plus.count("*") != minus.count("*"):
                 self._faults.add(
                     f"{one.path} has {plus.count('*')} stars in plus and {minus.count('*')} in minus",
-                    "write as many in both; they stand for the same text",
+                    "write as many in both, they stand for the same text",
                     one.node,
                 )
             if name and "*" in plus:

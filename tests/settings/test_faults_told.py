@@ -29,7 +29,9 @@ def faults(text: str) -> tuple[str, ...]:
 
 CASES = {
     # Reading as YAML.
-    "extends: []\nextends: []\n": "line 2, column 1: 'extends' stands here a second time; it is already in line 1; keep one",
+    "extends: []\nextends: []\n": (
+        "line 2, column 1: 'extends' stands here a second time; it is already in line 1; keep one"
+    ),
     "extends: []\nclasses: !!python/name:os.system x\n": (
         "line 2, column 10: the tag 'tag:yaml.org,2002:python/name:os.system' is not understood; leave the tag out"
     ),
@@ -37,7 +39,9 @@ CASES = {
     "extends: []\n---\nextends: []\n": "line 2, column 1: a second document begins; keep one document a file",
     "extends: *gone\n": "line 1, column 10: the alias *gone names nothing complete before it; write the value out",
     "extends: &a [*a]\n": "line 1, column 14: the alias *a names nothing complete before it; write the value out",
-    'extends: []\nwaivers: "a\\eb"\n': "line 2, column 10: the text holds a character that cannot be printed; delete it",
+    'extends: []\nwaivers: "a\\eb"\n': (
+        "line 2, column 10: the text holds a character that cannot be printed; delete it"
+    ),
     "extends: []\nwaivers: a\x1bb\n": "line 2, column 11: holds the control character U+001B; delete it",
     "waivers: " + "[" * 60: "line 1, column 59: is nested more than 50 deep; write it flatter",
     "waivers: '" + "x" * 1001 + "'\nextends: []": "line 1, column 10: a text of 1001 characters; keep it below 1000",
@@ -79,7 +83,9 @@ CASES = {
     "extends: []\nlimits: {leg-length: {least: 1 mm, most: 1 mm}}\n": (
         "line 2, column 23: limits.leg-length knows no 'least'; known are most, severity, source"
     ),
-    "extends: []\nlimits: {leg-length: {severity: note}}\n": "line 2, column 22: limits.leg-length lacks 'most'; add it",
+    "extends: []\nlimits: {leg-length: {severity: note}}\n": (
+        "line 2, column 22: limits.leg-length lacks 'most'; add it"
+    ),
     "extends: []\nlimits: {gap-band: {for: 1 mm}}\n": (
         "line 2, column 20: limits.gap-band lacks 'spread' or 'least' or 'most'; add one of them"
     ),
@@ -96,9 +102,12 @@ CASES = {
     "extends: []\npairs:\n  - {name: A, ignore: [B]}\n": (
         "line 3, column 23: pairs[0] has both 'name' and 'ignore'; keep one of them"
     ),
-    "extends: []\npairs:\n  - {plus: A, minus: A}\n": "line 3, column 5: pairs[0] has 'A' as plus and as minus; name two nets",
+    "extends: []\npairs:\n  - {plus: A, minus: A}\n": (
+        "line 3, column 5: pairs[0] has 'A' as plus and as minus; name two nets"
+    ),
     "extends: []\npairs:\n  - {plus: 'A*', minus: B}\n": (
-        "line 3, column 5: pairs[0] has 1 stars in plus and 0 in minus; write as many in both; they stand for the same text"
+        "line 3, column 5: pairs[0] has 1 stars in plus and 0 in minus; "
+        "write as many in both, they stand for the same text"
     ),
     "extends: []\npairs:\n  - {plus: '*P', minus: '*N', name: X}\n": (
         "line 3, column 37: pairs[0] gives one name to all pairs of a pattern; leave the name out"
@@ -176,8 +185,8 @@ def test_a_fault_is_told_in_one_line(text: str) -> None:
 
 
 def test_broken_yaml_names_the_place_and_the_remedy() -> None:
-    (line,) = faults("extends: []\nlimits: {half-pair: {}")
-    assert line.startswith("demo.yaml: line 2, column 23: cannot be read as YAML: ")
+    (line,) = faults("extends: []\nwaivers: a: b\n")
+    assert line.startswith("demo.yaml: line 2, column 11: cannot be read as YAML: ")
     assert line.endswith("; mend the indentation, brackets or quotes there")
 
 
