@@ -1,0 +1,93 @@
+"""JSON Schema 2020-12 of a settings file, drawn from the form that reads it: for editors that check while one types."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import Any
+
+from pairrules.board.units import DIMENSIONS
+from pairrules.settings.limit import RuleForm
+from pairrules.settings.settings_form import settings_form
+from pairrules.settings.shapes import Either, Flag, Kinds, ListOf, Named, Number, Quantity, Shape, Table, Text
+
+Schema = dict[str, Any]
+
+_DIGITS = r"(\d+\.?\d*|\.\d+)([eE][+-]?\d+)?"
+
+
+def settings_schema(forms: Mapping[str, RuleForm]) -> Schema:
+    """The schema of a settings file in which these rules may have limits.
+
+    A quantity's text is only checked for a number and some unit; whether the unit fits is for the reader to say.
+    """
+    return {
+        "$schema": "https://json-schema.org/draft/2020-12/schema",
+        "title": "pairrules settings, version 1",
+        **_schema(settings_form(forms)),
+    }
+
+
+def _schema(shape: Shape) -> Schema:
+    match shape:
+        case Quantity():
+            return _quantity(shape)
+        case Number():
+            return {"type": "number"} | ({} if shape.least is None else {"minimum": shape.least})
+        case Text(words=()):
+            # YAML takes an unquoted 5 or true for a number or a truth value; as the name of a net it is a text.
+            return {"type": ["string", "number", "boolean"]}
+        case Text(words=words):
+            # The word off, unquoted, is a truth value to YAML 1.1.
+            return {"enum": [*words, False] if "off" in words else list(words)}
+        case Flag():
+            return {"type": "boolean"}
+        case ListOf():
+            bounds = {"minItems": shape.least} | ({"maxItems": shape.most} if shape.most else {})
+            return {"type": "array", "items": _schema(shape.of), **bounds}
+        case Table():
+            return _table(shape)
+        case Named():
+            return {"type": "object", "additionalProperties": _schema(shape.of), "minProperties": 1}
+        case Kinds():
+            return {
+                "type": "object",
+                "required": ["kind"],
+                "oneOf": [_kind(kind, form) for kind, form in shape.kinds.items()],
+            }
+        case Either():
+            return {"anyOf": [_schema(shape.scalar), _schema(shape.nested)]}
+
+
+def _quantity(shape: Quantity) -> Schema:
+    sign = "[+-]?" if shape.signed else r"\+?"
+    if shape.dimension == "count":
+        return {"type": ["number", "string"], "pattern": rf"^\s*{sign}{_DIGITS}\s*$"}
+    unit = {"1": "%", "degree": "degrees"}.get(DIMENSIONS[shape.dimension], DIMENSIONS[shape.dimension])
+    return {
+        "type": "string",
+        "pattern": rf"^\s*{sign}{_DIGITS}\s*[^\s\d.]",
+        "description": f"{shape.dimension}: a number with its unit, such as {unit}",
+    }
+
+
+def _table(shape: Table) -> Schema:
+    schema: Schema = {
+        "type": "object",
+        "properties": {key: _schema(value) for key, value in shape.keys.items()},
+        "additionalProperties": False,
+    }
+    if shape.required:
+        schema["required"] = list(shape.required)
+    if shape.any_of:
+        schema["anyOf"] = [{"required": [key]} for key in shape.any_of]
+    if shape.needs:
+        schema["dependentRequired"] = {key: [needed] for key, needed in shape.needs.items()}
+    if shape.not_both:
+        schema["allOf"] = [{"not": {"required": list(both)}} for both in shape.not_both]
+    return schema
+
+
+def _kind(kind: str, form: Table) -> Schema:
+    schema = _table(form)
+    schema["properties"] = {"kind": {"const": kind}, **schema["properties"]}
+    return schema
