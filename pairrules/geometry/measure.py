@@ -6,11 +6,12 @@ import math
 
 from pairrules.board.board import Board
 from pairrules.geometry.copper_index import CopperIndex, index_copper
+from pairrules.geometry.gap_figures import gap_figures
 from pairrules.geometry.leg_route import Break, leg_route
 from pairrules.geometry.loop_area import loop_area
 from pairrules.geometry.pair_geometry import LegRoute, PairGeometry
 from pairrules.geometry.reference_cover import ReferenceCopper, reference_cover
-from pairrules.geometry.spacing_profile import gap_figures, spacing_profiles
+from pairrules.geometry.spacing_profile import spacing_profiles
 from pairrules.pairing.link import Hop, Link
 
 

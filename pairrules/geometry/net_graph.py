@@ -370,6 +370,9 @@ class _Builder:
                 at = shapely.get_coordinates(shapely.shortest_line(lines[edge], copper))[:1]
                 t, _ = nearest(self._curves.take(np.array([edge])), at)
                 touching[part] = [self._split(int(edge), float(t[0]))]
+        # Where tracks simply stop in the copper, their ends are what it joins, so that drawn line is not cut short.
+        loose = self._loose_ends()
+        touching = {part: [node for node in nodes if node in loose] or nodes for part, nodes in touching.items()}
         for first, second in combinations(sorted(touching), 2):
             pairs = [(a, b) for a in touching[first] for b in touching[second]]
             if len(pairs) > _MANY:

@@ -1,0 +1,139 @@
+"""The nearest track of the other leg, for many points of this leg at once."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+import shapely
+
+from pairrules.board.columns import Floats, Ints
+from pairrules.geometry.curves import Curves, chords, directions, lengths, nearest, points
+from pairrules.geometry.pair_geometry import TRACK, Pieces
+
+COUPLED_TURN = math.radians(30.0)
+"""Legs turned less than this to each other run side by side."""
+
+_TIE_MM = 1e-7
+_SEARCH_MM = 0.001
+
+
+@dataclass(frozen=True, slots=True)
+class Nearest:
+    """What is nearest to each of n points: candidate row, feature (0 start, 1 inside, 2 end), gap, angle, coupled."""
+
+    other: Ints
+    feature: Ints
+    gap: Floats
+    angle: Floats
+    coupled: npt.NDArray[np.bool_]
+
+    def label(self) -> Ints:
+        """A number for each point, the same where the same part of the same piece is nearest and as coupled."""
+        return self.other * 8 + self.feature * 2 + self.coupled
+
+
+class NearestTrack:
+    """Nearest track of the other leg, for points on pieces of this leg."""
+
+    def __init__(self, own: Pieces, other: Pieces, rows: Ints, reach: float) -> None:
+        self._own = curves_of(own)
+        self._other = curves_of(other)
+        self._half = own.width / 2
+        self._other_half = other.width / 2
+        self._reach = reach
+        self.length = own.length
+        tracks = np.flatnonzero(other.kind == TRACK)
+        first, second = _candidates(self._own, own.layer, self._other, other.layer, self._other_half, rows, tracks)
+        order = np.lexsort((second, first))
+        self._pairs = second[order]
+        self._offset = np.searchsorted(first[order], np.arange(len(own) + 1))
+        self._pair_own = first[order]
+
+    def pairs(self) -> tuple[Ints, Ints]:
+        """All candidate pairs: row of this leg, row of the other."""
+        return self._pair_own, self._pairs
+
+    def at(self, rows: Ints, t: Floats) -> Nearest:
+        """What is nearest to the points at parameter t (n,) of this leg's pieces `rows` (n,)."""
+        count = self._offset[rows + 1] - self._offset[rows]
+        owner = np.repeat(np.arange(len(rows)), count)
+        within = np.arange(len(owner)) - np.repeat(np.cumsum(count) - count, count)
+        candidate = self._pairs[self._offset[rows][owner] + within]
+        own = self._own.take(rows)
+        at, heading = points(own, t), directions(own, t)
+        other = self._other.take(candidate)
+        foot, away = nearest(other, at[owner])
+        gap = away - self._half[rows][owner] - self._other_half[candidate]
+        turn = np.abs((directions(other, foot) - heading[owner] + np.pi / 2) % np.pi - np.pi / 2)
+        least = np.full(len(rows), np.inf)
+        np.minimum.at(least, owner, gap)
+        tied = gap <= least[owner] + _TIE_MM
+        # Of pieces equally near (both at a bend) the one that runs more nearly alongside counts.
+        rank = np.where(tied, np.round(turn, 9), np.inf)
+        best = np.lexsort((candidate, rank, owner))
+        start = np.cumsum(count) - count
+        chosen = np.where(count > 0, best[np.minimum(start, max(len(best) - 1, 0))] if len(best) else 0, -1)
+        none = count == 0
+        pick = np.where(none, 0, chosen)
+        if not len(candidate):
+            empty = np.full(len(rows), np.nan)
+            return Nearest(
+                np.full(len(rows), -1),
+                np.zeros(len(rows), dtype=np.int64),
+                empty,
+                empty,
+                np.zeros(len(rows), dtype=bool),
+            )
+        feature = np.where(foot[pick] <= 0.0, 0, np.where(foot[pick] >= 1.0, 2, 1))
+        found_gap = np.where(none, np.nan, least)
+        angle = np.where(none, np.nan, turn[pick])
+        coupled = ~none & (found_gap <= self._reach) & (np.where(none, np.inf, turn[pick]) < COUPLED_TURN)
+        return Nearest(np.where(none, -1, candidate[pick]), np.where(none, 0, feature), found_gap, angle, coupled)
+
+
+def curves_of(pieces: Pieces) -> Curves:
+    """The centre lines of a route's pieces."""
+    return Curves(start=pieces.start, end=pieces.end, centre=pieces.centre, sweep=pieces.sweep)
+
+
+def _candidates(
+    own: Curves,
+    own_layer: Ints,
+    other: Curves,
+    other_layer: Ints,
+    other_half: Floats,
+    rows: Ints,
+    tracks: Ints,
+) -> tuple[Ints, Ints]:
+    """Pairs (this leg's row, other leg's row) among which the nearest of any point must be.
+
+    A point of a piece is never farther from the piece's nearest neighbour than their distance plus the piece's length.
+    """
+    none = np.zeros(0, dtype=np.int64)
+    found: list[tuple[Ints, Ints]] = []
+    for layer in np.unique(own_layer[rows]):
+        mine, theirs = rows[own_layer[rows] == layer], tracks[other_layer[tracks] == layer]
+        if not len(theirs):
+            continue
+        lines = _lines(other.take(theirs))
+        searched = _lines(own.take(mine))
+        tree = shapely.STRtree(lines)
+        (asked, _), away = tree.query_nearest(searched, return_distance=True, all_matches=False)
+        slack = 2 * (float(other_half[theirs].max()) - float(other_half[theirs].min())) + 2 * _SEARCH_MM
+        bound = np.zeros(len(mine))
+        bound[asked] = away
+        first, second = tree.query(searched, predicate="dwithin", distance=bound + lengths(own.take(mine)) + slack)
+        found.append((mine[first], theirs[second]))
+    if not found:
+        return none, none
+    return np.concatenate([first for first, _ in found]), np.concatenate([second for _, second in found])
+
+
+def _lines(curves: Curves) -> npt.NDArray[np.object_]:
+    at, rows = chords(curves, within=_SEARCH_MM / 2)
+    made = np.empty(len(curves), dtype=object)
+    made[:] = shapely.linestrings(at, indices=rows)
+    return made
