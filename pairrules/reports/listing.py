@@ -20,7 +20,7 @@ _SUMMARY = (("flag", "flagged"), ("undecided", "undecided"), ("waived", "waived"
 
 
 def render(result: Result, look: Look) -> str:
-    """Summary; flagged, undecided, waived, passed pairs; left-over nets; what the file lacked; what figures are worth."""
+    """Summary; flagged, undecided, waived, passed pairs; left-over nets; what the file lacked; what it is all worth."""
     lines = _summary(result, look)
     for pair in sorted((pair for pair in result.pairs if pair.verdict == "flag"), key=_worst_first):
         lines += ["", *_flagged(result, pair, look)]

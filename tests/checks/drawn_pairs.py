@@ -1,0 +1,68 @@
+"""A pair drawn in a case file, made into what a rule judges. Case files say of each leg only its tracks and its two ends."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import replace
+from typing import Any
+
+from tests.geometry.small_boards import board, pads_of, pin, track
+
+from pairrules.board.units import quantity
+from pairrules.checks.measures import geometric_measures
+from pairrules.checks.rule import Rule, Subject
+from pairrules.geometry.measure import measure_link
+from pairrules.pairing.link import Hop, Link
+from pairrules.settings.limit import Limit
+
+NETS = {"plus": "A_P", "minus": "A_N"}
+BARE_STACK = [{"name": "TOP", "kind": "copper"}, {"name": "BOT", "kind": "copper"}]
+
+
+def subject(case: Mapping[str, Any]) -> Subject:
+    """The pair of a case, measured."""
+    tracks, parts = [], []
+    for leg, net in NETS.items():
+        drawn = [one if isinstance(one, dict) else {"points": one} for one in case.get(leg, [])]
+        tracks += [
+            track(net, *one["points"], width=one.get("width", 0.2), layer=one.get("layer", "TOP")) for one in drawn
+        ]
+        ends = case.get(f"ends_{leg}") or [drawn[0]["points"][0], drawn[-1]["points"][-1]]
+        layers = [drawn[0].get("layer", "TOP"), drawn[-1].get("layer", "TOP")] if drawn else ["TOP", "TOP"]
+        for part, at, layer in zip(("U1", "J1"), ends, layers, strict=True):
+            parts.append(pin(part, "1" if leg == "plus" else "2", net, *at, layer=layer))
+    vias = [{"drill": 0.3, "pad": 0.6, "from": "TOP", "to": "BOT"} | via for via in case.get("vias", [])]
+    more = {"stackup": BARE_STACK} if case.get("stack") == "bare" else {}
+    on = board(tracks=tracks, parts=parts, vias=vias, units=case.get("units", "mm"), **more)
+    if "lacks" in case:
+        on = replace(on, complete=False, missing=(case["lacks"],))
+    hops = {}
+    for leg, net in NETS.items():
+        first, last = pads_of(on, net)
+        hops[leg] = Hop(net=on.nets.index(net), start=(first,), end=() if case.get("no_load") else (last,))
+    link = Link(
+        name="A",
+        plus=hops["plus"].net,
+        minus=hops["minus"].net,
+        klass="",
+        found_by="net name",
+        hops_plus=(hops["plus"],),
+        hops_minus=(hops["minus"],),
+        series=(),
+        source=0,
+        load=1,
+        missing=("no part at the load end was found",) if case.get("no_load") else (),
+    )
+    geometry = measure_link(on, link, reach_mm=case.get("reach_mm"), reference=())
+    return Subject(board=on, link=link, geometry=geometry, measures=geometric_measures(geometry))
+
+
+def limit(name: str, rule: Rule, written: Mapping[str, Any]) -> Limit:
+    """A limit as settings would give it."""
+    return Limit(
+        rule=name,
+        severity="review",
+        quantities={key: quantity(str(text), rule.quantities[key]) for key, text in written.items()},
+        source="this test",
+        place="case",
+    )
