@@ -1,0 +1,85 @@
+"""What a net's name says it is for, where that is no balanced signal: ground, supply, control line, address, lamp.
+
+Source of the word lists: common practice, no source.
+"""
+
+from __future__ import annotations
+
+import re
+
+_APART = re.compile(r"[^A-Z0-9]+")
+
+_GROUND = re.compile(r"(?:[A-Z]{0,3}GND[A-Z]{0,2}|[AD]?VSS[A-Z]{0,2}|GROUND|EARTH|CHASSIS|SHIELD)[0-9]*|0V")
+
+_NO_GROUND = re.compile(
+    r"(?:SENSE|SENS|SNS|KELVIN|DET|DETECT|FAULT|FLT|OK|EN|MON|FB|LOOP|TEST|SW|CTRL|P|N|POS|NEG)[0-9]*"
+)
+"""Words that make a net with a ground's word in it a signal about that ground (`GND_SENSE`, `SHIELD_DET`)."""
+
+_SUPPLY = re.compile(
+    r"[A-Z]{0,3}V(?:DD|CC|EE|SS|BAT|BUS|REF|CORE|PP|TT|SYS|IO|PWR)[A-Z]{0,4}[0-9]*"
+    r"|[0-9]+V[0-9]*|[0-9]+P[0-9]+V?|V[0-9]+[VP][0-9]+|PWR|POWER|SUPPLY|RAIL|BATT?|BATTERY"
+)
+
+_RAIL = re.compile(r"VS?[0-9]*|DC|HV|LV")
+"""Words that mean a supply only where a polarity follows them (`V+`, `HV-`)."""
+
+_CONTROL = re.compile(
+    r"N?(?:RESET|RST|SRST|TRST|MRST|MR|POR|CS|CE|SS|SEL|EN|ENA|ENABLE|OE|WE|WR|BE|IRQ|INT|INTR|NMI|ALERT|ALARM|FAULT|FLT|ERR"
+    r"|PG|PGOOD|PWRGD|SHDN|SHUTDOWN|SLEEP|WAKE|STBY|STANDBY|PD|PDN|PWRDN|HOLD|WP|BUSY|READY|RDY|ACK|REQ|LDAC|DIS|DISABLE"
+    r"|BOOT|PRSNT|PRESENT|DET|DETECT)[0-9]*"
+)
+
+_HIGH_AND_LOW = re.compile(
+    r"(?:A|AD|ADR|ADDR|ADDRESS|D|DATA|DQ|DQM|LED|LAMP|BYTE|WORD|NIBBLE|BANK|REG|CNT|COUNT|GATE|G|GD|DRV|HS|LS|PWM|SW|SWITCH|KEY"
+    r"|BTN|BUTTON|LIM|LIMIT|TH|THR|THRESH|LEVEL|LVL|TEMP|MUX|RANGE|GAIN|SPEED|COL|ROW|BL|BLANK|U|L|RELAY|VALVE|PUMP"
+    r"|MOTOR|M)[0-9]*"
+)
+"""Stems whose `_H` and `_L` mean high and low of a number, a threshold or a half bridge, not the legs of a pair."""
+
+_LAMP = re.compile(r"(?:LED|LAMP|BACKLIGHT|BL)[0-9]*")
+
+
+def words(name: str) -> tuple[str, ...]:
+    """The words of a net name, in capitals; everything but letters and digits divides."""
+    return tuple(word for word in _APART.split(name.upper()) if word)
+
+
+def is_ground_name(name: str) -> bool:
+    """Whether the name is a ground's: its first or last word says so and no other makes it a signal about a ground."""
+    said = words(name)
+    if not said or any(_NO_GROUND.fullmatch(word) for word in said):
+        return False
+    return any(_GROUND.fullmatch(word) for word in (said[0], said[-1]))
+
+
+def is_supply_name(name: str) -> bool:
+    """Whether the name is a supply's or ground's, by its first word and its last (`VDD`, `VDD_IO`, `+3V3`)."""
+    said = words(name)
+    if not said:
+        return False
+    return (
+        is_ground_name(name)
+        or _SUPPLY.fullmatch(said[-1]) is not None
+        or (_SUPPLY.fullmatch(said[0]) is not None and not any(_NO_GROUND.fullmatch(word) for word in said))
+    )
+
+
+def is_supply_word(word: str) -> bool:
+    """Whether the word next to a polarity makes the two nets supply rails (`VDD_P`, `V+`, `-5V`)."""
+    return any(kind.fullmatch(word) for kind in (_SUPPLY, _GROUND, _RAIL))
+
+
+def is_control_word(word: str) -> bool:
+    """Whether the word is that of a control line, whose `_N` usually means active low."""
+    return _CONTROL.fullmatch(word) is not None
+
+
+def is_high_low_word(word: str) -> bool:
+    """Whether `_H` and `_L` after the word mean high and low rather than two legs."""
+    return _HIGH_AND_LOW.fullmatch(word) is not None or is_control_word(word)
+
+
+def is_lamp_word(word: str) -> bool:
+    """Whether the word names a lamp, whose plus and minus are its two ends."""
+    return _LAMP.fullmatch(word) is not None
