@@ -78,7 +78,7 @@ class _Refused(Exception):  # noqa: N818  carries no message; the fault is noted
 def decode(data: bytes, faults: Faults) -> str | None:
     """The text of a settings file; a fault and None where it is too large or not UTF-8."""
     if len(data) > LARGEST_BYTES:
-        faults.add(f"holds {len(data)} bytes", f"keep a settings file below {LARGEST_BYTES} bytes")
+        faults.add(f"holds more than {LARGEST_BYTES} bytes", "split it with extends")
         return None
     try:
         return data.decode("utf-8-sig")

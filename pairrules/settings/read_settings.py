@@ -7,13 +7,14 @@ it is first reached.
 
 from __future__ import annotations
 
+import os
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from pathlib import Path
 
 from pairrules.settings.faults import Faults, nearest
 from pairrules.settings.limit import Limit, RuleForm
-from pairrules.settings.nodes import Node, decode, parse
+from pairrules.settings.nodes import LARGEST_BYTES, Node, decode, parse
 from pairrules.settings.one_file import OneFile, one_file
 from pairrules.settings.pair_class import LimitsAndOff, PairClass, laid_over, limits_over
 from pairrules.settings.read_shape import Entry, read_shape
@@ -97,7 +98,7 @@ class _Chain:
     def _add(
         self, path: Path, asking: Faults, faults: Faults, at: Node | None, text: str | None, *, shipped: bool
     ) -> None:
-        resolved = path.resolve()
+        resolved = Path(os.path.realpath(path))  # Path.resolve stops with an error at links in a circle
         if resolved in self._entered:
             asking.add(f"extends {faults.file}, which builds on this file", "take one of the two out", at)
             return
@@ -132,7 +133,8 @@ class _Chain:
 
 def _text_of(path: Path, asking: Faults, faults: Faults, at: Node | None) -> str | None:
     try:
-        data = path.read_bytes()
+        with path.open("rb") as stream:
+            data = stream.read(LARGEST_BYTES + 1)
     except OSError as error:
         reason = "does not exist" if isinstance(error, FileNotFoundError) else "cannot be opened"
         if at is None:
