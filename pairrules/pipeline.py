@@ -63,11 +63,12 @@ def check(
         reach = None if klass is None else klass.reach_mm
         geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference, index=index, copper=copper)
         measures = geometric_measures(geometry)
-        subject = Subject(board=board, link=link, geometry=geometry, measures=measures)
-        limits = {} if klass is None else opened.settings.limits_for(klass)
+        breakout = 0.0 if klass is None else klass.breakout_mm or 0.0
+        subject = Subject(board=board, link=link, geometry=geometry, measures=measures, breakout_mm=breakout)
+        limits = opened.settings.limits_for(klass)
         judgement = judge_pair(subject, limits, rules)
         found = _found_pair(board, link, None if klass is None else klass.name)
-        no_class = () if limits else ("no class with limits holds for this pair; give it one in the settings",)
+        notes = _notes(link, None if klass is None else klass.name, bool(limits))
         results.append(
             PairResult(
                 name=found.name,
@@ -85,7 +86,7 @@ def check(
                 measures=measures,
                 findings=judgement.findings,
                 unjudged=judgement.unjudged,
-                missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *no_class))),
+                missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *notes))),
             )
         )
     return Result(version=__version__, board=opened.summary, pairs=tuple(results), unpaired=opened.unpaired)
@@ -140,6 +141,15 @@ def _open(path: str | Path, settings: str | Path | None, *, pairs: str, step: st
     return _Opened(
         board=board, summary=summary, settings=chosen, reference=reference, links=links, unpaired=pairing.unpaired
     )
+
+
+def _notes(link: Link, klass: str | None, limited: bool) -> tuple[str, ...]:
+    notes = []
+    if link.klass and link.klass != klass:
+        notes.append(f"the file puts the pair in class {link.klass}, which the settings do not have")
+    if not limited:
+        notes.append("no limit holds for the pair; give it a class with limits in the settings")
+    return tuple(notes)
 
 
 def _stacked(board: Board, settings: Settings) -> Board:

@@ -2,7 +2,7 @@
 
 What it judges
     `apart_mm`: the greater of the two legs' track lengths along which the other leg does not run beside it (same
-    layer, within reach, turned less than 30 degrees).
+    layer, within reach, turned less than 30 degrees). The class's `breakout` at each end of each leg is left out.
 
 Why it matters
     Where the legs run apart they enclose a loop that a magnetic field drives, each sees its own neighbours, and the
@@ -42,20 +42,26 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     if geometry.apart_mm is None or geometry.profile_plus is None or geometry.profile_minus is None:
         return unrouted(subject)
     plus, minus = found
-    on_plus, on_minus = (alone(subject.board, p) for p in (geometry.profile_plus, geometry.profile_minus))
+    on_plus, on_minus = (
+        alone(subject.board, profile, breakout_mm=subject.breakout_mm)
+        for profile in (geometry.profile_plus, geometry.profile_minus)
+    )
     plus_mm, minus_mm = (math.fsum(stretch.length_mm for stretch in stretches) for stretches in (on_plus, on_minus))
-    name, leg, stretches = ("plus", plus, on_plus) if plus_mm >= minus_mm else ("minus", minus, on_minus)
+    if plus_mm >= minus_mm:
+        name, leg, stretches, apart_mm = "plus", plus, on_plus, plus_mm
+    else:
+        name, leg, stretches, apart_mm = "minus", minus, on_minus, minus_mm
     allowed_mm = min(given.get("most", math.inf), given.get("share", math.inf) * leg.track_mm)
-    if geometry.apart_mm <= allowed_mm + TOLERANCE:
+    if apart_mm <= allowed_mm + TOLERANCE:
         return ()
-    measured, allowed = amounts(geometry.apart_mm, allowed_mm, "mm")
+    measured, allowed = amounts(apart_mm, allowed_mm, "mm")
     spots = [f"{spot(subject.board, s.first)} to {spot(subject.board, s.last)}" for s in stretches[:3]]
     rest = f" and {len(stretches) - 3} more" if len(stretches) > 3 else ""
     return (
         Finding(
             rule=limit.rule,
             severity=limit.severity,
-            measured=geometry.apart_mm,
+            measured=apart_mm,
             limit=allowed_mm,
             unit="mm",
             message=f"{name} runs {measured} without the other leg beside it; {allowed} is allowed",

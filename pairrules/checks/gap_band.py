@@ -2,8 +2,8 @@
 
 What it judges
     The gap, track edge to track edge, along the coupled length of plus. Its band is the pair's own median gap give or
-    take `spread`, or the absolute `least` and `most`; where both are given both hold. Stretches no longer than `for`
-    are excused.
+    take `spread`, or the absolute `least` and `most`; where both are given both hold. The class's `breakout` at each
+    end is left out; stretches no longer than `for` are excused.
 
 Why it matters
     Coupling and odd-mode impedance follow the gap. A stretch that is wider or narrower reflects, and where the legs
@@ -51,8 +51,16 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         least = max(least, median * (1 - given["spread"]))
         most = min(most, median * (1 + given["spread"]))
     excused = given.get("for", 0.0) + TOLERANCE
-    wide = [stretch for stretch in wider(subject.board, profile, most) if stretch.length_mm > excused]
-    narrow = [stretch for stretch in narrower(subject.board, profile, least) if stretch.length_mm > excused]
+    wide = [
+        stretch
+        for stretch in wider(subject.board, profile, most, breakout_mm=subject.breakout_mm)
+        if stretch.length_mm > excused
+    ]
+    narrow = [
+        stretch
+        for stretch in narrower(subject.board, profile, least, breakout_mm=subject.breakout_mm)
+        if stretch.length_mm > excused
+    ]
     band = _band(least, most)
     return tuple(
         _finding(subject, limit, stretches, bound, band)

@@ -17,12 +17,18 @@ from pairrules.settings.limit import Limit
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Subject:
-    """One pair with everything the earlier stages found out about it."""
+    """One pair with everything the earlier stages found out about it.
+
+    Parameters
+    ----------
+    breakout_mm: track length at each end of each leg that rules on the gap and on running apart leave out.
+    """
 
     board: Board
     link: Link
     geometry: PairGeometry
     measures: Measures
+    breakout_mm: float = 0.0
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -1,4 +1,7 @@
-"""Contiguous stretches of a spacing profile: where a leg runs alone, and where the gap leaves a band."""
+"""Contiguous stretches of a spacing profile: where a leg runs alone, and where the gap leaves a band.
+
+`breakout_mm` is the track length at each end of the leg that is left out.
+"""
 
 from __future__ import annotations
 
@@ -36,23 +39,26 @@ class Stretch:
         return self.s_to - self.s_from
 
 
-def alone(board: Board, profile: SpacingProfile) -> tuple[Stretch, ...]:
+def alone(board: Board, profile: SpacingProfile, *, breakout_mm: float = 0.0) -> tuple[Stretch, ...]:
     """Where the other leg does not run beside this one, longest first."""
     whole = np.zeros(len(profile)), np.ones(len(profile))
-    return _merged(board, profile, ~profile.coupled, *whole, np.full(len(profile), np.nan), sign=1.0)
+    no_gap = np.full((2, len(profile)), np.nan)
+    return _merged(board, profile, ~profile.coupled, *whole, no_gap, sign=1.0, breakout_mm=breakout_mm)
 
 
-def wider(board: Board, profile: SpacingProfile, than_mm: float) -> tuple[Stretch, ...]:
+def wider(board: Board, profile: SpacingProfile, than_mm: float, *, breakout_mm: float = 0.0) -> tuple[Stretch, ...]:
     """Where the coupled gap is greater than `than_mm`, longest first. `worst` is the greatest gap."""
-    return _outside(board, profile, than_mm, 1.0)
+    return _outside(board, profile, than_mm, 1.0, breakout_mm)
 
 
-def narrower(board: Board, profile: SpacingProfile, than_mm: float) -> tuple[Stretch, ...]:
+def narrower(board: Board, profile: SpacingProfile, than_mm: float, *, breakout_mm: float = 0.0) -> tuple[Stretch, ...]:
     """Where the coupled gap is less than `than_mm`, longest first. `worst` is the least gap."""
-    return _outside(board, profile, than_mm, -1.0)
+    return _outside(board, profile, than_mm, -1.0, breakout_mm)
 
 
-def _outside(board: Board, profile: SpacingProfile, than_mm: float, sign: float) -> tuple[Stretch, ...]:
+def _outside(
+    board: Board, profile: SpacingProfile, than_mm: float, sign: float, breakout_mm: float
+) -> tuple[Stretch, ...]:
     """Each row is taken as two straight pieces of gap over length, through its ends and its middle."""
     # Halves interleaved: first half of row 0, second half of row 0, first half of row 1, …
     left = sign * np.column_stack([profile.gap_from, profile.gap_mid]).reshape(-1)
@@ -64,15 +70,23 @@ def _outside(board: Board, profile: SpacingProfile, than_mm: float, sign: float)
     begin = np.where(over_left, 0.0, crossing)
     stop = np.where(over_right, 1.0, crossing)
     keep = (over_left | over_right) & np.repeat(profile.coupled, 2)
-    return _merged(board, profile, keep, begin, stop, np.fmax(left, right), sign=sign)
+    return _merged(board, profile, keep, begin, stop, np.stack([left, right]), sign=sign, breakout_mm=breakout_mm)
 
 
 def _merged(
-    board: Board, profile: SpacingProfile, keep: Bools, begin: Floats, stop: Floats, value: Floats, *, sign: float
+    board: Board,
+    profile: SpacingProfile,
+    keep: Bools,
+    begin: Floats,
+    stop: Floats,
+    gap: Floats,
+    *,
+    sign: float,
+    breakout_mm: float,
 ) -> tuple[Stretch, ...]:
     """Join parts of rows that follow one another.
 
-    Parameters: begin, stop: shares of each part (one or two parts a row). value: `sign` × gap, worst in each part.
+    Parameters: begin, stop: shares of each part (one or two parts a row). gap: (2, parts) `sign` × gap at its ends.
     """
     parts = max(len(keep) // max(len(profile), 1), 1)
     at = np.flatnonzero(keep)
@@ -81,6 +95,19 @@ def _merged(
     row, half = at // parts, at % parts
     t_from, t_to = (half + begin[at]) / parts, (half + stop[at]) / parts
     s_span = profile.s_to - profile.s_from
+    with np.errstate(divide="ignore", invalid="ignore"):
+        t_first = np.nan_to_num((breakout_mm - profile.s_from[row]) / s_span[row], posinf=1.0, neginf=0.0)
+        t_last = np.nan_to_num(
+            (profile.s_to[-1] - breakout_mm - profile.s_from[row]) / s_span[row], posinf=1.0, neginf=0.0
+        )
+    t_from, t_to = np.maximum(t_from, t_first), np.minimum(t_to, t_last)
+    within = t_to > t_from
+    at, row, t_from, t_to = at[within], row[within], t_from[within], t_to[within]
+    if not len(at):
+        return ()
+    half = at % parts
+    left, right = gap[:, at]
+    worst = np.fmax(*(left + (right - left) * (t * parts - half) for t in (t_from, t_to)))
     s_from = profile.s_from[row] + t_from * s_span[row]
     s_to = profile.s_from[row] + t_to * s_span[row]
     # A stretch goes on where the next part begins at the track length at which the last one ended.
@@ -96,7 +123,7 @@ def _merged(
                 s_to=float(s_to[b]),
                 first=place(board, int(profile.layer[row[a]]), xy_a[0], xy_a[1]),
                 last=place(board, int(profile.layer[row[b]]), xy_b[0], xy_b[1]),
-                worst=sign * float(value[at[group]].max()),
+                worst=sign * float(worst[group].max()),
             )
         )
     found = [stretch for stretch in found if stretch.length_mm > TOLERANCE]

@@ -54,7 +54,13 @@ def subject(case: Mapping[str, Any]) -> Subject:
         missing=("no part at the load end was found",) if case.get("no_load") else (),
     )
     geometry = measure_link(on, link, reach_mm=case.get("reach_mm"), reference=())
-    return Subject(board=on, link=link, geometry=geometry, measures=geometric_measures(geometry))
+    return Subject(
+        board=on,
+        link=link,
+        geometry=geometry,
+        measures=geometric_measures(geometry),
+        breakout_mm=case.get("breakout_mm", 0.0),
+    )
 
 
 def limit(name: str, rule: Rule, written: Mapping[str, Any]) -> Limit:
