@@ -17,8 +17,10 @@ from pairrules.settings.shapes import Either, Flag, Kinds, ListOf, Number, Quant
 
 _OHM = Quantity(dimension="resistance")
 _FARAD = Quantity(dimension="capacitance")
-_SHARE = Quantity(dimension="share")
-_MISMATCH = Quantity(dimension="share", signed=True)
+_SHARE = Quantity(dimension="share", below=1.0)
+_MISMATCH = Quantity(dimension="share", signed=True, below=2.0)
+# A load of 0 ohm would short the pair.
+_LOAD_OHM = Quantity(dimension="resistance", positive=True)
 _DB = Quantity(dimension="ratio", signed=True)
 FREQUENCY = Quantity(dimension="frequency", positive=True)
 
@@ -57,22 +59,21 @@ SOURCE_FORMS: Mapping[str, Table] = {
     ),
 }
 
-_LEG = Table(keys={"resistance": _OHM, "capacitance": _FARAD}, any_of=("resistance", "capacitance"))
+_LEG = Table(keys={"resistance": _LOAD_OHM, "capacitance": _FARAD}, any_of=("resistance", "capacitance"))
 
 LOAD_FORMS: Mapping[str, Table] = {
     "impedance": Table(
         keys={"plus": _LEG, "minus": _LEG, "across": _LEG, "rejection": _REJECTION, "tolerance": _SHARE},
         any_of=("plus", "minus", "across"),
-        needs={"plus": "minus", "minus": "plus"},
     ),
     # r1 from each leg to the amplifier, r2 the feedback and its twin to reference; tolerance: of each of the four.
     "difference-amplifier": Table(
-        keys={"r1": _OHM, "r2": _OHM, "tolerance": _SHARE, "rejection": _REJECTION}, required=("r1", "r2")
+        keys={"r1": _LOAD_OHM, "r2": _LOAD_OHM, "tolerance": _SHARE, "rejection": _REJECTION}, required=("r1", "r2")
     ),
     # resistance, capacitance: from each leg to reference.
     "instrumentation-amplifier": Table(
         keys={
-            "resistance": _OHM,
+            "resistance": _LOAD_OHM,
             "capacitance": _FARAD,
             "resistance_mismatch": _MISMATCH,
             "capacitance_mismatch": _MISMATCH,
@@ -84,7 +85,7 @@ LOAD_FORMS: Mapping[str, Table] = {
     # resistance: across the winding, as the far side reflects it.
     "transformer": Table(
         keys={
-            "resistance": _OHM,
+            "resistance": _LOAD_OHM,
             "winding_capacitance": _FARAD,
             "winding_capacitance_mismatch": _MISMATCH,
             "rejection": _REJECTION,
@@ -95,9 +96,9 @@ LOAD_FORMS: Mapping[str, Table] = {
     # resistance: from each leg to reference; across: the termination.
     "line-receiver": Table(
         keys={
-            "resistance": _OHM,
+            "resistance": _LOAD_OHM,
             "mismatch": _MISMATCH,
-            "across": _OHM,
+            "across": _LOAD_OHM,
             "rejection": _REJECTION,
             "tolerance": _SHARE,
         },
@@ -106,7 +107,7 @@ LOAD_FORMS: Mapping[str, Table] = {
     ),
     "adc": Table(
         keys={
-            "resistance": _OHM,
+            "resistance": _LOAD_OHM,
             "capacitance": _FARAD,
             "mismatch": _MISMATCH,
             "rejection": _REJECTION,
@@ -227,8 +228,15 @@ def source_spec(entry: Entry) -> SourceSpec:
     return SourceSpec(kind=entry.values["kind"], values=_numbers(entry))
 
 
-def cable_spec(entry: Entry) -> CableSpec:
+def cable_spec(entry: Entry, faults: Faults) -> CableSpec:
     """The cable of a read `CABLE_FORM`."""
+    unbalance, capacitance = entry.get("capacitance_unbalance"), entry.get("capacitance")
+    if unbalance is not None and abs(unbalance) > 2 * (capacitance or 0.0):
+        faults.add(
+            f"{entry.path}.capacitance_unbalance is more than both legs' capacitance to reference",
+            "give the capacitance of a leg, or less unbalance",
+            entry.nodes["capacitance_unbalance"],
+        )
     return CableSpec(values=_numbers(entry), twisted=entry.get("twisted"), screened=entry.get("screened"))
 
 

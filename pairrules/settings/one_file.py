@@ -160,7 +160,7 @@ class _Build:
             like=entry.get("like") or "",
             match=entry.get("match") or (),
             source=parts["source"] and source_spec(parts["source"]),
-            cable=parts["cable"] and cable_spec(parts["cable"]),
+            cable=parts["cable"] and cable_spec(parts["cable"], self._faults),
             load=parts["load"] and load_spec(parts["load"], self._faults),
             frequencies=tuple(sorted(set(entry.get("frequencies") or ()))),
             limits=limits,

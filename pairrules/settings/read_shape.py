@@ -104,6 +104,9 @@ def _quantity(node: nodes.Scalar, shape: Quantity, path: str, faults: Faults) ->
     if shape.positive and value == 0:
         faults.add(f"{path} is {node.text!r}", "write a value above zero", node)
         return None
+    if abs(value) >= shape.below:
+        faults.add(f"{path} is {node.text!r}", f"write less than {100 * shape.below:g} %", node)
+        return None
     return value * shape.scale
 
 

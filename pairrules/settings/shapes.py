@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from types import MappingProxyType
@@ -19,12 +20,14 @@ class Quantity:
     dimension: a key of `board.units.DIMENSIONS`.
     scale: multiplies what `board.units.quantity` returns (to reach SI units).
     signed: may be negative. positive: must not be zero.
+    below: its magnitude must be less than this; for shares.
     """
 
     dimension: str
     scale: float = 1.0
     signed: bool = False
     positive: bool = False
+    below: float = math.inf
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -150,6 +150,16 @@ CASES = {
     "extends: []\nclasses: {a: {cable: {length: 1 m, twisted: perhaps}}}\n": (
         "line 2, column 45: classes.a.cable.twisted is 'perhaps'; write true or false"
     ),
+    "extends: []\nclasses: {a: {cable: {length: 1 m, capacitance_unbalance: 1 pF/m}}}\n": (
+        "line 2, column 60: classes.a.cable.capacitance_unbalance is more than both legs' capacitance to reference; "
+        "give the capacitance of a leg, or less unbalance"
+    ),
+    "extends: []\nclasses: {a: {load: {kind: adc, resistance: 0 ohm}}}\n": (
+        "line 2, column 45: classes.a.load.resistance is '0 ohm'; write a value above zero"
+    ),
+    "extends: []\nclasses: {a: {source: {kind: bridge, resistance: 1 ohm, mismatch: -200 %}}}\n": (
+        "line 2, column 67: classes.a.source.mismatch is '-200 %'; write less than 200 %"
+    ),
     "extends: []\nclasses: {a: {mask: [{frequency: 1 Hz, value: 1 dB}, {frequency: 1 Hz, value: 2 dB}]}}\n": (
         "line 2, column 66: classes.a.mask[1] gives a frequency a second value; keep one of them"
     ),
