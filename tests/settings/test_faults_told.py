@@ -151,7 +151,7 @@ CASES = {
         "line 2, column 45: classes.a.cable.twisted is 'perhaps'; write true or false"
     ),
     "extends: []\nclasses: {a: {cable: {length: 1 m, capacitance_unbalance: 1 pF/m}}}\n": (
-        "line 2, column 60: classes.a.cable.capacitance_unbalance is more than both legs' capacitance to reference; "
+        "line 2, column 59: classes.a.cable.capacitance_unbalance is more than both legs' capacitance to reference; "
         "give the capacitance of a leg, or less unbalance"
     ),
     "extends: []\nclasses: {a: {load: {kind: adc, resistance: 0 ohm}}}\n": (
