@@ -1,14 +1,17 @@
 """The legs do not run on the same layers.
 
 What it judges
-    For each copper layer the difference of the track lengths that the two legs run on it; the greatest counts.
+    For each copper layer how much more track one leg has on it than the other, less what it is longer anyway; a layer
+    that one leg does not use at all counts whole. The greatest amount is judged.
 
 Why it matters
-    On another layer a leg sees other dielectric and other reference copper: it runs at another speed and impedance,
-    and the other leg does not run beside it.
+    On another layer a leg sees other dielectric and other reference copper: it runs at another speed and impedance, and
+    the other leg does not run beside it.
 
 Formula
-    max over layers of |track length of plus on it − track length of minus on it| [mm] ≤ most [mm].
+    With p and m the track lengths of plus and minus on a layer [mm], d = p − m, and D the sum of d over the layers: the
+    amount is |d| where p or m is 0 but both legs have track, |d| − |D| where d and D have one sign, |d| otherwise. The
+    greatest ≤ most [mm]. A leg that is merely longer, on the same layer, is so judged by `leg-length` alone.
 
 Source
     Common practice, no source.
@@ -21,6 +24,9 @@ Example
 """
 
 from __future__ import annotations
+
+import math
+from collections.abc import Mapping
 
 import numpy as np
 
@@ -39,7 +45,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         return found
     plus, minus = found
     on_plus, on_minus = dict(plus.layers), dict(minus.layers)
-    differences = {layer: on_plus.get(layer, 0.0) - on_minus.get(layer, 0.0) for layer in sorted({*on_plus, *on_minus})}
+    differences = _differences(on_plus, on_minus)
     most = limit.quantities["most"]
     # On a tie the layer that one leg uses alone explains more than the one it is missing from.
     worst = max(
@@ -65,6 +71,19 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             source=limit.source,
         ),
     )
+
+
+def _differences(on_plus: Mapping[int, float], on_minus: Mapping[int, float]) -> dict[int, float]:
+    """What plus has more on each layer [mm], less what it is longer in all; negative where minus has more."""
+    total = math.fsum(on_plus.values()) - math.fsum(on_minus.values())
+    found = {}
+    for layer in sorted({*on_plus, *on_minus}):
+        plus, minus = on_plus.get(layer, 0.0), on_minus.get(layer, 0.0)
+        own = plus - minus
+        if plus and minus and own * total > 0:
+            own = math.copysign(max(abs(own) - abs(total), 0.0), own)
+        found[layer] = own
+    return found
 
 
 def _where(subject: Subject, leg: LegRoute, layer: int) -> tuple[Place, ...]:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import textwrap
 
 from pairrules.board.coordinates import coordinates
@@ -15,7 +16,11 @@ CAUTIONS = (
 )
 _PLACES_SHOWN = 4
 _COLOURS = {"blocker": "1;31", "review": "1;33", "note": "1;36"}
-_SEVERITY = max(len(severity) for severity in SEVERITIES) + 4
+_TEXT_AT = len("  undecided  ")
+_HELD = "\ue000"
+"""Stands for a space that must not end a line; private, so that `safe` lets none through from a name."""
+
+_TOGETHER = re.compile(r"\(-?[\d.]+, -?[\d.]+\) (?:mm|um|mil|in)\b|[\d.]+ (?:mm²?|ohm|ps|dB)\b")
 _SUMMARY = (("flag", "flagged"), ("undecided", "undecided"), ("waived", "waived"), ("pass", "passed"))
 
 
@@ -62,8 +67,9 @@ def _flagged(result: Result, pair: PairResult, look: Look) -> list[str]:
     lines = _wrap(f"{safe(pair.name)}  ({safe(pair.plus)} and {safe(pair.minus)}{klass})", look, "", "  ")
     for finding in pair.findings:
         lines += _finding(result, finding, look)
-    for rule in pair.unjudged:
-        lines += _labelled("undecided", f"{rule.rule}: {safe(rule.missing)}", look, "")
+    for text, rules in _reasons(pair).items():
+        if rules:
+            lines += _labelled("undecided", f"{', '.join(rules)}: {text}", look, "")
     return lines
 
 
@@ -82,15 +88,20 @@ def _finding(result: Result, finding: Finding, look: Look) -> list[str]:
 
 
 def _undecided(pair: PairResult, look: Look) -> list[str]:
+    lines = _wrap(safe(pair.name), look, "  ", "    ")
+    for text, rules in _reasons(pair).items():
+        lines += _wrap(text + (f" ({', '.join(rules)})" if rules else ""), look, "    ", "      ")
+    return lines
+
+
+def _reasons(pair: PairResult) -> dict[str, list[str]]:
+    """What is not known of a pair, each with the rules that could not judge for it."""
     reasons: dict[str, list[str]] = {}
     for rule in pair.unjudged:
         reasons.setdefault(safe(rule.missing), []).append(rule.rule)
     for text in pair.missing:
         reasons.setdefault(safe(text), [])
-    lines = _wrap(safe(pair.name), look, "  ", "    ")
-    for text, rules in reasons.items():
-        lines += _wrap(text + (f" ({', '.join(rules)})" if rules else ""), look, "    ", "      ")
-    return lines
+    return reasons
 
 
 def _place(result: Result, place: Place) -> str:
@@ -99,15 +110,11 @@ def _place(result: Result, place: Place) -> str:
 
 def _labelled(label: str, text: str, look: Look, colour: str) -> list[str]:
     """The text wrapped in its own column, the label before its first line; colour is added after wrapping."""
-    lines = _wrap(text, look, " " * _SEVERITY, " " * _SEVERITY)
-    head = f"  {label}".ljust(_SEVERITY)
-    if len(label) + 3 > _SEVERITY:
-        lines = _wrap(text, look, f"  {label}  ", " " * _SEVERITY)
-        head = f"  {label}  "
+    lines = _wrap(text, look, " " * _TEXT_AT, " " * _TEXT_AT)
+    head = f"  {label}".ljust(_TEXT_AT)
     if colour and look.colour:
         head = head.replace(label, f"\x1b[{colour}m{label}\x1b[0m")
-    plain = len(f"  {label}  ") if len(label) + 3 > _SEVERITY else _SEVERITY
-    return [head + lines[0][plain:], *lines[1:]]
+    return [head + lines[0][_TEXT_AT:], *lines[1:]]
 
 
 def _named(head: str, names: list[str] | tuple[str, ...], look: Look) -> list[str]:
@@ -116,7 +123,9 @@ def _named(head: str, names: list[str] | tuple[str, ...], look: Look) -> list[st
 
 def _wrap(text: str, look: Look, first: str = "", later: str = "") -> list[str]:
     """Lines of the look's width. Names are not cut at hyphens; only one longer than a whole line is cut at all."""
-    return textwrap.wrap(text, look.width, initial_indent=first, subsequent_indent=later, break_on_hyphens=False)
+    whole = _TOGETHER.sub(lambda found: found[0].replace(" ", _HELD), text)
+    lines = textwrap.wrap(whole, look.width, initial_indent=first, subsequent_indent=later, break_on_hyphens=False)
+    return [line.replace(_HELD, " ") for line in lines]
 
 
 REPORT = Report(name="listing", summary="what is wrong, where, what to do", commands=("check",), render=render)
