@@ -12,7 +12,9 @@ FLATTENING_MM = 0.0005
 """Greatest distance of a flattened outline from its true arc; below any fabrication tolerance by two orders."""
 
 
-def sweep(start: tuple[float, float], end: tuple[float, float], centre: tuple[float, float], *, clockwise: bool) -> float:
+def sweep(
+    start: tuple[float, float], end: tuple[float, float], centre: tuple[float, float], *, clockwise: bool
+) -> float:
     """Signed angle [rad] from start to end about the centre, positive counter-clockwise.
 
     Start and end at the same place mean a full turn, as both IPC-2581 and plain JSON use it.
@@ -34,10 +36,7 @@ def flatten(
     """
     dx, dy = start[0] - centre[0], start[1] - centre[1]
     radius = math.hypot(dx, dy)
-    if radius <= within:
-        steps = 4
-    else:
-        steps = math.ceil(abs(angle) / (2 * math.acos(1 - within / radius)))
+    steps = 4 if radius <= within else math.ceil(abs(angle) / (2 * math.acos(1 - within / radius)))
     turns = angle * np.arange(1, max(steps, 1) + 1) / max(steps, 1)
     cos, sin = np.cos(turns), np.sin(turns)
     return np.column_stack([centre[0] + dx * cos - dy * sin, centre[1] + dx * sin + dy * cos])

@@ -30,7 +30,8 @@ class Board:
 
     Parameters
     ----------
-    name: the board's own name. format: "IPC-2581" or "plain JSON". revision: of the format. units: the file's, as written.
+    name: the board's own name. format: "IPC-2581" or "plain JSON". revision: of the format.
+    units: the file's, as written.
     stackup: top to bottom; its copper names are `copper`.
     nets: net names, sorted; records refer to them by index. net_kinds: "ground", "power", "signal" or "" for each.
     net_lines: for each net the line of the file where its copper first stands, 0 where unknown.

@@ -1,4 +1,4 @@
-"""Columns of a record: copied, made read-only and of one length, so that nobody can change a board underneath another."""
+"""Columns of a record: copied, read-only and of one length, so that nobody can change a board under another."""
 
 from __future__ import annotations
 

@@ -17,7 +17,7 @@ class Tracks:
     ----------
     start, end: (k, 2) [mm].
     centre: (k, 2) [mm]; NaN where the piece is straight.
-    sweep: (k,) [rad] signed angle of an arc from start to end, positive counter-clockwise, |sweep| ≤ 2π; 0 where straight.
+    sweep: (k,) [rad] signed angle of an arc, positive counter-clockwise, |sweep| ≤ 2π; 0 where straight.
     width: (k,) [mm].
     layer: (k,) index into `Board.copper`.
     net: (k,) index into `Board.nets`; −1 where the copper belongs to no net (foreign copper).

@@ -6,9 +6,21 @@ import math
 import re
 
 LENGTH_MM = {"mm": 1.0, "um": 0.001, "mil": 0.0254, "in": 25.4, "cm": 10.0, "m": 1000.0}
-"""Millimetres in one of each unit of length. Source: the inch is 25.4 mm exactly (international yard and pound, 1959)."""
+"""Millimetres in one of each. Source: the inch is 25.4 mm exactly (international yard and pound, 1959)."""
 
-_PREFIX = {"f": 1e-15, "p": 1e-12, "n": 1e-9, "u": 1e-6, "µ": 1e-6, "m": 1e-3, "": 1.0, "k": 1e3, "M": 1e6, "G": 1e9, "T": 1e12}
+_PREFIX = {
+    "f": 1e-15,
+    "p": 1e-12,
+    "n": 1e-9,
+    "u": 1e-6,
+    "µ": 1e-6,
+    "m": 1e-3,
+    "": 1.0,
+    "k": 1e3,
+    "M": 1e6,
+    "G": 1e9,
+    "T": 1e12,
+}
 
 _BASE = {
     "time": ("s", 1e12),  # ps

@@ -54,7 +54,7 @@ class Pieces:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Stub:
-    """Track branching off the route: total length of one connected branch, and where it leaves the route (layer, x, y)."""
+    """Track branching off the route: length of one connected branch, and where it leaves the route (layer, x, y)."""
 
     length_mm: float
     layer: int
@@ -64,7 +64,7 @@ class Stub:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class ViaUse:
-    """A via the route passes: its row in `Board.vias` (−1 for a plated pin hole), place, and the layers entered and left by."""
+    """A via the route passes: row in `Board.vias` (−1 for a plated pin hole), place, layers entered and left by."""
 
     via: int
     x_mm: float
@@ -82,7 +82,7 @@ class LegRoute:
     pieces: source first. length_mm: sum of `pieces.length`, barrels of unknown height left out.
     barrels_known: false where one was left out. track_mm: length of the TRACK pieces alone.
     vias: in order. stubs: longest first. width_mm: length-weighted median width; `None` without track.
-    widths: ((width_mm, length_mm), ...) narrowest first. layers: ((layer, track length_mm), ...) in the order of the stack.
+    widths: ((width_mm, length_mm), ...) narrowest first. layers: ((layer, track length_mm), ...) top first.
     stub_mm: their sum.
     """
 
