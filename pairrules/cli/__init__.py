@@ -8,8 +8,11 @@ from __future__ import annotations
 
 import importlib
 import os
+import re
 import sys
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
+from functools import cache
+from pathlib import Path
 
 import click
 
@@ -21,13 +24,20 @@ INTERRUPTED = 130
 BROKEN_PIPE = 141
 """128 plus the number of the signal, as POSIX shells report them."""
 
-COMMANDS = {
-    "check": "Judge the pairs of boards against the limits of their classes.",
-    "measure": "Print all figures of a board's pairs, without judging.",
-    "pairs": "List a board's pairs and how they were found.",
-    "schema": "Print the JSON schema of a file that pairrules reads or writes.",
-}
-"""Each command's name (its file is of that name) and the line that `--help` shows, so that help imports no command."""
+_OPENING = re.compile(r'"""`pairrules (?P<name>[a-z-]+)`: (?P<does>.+?)"*$')
+"""How the first line of a command's file reads: its name, and the line that `--help` shows."""
+
+
+@cache
+def commands() -> Mapping[str, str]:
+    """Every command and what it does, read from the first lines of this folder's files, so that help imports none."""
+    found = {}
+    for path in sorted(Path(__file__).parent.glob("*.py")):
+        with path.open(encoding="utf-8") as file:
+            opening = _OPENING.match(file.readline().rstrip("\n"))
+        if opening is not None:
+            found[opening["name"]] = opening["does"]
+    return found
 
 
 class LazyGroup(click.Group):
@@ -36,14 +46,14 @@ class LazyGroup(click.Group):
     def list_commands(self, ctx: click.Context) -> list[str]:
         """The names, sorted."""
         del ctx
-        return sorted(COMMANDS)
+        return sorted(commands())
 
     def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:
         """The command, or for the group's own help just its name and line."""
-        if cmd_name not in COMMANDS:
+        if cmd_name not in commands():
             return None
         if ctx.resilient_parsing or not _runs(ctx, cmd_name):
-            return click.Command(cmd_name, help=COMMANDS[cmd_name])
+            return click.Command(cmd_name, help=commands()[cmd_name])
         found: click.Command = importlib.import_module(f"pairrules.cli.{cmd_name}").command
         return found
 
