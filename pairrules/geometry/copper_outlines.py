@@ -31,8 +31,8 @@ class Outlines:
         return len(self.net)
 
 
-def copper_outlines(board: Board, layer: int, *, nets: tuple[int, ...] | None = None) -> Outlines:
-    """Copper of `layer`, of the given nets or of all and none; what has no known size is left out.
+def copper_outlines(board: Board, layer: int, *, nets: tuple[int, ...] | None = None, tracks: bool = True) -> Outlines:
+    """Copper of `layer`, of the given nets or of all and none, with tracks or without; unknown sizes are left out.
 
     Order: areas, tracks, pads, vias, each as the board lists them, so that the same board gives the same rows.
     """
@@ -44,7 +44,7 @@ def copper_outlines(board: Board, layer: int, *, nets: tuple[int, ...] | None = 
     area_layer = np.array([area.layer for area in board.areas], dtype=np.int64)
     found = [
         _areas(board, np.flatnonzero((area_layer == layer) & chosen(area_net)), area_net),
-        _tracks(board, np.flatnonzero((board.tracks.layer == layer) & chosen(board.tracks.net))),
+        _tracks(board, np.flatnonzero((board.tracks.layer == layer) & chosen(board.tracks.net) & tracks)),
         _pads(board, np.flatnonzero(np.isin(board.pads.layer, (layer, -1)) & chosen(board.pads.net))),
         _vias(
             board,
@@ -59,10 +59,12 @@ def copper_outlines(board: Board, layer: int, *, nets: tuple[int, ...] | None = 
     return Outlines(polygons=parts[solid], net=net[rows[solid]])
 
 
-def round_lines(lines: Shapes, half_width: Floats) -> Shapes:
-    """Lines (k,) drawn with round pens of the given half width (k,) [mm]."""
-    drawn: Shapes = shapely.buffer(lines, half_width, quad_segs=_QUARTER_SEGMENTS)
-    return drawn
+def centre_lines(curves: Curves) -> Shapes:
+    """Centre lines (k,) with arcs drawn as chords, `FLATTENING_MM` from them at most: for drawing and for searching."""
+    corners, piece = chords(curves, within=FLATTENING_MM)
+    if not len(corners):
+        return np.empty(0, dtype=np.object_)
+    return np.asarray(shapely.linestrings(corners, indices=piece), dtype=np.object_)
 
 
 def _areas(board: Board, rows: Ints, net: Ints) -> tuple[Shapes, Ints]:
@@ -79,10 +81,8 @@ def _tracks(board: Board, rows: Ints) -> tuple[Shapes, Ints]:
     dot = (curves.start == curves.end).all(axis=1) & (curves.sweep == 0.0)
     shapes = np.empty(len(rows), dtype=np.object_)
     shapes[dot] = shapely.points(curves.start[dot])
-    corners, piece = chords(curves.take(~dot), within=FLATTENING_MM)
-    if len(corners):
-        shapes[~dot] = shapely.linestrings(corners, indices=piece)
-    return round_lines(shapes, tracks.width[rows] / 2), tracks.net[rows]
+    shapes[~dot] = centre_lines(curves.take(~dot))
+    return _round_lines(shapes, tracks.width[rows] / 2), tracks.net[rows]
 
 
 def _pads(board: Board, rows: Ints) -> tuple[Shapes, Ints]:
@@ -108,7 +108,12 @@ def _vias(board: Board, rows: Ints) -> tuple[Shapes, Ints]:
     size = np.where(np.isnan(board.vias.pad[rows]), board.vias.drill[rows], board.vias.pad[rows])
     rows, size = rows[~np.isnan(size)], size[~np.isnan(size)]
     centres = np.asarray(shapely.points(board.vias.at[rows]), dtype=np.object_)
-    return round_lines(centres, size / 2), board.vias.net[rows]
+    return _round_lines(centres, size / 2), board.vias.net[rows]
+
+
+def _round_lines(lines: Shapes, half_width: Floats) -> Shapes:
+    drawn: Shapes = shapely.buffer(lines, half_width, quad_segs=_QUARTER_SEGMENTS)
+    return drawn
 
 
 def _shapes(items: list[shapely.Geometry]) -> Shapes:

@@ -31,7 +31,7 @@ def crossings(curves: Curves, edges: Floats) -> tuple[Floats, Floats, Floats]:
     arcs = []
     for u_arc in (foot - reach, foot + reach):
         at = spoke + u_arc[:, None] * along
-        arcs.append(np.where((u_arc > -1e-9) & (u_arc < 1 + 1e-9), _arc_parameter(curves, at), np.nan))
+        arcs.append(np.where((u_arc > -1e-9) & (u_arc < 1 + 1e-9), arc_parameter(curves, at), np.nan))
     return line, arcs[0], arcs[1]
 
 
@@ -55,7 +55,7 @@ def nearest_to_edges(curves: Curves, edges: Floats) -> tuple[Floats, Floats]:
     normal = np.column_stack([-along[:, 1], along[:, 0]]) / np.sqrt(square)[:, None]
     for side in (1.0, -1.0):
         radial = side * normal * _radius(curves)[:, None]
-        t = _arc_parameter(curves, radial)
+        t = arc_parameter(curves, radial)
         on = (t >= 0) & (t <= 1)
         choices.append((np.where(on, t, 0.0), np.where(on, to_edge(curves.centre + radial), np.inf)))
     t_all, apart = np.stack([t for t, _ in choices]), np.stack([far for _, far in choices])
@@ -63,7 +63,7 @@ def nearest_to_edges(curves: Curves, edges: Floats) -> tuple[Floats, Floats]:
     return t_all[best, rows], apart[best, rows]
 
 
-def _arc_parameter(curves: Curves, radial: Floats) -> Floats:
+def arc_parameter(curves: Curves, radial: Floats) -> Floats:
     """Parameter at which an arc reaches the direction `radial` (k, 2), > 1 beyond its end; NaN for a line."""
     first = curves.start - curves.centre
     turn = np.arctan2(_cross(first, radial), (first * radial).sum(axis=1)) * np.sign(curves.sweep)

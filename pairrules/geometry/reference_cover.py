@@ -5,14 +5,13 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-import shapely
 
 from pairrules.board.arcs import FLATTENING_MM
 from pairrules.board.board import Board
 from pairrules.board.columns import Bools, Floats, Ints, freeze
-from pairrules.geometry.copper_outlines import Shapes
+from pairrules.geometry.copper_outlines import centre_lines
 from pairrules.geometry.curve_edges import crossings, nearest_to_edges
-from pairrules.geometry.curves import Curves, chords, parts, points
+from pairrules.geometry.curves import Curves, parts, points
 from pairrules.geometry.pair_geometry import TRACK, Pieces
 from pairrules.geometry.reference_copper import NO_NET, UNKNOWN, LayerCopper, ReferenceCopper
 
@@ -185,15 +184,8 @@ def _cut(copper: ReferenceCopper, curves: Curves, layer: Ints, length: Floats) -
 
 def _near(beside: LayerCopper, curves: Curves, distance: Floats | float) -> tuple[Ints, Ints]:
     """Pairs of curve and edge nearer than `distance` [mm]; a few more, never fewer."""
-    which, edge = beside.tree.query(_lines(curves), predicate="dwithin", distance=distance + 2 * FLATTENING_MM)
+    which, edge = beside.tree.query(centre_lines(curves), predicate="dwithin", distance=distance + 2 * FLATTENING_MM)
     return which, edge
-
-
-def _lines(curves: Curves) -> Shapes:
-    corners, piece = chords(curves, within=FLATTENING_MM)
-    if not len(corners):
-        return np.empty(0, dtype=np.object_)
-    return np.asarray(shapely.linestrings(corners, indices=piece), dtype=np.object_)
 
 
 def _edge_distance(copper: ReferenceCopper, stretches: Curves, layer: Ints, net: Ints) -> tuple[Floats, Floats]:
@@ -204,7 +196,7 @@ def _edge_distance(copper: ReferenceCopper, stretches: Curves, layer: Ints, net:
         if not len(mine):
             continue
         beside, curves = copper.layer(one), stretches.take(mine)
-        (which, _), about = beside.tree.query_nearest(_lines(curves), all_matches=False, return_distance=True)
+        (which, _), about = beside.tree.query_nearest(centre_lines(curves), all_matches=False, return_distance=True)
         bound = np.empty(len(mine))
         bound[which] = about
         which, edge = _near(beside, curves, bound)

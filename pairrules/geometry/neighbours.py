@@ -1,0 +1,202 @@
+"""The nearest foreign copper on each side of a leg, along the leg: its net and its gap."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from pairrules.board.arcs import FLATTENING_MM
+from pairrules.board.board import Board
+from pairrules.board.columns import Floats, Ints, freeze
+from pairrules.geometry.copper_outlines import centre_lines
+from pairrules.geometry.curves import Curves, parts
+from pairrules.geometry.facing_edges import Facing, Nearest, enters, facing, nearest_facing
+from pairrules.geometry.foreign_copper import ForeignCopper
+from pairrules.geometry.pair_geometry import TRACK, Pieces
+
+__all__ = ["STEP", "STEP_MM", "ForeignCopper", "NeighbourProfile", "neighbours"]
+
+STEP = 1.05
+"""A gap that grows by more than this factor begins a new stretch: a gap's error of 5 % is within etching tolerance
+(common practice, no source)."""
+STEP_MM = 0.001
+"""Nor does a gap that grows by less than this."""
+_ROUNDS = 8
+"""Along a line the first round cuts the steps exactly, along a bend each round halves what is left over or better."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class NeighbourProfile:
+    """The foreign copper that a cut square to the leg's track shows nearest on each side, on the track's own layer.
+
+    Columns of k rows, in order of s. A stretch ends where on either side the neighbour's net changes or its gap has
+    changed by more than `STEP` and `STEP_MM`, and where the piece ends.
+
+    Parameters
+    ----------
+    s_from, s_to: [mm] track length from the source end (barrels, joins and series parts take none).
+    piece: row of `Pieces`. layer: index into `Board.copper`. start, end: (k, 2) [mm] the stretch's ends on the board.
+    left_gap, right_gap: [mm] edge to edge, the smallest in the stretch, left and right seen along the route from its
+        source; NaN where there is no foreign copper within reach; 0 where the leg itself lies in it.
+    left_net, right_net: index into `Board.nets`; −1 where there is none, or where the copper belongs to no net.
+    """
+
+    s_from: Floats
+    s_to: Floats
+    piece: Ints
+    layer: Ints
+    start: Floats
+    end: Floats
+    left_gap: Floats
+    left_net: Ints
+    right_gap: Floats
+    right_net: Ints
+
+    def __post_init__(self) -> None:
+        freeze(
+            self,
+            {
+                "s_from": (np.float64, ()),
+                "s_to": (np.float64, ()),
+                "piece": (np.int64, ()),
+                "layer": (np.int64, ()),
+                "start": (np.float64, (2,)),
+                "end": (np.float64, (2,)),
+                "left_gap": (np.float64, ()),
+                "left_net": (np.int64, ()),
+                "right_gap": (np.float64, ()),
+                "right_net": (np.int64, ()),
+            },
+        )
+
+    def __len__(self) -> int:
+        return len(self.piece)
+
+
+def neighbours(
+    pieces: Pieces,
+    board: Board,
+    own_nets: tuple[int, ...],
+    within_mm: float,
+    *,
+    copper: ForeignCopper | None = None,
+) -> NeighbourProfile:
+    """The neighbours of one leg.
+
+    Parameters: pieces: the leg. own_nets: the nets of both legs, whose copper is not foreign and hides nothing
+    behind it. within_mm: greatest gap looked at. copper: of the board, where it is at hand from another leg.
+    Returns: exact stretches but for the flattening of round copper; arcs of the leg are not flattened.
+    Source: lower envelope of segments (elementary geometry).
+    """
+    copper = ForeignCopper(board) if copper is None else copper
+    row = np.flatnonzero((pieces.kind == TRACK) & (pieces.length > 0))
+    length = pieces.length[row]
+    s_ends = np.concatenate([[0.0], np.cumsum(length)])
+    curves = Curves(start=pieces.start, end=pieces.end, centre=pieces.centre, sweep=pieces.sweep).take(row)
+    layer, half = pieces.layer[row], pieces.width[row] / 2
+
+    which, edges, net = _edges_near(copper, curves, layer, within_mm + half, own_nets)
+    faces = facing(curves.take(which), length[which], edges, (within_mm + half)[which])
+    faces = Facing(row=which[faces.row], edge=faces.edge, begin=faces.begin, end=faces.end, side=faces.side)
+    cuts = np.empty(0)
+    found = nearest_facing(curves, length, edges, faces, cuts)
+    for _ in range(_ROUNDS):
+        more = _steps(found, half)
+        if not len(more):
+            break
+        cuts = np.concatenate([cuts, more])
+        found = nearest_facing(curves, length, edges, faces, cuts)
+
+    track = (found.begin / 2).astype(np.int64)
+    gaps = [np.maximum(at - half[track, None], 0.0) for at in (found.at_begin, found.at_end)]
+    nets = np.where(found.edge >= 0, np.append(net, -1)[found.edge], -1)
+    for column, side in enumerate((1, -1)):
+        met = np.flatnonzero(found.edge[:, column] >= 0)
+        middle = (found.begin[met] + found.end[met]) / 2 - 2 * track[met]
+        within = ~enters(curves.take(track[met]), edges[found.edge[met, column]], middle, np.full(len(met), side))
+        gaps[0][met[within], column] = gaps[1][met[within], column] = 0.0
+    low, high = np.fmin(*gaps), np.fmax(*gaps)
+    opens = _opens(track, nets, _scale(low), _scale(high))
+    closes = np.append(opens[1:], len(track)) - 1 if len(track) else opens
+    least = np.fmin.reduceat(low, opens, axis=0) if len(track) else low
+    track, begin, end = track[opens], found.begin[opens] - 2 * track[opens], found.end[closes] - 2 * track[closes]
+    stretches = parts(curves, track, begin, end)
+    return NeighbourProfile(
+        s_from=s_ends[track] + begin * length[track],
+        s_to=np.where(end == 1.0, s_ends[track + 1], s_ends[track] + end * length[track]),
+        piece=row[track],
+        layer=layer[track],
+        start=stretches.start,
+        end=stretches.end,
+        left_gap=least[:, 0],
+        left_net=nets[opens, 0],
+        right_gap=least[:, 1],
+        right_net=nets[opens, 1],
+    )
+
+
+def _edges_near(
+    copper: ForeignCopper, curves: Curves, layer: Ints, reach: Floats, own_nets: tuple[int, ...]
+) -> tuple[Ints, Floats, Ints]:
+    """Pairs of curve and foreign edge within reach on one layer: row of the curve, edge (k, 2, 2), net."""
+    which, edges, nets = [np.empty(0, np.int64)], [np.empty((0, 2, 2))], [np.empty(0, np.int64)]
+    for one in np.unique(layer).tolist():
+        mine, here = np.flatnonzero(layer == one), copper.layer(one)
+        near, edge = here.tree.query(
+            centre_lines(curves.take(mine)), predicate="dwithin", distance=reach[mine] + 2 * FLATTENING_MM
+        )
+        foreign = ~np.isin(here.net[edge], own_nets)
+        order = np.lexsort((edge[foreign], near[foreign]))
+        near, edge = near[foreign][order], edge[foreign][order]
+        which.append(mine[near])
+        edges.append(here.edges[edge])
+        nets.append(here.net[edge])
+    return np.concatenate(which), np.concatenate(edges), np.concatenate(nets)
+
+
+def _scale(gap: Floats) -> Floats:
+    """A measure of gap that grows by 1 in each step worth a new stretch: STEP_MM at first, then the factor STEP."""
+    turn = STEP_MM / (STEP - 1)
+    return np.where(gap < turn, gap / STEP_MM, turn / STEP_MM + np.log(np.maximum(gap, turn) / turn) / np.log(STEP))
+
+
+def _steps(found: Nearest, half: Floats) -> Floats:
+    """Places at which a slanting neighbour's gap has changed by one step."""
+    places = []
+    track = (found.begin / 2).astype(np.int64)
+    for side in (0, 1):
+        met = np.flatnonzero(found.edge[:, side] >= 0)
+        first, last = (np.maximum(at[met, side] - half[track[met]], 0.0) for at in (found.at_begin, found.at_end))
+        steps = np.ceil(np.abs(_scale(last) - _scale(first)) - 1e-6).astype(np.int64)
+        inner = np.maximum(steps - 1, 0)
+        of = np.repeat(np.arange(len(met)), inner)
+        nth = np.arange(len(of)) - np.repeat(np.cumsum(inner) - inner, inner) + 1
+        wanted = _scale(first)[of] + (_scale(last) - _scale(first))[of] * nth / steps[of]
+        share = (_gap(wanted) - first[of]) / (last - first)[of]
+        begin, end = found.begin[met], found.end[met]
+        places.append(begin[of] + (end - begin)[of] * share)
+    return np.concatenate(places)
+
+
+def _gap(scale: Floats) -> Floats:
+    """The gap of a measure: `_scale` turned round."""
+    turn = STEP_MM / (STEP - 1)
+    over = np.maximum(scale - turn / STEP_MM, 0.0)
+    return np.where(over > 0, turn * STEP**over, scale * STEP_MM)
+
+
+def _opens(track: Ints, nets: Ints, low: Floats, high: Floats) -> Ints:
+    """First row of each stretch: neighbours in a row are one while net and gap stay."""
+    opens = []
+    since: tuple[object, ...] = ()
+    least = most = np.empty(0)
+    for row in range(len(track)):
+        key = (int(track[row]), *nets[row].tolist(), *np.isnan(low[row]).tolist())
+        down, up = (low[row], high[row]) if key != since else (np.fmin(least, low[row]), np.fmax(most, high[row]))
+        if key != since or np.nanmax(np.append(up - down, 0.0)) > 1 + 1e-6:
+            opens.append(row)
+            since, least, most = key, low[row], high[row]
+        else:
+            least, most = down, up
+    return np.array(opens, dtype=np.int64)
