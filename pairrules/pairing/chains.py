@@ -68,9 +68,15 @@ def _follow(site: Site, seed: tuple[int, int], taken: Collection[int]) -> Chain:
 def _ways(site: Site, here: tuple[int, int], barred: Collection[int], *, joined: bool) -> tuple[Step, ...]:
     """Ways on from a node, best first; to nets that no name pairs only while an end is still wanted there."""
     named = named_steps(site, here, barred)
-    if named or len(ends_on(site, here)) + joined >= 2:
-        return named
+    wanted = len(ends_on(site, here)) + joined < 2
+    if named or not wanted:
+        # A dead end (an option that is not fitted) is no way on where both ends are known without it.
+        return named if wanted else tuple(step for step in named if not _dead_end(site, step))
     return plain_steps(site, here, barred) or single_steps(site, here, barred)
+
+
+def _dead_end(site: Site, step: Step) -> bool:
+    return all(len(site.wiring.parts_on(net)) <= 1 for net in step.to)
 
 
 def _cut(site: Site, nodes: list[tuple[int, int]], steps: list[Step]) -> tuple[list[tuple[int, int]], list[Step]]:

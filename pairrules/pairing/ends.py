@@ -41,103 +41,114 @@ class Ends:
     missing: tuple[str, ...] = ()
 
 
-def ends_of(site: Site, chain: Chain, *, source: str, load: str) -> Ends:
-    """The ends of a chain; `source` and `load` are designators that the file declares, "" where it does not."""
+def ends_of(site: Site, chain: Chain, *, name: str, source: str, load: str) -> Ends:
+    """The ends of a chain.
+
+    Parameters: name: what its nets' names share. source, load: designators that the file declares, else "".
+    """
     wiring, missing = site.wiring, list[str]()
     series = {part for step in chain.steps for part in (step.plus, step.minus)}
-    first, last = (_candidates(site, chain.nodes[place], series) for place in (0, -1))
+    first, last = (_options(site, chain.nodes[place], series) for place in (0, -1))
     declared: dict[str, int] = {}
     refs = {part.ref: index for index, part in enumerate(site.board.parts)}
     for role, ref in (("source", source), ("load", load)):
         part = refs.get(ref, -1)
-        if part >= 0 and part in (*first, *last):
+        if part >= 0 and any(end.part == part for end in (*first, *last)):
             declared[role] = part
         elif ref:
             missing.append(f"the file declares {ref} as {role}, which has no pins at the ends of both legs")
     wanted = set(declared.values())
-    best: tuple[tuple[int, ...], int, int] | None = None
-    for one, other in product(first or (-1,), last or (-1,)):
-        if len(chain.nodes) == 1 and one == other and one >= 0 and len(first) > 1:
-            continue
-        chosen = (one, -1) if one == other and len(chain.nodes) == 1 else (one, other)
-        rank = (
-            -len(wanted & set(chosen)),
-            sum(_cost(site, part) for part in chosen),
-            int(chosen[0] >= 0 and chosen[1] >= 0 and wiring.is_connector(chosen[0]) == wiring.is_connector(chosen[1])),
-            -sum(int(wiring.pins[part]) for part in chosen if part >= 0),
-            *(int(wiring.order[part]) if part >= 0 else -1 for part in chosen),
+
+    def rank(pair: tuple[End, End]) -> tuple[int, ...]:
+        plus, minus = ([int(wiring.order[part]) if part >= 0 else -1 for part in (e.plus, e.minus)] for e in pair)
+        return (
+            -len(wanted & {end.part for end in pair}),
+            sum(_cost(site, end) for end in pair),
+            int(_outer(site, pair[0]) == _outer(site, pair[1])),
+            -sum(int(wiring.pins[end.part]) for end in pair if end.part >= 0),
+            *plus,
+            *minus,
         )
-        if best is None or rank < best[0]:
-            best = (rank, *chosen)
-    assert best is not None
-    ends = [End(plus=part, minus=part) for part in best[1:]]
-    for place in (0, 1):
-        if ends[place].plus < 0:
-            ends[place] = _apart(site, chain.nodes[-place], {*series, *best[1:]})
-    flip = _flip(site, chain, ends[0], ends[1], declared)
-    return Ends(first=ends[0], last=ends[1], flip=flip, missing=tuple(missing))
+
+    both = [
+        (one, other)
+        for one, other in product(first, last)
+        if len(chain.nodes) > 1 or not {one.plus, one.minus} & {other.plus, other.minus} - {-1}
+    ]
+    best = min(both, key=rank)
+    return Ends(
+        first=best[0], last=best[1], flip=_flip(site, chain, best[0], best[1], name, declared), missing=tuple(missing)
+    )
 
 
-def _candidates(site: Site, node: tuple[int, int], series: set[int]) -> tuple[int, ...]:
-    """Parts with pins on both legs of a node, in natural order."""
-    other = set(site.wiring.parts_on(node[1])) - series
-    return tuple(part for part in site.wiring.parts_on(node[0]) if part in other)
+def _options(site: Site, node: tuple[int, int], series: set[int]) -> tuple[End, ...]:
+    """Ends that a node offers: parts with pins on both legs, two stations with one leg each (two amplifiers), none."""
+    plus, minus = ([part for part in site.wiring.parts_on(net) if part not in series] for net in node)
+    both = [part for part in plus if part in set(minus)]
+    found = [End(plus=part, minus=part) for part in both]
+    own = [[part for part in leg if part not in both and site.wiring.is_station(part)] for leg in (plus, minus)]
+    if all(own):
+        found.append(End(plus=own[0][0], minus=own[1][0]))
+    return (*found, End(plus=-1, minus=-1))
 
 
-def _cost(site: Site, part: int) -> int:
-    """How unlikely a part is as an end: connectors and active parts first, a part across the legs last, then none."""
+def _cost(site: Site, end: End) -> int:
+    """How unlikely an end is: connectors and active parts first, a part across the legs last, then none."""
     wiring = site.wiring
-    if part < 0:
+    if end.plus < 0:
         return 16
-    if wiring.is_station(part):
+    if end.part < 0:
+        return 4
+    if wiring.is_station(end.part):
         return 0
-    if wiring.is_protector(part):
+    if wiring.is_protector(end.part):
         return 6
-    if wiring.is_passive(part):
+    if wiring.is_passive(end.part):
         return 8
-    return 2 if wiring.pins[part] == 2 else 1
+    return 2 if wiring.pins[end.part] == 2 else 1
 
 
-def _apart(site: Site, node: tuple[int, int], barred: set[int]) -> End:
-    """An end where each leg reaches a station of its own (two amplifiers); −1 for both unless both do."""
-    found = [[part for part in site.wiring.stations_on(net) if part not in barred] for net in node]
-    if not all(found):
-        return End(plus=-1, minus=-1)
-    return End(plus=found[0][0], minus=found[1][0])
+def _outer(site: Site, end: End) -> bool:
+    """Whether the end is where the world begins: a connector or a sensor of two pins."""
+    wiring = site.wiring
+    if end.plus < 0 or wiring.is_passive(end.plus) or wiring.is_protector(end.plus):
+        return False
+    return wiring.is_connector(end.plus) or bool(wiring.pins[end.plus] == 2)
 
 
-def _flip(site: Site, chain: Chain, first: End, last: End, declared: dict[str, int]) -> bool:
+def _flip(site: Site, chain: Chain, first: End, last: End, name: str, declared: dict[str, int]) -> bool:
     """Whether the source is at the last node.
 
-    As declared; else, with a connector at one end only, the connector is the source unless the names say that the pair
-    goes out (TX, OUT, DRV, TD); with two alike the first in natural order is; with one known the names decide.
+    As declared; else, with a connector or a sensor at one end only, it is the source unless the names say that the pair
+    goes out (TX, OUT, DRV, TD); a part across the legs is a load; with two alike the first in natural order is the
+    source; with one known the names decide.
     """
     wiring = site.wiring
-    if "source" in declared:
-        return declared["source"] != first.plus
-    if "load" in declared:
-        return declared["load"] != last.plus
-    a, b = first.plus, last.plus
-    outward, inward = _way(site, chain)
-    if a < 0 and b < 0:
+    for role, source in (("source", True), ("load", False)):
+        part = declared.get(role, -1)
+        if part >= 0 and first.part != last.part and part in {first.part, last.part}:
+            return (part == first.part) != source
+    if first.plus < 0 and last.plus < 0:
         return False
-    if a < 0 or b < 0:
-        known = a if a >= 0 else b
-        leaves = not outward if wiring.is_connector(known) else not inward
-        return leaves == (a < 0)
-    if wiring.is_connector(a) != wiring.is_connector(b):
-        return wiring.is_connector(a) == outward
-    return bool(wiring.order[a] > wiring.order[b])
+    outward, inward = _way(site, chain, name)
+    if first.plus < 0 or last.plus < 0:
+        known = first if first.plus >= 0 else last
+        is_source = not outward if _outer(site, known) else not inward
+        return is_source == (first.plus < 0)
+    if _outer(site, first) != _outer(site, last):
+        return _outer(site, first) == outward
+    idle = [wiring.is_passive(end.plus) or wiring.is_protector(end.plus) for end in (first, last)]
+    if idle[0] != idle[1]:
+        return idle[0]
+    return bool(wiring.order[first.plus] > wiring.order[last.plus])
 
 
-def _way(site: Site, chain: Chain) -> tuple[bool, bool]:
-    """Whether the names of the chain's nets say that the pair goes out, comes in; the last word that says so holds."""
-    said = [False, False]
-    for net in sorted(chain.nets):
-        for word in words(site.board.nets[net]):
-            bare = _NUMBERS.sub("", word)
-            out, inward = _OUTWARD.fullmatch(bare) is not None, _INWARD.fullmatch(bare) is not None
-            if out or inward:
-                said = [out, inward]
-                break
-    return said[0], said[1]
+def _way(site: Site, chain: Chain, name: str) -> tuple[bool, bool]:
+    """Whether the pair's name says that it goes out, comes in; else whether its nets' names do, where they agree."""
+    for names in ((name,), tuple(site.board.nets[net] for net in chain.nets)):
+        said = {_NUMBERS.sub("", word) for one in names for word in words(one)}
+        outward = any(_OUTWARD.fullmatch(word) for word in said)
+        inward = any(_INWARD.fullmatch(word) for word in said)
+        if outward != inward:
+            return outward, inward
+    return False, False

@@ -15,7 +15,6 @@ from pairrules.pairing.pairs import net_pairs
 from pairrules.pairing.series import site_of
 from pairrules.pairing.wiring import wiring_of
 
-
 __all__ = ["PairRequest", "Pairing", "find_links"]
 
 

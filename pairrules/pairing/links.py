@@ -44,6 +44,7 @@ def link_of(
     ends = ends_of(
         site,
         chain,
+        name=lead.shared,
         source=next((pair.source for pair in own if pair.source), ""),
         load=next((pair.load for pair in own if pair.load), ""),
     )
@@ -135,7 +136,7 @@ def _hops(site: Site, chain: Chain, ends: Ends, leg: int) -> tuple[tuple[Hop, ..
                 if found
                 else f"no pad of {named} is left for it"
             )
-            missing.append(f"no part is known that {_LEGS[leg]} has as its {role}; {taken}")
+            missing.append(f"{_LEGS[leg]} has no known part at its {role}; {taken}")
     return tuple(hops), tuple(missing)
 
 

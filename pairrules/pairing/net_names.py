@@ -105,7 +105,7 @@ _PATTERNS = (
     _pattern("P", "M", "[A-Z]D", rf"[0-9]*{_OWN}", sure=False),
     _pattern("P", "N", "[A-Z]D", rf"[0-9]*{_OWN}", sure=False),
     _pattern("+", "-", "[A-Za-z]", rf"[0-9]+{_OWN}", sure=False),
-    _pattern("+", "-", "^", "[A-Za-z0-9]", sure=False),
+    _pattern("+", "-", "^", "[A-Za-z]", sure=False),
     _pattern("PLUS", "MINUS", "[A-Za-z0-9]", _OWN, sure=False),
     _pattern("POS", "NEG", "[A-Za-z0-9]", _OWN, sure=False),
 )

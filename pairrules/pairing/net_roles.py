@@ -18,16 +18,27 @@ _NO_GROUND = re.compile(
 
 _SUPPLY = re.compile(
     r"[A-Z]{0,3}V(?:DD|CC|EE|SS|BAT|BUS|REF|CORE|PP|TT|SYS|IO|PWR)[A-Z]{0,4}[0-9]*"
-    r"|[0-9]+V[0-9]*|[0-9]+P[0-9]+V?|V[0-9]+[VP][0-9]+|PWR|POWER|SUPPLY|RAIL|BATT?|BATTERY"
+    r"|[ADP]?[0-9]+V[0-9]*|[0-9]+P[0-9]+V?|V[0-9]+[VP][0-9]+|PWR|POWER|SUPPLY|RAIL|BATT?|BATTERY"
 )
+
+_WITH_SUPPLY = re.compile(
+    r"(?:A|D|P|N|F|IO|CORE|PLL|ANA|DIG|ANALOG|DIGITAL|ISO|AUX|MAIN|SW|IN|OUT|FILT|FILTERED|CLEAN|DDR|USB|RF|LDO|REG|EXT"
+    r"|INT|BACKUP|RAW)?[0-9]*"
+)
+"""Words that tell supplies from one another (`VDD_IO`, `3V3_A`)."""
+
+_SIGNAL = re.compile(
+    r"(?:[TR]XD?|[TR]D|CLK|CLOCK|CK|DQS|DATA|SIG|SIGNAL|SENSE|SENS|SNS|KELVIN|FB|MON|CAN|USB|LVDS|SYNC|STROBE)[0-9]*"
+)
+"""Words that make a voltage in the same name the level of a signal or what it senses (`CLK_1V8`, `SENSE_VDD`)."""
 
 _RAIL = re.compile(r"VS?[0-9]*|DC|HV|LV")
 """Words that mean a supply only where a polarity follows them (`V+`, `HV-`)."""
 
 _CONTROL = re.compile(
-    r"N?(?:RESET|RST|SRST|TRST|MRST|MR|POR|CS|CE|SS|SEL|EN|ENA|ENABLE|OE|WE|WR|BE|IRQ|INT|INTR|NMI|ALERT|ALARM|FAULT|FLT|ERR"
-    r"|PG|PGOOD|PWRGD|SHDN|SHUTDOWN|SLEEP|WAKE|STBY|STANDBY|PD|PDN|PWRDN|HOLD|WP|BUSY|READY|RDY|ACK|REQ|LDAC|DIS|DISABLE"
-    r"|BOOT|PRSNT|PRESENT|DET|DETECT)[0-9]*"
+    r"N?(?:RESET|RST|SRST|TRST|MRST|POR|CS|CE|SS|SEL|EN|ENA|ENABLE|OE|WE|WR|BE|IRQ|INT|INTR|NMI|ALERT|ALARM|FAULT|FLT|ERR"
+    r"|PG|PGOOD|PWRGD|SHDN|SHUTDOWN|SLEEP|WAKE|STBY|STANDBY|PDN|PWRDN|HOLD|WP|BUSY|READY|RDY|ACK|REQ|LDAC|DIS|DISABLE"
+    r"|BOOT|PRSNT|PRESENT)[0-9]*"
 )
 
 _HIGH_AND_LOW = re.compile(
@@ -54,10 +65,16 @@ def is_ground_name(name: str) -> bool:
 
 
 def is_supply_name(name: str) -> bool:
-    """Whether the name is a supply's or ground's, by its first word and its last (`VDD`, `VDD_IO`, `+3V3`)."""
+    """Whether the name is a supply's or ground's (`VDD`, `VDD_IO`, `+3V3`, `SENSOR_5V`), not a signal's about one."""
     said = words(name)
-    if not said:
-        return False
+    supplies = [_SUPPLY.fullmatch(word) is not None for word in said]
+    if not any(supplies):
+        return is_ground_name(name)
+    if supplies[-1] and not any(_SIGNAL.fullmatch(word) for word in said[:-1]):
+        return True
+    return all(
+        is_supply or _WITH_SUPPLY.fullmatch(word) is not None for word, is_supply in zip(said, supplies, strict=True)
+    )
     return (
         is_ground_name(name)
         or _SUPPLY.fullmatch(said[-1]) is not None
@@ -65,9 +82,9 @@ def is_supply_name(name: str) -> bool:
     )
 
 
-def is_supply_word(word: str) -> bool:
-    """Whether the word next to a polarity makes the two nets supply rails (`VDD_P`, `V+`, `-5V`)."""
-    return any(kind.fullmatch(word) for kind in (_SUPPLY, _GROUND, _RAIL))
+def is_rail_word(word: str) -> bool:
+    """Whether the word next to a polarity makes the two nets supply rails (`V+`, `HV-`)."""
+    return _RAIL.fullmatch(word) is not None
 
 
 def is_control_word(word: str) -> bool:

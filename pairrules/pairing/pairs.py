@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import re
+from dataclasses import dataclass, replace
 
-from pairrules.board.board import Board
+from pairrules.board.board import Board, DeclaredPair
 from pairrules.pairing.listed_pairs import PairRequest, asked_pairs
 from pairrules.pairing.natural_order import natural_key
 from pairrules.pairing.net_names import Reading, common_reading, readings, shared_name
 from pairrules.pairing.net_patterns import matches
-from pairrules.pairing.net_roles import is_control_word, is_high_low_word, is_lamp_word, is_supply_word
+from pairrules.pairing.net_roles import is_control_word, is_high_low_word, is_lamp_word, is_rail_word, is_supply_name
 from pairrules.pairing.wiring import Wiring
+
+_VOLTAGE = re.compile(r"V(?:IN|OUT)[0-9]*")
 
 LISTED, DECLARED, BY_NAME = "listed in the settings", "declared in the file", "net name"
 
@@ -114,10 +117,7 @@ def _given(board: Board, wiring: Wiring, listed: tuple[PairRequest, ...]) -> tup
             if not any({pair.plus, pair.minus} == set(ends) for pair in pairs):
                 missing.append(f"the file declares the pair {label}, but one of its nets is in another pair")
             else:
-                pairs[:] = [
-                    _with_declared(pair, ends[0], ends[1], declared.klass, declared.source, declared.load)
-                    for pair in pairs
-                ]
+                pairs[:] = [_with_declared(pair, declared) for pair in pairs]
         else:
             taken.update((ends[0], ends[1]))
             pairs.append(
@@ -135,19 +135,14 @@ def _given(board: Board, wiring: Wiring, listed: tuple[PairRequest, ...]) -> tup
     return pairs, missing, taken
 
 
-def _with_declared(pair: NetPair, plus: int, minus: int, klass: str, source: str, load: str) -> NetPair:
-    """The pair with class and ends from the file where the settings, which go first, said nothing of them."""
-    if {pair.plus, pair.minus} != {plus, minus}:
-        return pair
-    return NetPair(
-        plus=pair.plus,
-        minus=pair.minus,
-        name=pair.name,
-        shared=pair.shared,
-        found_by=pair.found_by,
-        klass=pair.klass or klass,
-        source=pair.source or source,
-        load=pair.load or load,
+def _with_declared(pair: NetPair, declared: DeclaredPair) -> NetPair:
+    """The listed pair with what the file says of it where the settings, which go first, say nothing."""
+    return replace(
+        pair,
+        name=pair.name or declared.name,
+        klass=pair.klass or declared.klass,
+        source=pair.source or declared.source,
+        load=pair.load or declared.load,
     )
 
 
@@ -170,11 +165,12 @@ def _by_name(free: list[int], said: dict[int, tuple[Reading, ...]]) -> list[tupl
 def _borne_out(wiring: Wiring, barred: frozenset[int], reading: Reading, plus: int, minus: int) -> bool:
     """Whether two nets that are halves by name may be a pair.
 
-    Supply rails and lamps never are; a control line in both polarities only where both run between the same two parts;
-    `_H`/`_L` not where the word means high and low; a reading that is not sure only where a part has both.
+    Supply rails and lamps never are, nor a voltage in or out that is poured as an area; a control line in both
+    polarities only where both run between the same two parts; `_H`/`_L` not where the word means high and low; a
+    reading that is not sure only where a part has both.
     """
     word = reading.stem_word
-    if is_supply_word(word) or is_lamp_word(word):
+    if _is_none(reading) or (_VOLTAGE.fullmatch(word) and (wiring.poured[plus] or wiring.poured[minus])):
         return False
     if reading.pattern.startswith("H/L") and not reading.sure and is_high_low_word(word):
         return False
@@ -192,16 +188,19 @@ def _reached(wiring: Wiring, barred: frozenset[int], net: int) -> set[int]:
     return reached
 
 
+def _is_none(reading: Reading) -> bool:
+    """Whether the name is that of a supply rail or a lamp's end."""
+    return (
+        is_rail_word(reading.stem_word)
+        or is_lamp_word(reading.stem_word)
+        or is_supply_name(reading.head or reading.tail)
+    )
+
+
 def _is_half(said: tuple[Reading, ...], kin: set[tuple[str, str, str]], there: set[tuple[object, ...]]) -> bool:
     """Whether a net without a partner looks like half of a pair: by its own name, or because its kin are pairs."""
     for reading in said:
-        word = reading.stem_word
-        if (
-            is_supply_word(word)
-            or is_lamp_word(word)
-            or is_control_word(word)
-            or (*reading.key, -reading.sign) in there
-        ):
+        if _is_none(reading) or is_control_word(reading.stem_word) or (*reading.key, -reading.sign) in there:
             continue
         if reading.lone or reading.kin in kin:
             return True

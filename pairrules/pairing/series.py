@@ -80,7 +80,7 @@ def named_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> t
 
 
 def plain_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> tuple[Step, ...]:
-    """Steps to two nets that no name pairs, through alike parts: each the only one, or leading to one and the same part."""
+    """Steps to two nets that no name pairs, through alike parts: each the only one, or both leading to one part."""
     wiring = site.wiring
     onward = [
         [(part, far) for part, far in _series(site, net, barred) if far not in site.partner and _goes_on(site, far)]
@@ -97,10 +97,18 @@ def plain_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> t
         ]
         meeting = [step for step in steps if ends_on(site, step.to)]
         found.extend(meeting)
-        if len({far for _, far in plus}) == len({far for _, far in minus}) == 1 and not meeting:
-            lone.extend(steps)
+        if not meeting:
+            lone.extend(_only(site, steps))
     wound = [step for step in _wound(site, node, barred) if not {*step.to} & site.partner.keys()]
     return _one_each((*wound, *found, *lone))
+
+
+def _only(site: Site, steps: list[Step]) -> list[Step]:
+    """The steps where there are no two ways: none but one on each leg, or none but one on each leg to any station."""
+    for some in (steps, [step for step in steps if all(site.wiring.stations_on(net) for net in step.to)]):
+        if all(len({step.to[leg] for step in some}) == 1 for leg in (0, 1)):
+            return some
+    return []
 
 
 def single_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> tuple[Step, ...]:

@@ -38,7 +38,7 @@ _SERIES = frozenset(
         "LN",
     }
 )
-"""Designators of parts that can stand in series. Source: IEEE 315 for C, R, L, F, FL (from memory); else common practice."""
+"""Designators of parts that can stand in series. Source: IEEE 315 for C, R, L, F, FL (from memory)."""
 
 _CONNECTORS = frozenset({"J", "P", "X", "CN", "CON", "CONN", "XS", "XP", "SK", "PL", "JK", "HDR"})
 
@@ -55,7 +55,7 @@ class Wiring:
     by_net, by_part: pad rows sorted by net and by part. net_from, part_from: where each net's, part's rows begin there.
     pins: how many different pins each part has (pads of one pin on several layers count once).
     letters: each part's designator without its number, in capitals. order: each part's place in natural order.
-    used: whether each net has any copper or pad.
+    used: whether each net has any copper or pad. poured: whether it has an area.
     """
 
     pad_net: Ints
@@ -68,6 +68,7 @@ class Wiring:
     letters: tuple[str, ...]
     order: Ints
     used: Bools
+    poured: Bools
 
     def pads_on(self, net: int) -> Ints:
         """Rows of the pads on a net."""
@@ -111,7 +112,7 @@ class Wiring:
         return self.letters[part] in _PROTECTORS
 
     def is_active(self, part: int) -> bool:
-        """Whether what is behind the part is another signal: three pins or more, neither passive, protection nor connector."""
+        """Whether another signal is behind the part: three pins or more, and no passive, protection or connector."""
         return bool(self.pins[part] >= 3) and not (
             self.is_passive(part) or self.is_connector(part) or self.is_protector(part)
         )
@@ -132,8 +133,9 @@ def wiring_of(board: Board) -> Wiring:
     order = np.empty(parts, dtype=np.int64)
     order[sorted(range(parts), key=lambda part: natural_key(board.parts[part].ref))] = np.arange(parts)
     used = np.zeros(nets, dtype=np.bool_)
-    areas = np.array([area.net for area in board.areas], dtype=np.int64)
-    for column in (pads.net, board.tracks.net, board.vias.net, areas):
+    poured = np.zeros(nets, dtype=np.bool_)
+    poured[[area.net for area in board.areas if area.net >= 0]] = True
+    for column in (pads.net, board.tracks.net, board.vias.net):
         used[column[column >= 0]] = True
     return Wiring(
         pad_net=pads.net,
@@ -145,7 +147,8 @@ def wiring_of(board: Board) -> Wiring:
         pins=_pins(board),
         letters=tuple(_letters(part.ref) for part in board.parts),
         order=order,
-        used=used,
+        used=used | poured,
+        poured=poured,
     )
 
 
@@ -161,7 +164,7 @@ def _pins(board: Board) -> Ints:
 
 
 def _letters(ref: str) -> str:
-    """`C` of `C12`, of `A1_C12` and of `C12_1`: the last piece that says what the part is, whatever the sheet is called."""
+    """`C` of `C12`, of `A1_C12` and of `C12_1`: the last piece that says what the part is, sheets aside."""
     pieces = [found[1].upper() for found in map(_LETTERS.match, re.split(r"[_\-./:]", ref)) if found]
     known = [piece for piece in pieces if piece in _SERIES | _CONNECTORS | _PROTECTORS]
     return known[-1] if known else pieces[-1] if pieces else ref.upper()
