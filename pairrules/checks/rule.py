@@ -8,11 +8,13 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from functools import cache
 
+from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.board.board import Board
 from pairrules.geometry.pair_geometry import PairGeometry
 from pairrules.pairing.link import Link
 from pairrules.result import Finding, Measures
 from pairrules.settings.limit import Limit
+from pairrules.settings.pair_class import PairClass
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -22,6 +24,8 @@ class Subject:
     Parameters
     ----------
     breakout_mm: track length at each end of each leg that rules on the gap and on running apart leave out.
+    electrical: what the electrical stage found; `None` where it was not asked for.
+    klass: the pair's class, `None` where it has none. reference: indices of the reference nets.
     """
 
     board: Board
@@ -29,6 +33,9 @@ class Subject:
     geometry: PairGeometry
     measures: Measures
     breakout_mm: float = 0.0
+    electrical: PairElectrical | None = None
+    klass: PairClass | None = None
+    reference: tuple[int, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -3,10 +3,15 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from pairrules.board.columns import Bools, Floats, Ints, freeze
+
+if TYPE_CHECKING:
+    from pairrules.geometry.neighbours import NeighbourProfile
+    from pairrules.geometry.reference_cover import Cover
 
 TRACK, JOIN, BARREL, SERIES = 0, 1, 2, 3
 """Kinds of a route's pieces: drawn track; a straight join inside a pad or an area; a via's barrel; a part in series."""
@@ -161,6 +166,8 @@ class PairGeometry:
     reach_mm: within which a leg counts as beside the other.
     gap_min_mm, gap_median_mm, gap_max_mm, coupled_mm, apart_mm, loop_area_mm2, net_loop_area_mm2,
     reference_uncovered_mm: as in the glossary; `None` where unknown.
+    cover_plus, cover_minus: reference copper along each leg. neighbours_plus, neighbours_minus: foreign copper beside
+        each leg on its own layer. `None` unless both legs are complete.
     broken: places where a leg breaks off, as (leg, layer, x_mm, y_mm).
     missing: why a figure is unknown, one sentence each.
     """
@@ -179,5 +186,9 @@ class PairGeometry:
     loop_area_mm2: float | None = None
     net_loop_area_mm2: float | None = None
     reference_uncovered_mm: float | None = None
+    cover_plus: Cover | None = None
+    cover_minus: Cover | None = None
+    neighbours_plus: NeighbourProfile | None = None
+    neighbours_minus: NeighbourProfile | None = None
     broken: tuple[tuple[str, int, float, float], ...] = ()
     missing: tuple[str, ...] = ()
