@@ -73,18 +73,15 @@ def electric_pickup(
 def edge_pickup(
     swing: float, rise_time: float, capacitance: tuple[float, float], resistance: tuple[float, float]
 ) -> float:
-    """Greatest voltage [V] between the legs while a neighbour swings [V] evenly within its rise time [s].
+    """Greatest voltage [V] between the legs when a neighbour swings [V] evenly within its rise time [s].
 
-    Each leg answers a ramp with R C dV/dt (1 − e^(−t/RC)), greatest at the ramp's end; ΔC R dV/dt for RC far below the
-    rise time. The difference is greatest at the ramp's end or where both legs' slopes are equal.
-    Source: step response of an RC high-pass (elementary circuit theory); limit as in Ott, ch. 2 (from memory).
+    Each leg answers a ramp with τ dV/dt (1 − e^(−t/τ)), τ = RC, and falls with e^(−t/τ) after its end. The difference
+    grows until the end and somewhat beyond, as the faster leg falls first. With τ far below the rise time this is
+    ΔC R dV/dt.
+    Source: ramp response of an RC high-pass (elementary circuit theory); limit as in Ott, ch. 2 (from memory).
     """
-    slope = swing / rise_time
-    tau = [C * R for C, R in zip(capacitance, resistance, strict=True)]
-    times = [rise_time]
-    if min(tau) > 0 and tau[0] != tau[1]:
-        times.append(min(rise_time, float(np.log(tau[0] / tau[1]) / (1 / tau[1] - 1 / tau[0]))))
-    answers = [
-        sum(sign * t * -np.expm1(-time / t) for sign, t in zip((1, -1), tau, strict=True) if t) for time in times
-    ]
-    return float(max(abs(slope * answer) for answer in answers))
+    fast, slow = sorted(C * R for C, R in zip(capacitance, resistance, strict=True))
+    reached = [-np.expm1(-rise_time / tau) if tau else 1.0 for tau in (fast, slow)]
+    beyond = 0.0 if fast in (0.0, slow) else float(np.log(reached[0] / reached[1]) / (1 / fast - 1 / slow))
+    legs = [tau * part * np.exp(-beyond / tau) if tau else 0.0 for tau, part in zip((fast, slow), reached, strict=True)]
+    return float(abs(swing) / rise_time * (legs[1] - legs[0]))
