@@ -1,0 +1,161 @@
+"""From what was read to a `Board`: the step chosen, polarity obeyed, pads and holes joined, names turned to indices."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from pairrules.board import Area, Board, Pads, PadShape, Tracks, Vias
+from pairrules.board.columns import Floats
+from pairrules.errors import BoardError
+from pairrules.readers.ipc2581 import polarity
+from pairrules.readers.ipc2581.completeness import complete
+from pairrules.readers.ipc2581.copper import Copper, FillRow
+from pairrules.readers.ipc2581.file_content import FileContent, Step
+from pairrules.readers.ipc2581.layers import build_stackup
+from pairrules.readers.ipc2581.nets import declared_pairs, name_unnamed
+from pairrules.readers.ipc2581.parts import part_list
+from pairrules.readers.ipc2581.pins_and_vias import JoinedPad, JoinedVia, join, place_pins
+from pairrules.readers.ipc2581.remarks import Remarks
+from pairrules.readers.ipc2581.transform import Plane
+
+
+def assemble(content: FileContent, wanted: str) -> Board:
+    """The board. Raises: BoardError, without the file's name, where there is no board copper or no single board."""
+    step = choose_step(content, wanted)
+    remarks = Remarks({**content.remarks.counts})
+    stackup = build_stackup(content.table, remarks)
+    names = stackup.copper
+    whole = complete(content, step, names, remarks)
+    for sentence, count in step.remarks.counts.items():
+        remarks.count(sentence, count)
+    copper = step.copper
+    name_unnamed(copper, step.nets)
+    place_pins(copper, step.parts, step.nets, content.table)
+    negatives = polarity.negative_layers(copper, content.table.copper, remarks)
+    polarity.invert(copper, negatives, step.profile, remarks)
+    polarity.erase(copper, remarks)
+    pads, vias = join(copper, names, remarks)
+    nets = _net_names(step, copper, pads, vias)
+    net_index = {net: i for i, net in enumerate(nets)}
+    layer_index = {name: i for i, name in enumerate(names)}
+    parts = part_list(step.parts, content.values, [pad.row.ref for pad in pads if pad.row.ref], content.table)
+    return Board(
+        name=step.name,
+        format="IPC-2581",
+        revision=content.revision,
+        units=content.units,
+        stackup=stackup,
+        nets=nets,
+        parts=parts,
+        pads=_pads(pads, net_index, {part.ref: i for i, part in enumerate(parts)}),
+        tracks=_tracks(copper, net_index, layer_index),
+        vias=_vias(vias, net_index),
+        areas=_areas(copper.areas, net_index, layer_index, remarks),
+        pairs=declared_pairs(step.nets, step.parts, set(nets), remarks),
+        net_kinds=tuple(step.nets.kinds.get(net, "") for net in nets),
+        net_lines=tuple(copper.net_lines.get(net, 0) for net in nets),
+        outline=None if step.profile is None else _points(step.profile),
+        missing=remarks.sentences(),
+        complete=whole,
+    )
+
+
+def choose_step(content: FileContent, wanted: str) -> Step:
+    """The step to check: the one asked for, else the only one with copper, panels that repeat others left aside."""
+    held = {name: step for name, step in content.steps.items() if step.copper}
+    if wanted:
+        if wanted in content.steps and wanted not in held:
+            raise BoardError(f'step "{wanted}" holds no board copper', remedy=_choices(held))
+        if wanted not in held:
+            raise BoardError(f'the file has no step "{wanted}"', remedy=_choices(held))
+        return held[wanted]
+    boards = {name: step for name, step in held.items() if not step.repeats} or held
+    if len(boards) > 1:
+        names = ", ".join(boards)
+        raise BoardError(f"the file holds {len(boards)} boards: {names}", remedy="say which one with --step NAME")
+    if not boards or not content.table.copper:
+        modes = f" (it was written for {', '.join(content.modes)})" if any(content.modes) else ""
+        raise BoardError(f"the file holds no board copper{modes}", remedy="export the board with its copper layers")
+    return next(iter(boards.values()))
+
+
+def _choices(held: dict[str, Step]) -> str:
+    return f"choose one of: {', '.join(held)}" if held else "export the board with its copper layers"
+
+
+def _net_names(step: Step, copper: Copper, pads: list[JoinedPad], vias: list[JoinedVia]) -> tuple[str, ...]:
+    names = set(step.nets.names)
+    names.update(row.net for row in copper.tracks)
+    names.update(row.net for row in copper.areas)
+    names.update(pad.row.net for pad in pads)
+    names.update(via.net for via in vias)
+    names.discard("")
+    return tuple(sorted(names))
+
+
+def _points(plane: Plane) -> Floats:
+    return np.column_stack([plane.real, plane.imag])
+
+
+def _pairs(values: list[complex]) -> Floats:
+    return _points(np.array(values, dtype=np.complex128))
+
+
+def _tracks(copper: Copper, nets: dict[str, int], layers: dict[str, int]) -> Tracks:
+    rows = copper.tracks
+    nowhere = complex(np.nan, np.nan)
+    return Tracks(
+        start=_pairs([row.start for row in rows]),
+        end=_pairs([row.end for row in rows]),
+        centre=_pairs([nowhere if row.centre is None else row.centre for row in rows]),
+        sweep=np.array([row.sweep for row in rows], dtype=np.float64),
+        width=np.array([row.width for row in rows], dtype=np.float64),
+        layer=np.array([layers[row.layer] for row in rows], dtype=np.int64),
+        net=np.array([nets.get(row.net, -1) for row in rows], dtype=np.int64),
+    )
+
+
+def _pads(pads: list[JoinedPad], nets: dict[str, int], parts: dict[str, int]) -> Pads:
+    """Pads as columns. A scaled shape is drawn at its scale."""
+    shapes: dict[PadShape, int] = {}
+    rows: list[int] = []
+    for pad in pads:
+        shape = None if pad.row.shape is None else pad.row.shape.scaled_pad(pad.row.by.scale)
+        rows.append(-1 if shape is None else shapes.setdefault(shape, len(shapes)))
+    return Pads(
+        at=_pairs([pad.row.at for pad in pads]),
+        layer=np.array([pad.layer for pad in pads], dtype=np.int64),
+        net=np.array([nets.get(pad.row.net, -1) for pad in pads], dtype=np.int64),
+        part=np.array([parts.get(pad.row.ref, -1) for pad in pads], dtype=np.int64),
+        pin=tuple(pad.row.pin for pad in pads),
+        shape=np.array(rows, dtype=np.int64),
+        rotation=np.array([pad.row.by.angle for pad in pads], dtype=np.float64),
+        mirror=np.array([pad.row.by.flip for pad in pads], dtype=np.bool_),
+        drill=np.array([pad.drill for pad in pads], dtype=np.float64),
+        shapes=tuple(shapes),
+    )
+
+
+def _vias(vias: list[JoinedVia], nets: dict[str, int]) -> Vias:
+    return Vias(
+        at=_pairs([via.at for via in vias]),
+        first=np.array([via.first for via in vias], dtype=np.int64),
+        last=np.array([via.last for via in vias], dtype=np.int64),
+        drill=np.array([via.drill for via in vias], dtype=np.float64),
+        pad=np.array([via.pad for via in vias], dtype=np.float64),
+        antipad=np.array([via.antipad for via in vias], dtype=np.float64),
+        net=np.array([nets.get(via.net, -1) for via in vias], dtype=np.int64),
+    )
+
+
+def _areas(rows: list[FillRow], nets: dict[str, int], layers: dict[str, int], remarks: Remarks) -> tuple[Area, ...]:
+    areas = []
+    for row in rows:
+        if len(row.fill.outline) < 3:
+            remarks.count("{n} area{s} of fewer than three corners {are} left out")
+            continue
+        holes = tuple(_points(hole) for hole in row.fill.holes if len(hole) > 2)
+        areas.append(
+            Area(net=nets.get(row.net, -1), layer=layers[row.layer], outline=_points(row.fill.outline), holes=holes)
+        )
+    return tuple(areas)

@@ -1,0 +1,140 @@
+"""What features draw: strokes (lines with a width) and fills (outlines with holes), placed on the plane [mm]."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable
+from dataclasses import dataclass, replace
+from typing import Any
+
+import numpy as np
+import shapely
+from shapely.geometry import LineString, MultiPolygon, Polygon
+
+from pairrules.board import arcs
+from pairrules.readers.ipc2581.transform import Plane, Transform
+
+
+@dataclass(frozen=True, slots=True)
+class Stroke:
+    """A polyline of straight and round pieces.
+
+    Parameters
+    ----------
+    points: n + 1 corners. centres: n arc centres, `None` where the piece is straight.
+    sweeps: n signed angles [rad], 0 where straight. width: [mm]. erase: it removes copper drawn before it.
+    """
+
+    points: tuple[complex, ...]
+    centres: tuple[complex | None, ...]
+    sweeps: tuple[float, ...]
+    width: float
+    erase: bool = False
+
+    def placed(self, by: Transform) -> Stroke:
+        """The stroke after a placement; a mirror turns the arcs' sense."""
+        return Stroke(
+            tuple(by(point) for point in self.points),
+            tuple(None if centre is None else by(centre) for centre in self.centres),
+            tuple(-sweep for sweep in self.sweeps) if by.flip else self.sweeps,
+            self.width * by.scale,
+            self.erase,
+        )
+
+    def flattened(self) -> list[tuple[float, float]]:
+        """Corners with arcs as chords."""
+        flat = [(self.points[0].real, self.points[0].imag)]
+        for start, end, centre, sweep in zip(self.points, self.points[1:], self.centres, self.sweeps, strict=False):
+            if centre is not None:
+                rounded = arcs.flatten((start.real, start.imag), (centre.real, centre.imag), sweep)
+                flat += [(float(x), float(y)) for x, y in rounded[:-1]]
+            flat.append((end.real, end.imag))
+        return flat
+
+    def region(self) -> Any:
+        """The covered area, ends round, as a shapely geometry."""
+        flat = self.flattened()
+        if all(point == flat[0] for point in flat):
+            return shapely.Point(flat[0]).buffer(self.width / 2, quad_segs=32)
+        return LineString(flat).buffer(self.width / 2, quad_segs=32)
+
+
+@dataclass(frozen=True, slots=True)
+class Fill:
+    """An outline with holes, arcs flattened. erase: it removes copper drawn before it."""
+
+    outline: Plane
+    holes: tuple[Plane, ...] = ()
+    erase: bool = False
+
+    def placed(self, by: Transform) -> Fill:
+        """The fill after a placement."""
+        return Fill(by(self.outline), tuple(by(hole) for hole in self.holes), self.erase)
+
+    def region(self) -> Any:
+        """The covered area as a valid shapely geometry."""
+        drawn = Polygon(_pairs(self.outline), [_pairs(hole) for hole in self.holes])
+        return drawn if drawn.is_valid else shapely.make_valid(drawn)
+
+
+Item = Stroke | Fill
+
+
+def placed(items: Iterable[Item], by: Transform) -> tuple[Item, ...]:
+    """Every item after a placement."""
+    return tuple(item.placed(by) for item in items)
+
+
+def erasing(items: Iterable[Item]) -> tuple[Item, ...]:
+    """The same items as removals."""
+    return tuple(replace(item, erase=True) for item in items)
+
+
+def fills(region: Any) -> tuple[Fill, ...]:
+    """The polygons of a shapely geometry; lines and points that cutting leaves behind carry no copper."""
+    if isinstance(region, Polygon):
+        pieces = [region]
+    elif isinstance(region, MultiPolygon):
+        pieces = list(region.geoms)
+    else:
+        parts = getattr(region, "geoms", ())
+        return tuple(fill for part in parts for fill in fills(part))
+    return tuple(
+        Fill(_ring(piece.exterior.coords), tuple(_ring(hole.coords) for hole in piece.interiors))
+        for piece in pieces
+        if piece.area > 0
+    )
+
+
+def ring(points: list[complex], centres: list[complex | None], sweeps: list[float]) -> Plane:
+    """A closed outline as corners, arcs flattened, the closing corner left out."""
+    if any(centre is not None for centre in centres):
+        flat = Stroke(tuple(points), tuple(centres), tuple(sweeps), 0.0).flattened()
+        corners = np.array([complex(x, y) for x, y in flat])
+    else:
+        corners = np.array(points, dtype=np.complex128)
+    if len(corners) > 1 and abs(corners[0] - corners[-1]) < 1e-9:
+        corners = corners[:-1]
+    return corners
+
+
+def sweep(start: complex, end: complex, centre: complex, *, clockwise: bool) -> float:
+    """Signed angle [rad] of an arc."""
+    ends = ((start.real, start.imag), (end.real, end.imag), (centre.real, centre.imag))
+    return arcs.sweep(*ends, clockwise=clockwise)
+
+
+def disc(diameter: float) -> Plane:
+    """A circle about the origin as corners."""
+    radius = diameter / 2
+    turned = arcs.flatten((radius, 0.0), (0.0, 0.0), 2 * math.pi)
+    return turned[:, 0] + 1j * turned[:, 1]
+
+
+def _pairs(points: Plane) -> Any:
+    return np.column_stack([points.real, points.imag])
+
+
+def _ring(coords: Any) -> Plane:
+    corners = np.asarray(coords, dtype=np.float64)[:-1]
+    return np.asarray(corners[:, 0] + 1j * corners[:, 1])

@@ -1,0 +1,128 @@
+"""Elements of the file: their names without namespace, their numbers, their words, and the errors they cause."""
+
+from __future__ import annotations
+
+import math
+import unicodedata
+from collections.abc import Iterator
+from functools import lru_cache
+from typing import TYPE_CHECKING, NoReturn
+
+from pairrules.errors import BoardError
+
+if TYPE_CHECKING:
+    from lxml.etree import _Element as Element
+
+UNIT_MM = {"MILLIMETER": 1.0, "MICRON": 0.001, "INCH": 25.4}
+"""Millimetres in the units of a header or dictionary. Source: IPC-2581A schema, `unitsType`."""
+
+FARTHEST_MM = 1e7
+"""No board is ten kilometres long; beyond it a coordinate is a fault of the file and its square loses digits."""
+
+NO_NET = {"", "no net", "none", "$none$", "n/c", "unconnected"}
+"""Names, in small letters, that exporters give to copper of no net (common practice, no source)."""
+
+
+@lru_cache(maxsize=4096)
+def _bare(tag: str) -> str:
+    return tag.rpartition("}")[2]
+
+
+def local(element: Element) -> str:
+    """The element's name without its namespace."""
+    tag = element.tag
+    return _bare(str(tag))
+
+
+def children(element: Element) -> Iterator[tuple[str, Element]]:
+    """Name and element of each child, in document order."""
+    for child in element:
+        tag = child.tag
+        if isinstance(tag, str):
+            yield _bare(tag), child
+
+
+def child(element: Element, name: str) -> Element | None:
+    """The first child of that name."""
+    return next((found for tag, found in children(element) if tag == name), None)
+
+
+@lru_cache(maxsize=65536)
+def clean(text: str) -> str:
+    """Text of the file without control and direction characters, which a terminal or page would obey."""
+    if text.isprintable():
+        return text
+    kept = (" " if c in "\t\n\r" else c for c in text)
+    return "".join(c for c in kept if unicodedata.category(c) not in {"Cc", "Cf", "Cs", "Zl", "Zp"}).strip()
+
+
+def word(element: Element, name: str, default: str = "") -> str:
+    """A cleaned attribute, `default` where absent."""
+    text = element.get(name)
+    return default if text is None else clean(text)
+
+
+def truth(element: Element, name: str, *, default: bool = False) -> bool:
+    """An `xsd:boolean` attribute."""
+    text = element.get(name)
+    if text is None:
+        return default
+    text = text.strip().lower()
+    if text not in {"true", "false", "1", "0"}:
+        wrong(element, f'{local(element)} has {name}="{clean(text)}", which is neither true nor false')
+    return text in {"true", "1"}
+
+
+def number(element: Element, name: str, default: float | None = None) -> float:
+    """A finite number. Raises: BoardError, with the line, where it is absent (and no default given) or no number."""
+    text = element.get(name)
+    if text is None:
+        if default is None:
+            wrong(element, f"{local(element)} has no {name}")
+        return default
+    try:
+        value = float(text)
+    except ValueError:
+        value = math.nan
+    if not math.isfinite(value) or "_" in text:
+        wrong(element, f'{local(element)} has {name}="{clean(text)}", which is no number')
+    return value
+
+
+def length(element: Element, name: str, factor: float, default: float | None = None) -> float:
+    """A length or coordinate [mm]; `factor` is the millimetres in the unit that holds here."""
+    value = number(element, name, default) * factor
+    if not -FARTHEST_MM < value < FARTHEST_MM:
+        wrong(element, f'{local(element)} has {name}="{clean(element.get(name) or "")}", which is beyond any board')
+    return value
+
+
+def size(element: Element, name: str, factor: float, default: float | None = None) -> float:
+    """A length that cannot be negative [mm]."""
+    value = length(element, name, factor, default)
+    if value < 0:
+        wrong(element, f'{local(element)} has {name}="{clean(element.get(name) or "")}", which is negative')
+    return value
+
+
+def units(element: Element) -> float:
+    """Millimetres in the unit named by a header's or dictionary's `units`."""
+    text = word(element, "units").upper()
+    if text not in UNIT_MM:
+        wrong(
+            element,
+            f'{local(element)} has units="{text}"' if text else f"{local(element)} has no units",
+            "write MILLIMETER, MICRON or INCH",
+        )
+    return UNIT_MM[text]
+
+
+def line(element: Element) -> int:
+    """The line of the file that the element begins on, 0 where unknown."""
+    where: object = element.sourceline
+    return where if isinstance(where, int) else 0
+
+
+def wrong(element: Element, found: str, remedy: str = "correct it there or export the file again") -> NoReturn:
+    """Refuse the file for what an element says. The file's name is added by the reader."""
+    raise BoardError(found, place=f"line {line(element)}", remedy=remedy)

@@ -1,0 +1,231 @@
+"""Features: from the elements that draw (lines, outlines, contours, primitives, user shapes) to strokes and fills."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field, replace
+from typing import TYPE_CHECKING
+
+from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, sweep
+from pairrules.readers.ipc2581.elements import child, children, length, local, size, truth, word, wrong
+from pairrules.readers.ipc2581.primitives import Primitive, hollow, outer_pad, polygon_pad, primitive
+from pairrules.readers.ipc2581.remarks import Remarks
+from pairrules.readers.ipc2581.transform import IDENTITY, Plane, xform
+
+if TYPE_CHECKING:
+    from lxml.etree import _Element as Element
+
+MOST_ITEMS = 100_000
+"""Items one user shape may draw; a shape that names others over and over would fill the memory."""
+
+ROUGH_ARC_MM = 0.01
+"""An arc whose two ends differ by more in their distance from its centre is remarked upon."""
+
+STYLES = {"LineDesc", "LineDescRef", "FillDesc", "FillDescRef", "Color", "ColorRef", "ColorTerm", "Xform"}
+PRIMITIVES = {"StandardPrimitiveRef", "UserPrimitiveRef"}
+
+
+@dataclass(frozen=True, slots=True)
+class Line:
+    """How a line is drawn. width: [mm]. erase: the line removes copper."""
+
+    width: float
+    erase: bool = False
+
+
+@dataclass(slots=True)
+class Shapes:
+    """What the file's dictionaries name, and the reading of features with their help."""
+
+    remarks: Remarks
+    lines: dict[str, Line] = field(default_factory=dict)
+    fillings: dict[str, str] = field(default_factory=dict)
+    standard: dict[str, Primitive] = field(default_factory=dict)
+    user: dict[str, Primitive] = field(default_factory=dict)
+
+    # -- dictionaries -------------------------------------------------------------------------------------------------
+
+    def entry(self, element: Element, factor: float) -> None:
+        """Take in one `Entry…` of a dictionary. factor: millimetres in the dictionary's unit."""
+        name, kind = word(element, "id"), local(element)
+        for tag, inner in children(element):
+            if kind == "EntryLineDesc" and tag == "LineDesc":
+                self.lines[name] = self._line(inner, factor)
+            elif kind == "EntryFillDesc" and tag == "FillDesc":
+                self.fillings[name] = word(inner, "fillProperty", "FILL").upper()
+            elif kind in {"EntryStandard", "EntryUser"}:
+                shape = self.shape(inner, factor)
+                if shape is None:
+                    self.remarks.unknown(tag, "dictionaries")
+                elif len(shape.items) > MOST_ITEMS:
+                    wrong(element, f'shape "{name}" draws more than {MOST_ITEMS} pieces')
+                else:
+                    (self.standard if kind == "EntryStandard" else self.user)[name] = shape
+
+    # -- styles -------------------------------------------------------------------------------------------------------
+
+    @staticmethod
+    def _line(element: Element, factor: float) -> Line:
+        return Line(size(element, "lineWidth", factor), word(element, "lineProperty").upper() == "ERASE")
+
+    def line(self, element: Element, factor: float, default: Line | None = None) -> Line | None:
+        """The line style among an element's children; `default` where it has none."""
+        for tag, inner in children(element):
+            if tag == "LineDescRef":
+                found = self.lines.get(word(inner, "id"))
+                if found is None:
+                    self.remarks.count("{n} line style{s} named by features {are} not in the file's dictionary")
+                return found
+            if tag == "LineDesc":
+                return self._line(inner, factor)
+        return default
+
+    def filling(self, element: Element) -> str:
+        """The fill property among an element's children, or its polygon's; "FILL" where neither says."""
+        for tag, inner in children(element):
+            if tag == "FillDescRef":
+                return self.fillings.get(word(inner, "id"), "FILL")
+            if tag == "FillDesc":
+                return word(inner, "fillProperty", "FILL").upper()
+        polygon = child(element, "Polygon")
+        return "FILL" if polygon is None else self.filling(polygon)
+
+    # -- shapes -------------------------------------------------------------------------------------------------------
+
+    def shape(self, element: Element, factor: float, default: Line | None = None) -> Primitive | None:
+        """What an element draws about its own origin, its own `Xform` obeyed; `None` where it draws nothing known."""
+        found = self._bare_shape(element, factor, default)
+        if found is None:
+            return None
+        turned = child(element, "Xform")
+        if turned is None or local(element) == "Text":
+            return found
+        by = xform(turned, factor)
+        if by == IDENTITY:
+            return found
+        moved = placed(found.items, by)
+        return Primitive(moved, None if found.pad is None else outer_pad(moved))
+
+    def _bare_shape(self, element: Element, factor: float, default: Line | None) -> Primitive | None:
+        tag = local(element)
+        if tag in PRIMITIVES:
+            held = self.standard if tag == "StandardPrimitiveRef" else self.user
+            found = held.get(word(element, "id"))
+            if found is None:
+                self.remarks.count(
+                    "{n} shape{s} named by features {are} not in the file's dictionaries and {are} left out"
+                )
+                return Primitive((), None)
+            return found
+        if tag in {"Line", "Arc", "Polyline", "Outline"}:
+            return Primitive(self._strokes(element, tag, factor, default), None)
+        if tag in {"Contour", "Polygon"}:
+            return self._filled(element, self._contour(element, tag, factor), factor, default)
+        if tag == "UserSpecial":
+            return self._special(element, factor, default)
+        found = primitive(element, factor)
+        return None if found is None else self._filled(element, found, factor, default)
+
+    def _special(self, element: Element, factor: float, default: Line | None) -> Primitive:
+        items: list[Item] = []
+        for tag, inner in children(element):
+            if tag in STYLES:
+                continue
+            drawn = self.shape(inner, factor, default)
+            if drawn is None:
+                self.remarks.unknown(tag, "user shapes")
+            else:
+                items += drawn.items
+                if len(items) > MOST_ITEMS:
+                    wrong(element, f"a user shape draws more than {MOST_ITEMS} pieces")
+        return Primitive(tuple(items), outer_pad(tuple(items)))
+
+    def _filled(self, element: Element, shape: Primitive, factor: float, default: Line | None) -> Primitive:
+        filling = self.filling(element)
+        if filling == "HOLLOW":
+            line = self.line(element, factor, default)
+            if line is None or line.width == 0:
+                self.remarks.count("{n} hollow shape{s} without line width {are} no copper and {are} left out")
+            return hollow(shape, 0.0 if line is None else line.width)
+        if filling == "VOID":
+            return Primitive(tuple(replace(item, erase=True) for item in shape.items), None)
+        if filling in {"HATCH", "MESH"}:
+            self.remarks.count("{n} hatched shape{s} {are} read as solid copper")
+        return shape
+
+    def _contour(self, element: Element, tag: str, factor: float) -> Primitive:
+        outline = element if tag == "Polygon" else child(element, "Polygon")
+        if outline is None:
+            wrong(element, "Contour has no Polygon")
+        corners = self.outline(outline, factor)
+        cutouts = [self.outline(inner, factor) for name, inner in children(element) if name == "Cutout"]
+        if len(corners) < 3:
+            self.remarks.count("{n} outline{s} of fewer than three corners {are} left out")
+            return Primitive((), None)
+        fill = Fill(corners, tuple(cutout for cutout in cutouts if len(cutout) > 2))
+        return Primitive((fill,), polygon_pad(corners))
+
+    def outline(self, element: Element, factor: float) -> Plane:
+        """The closed outline of a `Polygon` or `Cutout`."""
+        return ring(*self._steps(element, factor))
+
+    # -- lines --------------------------------------------------------------------------------------------------------
+
+    def _strokes(self, element: Element, tag: str, factor: float, default: Line | None) -> tuple[Item, ...]:
+        line = self.line(element, factor, default)
+        if line is None or line.width == 0:
+            self.remarks.count("{n} line{s} on copper without a width {are} left out")
+            return ()
+        if tag == "Outline":
+            polygon = child(element, "Polygon")
+            if polygon is None:
+                wrong(element, "Outline has no Polygon")
+            points, centres, sweeps = self._steps(polygon, factor)
+            if points[0] != points[-1]:
+                points, centres, sweeps = [*points, points[0]], [*centres, None], [*sweeps, 0.0]
+        elif tag == "Polyline":
+            points, centres, sweeps = self._steps(element, factor)
+        else:
+            start = complex(length(element, "startX", factor), length(element, "startY", factor))
+            end = complex(length(element, "endX", factor), length(element, "endY", factor))
+            centre, angle = self._round(element, start, end, factor) if tag == "Arc" else (None, 0.0)
+            points, centres, sweeps = [start, end], [centre], [angle]
+        if len(points) < 2:
+            return ()
+        return (Stroke(tuple(points), tuple(centres), tuple(sweeps), line.width, line.erase),)
+
+    def _steps(self, element: Element, factor: float) -> tuple[list[complex], list[complex | None], list[float]]:
+        """The corners of a polyline or polygon: first `PolyBegin`, then straight and round steps."""
+        points: list[complex] = []
+        centres: list[complex | None] = []
+        sweeps: list[float] = []
+        for tag, inner in children(element):
+            if tag in {"PolyStepSegment", "PolyStepCurve", "PolyBegin"}:
+                at = complex(length(inner, "x", factor), length(inner, "y", factor))
+                if (tag == "PolyBegin") == bool(points):
+                    wrong(inner, f"{local(element)} has a {tag} out of its order")
+                if points:
+                    curved = tag == "PolyStepCurve"
+                    centre, angle = self._round(inner, points[-1], at, factor) if curved else (None, 0.0)
+                    centres.append(centre)
+                    sweeps.append(angle)
+                points.append(at)
+            elif tag not in STYLES:
+                self.remarks.unknown(tag, f"{local(element)} elements")
+        if not points:
+            wrong(element, f"{local(element)} has no PolyBegin")
+        return points, centres, sweeps
+
+    def _round(self, element: Element, start: complex, end: complex, factor: float) -> tuple[complex | None, float]:
+        """Centre and signed angle of an arc; straight where its radius is nothing.
+
+        The sense is clockwise where `clockwise` is absent. Source: IPC-2581A schema, `PolyStepCurveType`.
+        """
+        centre = complex(length(element, "centerX", factor), length(element, "centerY", factor))
+        radius, other = abs(start - centre), abs(end - centre)
+        if abs(radius - other) > ROUGH_ARC_MM:
+            self.remarks.count(
+                "{n} arc{s} whose ends lie at unequal distances from the centre {are} read as they stand"
+            )
+        if radius == 0.0 or other == 0.0:
+            return None, 0.0
+        return centre, sweep(start, end, centre, clockwise=truth(element, "clockwise", default=True))

@@ -1,0 +1,35 @@
+"""Things by their place on the board, found again within a small distance."""
+
+from __future__ import annotations
+
+import math
+from typing import Generic, TypeVar
+
+NEAR_MM = 0.005
+"""Centres this near are one place: exporters round to a micrometre or to a hundred-thousandth of an inch."""
+
+_CELL_MM = 0.02
+
+Thing = TypeVar("Thing")
+
+
+class Places(Generic[Thing]):
+    """A store of things by place, in the order put in."""
+
+    def __init__(self) -> None:
+        self._cells: dict[tuple[int, int], list[tuple[complex, Thing]]] = {}
+
+    def put(self, at: complex, thing: Thing) -> None:
+        """Store a thing."""
+        key = (math.floor(at.real / _CELL_MM), math.floor(at.imag / _CELL_MM))
+        self._cells.setdefault(key, []).append((at, thing))
+
+    def near(self, at: complex, within: float = NEAR_MM) -> list[Thing]:
+        """The things within a distance [mm] of a place, at most a cell wide."""
+        lows = (math.floor((at.real - within) / _CELL_MM), math.floor((at.imag - within) / _CELL_MM))
+        highs = (math.floor((at.real + within) / _CELL_MM), math.floor((at.imag + within) / _CELL_MM))
+        found: list[Thing] = []
+        for column in range(lows[0], highs[0] + 1):
+            for row in range(lows[1], highs[1] + 1):
+                found += [thing for place, thing in self._cells.get((column, row), ()) if abs(place - at) <= within]
+        return found

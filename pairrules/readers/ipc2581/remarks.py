@@ -1,0 +1,34 @@
+"""What the file lacks or was not understood: counted while reading, told once a kind."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+
+@dataclass(slots=True)
+class Remarks:
+    """Counts by sentence. A sentence with `{n}` is told once with its count; the plural s stands in `{s}`."""
+
+    counts: dict[str, int] = field(default_factory=dict)
+
+    def count(self, sentence: str, times: int = 1) -> None:
+        """One more case of a kind."""
+        if times:
+            self.counts[sentence] = self.counts.get(sentence, 0) + times
+
+    def unknown(self, name: str, where: str) -> None:
+        """An element that is not understood at this place."""
+        braced = name.replace("{", "").replace("}", "")
+        self.count(f"{{n}} element{{s}} {braced} in {where} {{were}} not understood and {{are}} left out")
+
+    def sentences(self) -> tuple[str, ...]:
+        """One sentence a kind, in the order first met."""
+        return tuple(_told(sentence, count) for sentence, count in self.counts.items())
+
+
+def _told(sentence: str, count: int) -> str:
+    one = count == 1
+    words = {"n": str(count), "s": "" if one else "s", "were": "was" if one else "were", "are": "is" if one else "are"}
+    for name, value in words.items():
+        sentence = sentence.replace(f"{{{name}}}", value)
+    return sentence

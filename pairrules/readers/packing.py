@@ -1,0 +1,131 @@
+"""Packed board files: gzip and zip, told by their first bytes, opened within bounds that a hostile archive cannot pass."""
+
+from __future__ import annotations
+
+import io
+import zipfile
+import zlib
+from collections.abc import Callable, Iterable
+
+from pairrules.errors import BoardError
+
+MOST_BYTES = 2 * 1024**3
+"""Unpacked size that is still taken for a board."""
+
+MOST_RATIO = 1000
+"""Unpacked to packed size that is still taken for text. Deflate itself reaches 1032 (zlib's technical notes)."""
+
+_SMALL_BYTES = 1024**2
+"""Below this size no ratio is asked: a tiny file of blanks harms nobody."""
+
+_CHUNK = 1024**2
+_BOARD_NAMES = (".xml", ".cvg", ".json")
+_HEAD = 4096
+
+
+def unpack(data: bytes, name: str) -> tuple[bytes, str]:
+    """The board file inside `data`, and the label that messages call it by ("archive.zip: board.xml").
+
+    Plain files come back as they are. From a zip the one board is taken: the only member named .xml, .cvg or .json,
+    else the first that begins like a board.
+
+    Raises: BoardError where the file is empty, the archive is broken, too large unpacked, or holds no board.
+    """
+    if not data:
+        raise BoardError("the file is empty", file=name, remedy="export the board again")
+    if data.startswith(b"\x1f\x8b"):
+        plain = _gunzip(data, name)
+        if not plain:
+            raise BoardError("the archive holds an empty file", file=name, remedy="pack the board again")
+        return plain, name
+    if data.startswith((b"PK\x03\x04", b"PK\x05\x06")):
+        return _from_zip(data, name)
+    return data, name
+
+
+def _gunzip(data: bytes, name: str) -> bytes:
+    """All members of a gzip file, one after the other."""
+    parts: list[bytes] = []
+    rest = data
+    total = 0
+    while rest.startswith(b"\x1f\x8b"):
+        engine = zlib.decompressobj(wbits=31)
+        try:
+            while not engine.eof:
+                piece = engine.decompress(rest, _CHUNK)
+                rest = engine.unconsumed_tail
+                if not piece and not rest and not engine.eof:
+                    raise _broken(name, "the gzip data breaks off")
+                parts.append(piece)
+                total += len(piece)
+                _check_size(total, len(data), name)
+        except zlib.error:
+            raise _broken(name, "the gzip data is damaged") from None
+        rest = engine.unused_data
+    return b"".join(parts)
+
+
+def _from_zip(data: bytes, name: str) -> tuple[bytes, str]:
+    try:
+        with zipfile.ZipFile(io.BytesIO(data)) as archive:
+            members = [member for member in archive.infolist() if not member.is_dir()]
+            chosen = _choose(members, lambda member, most: _member(archive, member, name, most))
+            if chosen is None:
+                raise BoardError(
+                    "the archive holds no board", file=name, remedy="put an .xml, .cvg or .json board in it"
+                )
+            label = f"{name}: {_shown(chosen.filename)}"
+            plain = _member(archive, chosen, name, None)
+    except (zipfile.BadZipFile, zlib.error, EOFError, NotImplementedError, RuntimeError, ValueError, OSError) as error:
+        locked = "encrypted" in str(error)
+        raise _broken(name, "the zip archive is locked" if locked else "the zip archive is damaged") from None
+    if not plain:
+        raise BoardError("the file is empty", file=label, remedy="export the board again")
+    return plain, label
+
+
+def _choose(
+    members: Iterable[zipfile.ZipInfo], head: Callable[[zipfile.ZipInfo, int], bytes]
+) -> zipfile.ZipInfo | None:
+    members = list(members)
+    named = [member for member in members if member.filename.lower().endswith(_BOARD_NAMES)]
+    if len(named) == 1:
+        return named[0]
+    return next((member for member in named or members if _looks_like_board(head(member, _HEAD))), None)
+
+
+def _looks_like_board(start: bytes) -> bool:
+    """Whether the beginning could be an IPC-2581 or a plain JSON board; the readers look closer."""
+    bare = start.replace(b"\0", b"")
+    return b"IPC-2581" in bare or b"pairrules_board" in bare
+
+
+def _member(archive: zipfile.ZipFile, member: zipfile.ZipInfo, name: str, most: int | None) -> bytes:
+    """A member's bytes, or its first `most`. The sizes an archive states of itself are not believed."""
+    parts: list[bytes] = []
+    total = 0
+    with archive.open(member) as stream:
+        if most is not None:
+            return stream.read(most)
+        while piece := stream.read(_CHUNK):
+            parts.append(piece)
+            total += len(piece)
+            _check_size(total, member.compress_size, name)
+    return b"".join(parts)
+
+
+def _check_size(total: int, packed: int, name: str) -> None:
+    if total > MOST_BYTES:
+        found = f"the archive unpacks to more than {MOST_BYTES // 1024**3} GB"
+        raise BoardError(found, file=name, remedy="give the board file itself")
+    if total > _SMALL_BYTES and total > MOST_RATIO * max(packed, 1):
+        found = f"the archive unpacks to more than {MOST_RATIO} times its size"
+        raise BoardError(found, file=name, remedy="give the board file itself")
+
+
+def _broken(name: str, found: str) -> BoardError:
+    return BoardError(found, file=name, remedy="pack the board again, or give the board file itself")
+
+
+def _shown(filename: str) -> str:
+    return "".join(c for c in filename if c.isprintable())
