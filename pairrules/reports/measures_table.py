@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import textwrap
+
 from pairrules.reports.figures import FIGURES, value
 from pairrules.reports.report import Look, Report
 from pairrules.reports.safe_text import safe
@@ -23,8 +25,11 @@ def render(result: Result, look: Look) -> str:
     notes = {pair.name: pair.missing for pair in result.pairs if pair.missing}
     if notes:
         lines += ["", "? is not known from the file:"]
-        lines += [f"  {safe(name)}: {safe('; '.join(why))}" for name, why in notes.items()]
-    lines += [f"board: {safe(why)}" for why in result.board.missing]
+        for name, why in notes.items():
+            lines += _wrap(f"{safe(name)}: {safe('; '.join(why))}", look)
+    if result.board.missing:
+        lines += ["", "The file lacks"]
+        lines += [line for why in result.board.missing for line in _wrap(f"- {safe(why)}", look)]
     return "\n".join(lines) + "\n"
 
 
@@ -39,6 +44,10 @@ def _block(pairs: tuple[PairResult, ...], first: int) -> list[str]:
         label = f"{figure.label} [{figure.unit}]" if figure.unit else figure.label
         lines.append(_line(label, [value(pair.measures, figure) for pair in pairs]))
     return lines
+
+
+def _wrap(text: str, look: Look) -> list[str]:
+    return textwrap.wrap(text, look.width, initial_indent="  ", subsequent_indent="    ", break_on_hyphens=False)
 
 
 def _line(label: str, cells: list[str]) -> str:

@@ -18,7 +18,7 @@ def render(found: FoundPairs, look: Look) -> str:
     for pair in found.pairs:
         lines += ["", *_block(pair, look)]
     if found.unpaired:
-        lines += ["", *_wrapped("nets named like half a pair, the other half is not there: ", found.unpaired, look)]
+        lines += ["", *_wrapped("Named like half a pair, the other half is missing: ", found.unpaired, look)]
     for text in found.board.missing:
         lines += [
             "",
@@ -58,7 +58,8 @@ def _block(pair: FoundPair, look: Look) -> list[str]:
     lines = [f"{safe(pair.name)}  ({klass}; found by {safe(pair.found_by)})"]
     lines += _wrapped("  plus   ", pair.nets_plus or (pair.plus,), look, between=" > ")
     lines += _wrapped("  minus  ", pair.nets_minus or (pair.minus,), look, between=" > ")
-    lines.append(f"  from {safe(pair.source) or 'an end that is not known'} to {safe(pair.load) or 'an end not known'}")
+    source, load = (safe(end) or "an end that is not known" for end in (pair.source, pair.load))
+    lines.append(f"  from {source} to {load}")
     if pair.series:
         parts = [f"{part.ref} {part.value}".strip() + f" ({part.leg})" for part in pair.series]
         lines += _wrapped("  in series: ", tuple(parts), look)

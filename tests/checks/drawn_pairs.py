@@ -1,4 +1,4 @@
-"""A pair drawn in a case file, made into what a rule judges. Case files say of each leg only its tracks and its two ends."""
+"""A pair drawn in a case file, made into what a rule judges. Cases say of each leg only its tracks and its two ends."""
 
 from __future__ import annotations
 
@@ -6,14 +6,13 @@ from collections.abc import Mapping
 from dataclasses import replace
 from typing import Any
 
-from tests.geometry.small_boards import board, pads_of, pin, track
-
 from pairrules.board.units import quantity
 from pairrules.checks.measures import geometric_measures
 from pairrules.checks.rule import Rule, Subject
 from pairrules.geometry.measure import measure_link
 from pairrules.pairing.link import Hop, Link
 from pairrules.settings.limit import Limit
+from tests.geometry.small_boards import board, pads_of, pin, track
 
 NETS = {"plus": "A_P", "minus": "A_N"}
 BARE_STACK = [{"name": "TOP", "kind": "copper"}, {"name": "BOT", "kind": "copper"}]

@@ -7,9 +7,9 @@ from typing import Any
 
 import pytest
 import yaml
-from tests.checks.drawn_pairs import limit, subject
 
 from pairrules.checks.rule import Undecided, all_rules
+from tests.checks.drawn_pairs import limit, subject
 
 FOLDER = Path(__file__).with_name("cases")
 PARTS = ("What it judges", "Why it matters", "Formula", "Source", "What to do", "Example")
