@@ -10,7 +10,7 @@ import shapely
 from pairrules.board.arcs import FLATTENING_MM
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
-from pairrules.geometry.copper_outlines import Shapes, copper_outlines, round_lines
+from pairrules.geometry.copper_outlines import Shapes, copper_outlines
 from pairrules.geometry.curves import Curves, chords
 
 
@@ -51,14 +51,15 @@ class CrossCuts:
         cut, shape = of.tree.query(lines, predicate="dwithin", distance=of.widest)
         shapes = of.shapes[shape]
         drawn = of.half[shape] > 0
-        shapes[drawn] = round_lines(shapes[drawn], of.half[shape][drawn])
+        shapes[drawn] = shapely.buffer(shapes[drawn], of.half[shape][drawn])
         pieces, row = shapely.get_parts(shapely.intersection(lines[cut], shapes), return_index=True)
         use = shapely.get_dimensions(pieces) == 1
         pieces, row = pieces[use], row[use]
         bounds = shapely.get_point(pieces, 0), shapely.get_point(pieces, -1)
         own = cut[row]
         places = [
-            np.einsum("ij,ij->i", shapely.get_coordinates(end).reshape(-1, 2) - origin[own], along[own]) for end in bounds
+            np.einsum("ij,ij->i", shapely.get_coordinates(end).reshape(-1, 2) - origin[own], along[own])
+            for end in bounds
         ]
         return _merged(own, of.net[shape[row]], np.minimum(*places), np.maximum(*places))
 

@@ -5,14 +5,19 @@ from __future__ import annotations
 import math
 
 from pairrules.board.board import Board
-from pairrules.geometry.copper_index import CopperIndex, index_copper
+from pairrules.geometry.board_copper import BoardCopper
+from pairrules.geometry.copper_index import CopperIndex
 from pairrules.geometry.gap_figures import gap_figures
 from pairrules.geometry.leg_route import Break, leg_route
 from pairrules.geometry.loop_area import loop_area
+from pairrules.geometry.neighbours import NeighbourProfile, neighbours
 from pairrules.geometry.pair_geometry import LegRoute, PairGeometry
-from pairrules.geometry.reference_cover import ReferenceCopper, reference_cover
+from pairrules.geometry.reference_cover import reference_cover
 from pairrules.geometry.spacing_profile import spacing_profiles
 from pairrules.pairing.link import Hop, Link
+
+LEAST_BESIDE_MM = 1.0
+"""Foreign copper is looked for within the pair's reach, and this far at least."""
 
 
 def measure_link(
@@ -21,8 +26,8 @@ def measure_link(
     *,
     reach_mm: float | None,
     reference: tuple[int, ...],
-    index: CopperIndex | None = None,
-    copper: ReferenceCopper | None = None,
+    copper: BoardCopper | None = None,
+    beside: bool = False,
 ) -> PairGeometry:
     """The geometry of one link.
 
@@ -30,9 +35,11 @@ def measure_link(
     ----------
     reach_mm: within which a leg counts as beside the other; `None` for four times the pair's usual gap.
     reference: indices of the nets whose copper counts as reference.
-    index, copper: of the board, where many links are measured; made here where absent.
+    copper: the board's, where many links are measured; made here where absent.
+    beside: whether foreign copper beside the legs is looked for too; it costs most on a crowded layer.
     """
-    index = index or index_copper(board)
+    copper = copper or BoardCopper(board, reference)
+    index = copper.index
     plus = leg_route(board, index, link.hops_plus)
     minus = leg_route(board, index, link.hops_minus)
     if not isinstance(plus, LegRoute) or not isinstance(minus, LegRoute):
@@ -47,8 +54,7 @@ def measure_link(
         for leg, profile in ((plus, profile_plus), (minus, profile_minus))
     ]
     area = loop_area(plus.pieces, minus.pieces)
-    copper = copper or ReferenceCopper(board, reference)
-    covers = [reference_cover(leg.pieces, board, copper) for leg in (plus, minus)]
+    covers = [reference_cover(leg.pieces, board, copper.reference) for leg in (plus, minus)]
     missing += sorted({cover.missing for cover in covers if cover.missing})
     uncovered = [cover.uncovered_mm for cover in covers if cover.uncovered_mm is not None]
     return PairGeometry(
@@ -66,8 +72,18 @@ def measure_link(
         loop_area_mm2=area.total_mm2,
         net_loop_area_mm2=area.net_mm2,
         reference_uncovered_mm=math.fsum(uncovered) if len(uncovered) == len(covers) else None,
+        cover_plus=covers[0],
+        cover_minus=covers[1],
+        neighbours_plus=_beside(copper, link, plus, reach) if beside else None,
+        neighbours_minus=_beside(copper, link, minus, reach) if beside else None,
         missing=tuple(missing),
     )
+
+
+def _beside(copper: BoardCopper, link: Link, leg: LegRoute, reach_mm: float) -> NeighbourProfile:
+    own = tuple(sorted({hop.net for hop in (*link.hops_plus, *link.hops_minus)}))
+    within = max(reach_mm, LEAST_BESIDE_MM)
+    return neighbours(leg.pieces, copper.board, own, within, copper=copper.foreign)
 
 
 def _broken(

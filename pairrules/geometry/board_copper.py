@@ -1,0 +1,39 @@
+"""A board's copper in the forms that measuring needs, each made once when it is first asked for."""
+
+from __future__ import annotations
+
+from functools import cached_property
+
+from pairrules.board.board import Board
+from pairrules.geometry.copper_index import CopperIndex, index_copper
+from pairrules.geometry.cross_cut import CrossCuts
+from pairrules.geometry.foreign_copper import ForeignCopper
+from pairrules.geometry.reference_copper import ReferenceCopper
+
+
+class BoardCopper:
+    """One board, with its reference nets (indices into `Board.nets`), ready to be measured link after link."""
+
+    def __init__(self, board: Board, reference: tuple[int, ...]) -> None:
+        self.board = board
+        self.reference_nets = tuple(sorted(set(reference)))
+
+    @cached_property
+    def index(self) -> CopperIndex:
+        """Which copper belongs to which net."""
+        return index_copper(self.board)
+
+    @cached_property
+    def reference(self) -> ReferenceCopper:
+        """Copper of the reference nets, by layer."""
+        return ReferenceCopper(self.board, self.reference_nets)
+
+    @cached_property
+    def foreign(self) -> ForeignCopper:
+        """Copper of all nets, among which neighbours are found."""
+        return ForeignCopper(self.board)
+
+    @cached_property
+    def cuts(self) -> CrossCuts:
+        """What a straight cut across the board meets."""
+        return CrossCuts(self.board)
