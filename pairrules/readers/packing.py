@@ -1,8 +1,10 @@
-"""Packed board files: gzip and zip, told by their first bytes, opened within bounds that a hostile archive cannot pass."""
+"""Packed board files: gzip and zip, told by their first bytes, opened within bounds no hostile archive can pass."""
 
 from __future__ import annotations
 
 import io
+import lzma
+import struct
 import zipfile
 import zlib
 from collections.abc import Callable, Iterable
@@ -17,6 +19,22 @@ MOST_RATIO = 1000
 
 _SMALL_BYTES = 1024**2
 """Below this size no ratio is asked: a tiny file of blanks harms nobody."""
+
+_MOST_MEMBERS = 1000
+"""Members that are looked into for a board."""
+
+_ZIP_FAULTS = (
+    zipfile.BadZipFile,
+    zlib.error,
+    lzma.LZMAError,
+    struct.error,
+    EOFError,
+    NotImplementedError,
+    RuntimeError,
+    ValueError,
+    OSError,
+)
+"""What the standard library raises for damaged, locked or strangely packed members."""
 
 _CHUNK = 1024**2
 _BOARD_NAMES = (".xml", ".cvg", ".json")
@@ -76,7 +94,7 @@ def _from_zip(data: bytes, name: str) -> tuple[bytes, str]:
                 )
             label = f"{name}: {_shown(chosen.filename)}"
             plain = _member(archive, chosen, name, None)
-    except (zipfile.BadZipFile, zlib.error, EOFError, NotImplementedError, RuntimeError, ValueError, OSError) as error:
+    except _ZIP_FAULTS as error:
         locked = "encrypted" in str(error)
         raise _broken(name, "the zip archive is locked" if locked else "the zip archive is damaged") from None
     if not plain:
@@ -91,7 +109,8 @@ def _choose(
     named = [member for member in members if member.filename.lower().endswith(_BOARD_NAMES)]
     if len(named) == 1:
         return named[0]
-    return next((member for member in named or members if _looks_like_board(head(member, _HEAD))), None)
+    candidates = (named or members)[:_MOST_MEMBERS]
+    return next((member for member in candidates if _looks_like_board(head(member, _HEAD))), None)
 
 
 def _looks_like_board(start: bytes) -> bool:

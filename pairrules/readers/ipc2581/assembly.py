@@ -7,7 +7,7 @@ import numpy as np
 from pairrules.board import Area, Board, Pads, PadShape, Tracks, Vias
 from pairrules.board.columns import Floats
 from pairrules.errors import BoardError
-from pairrules.readers.ipc2581 import polarity
+from pairrules.readers.ipc2581 import mirrors, polarity
 from pairrules.readers.ipc2581.completeness import complete
 from pairrules.readers.ipc2581.copper import Copper, FillRow
 from pairrules.readers.ipc2581.file_content import FileContent, Step
@@ -30,6 +30,7 @@ def assemble(content: FileContent, wanted: str) -> Board:
         remarks.count(sentence, count)
     copper = step.copper
     name_unnamed(copper, step.nets)
+    mirrors.settle(copper, step.parts, remarks)
     place_pins(copper, step.parts, step.nets, content.table)
     negatives = polarity.negative_layers(copper, content.table.copper, remarks)
     polarity.invert(copper, negatives, step.profile, remarks)

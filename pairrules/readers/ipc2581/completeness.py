@@ -20,6 +20,9 @@ def complete(content: FileContent, step: Step, names: tuple[str, ...], remarks: 
     absent = _drilled_but_absent(content.table, remarks)
     absent = _counted_but_absent(content, names, remarks) or absent
     absent = _named_but_absent(content.table, remarks) or absent
+    for name in dict.fromkeys(content.listed):
+        if name and name not in content.table.layers:
+            remarks.count(f"the list of contents names layer {name}, which is not in the file")
     absent = _declared_but_bare(step, names, remarks) or absent
     if "ASSEMBLY" in content.modes:
         remarks.count("the file was written for assembly, which may leave inner copper layers out")

@@ -130,6 +130,11 @@ class Copper:
         """Whether anything is drawn or drilled."""
         return bool(self.tracks or self.areas or self.pads or self.holes)
 
+    @property
+    def size(self) -> int:
+        """Pieces drawn so far."""
+        return len(self.tracks) + len(self.areas) + len(self.erasures)
+
     def draw(self, items: tuple[Item, ...], layer: str, net: str) -> int:
         """Take in strokes and fills on a layer. Returns: pieces without length that were left out."""
         order = self.next()

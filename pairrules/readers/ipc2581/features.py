@@ -9,7 +9,7 @@ from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, 
 from pairrules.readers.ipc2581.elements import child, children, length, local, size, truth, word, wrong
 from pairrules.readers.ipc2581.primitives import Primitive, hollow, outer_pad, polygon_pad, primitive
 from pairrules.readers.ipc2581.remarks import Remarks
-from pairrules.readers.ipc2581.transform import IDENTITY, Plane, xform
+from pairrules.readers.ipc2581.transform import IDENTITY, Plane, Transform, xform
 
 if TYPE_CHECKING:
     from lxml.etree import _Element as Element
@@ -89,6 +89,13 @@ class Shapes:
         polygon = child(element, "Polygon")
         return "FILL" if polygon is None else self.filling(polygon)
 
+    def placement(self, element: Element | None, factor: float) -> Transform:
+        """The placement of an `Xform`, remarked upon where the standard leaves room for another reading."""
+        by = xform(element, factor)
+        if by.shift and (by.flip or by.turn != 1):
+            self.remarks.count("{n} placement{s} {are} read as turned first and then moved by the offset")
+        return by
+
     # -- shapes -------------------------------------------------------------------------------------------------------
 
     def shape(self, element: Element, factor: float, default: Line | None = None) -> Primitive | None:
@@ -99,7 +106,7 @@ class Shapes:
         turned = child(element, "Xform")
         if turned is None or local(element) == "Text":
             return found
-        by = xform(turned, factor)
+        by = self.placement(turned, factor)
         if by == IDENTITY:
             return found
         moved = placed(found.items, by)
@@ -122,6 +129,8 @@ class Shapes:
             return self._filled(element, self._contour(element, tag, factor), factor, default)
         if tag == "UserSpecial":
             return self._special(element, factor, default)
+        if tag in {"Hexagon", "Octagon"}:
+            self.remarks.count("{n} hexagon{s} or octagon{s} {are} read with the length from corner to corner")
         found = primitive(element, factor)
         return None if found is None else self._filled(element, found, factor, default)
 

@@ -45,6 +45,7 @@ class FileContent:
     units: str = ""
     factor: float = 0.0
     modes: list[str] = field(default_factory=list)
+    listed: list[str] = field(default_factory=list)
     remarks: Remarks = field(default_factory=Remarks)
     table: LayerTable = field(default_factory=LayerTable)
     values: dict[str, str] = field(default_factory=dict)
@@ -133,6 +134,8 @@ class _Walk:
             "FunctionMode": lambda element: content.modes.append(word(element, "mode").upper()),
             "Step": self._open_step,
             "StepRepeat": self._repeat,
+            "LayerRef": lambda element: content.listed.append(word(element, "name")),
+            "NetShort": lambda _: self._net_short(),
             "LayerFeature": self._open_layer,
             "Route": self._open_route,
         }
@@ -224,6 +227,10 @@ class _Walk:
     def _repeat(self, element: Element) -> None:
         if self.step is not None:
             self.step.repeats.append(word(element, "stepRef"))
+
+    def _net_short(self) -> None:
+        if self.step is not None:
+            self.step.remarks.count("{n} joint{s} of nets {are} declared; the nets are kept apart")
 
     def _open_layer(self, element: Element) -> None:
         self.layer = word(element, "layerRef")

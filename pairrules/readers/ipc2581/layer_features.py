@@ -7,17 +7,20 @@ from typing import TYPE_CHECKING
 
 from pairrules.readers.ipc2581.copper import Copper, HoleRow, PadRow, StackDefinition
 from pairrules.readers.ipc2581.drawing import Item, erasing, placed
-from pairrules.readers.ipc2581.elements import NO_NET, child, children, length, line, size, word
+from pairrules.readers.ipc2581.elements import NO_NET, child, children, length, line, size, word, wrong
 from pairrules.readers.ipc2581.features import STYLES, Line, Shapes
 from pairrules.readers.ipc2581.layers import DRILLED, FileLayer, LayerTable
 from pairrules.readers.ipc2581.primitives import Primitive, outer_pad
 from pairrules.readers.ipc2581.remarks import Remarks
-from pairrules.readers.ipc2581.transform import Transform, location, xform
+from pairrules.readers.ipc2581.transform import Transform, location
 
 if TYPE_CHECKING:
     from lxml.etree import _Element as Element
 
 FIDUCIALS = {"BadBoardMark", "GlobalFiducial", "GoodPanelMark", "LocalFiducial", "Fiducial"}
+MOST_PIECES = 5_000_000
+"""Pieces of copper one board may draw; a small file that repeats a shape without end would fill the memory."""
+
 _SILENT = {*STYLES, "SpecRef", "LineDescGroup", "ColorGroup"}
 
 
@@ -71,7 +74,7 @@ class SetReader:
     # -- features -----------------------------------------------------------------------------------------------------
 
     def _features(self, element: Element, layer: str, net: str, style: Line | None, *, erase: bool) -> None:
-        turned = xform(child(element, "Xform"), self.factor)
+        turned = self.shapes.placement(child(element, "Xform"), self.factor)
         places: list[complex] = []
         drawn = []
         for tag, inner in children(element):
@@ -91,6 +94,8 @@ class SetReader:
                 items = placed(shape.items, by)
                 dropped = self.copper.draw(erasing(items) if erase else items, layer, net)
                 self.remarks.count("{n} line piece{s} without length {are} left out", dropped)
+                if self.copper.size > MOST_PIECES:
+                    wrong(element, f"the board draws more than {MOST_PIECES} pieces")
 
     # -- pads ---------------------------------------------------------------------------------------------------------
 
@@ -106,7 +111,7 @@ class SetReader:
         by, shape, pins = Transform(), None, []
         for tag, inner in children(element):
             if tag == "Xform":
-                by = xform(inner, self.factor).then(by)
+                by = self.shapes.placement(inner, self.factor).then(by)
             elif tag == "Location":
                 by = by.then(Transform(shift=location(inner, self.factor)))
             elif tag == "PinRef":
@@ -151,7 +156,7 @@ class SetReader:
         items: list[Item] = []
         for tag, inner in children(element):
             if tag == "Xform":
-                by = xform(inner, self.factor)
+                by = self.shapes.placement(inner, self.factor)
             elif tag == "Location":
                 places.append(location(inner, self.factor))
             elif tag in _SILENT | {"Span", "MaterialCut", "MaterialLeft", "Z_AxisDim"}:

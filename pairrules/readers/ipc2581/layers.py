@@ -202,7 +202,7 @@ def build_stackup(table: LayerTable, remarks: Remarks) -> Stackup:
     stacked = [layer for group in table.groups or [] for layer in group]
     layers: list[Layer] = []
     for row in stacked:
-        layer = _stack_row(row, table)
+        layer = _stack_row(row, table, remarks)
         if layer is not None and layer.name not in {other.name for other in layers}:
             layers.append(layer)
     copper = [layer.name for layer in layers if layer.kind == "copper"]
@@ -219,7 +219,7 @@ def _by_side(layers: list[FileLayer]) -> list[FileLayer]:
     return sorted(layers, key=lambda layer: {"TOP": 0, "BOTTOM": 2}.get(layer.side, 1))
 
 
-def _stack_row(row: StackedLayer, table: LayerTable) -> Layer | None:
+def _stack_row(row: StackedLayer, table: LayerTable, remarks: Remarks) -> Layer | None:
     """A row of the stackup as a layer; `None` where it is neither copper nor dielectric, or not declared."""
     declared = table.layers.get(row.name)
     if declared is None:
@@ -231,6 +231,8 @@ def _stack_row(row: StackedLayer, table: LayerTable) -> Layer | None:
     else:
         return None
     material = row.material
+    if material.permittivity is not None:
+        remarks.count("layer_dielectric, which revision A does not define, is read as the relative permittivity")
     for name in (*row.specs, *declared.specs):
         material = material.over(table.specs.get(name, Material()))
     told = kind == "dielectric"

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass, replace
 
+from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.copper import Copper, HoleRow, PadRow
 from pairrules.readers.ipc2581.layers import FileLayer, LayerTable
 from pairrules.readers.ipc2581.nets import Nets
@@ -13,6 +14,9 @@ from pairrules.readers.ipc2581.places import Places
 from pairrules.readers.ipc2581.remarks import Remarks
 
 ALL_LAYERS = -1
+
+MOST_PINS = 5_000_000
+"""Pins one board may have; many parts of one huge package would keep a small file busy without end."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,10 +45,14 @@ def place_pins(copper: Copper, parts: Parts, nets: Nets, table: LayerTable) -> N
     """Give pins to pads that name none, and pads to pins that have none, by package and placement of their part."""
     known = {(pad.ref, pad.pin) for pad in copper.pads if pad.pin}
     loose: Places[PadRow] = Places()
+    asked = 0
     for pad in copper.pads:
         if not pad.pin and not pad.via:
             loose.put(pad.at, pad)
     for component in parts.components.values():
+        asked += len(parts.packages.get(component.package, {}))
+        if asked > MOST_PINS:
+            raise BoardError(f"the parts have more than {MOST_PINS} pins", remedy="export the file again")
         for pin, package_pin in parts.packages.get(component.package, {}).items():
             if (component.ref, pin) in known:
                 continue
