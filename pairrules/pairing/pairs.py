@@ -175,7 +175,10 @@ def _borne_out(wiring: Wiring, barred: frozenset[int], reading: Reading, plus: i
     if reading.pattern.startswith("H/L") and not reading.sure and is_high_low_word(word):
         return False
     needed = 2 if is_control_word(word) else 0 if reading.sure else 1
-    return needed == 0 or len(_reached(wiring, barred, plus) & _reached(wiring, barred, minus)) >= needed
+    if not needed:
+        return True
+    common = _reached(wiring, barred | {minus}, plus) & _reached(wiring, barred | {plus}, minus)
+    return len(common) >= needed
 
 
 def _reached(wiring: Wiring, barred: frozenset[int], net: int) -> set[int]:

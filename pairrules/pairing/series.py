@@ -10,6 +10,7 @@ import numpy as np
 
 from pairrules.board.board import Board
 from pairrules.board.columns import Bools
+from pairrules.pairing.natural_order import natural_key
 from pairrules.pairing.net_roles import is_supply_name
 from pairrules.pairing.pairs import NetPair
 from pairrules.pairing.wiring import Wiring
@@ -170,7 +171,7 @@ def _wound(site: Site, node: tuple[int, int], barred: Collection[int]) -> tuple[
 def _choke(site: Site, part: int, node: tuple[int, int]) -> tuple[int, int] | None:
     """The nets behind a part of four pins on four nets.
 
-    Which winding is whose: by polarity where the nets have one, else by what the names share, else the nearer pad.
+    Which winding is whose: by polarity where the nets have one, else by what the names share, else the nearer pad, else the pins' order.
     """
     rest = [net for net in site.wiring.nets_of(part) if net not in node]
     if len(rest) != 2:
@@ -183,7 +184,12 @@ def _choke(site: Site, part: int, node: tuple[int, int]) -> tuple[int, int] | No
     if likeness:
         return (x, y) if likeness > 0 else (y, x)
     straight, crossed = (_apart(site, part, node, to) for to in ((x, y), (y, x)))
-    return (x, y) if straight <= crossed else (y, x)
+    if straight == crossed:
+        # Decided by the pins, not the nets' order, so that legs called the other way round run the same way.
+        rows = [[site.wiring.pads_at(part, net)[0] for net in nets] for nets in (node, (x, y))]
+        first, second = ([natural_key(site.board.pads.pin[row]) for row in leg] for leg in rows)
+        return (x, y) if (first[0] <= first[1]) == (second[0] <= second[1]) else (y, x)
+    return (x, y) if straight < crossed else (y, x)
 
 
 def _array(site: Site, part: int, node: tuple[int, int]) -> tuple[int, int] | None:

@@ -21,9 +21,9 @@ def board(
 ) -> Board:
     """A board of one layer.
 
-    `parts`: designator to the nets of its pins 1, 2, ... ("" for none). `extra`: nets with nothing on them. `tracks`: nets
-    with a track only. `areas`: net to the side of a square of its copper [mm]. `at`: where pin 1 of a part lies; pins follow
-    1 mm apart in x. Parts not named there stand in rows 10 mm apart.
+    `parts`: designator to the nets of its pins 1, 2, ... ("" for none). `extra`: nets with nothing on them.
+    `tracks`: nets with a track only. `areas`: net to the side of a square of its copper [mm]. `at`: where pin 1 of a part
+    lies; pins follow 1 mm apart in x. Parts not named there stand in rows 10 mm apart.
     """
     pins = {ref: list(nets) for ref, nets in parts.items()}
     names = {net for nets in pins.values() for net in nets if net} | {*extra, *tracks, *(areas or {})}
