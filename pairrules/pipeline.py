@@ -15,9 +15,8 @@ from pairrules.checks.judge_pair import judge_pair, verdict
 from pairrules.checks.measures import geometric_measures
 from pairrules.checks.rule import Subject, all_rules
 from pairrules.errors import BoardError, SettingsError, UsageError
-from pairrules.geometry.copper_index import index_copper
+from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.measure import measure_link
-from pairrules.geometry.reference_copper import ReferenceCopper
 from pairrules.pairing.find_links import PairRequest, find_links
 from pairrules.pairing.link import Link
 from pairrules.pairing.reference_nets import reference_nets
@@ -54,14 +53,14 @@ def check(
     """
     opened = _open(path, settings, pairs=pairs, step=step)
     rules, board = all_rules(), opened.board
-    index, copper = index_copper(board), ReferenceCopper(board, opened.reference)
+    copper = BoardCopper(board, opened.reference)
     results = []
     for done, link in enumerate(opened.links):
         if progress is not None:
             progress("measuring pairs", done, len(opened.links))
         klass = opened.settings.class_of(link.name, _net_names(board, link), link.klass)
         reach = None if klass is None else klass.reach_mm
-        geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference, index=index, copper=copper)
+        geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference, copper=copper)
         measures = geometric_measures(geometry)
         breakout = 0.0 if klass is None else klass.breakout_mm or 0.0
         subject = Subject(board=board, link=link, geometry=geometry, measures=measures, breakout_mm=breakout)

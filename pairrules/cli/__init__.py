@@ -78,10 +78,12 @@ def group() -> None:
 def run(arguments: Sequence[str] | None = None) -> int:
     """Run the command line and return its exit status; errors a user can mend become one line each on stderr."""
     try:
-        status = group.main(
-            args=None if arguments is None else list(arguments), prog_name="pairrules", standalone_mode=False
-        )
+        # Not `group.main`, which takes a reader that has gone away for an exit status of 1.
+        with group.make_context("pairrules", list(sys.argv[1:] if arguments is None else arguments)) as ctx:
+            group.invoke(ctx)
         sys.stdout.flush()
+    except click.exceptions.Exit as end:
+        return _ended(end.exit_code)
     except click.exceptions.NoArgsIsHelpError as error:
         click.echo(error.format_message(), err=True)
         return 2
@@ -96,10 +98,22 @@ def run(arguments: Sequence[str] | None = None) -> int:
         click.echo("pairrules: interrupted, nothing more is written", err=True)
         return INTERRUPTED
     except BrokenPipeError:
-        # The reader has gone; without this the interpreter would complain when it flushes at exit.
-        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-        return BROKEN_PIPE
-    return status if isinstance(status, int) else 0
+        return _reader_gone()
+    return 0
+
+
+def _ended(status: int) -> int:
+    try:
+        sys.stdout.flush()
+    except BrokenPipeError:
+        return _reader_gone()
+    return status
+
+
+def _reader_gone() -> int:
+    """Without this the interpreter would complain when it flushes at exit."""
+    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+    return BROKEN_PIPE
 
 
 def main() -> None:
@@ -109,5 +123,5 @@ def main() -> None:
 
 def _usage_line(error: click.ClickException) -> str:
     command = error.ctx.command_path if isinstance(error, click.UsageError) and error.ctx is not None else "pairrules"
-    said = " ".join(error.format_message().split()).rstrip(".")
+    said = " ".join(error.format_message().split()).rstrip(".?")
     return f"{command}: {said[:1].lower()}{said[1:]}; see `{command} --help`"
