@@ -106,19 +106,37 @@ def enters(curves: Curves, edges: Floats, t: Floats, side: Ints) -> Bools:
     return inward
 
 
-def nearest_facing(curves: Curves, lengths: Floats, edges: Floats, faces: Facing, cuts: Floats) -> Nearest:
-    """The nearest edge on each side of each curve, in stretches over which it is the same; `cuts` are further places.
+def nearest_facing(curves: Curves, lengths: Floats, edges: Floats, faces: Facing) -> Nearest:
+    """The nearest edge on each side of each curve, in stretches over which it is the same.
 
     edges: rows that `faces.edge` counts.
     """
-    rows = 2.0 * np.arange(len(curves))
-    extra = np.array(cuts, dtype=np.float64)
+    rows: Floats = 2.0 * np.arange(len(curves), dtype=np.float64)
+    extra: Floats = np.empty(0)
     for _ in range(_ROUNDS):
         found, more = _round(curves, lengths, edges, faces, rows, extra)
         if not len(more):
             break
         extra = np.concatenate([extra, more])
     return found
+
+
+def cut_further(curves: Curves, edges: Floats, found: Nearest, places: Floats) -> Nearest:
+    """The same stretches, cut at further places too."""
+    begin = np.unique(np.concatenate([found.begin, places]))
+    parent = np.searchsorted(found.begin, begin, side="right") - 1
+    end = found.end[parent]
+    within = np.flatnonzero(parent[1:] == parent[:-1])
+    end[within] = begin[within + 1]
+    row = (begin / 2).astype(np.int64)
+    edge = found.edge[parent]
+    at = np.full((2, len(begin), 2), np.nan)
+    for side in (0, 1):
+        met = np.flatnonzero(edge[:, side] >= 0)
+        of, to = curves.take(row[met]), edges[edge[met, side]]
+        for place, t in enumerate((begin, end)):
+            at[place, met, side] = np.abs(distance_along(of, to, t[met] - 2 * row[met]))
+    return Nearest(begin=begin, end=end, edge=edge, at_begin=at[0], at_end=at[1])
 
 
 def _round(

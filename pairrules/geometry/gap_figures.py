@@ -63,8 +63,8 @@ def gap_figures(profile: SpacingProfile) -> GapFigures:
     """
     use = np.flatnonzero(profile.coupled)
     length = (profile.s_to - profile.s_from)[use]
-    size = math.fsum(length)
-    if not len(use) or size <= 0:
+    size = coupled_length(profile)
+    if size <= 0:
         return GapFigures(least=None, median=None, greatest=None, coupled_mm=0.0)
     start, middle, end = profile.gap_from[use], profile.gap_mid[use], profile.gap_to[use]
     slope, bend = 4 * middle - 3 * start - end, 2 * (start + end) - 4 * middle
@@ -78,16 +78,23 @@ def gap_figures(profile: SpacingProfile) -> GapFigures:
         share = np.where(flat, gap >= (least + greatest) / 2, _share_below(start - gap, slope, bend))
         return float(share @ length)
 
-    def reaching(part: float) -> float:
-        left, right = float(least.min()), float(greatest.max())
-        for _ in range(70):
+    def reaching(part: float, left: float) -> float:
+        right = float(greatest.max())
+        while right - left > _SAME_MM / 10:
             half = (left + right) / 2
             left, right = (left, half) if below(half) >= part else (half, right)
         return right
 
-    # Where exactly half the length lies below a step, the middle of the step.
-    median = (reaching(size / 2 * (1 - 1e-12)) + reaching(size / 2 * (1 + 1e-12))) / 2
+    median = reaching(size / 2 * (1 - 1e-12), float(least.min()) - _SAME_MM)
+    if below(median + _SAME_MM) < size / 2 * (1 + 1e-12):
+        # Exactly half the length lies below a step: the middle of the step.
+        median = (median + reaching(size / 2 * (1 + 1e-12), median)) / 2
     return GapFigures(least=float(least.min()), median=median, greatest=float(greatest.max()), coupled_mm=size)
+
+
+def coupled_length(profile: SpacingProfile) -> float:
+    """Length [mm] over which the other leg runs beside this one."""
+    return math.fsum((profile.s_to - profile.s_from)[profile.coupled])
 
 
 def _share_below(c: Floats, b: Floats, a: Floats) -> Floats:

@@ -7,7 +7,7 @@ import math
 from pairrules.board.board import Board
 from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.copper_index import CopperIndex
-from pairrules.geometry.gap_figures import gap_figures
+from pairrules.geometry.gap_figures import coupled_length, gap_figures
 from pairrules.geometry.leg_route import Break, leg_route
 from pairrules.geometry.loop_area import loop_area
 from pairrules.geometry.neighbours import NeighbourProfile, neighbours
@@ -49,10 +49,7 @@ def measure_link(
         missing.append("the stackup's thicknesses are unknown, so the barrels of its vias are left out of the lengths")
     profile_plus, profile_minus, reach = spacing_profiles(plus.pieces, minus.pieces, reach_mm)
     gaps = gap_figures(profile_plus)
-    apart = [
-        leg.track_mm - gap_figures(profile).coupled_mm
-        for leg, profile in ((plus, profile_plus), (minus, profile_minus))
-    ]
+    apart = [leg.track_mm - coupled_length(profile) for leg, profile in ((plus, profile_plus), (minus, profile_minus))]
     area = loop_area(plus.pieces, minus.pieces)
     covers = [reference_cover(leg.pieces, board, copper.reference) for leg in (plus, minus)]
     missing += sorted({cover.missing for cover in covers if cover.missing})

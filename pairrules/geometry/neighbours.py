@@ -11,7 +11,7 @@ from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints, freeze
 from pairrules.geometry.copper_outlines import centre_lines
 from pairrules.geometry.curves import Curves, parts
-from pairrules.geometry.facing_edges import Facing, Nearest, enters, facing, nearest_facing
+from pairrules.geometry.facing_edges import Facing, Nearest, cut_further, enters, facing, nearest_facing
 from pairrules.geometry.foreign_copper import ForeignCopper
 from pairrules.geometry.pair_geometry import TRACK, Pieces
 
@@ -99,14 +99,12 @@ def neighbours(
     which, edges, net = _edges_near(copper, curves, layer, within_mm + half, own_nets)
     faces = facing(curves.take(which), length[which], edges, (within_mm + half)[which])
     faces = Facing(row=which[faces.row], edge=faces.edge, begin=faces.begin, end=faces.end, side=faces.side)
-    cuts = np.empty(0)
-    found = nearest_facing(curves, length, edges, faces, cuts)
+    found = nearest_facing(curves, length, edges, faces)
     for _ in range(_ROUNDS):
         more = _steps(found, half)
         if not len(more):
             break
-        cuts = np.concatenate([cuts, more])
-        found = nearest_facing(curves, length, edges, faces, cuts)
+        found = cut_further(curves, edges, found, more)
 
     track = (found.begin / 2).astype(np.int64)
     gaps = [np.maximum(at - half[track, None], 0.0) for at in (found.at_begin, found.at_end)]
@@ -187,16 +185,22 @@ def _gap(scale: Floats) -> Floats:
 
 
 def _opens(track: Ints, nets: Ints, low: Floats, high: Floats) -> Ints:
-    """First row of each stretch: neighbours in a row are one while net and gap stay."""
+    """First row of each stretch: rows that follow one another are one while piece, nets and gaps stay.
+
+    low, high: smallest and greatest gap of each row on either side, on `_scale`; NaN for no neighbour.
+    """
     opens = []
-    since: tuple[object, ...] = ()
-    least = most = np.empty(0)
-    for row in range(len(track)):
-        key = (int(track[row]), *nets[row].tolist(), *np.isnan(low[row]).tolist())
-        down, up = (low[row], high[row]) if key != since else (np.fmin(least, low[row]), np.fmax(most, high[row]))
-        if key != since or np.nanmax(np.append(up - down, 0.0)) > 1 + 1e-6:
-            opens.append(row)
-            since, least, most = key, low[row], high[row]
+    none = np.isnan(low)
+    keys = np.column_stack([track, nets, none]).tolist()
+    lows, highs = np.where(none, 0.0, low).tolist(), np.where(none, 0.0, high).tolist()
+    since: list[int] = []
+    down = up = (0.0, 0.0)
+    for row, (key, new_low, new_high) in enumerate(zip(keys, lows, highs, strict=True)):
+        wide_down = (min(down[0], new_low[0]), min(down[1], new_low[1]))
+        wide_up = (max(up[0], new_high[0]), max(up[1], new_high[1]))
+        if key == since and max(wide_up[0] - wide_down[0], wide_up[1] - wide_down[1]) <= 1 + 1e-6:
+            down, up = wide_down, wide_up
         else:
-            least, most = down, up
+            opens.append(row)
+            since, down, up = key, tuple(new_low), tuple(new_high)
     return np.array(opens, dtype=np.int64)

@@ -23,7 +23,7 @@ REACH_GAPS = 4.0
 """Reach is this many times the pair's usual gap, and never less than `LEAST_REACH_MM`."""
 
 _STEP_MM = 0.1
-_CUT = 1e-11
+_CUT = 1e-10
 _FLAT_MM = 1e-7
 _NOTHING_MM = 1e-9
 
@@ -33,17 +33,19 @@ def spacing_profiles(
 ) -> tuple[SpacingProfile, SpacingProfile, float]:
     """The profile of each leg, and the reach [mm] both use: the given one, else four times plus's usual gap."""
     if reach_mm is None:
-        usual = usual_gap(_profile(plus, minus, math.inf))
+        usual = usual_gap(_profile(plus, minus, math.inf, exact=False))
         reach_mm = max(LEAST_REACH_MM, REACH_GAPS * usual) if usual is not None else LEAST_REACH_MM
     return _profile(plus, minus, reach_mm), _profile(minus, plus, reach_mm), reach_mm
 
 
-def _profile(own: Pieces, other: Pieces, reach: float) -> SpacingProfile:
+def _profile(own: Pieces, other: Pieces, reach: float, *, exact: bool = True) -> SpacingProfile:
+    """The profile; not exact, its cuts lie at the nearest samples, which is enough to see which gap lasts longest."""
     rows = np.flatnonzero(own.kind == TRACK)
     short, origin, t0, t1 = _short_pieces(own, rows)
     search = NearestTrack(short, other, np.arange(len(short)), reach)
     piece, t = _samples(short, other, *search.pairs())
-    piece, t = _with_cuts(search, piece, t)
+    if exact:
+        piece, t = _with_cuts(search, piece, t)
     return _stretches(own, origin, t0, t1, search, piece, t)
 
 
@@ -100,7 +102,7 @@ def _samples(own: Pieces, other: Pieces, pair_own: Ints, pair_other: Ints) -> tu
 
 
 def _with_cuts(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints, Floats]:
-    """Further points at every change of what is nearest, found by bisection to 1e-11 of the piece.
+    """Further points at every change of what is nearest, found by bisection to 1e-10 of the piece.
 
     A change is bracketed by two points, one on each side, so that a stretch between brackets has one nearest feature.
     """
