@@ -60,7 +60,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     if where is not None and share >= abs(mismatch) / 2:
         advice += f", best at {spot(subject.board, where)} where most of the difference arises"
     else:
-        advice += f", or take detours out of {longer}: the difference adds up along the whole way"
+        advice += f", or take detours out of {longer}: no single place makes half of the difference"
     return (
         Finding(
             rule=limit.rule,

@@ -62,7 +62,7 @@ def test_every_rule_has_a_pass_a_flag_and_an_undecided(name: str) -> None:
 @pytest.mark.parametrize("name", sorted(all_rules()))
 def test_every_rule_says_what_it_is(name: str) -> None:
     module = __import__(f"pairrules.checks.{name.replace('-', '_')}", fromlist=["RULE"])
-    lines = module.__doc__.splitlines()
+    lines = str(module.__doc__).splitlines()
     assert lines[0].endswith(".") and len(lines[0]) < 100
     assert [line for line in lines if line in PARTS] == list(PARTS)
     for first, part in enumerate(lines):

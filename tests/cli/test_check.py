@@ -195,6 +195,14 @@ def test_wrong_usage_is_one_line_and_2(capsys: pytest.CaptureFixture[str], argum
     assert capsys.readouterr() == ("", line + "\n")
 
 
+def test_the_demo_board_is_checked_with_its_own_settings(capsys: pytest.CaptureFixture[str]) -> None:
+    assert run(["check", "--demo", "--format", "json"]) == 1
+    plain = json.loads(capsys.readouterr().out)
+    assert plain["board"]["file"] == "tide-gauge-buoy.json"
+    assert plain["summary"]["flag"] > 0 and plain["summary"]["pass"] > 0
+    assert {pair["class"] for pair in plain["pairs"]} > {"rs485", "usb"}
+
+
 def test_a_pattern_that_matches_nothing(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     path = put(tmp_path)
     assert run(["check", "--pair", "NO*", str(path)]) == 2
