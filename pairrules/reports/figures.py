@@ -1,4 +1,4 @@
-"""The figures of a pair in the order of the result, each with a short name, its unit and how many decimals are shown."""
+"""The figures of a pair in the order of the result, each with a short name, its unit and the decimals shown."""
 
 from __future__ import annotations
 
