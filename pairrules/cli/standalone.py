@@ -75,7 +75,12 @@ class _Sections:
         if pair is None or pair["L_nH_per_m"] is None:
             reasons = answer.get("why_null", {})
             why = reasons.get("pair") or reasons.get("pair.L_nH_per_m") or "it is no pair over a reference"
-            raise UsageError(f"a link cannot run through this section: {why}", file=self.name, place=place)
+            raise UsageError(
+                f"a link cannot run through this section: {why}",
+                file=self.name,
+                place=place,
+                remedy="name a section with two signals and a reference",
+            )
         return section_matrices(pair)
 
 
@@ -114,9 +119,8 @@ def _refuse_constant(text: str) -> float:
 def _kind(item: object, name: str, place: str) -> str:
     kinds = [kind for kind in (SECTION, LINK) if isinstance(item, dict) and kind in item]
     if len(kinds) != 1:
-        found = "both" if kinds else "neither"
         raise UsageError(
-            f"{found} of {SECTION} and {LINK} is given" if not kinds else f"both {SECTION} and {LINK} are given",
+            f"both {SECTION} and {LINK} are given" if kinds else f"neither of {SECTION} and {LINK} is given",
             file=name,
             place=place,
             remedy="give one of them with its version, 1",

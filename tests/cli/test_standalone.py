@@ -117,7 +117,8 @@ FAULTS = [
     (
         "[3]",
         ["link"],
-        "case.json: [0]: neither of pairrules_section and pairrules_link is given; give one of them with its version, 1",
+        "case.json: [0]: neither of pairrules_section and pairrules_link is given; "
+        "give one of them with its version, 1",
     ),
     (json.dumps(SECTION), ["link"], "case.json: pairrules_link is in no object; use `pairrules section` for this file"),
     (json.dumps(LINK), ["section"], "case.json: pairrules_section is in no object; use `pairrules link` for this file"),
@@ -134,8 +135,8 @@ FAULTS = [
     (
         json.dumps([{**SECTION, "conductors": SECTION["conductors"][:1]}, LINK]),
         ["link"],
-        "case.json: [0]: a link cannot run through this section: a pair needs two signal conductors; this section has 1; "
-        "name a section with two signals and a reference",
+        "case.json: [0]: a link cannot run through this section: a pair needs two signal conductors; "
+        "this section has 1; name a section with two signals and a reference",
     ),
 ]
 
