@@ -16,6 +16,7 @@ class PairSection:
     ----------
     leg: "both" where the legs run beside each other, else the leg that is alone here.
     plus_mm, minus_mm: (from, to) in track length from the source end; of equal ends where that leg has no part in it.
+    hop: how many parts in series lie between the source and it.
     layer: index into `Board.copper`. start, end: (x, y) [mm] on plus, or on the leg that is alone.
     width_plus_mm, width_minus_mm, gap_mm: NaN where they do not apply.
     C, L: per metre [F/m], [H/m], (2, 2) for both legs, (1, 1) for one. R: d.c. resistance per metre of each [ohm/m].
@@ -23,12 +24,12 @@ class PairSection:
     impedance_diff_ohm, impedance_common_ohm: of the pair; `None` for one leg.
     delay: of the odd mode, or of the leg alone [s/m].
     planes: copper layers whose copper bounds the section. neighbours: nets of copper beside it on its own layer.
-    assumed: what had to be assumed for this section alone, "" where nothing.
     """
 
     leg: str
     plus_mm: tuple[float, float]
     minus_mm: tuple[float, float]
+    hop: int
     layer: int
     start: tuple[float, float]
     end: tuple[float, float]
@@ -44,7 +45,6 @@ class PairSection:
     delay: float
     planes: tuple[int, ...]
     neighbours: tuple[int, ...]
-    assumed: str = ""
 
     @property
     def capacitance_tilt(self) -> float:

@@ -1,0 +1,104 @@
+"""A cross-section drawn from what a cut across the board met: the legs, copper beside them, planes, dielectrics."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+from pairrules.balance.stack_heights import Heights
+from pairrules.fields.cross_section import Conductor, CrossSection, Layer, Patch, Plane, Role
+
+Span = tuple[float, float]
+"""From and to [mm] across the pair."""
+
+GRID_MM = 0.0001
+"""Dimensions are rounded to this, so that the same section is solved once."""
+
+PLANE_HEIGHTS = 8.0
+"""A plane's edge farther from the legs than this many heights counts as nowhere."""
+
+NEAR_HEIGHTS = 4.0
+"""Copper beside the legs is drawn up to this many heights (to the nearest plane) away, and this wide at most."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Leg:
+    """A leg in the cut: its name, the place of its centre and its width [mm]."""
+
+    name: str
+    centre: float
+    width: float
+
+    @property
+    def span(self) -> Span:
+        """Its edges."""
+        return self.centre - self.width / 2, self.centre + self.width / 2
+
+
+def draw(
+    heights: Heights,
+    layer: int,
+    legs: tuple[Leg, ...],
+    beside: tuple[Span, ...],
+    planes: dict[int, tuple[Span, ...]],
+) -> CrossSection:
+    """The section.
+
+    Parameters
+    ----------
+    layer: index of the copper layer the legs run on. beside: foreign copper on it. planes: copper at 0 V by copper
+        layer, as stretches across the cut; (−inf, inf) for a whole plane.
+
+    Notes
+    -----
+    A plane stands as a sheet on the face that looks to the legs. Foreign copper on the legs' layer is at 0 V: a
+    neighbour net is taken as quiet and of low impedance. Mask lies in one thickness over laminate and copper.
+    """
+    low, high = heights.copper[layer]
+    drawn = [
+        Plane(
+            y=_grid(heights.copper[k][0] if k < layer else heights.copper[k][1]),
+            intervals=None if spans == ((-math.inf, math.inf),) else spans,
+        )
+        for k, spans in sorted(planes.items(), reverse=True)
+    ]
+    copper = [
+        *(_conductor(leg.name, "signal", leg.span, low, high) for leg in legs),
+        *(_conductor(f"beside {i + 1}", "grounded", span, low, high) for i, span in enumerate(beside)),
+    ]
+    layers = [_rounded(slab) for slab in heights.slabs]
+    patches: list[Patch] = []
+    for mask, outer, upward in ((heights.top, 0, True), (heights.bottom, len(heights.copper) - 1, False)):
+        if mask is None:
+            continue
+        base = heights.copper[outer][0 if upward else 1]
+        step = mask.thickness if upward else -mask.thickness
+        y0, y1 = sorted((base, base + step))
+        layers.append(Layer(y0=_grid(y0), y1=_grid(y1), er=mask.er, loss_tangent=mask.loss_tangent))
+        if layer == outer:
+            far = (high if upward else low) + step
+            for conductor in copper:
+                x0, x1 = conductor.x_range
+                box = _box((x0 - mask.thickness, x1 + mask.thickness), *sorted((base, far)))
+                patches.append(Patch(polygon=box, er=mask.er, loss_tangent=mask.loss_tangent))
+    return CrossSection(conductors=tuple(copper), layers=tuple(layers), patches=tuple(patches), planes=tuple(drawn))
+
+
+def _conductor(name: str, role: Role, span: Span, low: float, high: float) -> Conductor:
+    x0, x1 = _grid(span[0]), _grid(span[1])
+    if _grid(high) <= _grid(low):
+        return Conductor(name=name, role=role, strip=(x0, x1, _grid(low)))
+    return Conductor(name=name, role=role, polygon=_box((x0, x1), low, high))
+
+
+def _box(span: Span, low: float, high: float) -> tuple[tuple[float, float], ...]:
+    x0, x1, y0, y1 = (_grid(v) for v in (*span, low, high))
+    return ((x0, y0), (x1, y0), (x1, y1), (x0, y1))
+
+
+def _rounded(slab: Layer) -> Layer:
+    return Layer(y0=_grid(slab.y0), y1=_grid(slab.y1), er=slab.er, loss_tangent=slab.loss_tangent)
+
+
+def _grid(value: float) -> float:
+    return round(value / GRID_MM) * GRID_MM + 0.0
