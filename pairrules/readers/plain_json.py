@@ -30,6 +30,7 @@ LAYER_KINDS = ("copper", "dielectric")
 SIDES = ("top", "bottom")
 NET_KINDS = ("ground", "power", "signal")
 ALL_LAYERS = "all"
+_KINDS_TOLD = 20
 
 _BOARD = frozenset({
     "pairrules_board", "name", "units", "outline", "stackup", "parts", "tracks", "vias", "areas", "pairs", "nets",
@@ -340,9 +341,13 @@ class _Reading:
         return tuple(pairs)
 
     def _tell_of_unknown(self) -> None:
-        for kind, count in sorted(self.document.unknown.items()):
+        kinds = sorted(self.document.unknown.items())
+        for kind, count in kinds[:_KINDS_TOLD]:
             times = "" if count == 1 else f" ({count} times)"
             self.missing.append(f"{kind}{times} is not understood and was left out")
+        if len(kinds) > _KINDS_TOLD:
+            rest = len(kinds) - _KINDS_TOLD
+            self.missing.append(f"members of {rest} more names are not understood and were left out")
         if self.document.cleaned:
             texts = "text" if self.document.cleaned == 1 else "texts"
             self.missing.append(f"unprintable characters were taken out of {self.document.cleaned} {texts}")

@@ -235,6 +235,12 @@ def test_unknown_members_are_counted_by_kind() -> None:
     )
 
 
+def test_a_flood_of_unknown_members_is_told_in_short() -> None:
+    told = board(whole() | {f"x{number:02d}": 0 for number in range(25)}).missing
+    assert told[19] == "x19 is not understood and was left out"
+    assert told[20:] == ("members of 5 more names are not understood and were left out",)
+
+
 def test_stackup_without_figures() -> None:
     tree = whole()
     for layer in tree["stackup"]:
