@@ -151,6 +151,26 @@ def test_straight_neighbour_beside_a_bend_is_nearest_where_they_run_alike() -> N
     assert profile.s_to[met].max() == pytest.approx(2 * (math.pi / 2 + half), rel=1e-9)
 
 
+def test_neighbours_that_overlap_change_where_their_edges_cross() -> None:
+    rising = np.array([(0, 0.3), (10, 1.3), (10, 3), (0, 3)], dtype=np.float64)
+    falling = np.array([(0, 1.3), (10, 0.3), (10, 3), (0, 3)], dtype=np.float64)
+    areas = [Area(net=GND, layer=0, outline=rising), Area(net=PUMP, layer=0, outline=falling)]
+    profile = neighbours(leg((0, 0), (10, 0)), board(areas=areas), OWN, 5.0)
+    assert profile.s_to[profile.left_net == GND].max() == pytest.approx(5.0, rel=1e-9)
+    assert profile.s_from[profile.left_net == PUMP].min() == pytest.approx(5.0, rel=1e-9)
+    assert (profile.left_gap <= 0.7).all()
+
+
+def test_neighbour_at_the_seam_of_a_whole_turn_is_seen_at_both_ends() -> None:
+    turn = leg((2, 0), (2, 0), arcs={0: ((0.0, 0.0), 2 * math.pi)})
+    profile = neighbours(turn, board(areas=[box(GND, 0, 2.5, -0.5, 4, 0.5)]), OWN, 2.0)
+    met = profile.right_net == GND
+    half = 2 * math.atan2(0.5, 2.5)
+    assert profile.s_to[met].min() > 0
+    assert (profile.s_to - profile.s_from)[met & (profile.s_to < 5)].sum() == pytest.approx(half, rel=1e-9)
+    assert (profile.s_to - profile.s_from)[met & (profile.s_from > 5)].sum() == pytest.approx(half, rel=1e-9)
+
+
 def test_leg_in_the_clearance_of_a_pour_sees_both_sides() -> None:
     pour = box(GND, 0, -2, -3, 12, 3, [(-1, -0.4), (-1, 0.5), (11, 0.5), (11, -0.4)])
     profile = neighbours(leg((0, 0), (10, 0)), board(areas=[pour]), OWN, 1.0)

@@ -81,10 +81,20 @@ def test_arc_leaves_and_enters_the_plane_at_the_true_angle() -> None:
     assert cover.start[1] == pytest.approx([5 + math.sqrt(3), 1], rel=1e-13)
 
 
-def test_arc_is_nearest_to_an_edge_at_its_crown() -> None:
-    # Neither end of the arc nor of the edge is nearest: the crown (5, 2) is, 1.5 mm below the edge y = 3.5.
+@pytest.mark.parametrize("up", [1.0, -1.0])
+def test_arc_is_nearest_to_an_edge_at_its_crown(up: float) -> None:
+    # Neither end of the arc nor of the edge is nearest: the crown (5, ±2) is, 1.5 mm from the edge y = ±3.5.
+    arc = leg((7, 0), (3, 0), arcs={0: ((5.0, 0.0), up * HALF)})
+    low, high = sorted((-20 * up, 3.5 * up))
+    cover = reference_cover(arc, board(areas=[box(GND, 1, -20, low, 30, high)]), (GND,))
+    assert cover.edge_below == pytest.approx([1.5], rel=1e-13)
+    assert cover.edge_below_at[0] == pytest.approx([5, 2 * up], rel=1e-13)
+
+
+def test_arc_is_nearest_to_the_edge_of_a_hole_at_its_crown() -> None:
     arc = leg((7, 0), (3, 0), arcs={0: ((5.0, 0.0), HALF)})
-    cover = reference_cover(arc, board(areas=[box(GND, 1, -20, -20, 30, 3.5)]), (GND,))
+    hole = [(-10.0, 3.5), (20.0, 3.5), (20.0, 6.0), (-10.0, 6.0)]
+    cover = reference_cover(arc, board(areas=[box(GND, 1, -20, -20, 30, 30, hole)]), (GND,))
     assert cover.edge_below == pytest.approx([1.5], rel=1e-13)
     assert cover.edge_below_at[0] == pytest.approx([5, 2], rel=1e-13)
 
