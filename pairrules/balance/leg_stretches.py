@@ -10,12 +10,16 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pairrules.board.columns import Floats, Ints
+from pairrules.board.columns import Bools, Floats, Ints
 from pairrules.geometry.curves import nearest
 from pairrules.geometry.nearest_track import curves_of
 from pairrules.geometry.pair_geometry import SERIES, TRACK, Pieces, SpacingProfile
 
 _NOTHING_MM = 1e-6
+_SLIVER_MM = 0.05
+"""Runs apart by no more than this are one: at a bend the legs face each other's corners for a few micrometres."""
+
+_LEAST_ADVANCE = 0.2
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -76,16 +80,17 @@ def _runs(
 ) -> list[tuple[tuple[float, float], tuple[float, float]]]:
     """Coupled runs of plus between two lengths, with the length of minus that each faces.
 
-    Runs that follow one another without a gap on plus are one. A run that minus faces backwards is left out: there the
+    Runs that follow one another with no more than a sliver between are one. A run that minus faces backwards is left out: there the
     legs carry the signal in opposite directions.
     """
+    beside = _advancing(minus, profile)
     runs: list[list[float]] = []
     rows: list[list[int]] = []
-    for row in np.flatnonzero(profile.coupled):
+    for row in np.flatnonzero(beside):
         start, stop = max(float(profile.s_from[row]), low), min(float(profile.s_to[row]), high)
         if stop - start <= _NOTHING_MM:
             continue
-        if runs and start - runs[-1][1] <= _NOTHING_MM:
+        if runs and start - runs[-1][1] <= _SLIVER_MM:
             runs[-1][1] = stop
             rows[-1].append(int(row))
         else:
@@ -96,6 +101,18 @@ def _runs(
         facing = _facing(minus, profile, np.array([of[0], of[-1]]), np.array([start, stop]))
         if facing[1] > facing[0]:
             found.append(((start, stop), (float(facing[0]), float(facing[1]))))
+    return found
+
+
+def _advancing(minus: Pieces, profile: SpacingProfile) -> Bools:
+    """Coupled rows of plus's profile along which minus advances too, not just faces plus with a corner."""
+    found = np.zeros(len(profile), dtype=np.bool_)
+    rows = np.flatnonzero(profile.coupled)
+    size = (profile.s_to - profile.s_from)[rows]
+    inset = np.minimum(size / 4, 1e-4)
+    start = _facing(minus, profile, rows, profile.s_from[rows] + inset)
+    stop = _facing(minus, profile, rows, profile.s_to[rows] - inset)
+    found[rows] = (stop - start) > _LEAST_ADVANCE * (size - 2 * inset)
     return found
 
 

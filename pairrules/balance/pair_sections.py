@@ -115,7 +115,7 @@ def _length(cut: Cut) -> float:
 def _borrow(
     cuts: list[Cut], found: list[_Matrices | str], plus: LegRoute, minus: LegRoute, layers: tuple[str, ...]
 ) -> None:
-    """UnsolvableError cuts take over the nearest solved one of the same leg, where they are a small share of the route."""
+    """Cuts that cannot be solved take over the nearest solved one of their leg, where they are a small share."""
     lost = [i for i, matrices in enumerate(found) if isinstance(matrices, str)]
     if not lost:
         return

@@ -23,7 +23,9 @@ STEP_MM = 1.0
 PLANE_WIDTH_MM = 1.0
 """Copper of other nets on another layer counts as a plane where the cut meets this much of it, else as nothing."""
 
-_GAP_STEP = 0.02
+_GAP_STEP = 0.05
+"""Where the gap changes along the way, sections differ by this share of it."""
+
 _EDGE_STEP = 0.1
 _LEAST_MM = 1e-6
 _MOST_PLANES = 2

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from typing import Any
 
 import numpy as np
 import pytest
@@ -37,16 +38,18 @@ def uneven() -> list[Element]:
     ]
 
 
-def swapped(element: Element) -> Element:
+def swapped(element: Any) -> Element:
     """The same with the legs' names exchanged."""
-    if isinstance(element, Line):
-        names = ("inductance", "capacitance", "resistance", "conductance")
-        turned = {name: np.asarray(getattr(element, name))[::-1, ::-1] for name in names}
-        return replace(element, **turned, lengths=np.asarray(element.lengths)[::-1])
-    names = (
-        ("resistance", "inductance", "capacitance") if isinstance(element, Series) else ("resistance", "capacitance")
-    )
-    return replace(element, **{name: np.asarray(getattr(element, name))[::-1] for name in names})
+    square = ("inductance", "capacitance", "resistance", "conductance") if isinstance(element, Line) else ()
+    single = {
+        Line: ("lengths",),
+        Series: ("resistance", "inductance", "capacitance"),
+        Shunt: ("resistance", "capacitance"),
+    }
+    turned = {name: np.asarray(getattr(element, name))[::-1, ::-1] for name in square}
+    turned |= {name: np.asarray(getattr(element, name))[::-1] for name in single[type(element)]}
+    found: Element = replace(element, **turned)
+    return found
 
 
 def test_equal_legs_convert_nothing() -> None:
@@ -89,7 +92,7 @@ def test_unequal_sources_convert_as_two_dividers(z_s: float, m: float, z_c: floa
 
 def test_source_and_load_mismatch_cancel_where_their_ratios_agree() -> None:
     # (Z_s/Z_c)(ΔZ_s/Z_s − ΔZ_c/Z_c) vanishes for equal shares, whatever they are.
-    link = [source(1010.0, 1000.0), Shunt(cause="load", resistance=(1.01e6, 1e6))]
+    link: list[Element] = [source(1010.0, 1000.0), Shunt(cause="load", resistance=(1.01e6, 1e6))]
     assert decibel(solve(link, 50.0).conversion)[0] < -300
     assert {cause: round(float(decibel(one)[0]), 1) for cause, one in by_cause(link, 50.0).items()} == {
         "source": -100.1,
@@ -99,7 +102,7 @@ def test_source_and_load_mismatch_cancel_where_their_ratios_agree() -> None:
 
 def test_a_link_far_below_double_precision_of_its_signals_keeps_its_digits() -> None:
     # 1 µohm of difference against 1 Mohm is −240 dB; a difference of two voltages near 1 V would end at −313 dB ± 40.
-    link = [source(100.0 + 1e-6, 100.0), Shunt(cause="load", resistance=(1e6, 1e6))]
+    link: list[Element] = [source(100.0 + 1e-6, 100.0), Shunt(cause="load", resistance=(1e6, 1e6))]
     found = solve(link, 50.0).conversion[0]
     exact = -((100.0 + 1e-6) - 100.0) * 1e6 / (1e6 + 100.0) ** 2
     assert found == pytest.approx(exact, rel=1e-8)
@@ -107,13 +110,13 @@ def test_a_link_far_below_double_precision_of_its_signals_keeps_its_digits() -> 
 
 def test_the_differential_gain_is_that_of_half_a_volt_on_each_leg() -> None:
     # Two 1 kohm legs into 20 kohm across and 1 Mohm each to reference.
-    link = [source(), Shunt(cause="load", resistance=(1e6, 1e6), across_resistance=2e4)]
+    link: list[Element] = [source(), Shunt(cause="load", resistance=(1e6, 1e6), across_resistance=2e4)]
     across = 1 / (1 / 2e4 + 1 / 2e6)
     assert solve(link, 50.0).gain[0] == pytest.approx(across / (across + 2000.0), rel=1e-12)
 
 
 def test_resistance_in_series_with_the_load_lies_before_its_nodes() -> None:
-    link = [
+    link: list[Element] = [
         Series(cause="source", resistance=(0.0, 0.0)),
         Series(cause="load", resistance=(1e6, 0.0)),
         Shunt(cause="load", resistance=(1e6, 1e6)),
@@ -133,7 +136,7 @@ def test_shapes_one_many_none_and_samples() -> None:
 
 
 def test_a_capacitor_in_series_has_no_answer_at_zero_frequency() -> None:
-    link = [source(), Series(cause="trace", capacitance=(1e-6, 1e-6)), load()]
+    link: list[Element] = [source(), Series(cause="trace", capacitance=(1e-6, 1e-6)), load()]
     found = solve(link, [0.0, 50.0]).conversion
     assert np.isnan(found[0])
     assert np.isfinite(found[1])

@@ -7,10 +7,10 @@ import pytest
 
 from pairrules.balance.conversion import by_cause, decibel, solve
 from pairrules.balance.link_balance import balance_points
-from pairrules.balance.networks import Series
+from pairrules.balance.networks import Element, Series
 from tests.balance.small_links import cable, coupled_track, load, source
 
-LINK = [source(1000.0, 1010.0), cable(0.02), coupled_track(), load((1e6, 1.02e6))]
+LINK: list[Element] = [source(1000.0, 1010.0), cable(0.02), coupled_track(), load((1e6, 1.02e6))]
 
 
 def test_figures_are_those_of_the_solution() -> None:
@@ -44,10 +44,12 @@ def test_a_receiver_may_reject_less_at_one_frequency_than_at_another() -> None:
 
 
 def test_a_cause_without_elements_and_an_answer_without_a_number_are_unknown() -> None:
-    (point,) = balance_points([source(), load()], [50.0])
+    bare: list[Element] = [source(), load()]
+    (point,) = balance_points(bare, [50.0])
     assert point.cable_db is None
     assert point.trace_db is None
-    (broken,) = balance_points([source(), Series(cause="trace", capacitance=(1e-6, 1e-6)), load()], [0.0])
+    blocked: list[Element] = [source(), Series(cause="trace", capacitance=(1e-6, 1e-6)), load()]
+    (broken,) = balance_points(blocked, [0.0])
     assert broken.total_db is None
     assert broken.rejection_db is None
 

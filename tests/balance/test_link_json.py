@@ -10,7 +10,7 @@ import pytest
 
 from pairrules.balance.conversion import by_cause, decibel, solve
 from pairrules.balance.link_json import answer, read_link, section_matrices
-from pairrules.balance.networks import Line, Series, Shunt
+from pairrules.balance.networks import Element, Line, Series, Shunt
 from pairrules.errors import UsageError
 
 POURED = (np.array([[2.25e-7, 1.7e-8], [1.7e-8, 2.7e-7]]), np.array([[1.26e-10, -7.5e-12], [-7.5e-12, 1.1e-10]]))
@@ -63,7 +63,7 @@ def read(document: Any) -> Any:
 
 def test_the_answer_is_that_of_the_same_link_built_by_hand() -> None:
     first, second, _ = LINK["sections"]
-    link = [
+    link: list[Element] = [
         Series(cause="source", resistance=(1000, 1010)),
         Line(
             cause="trace",

@@ -36,7 +36,7 @@ def test_many_values_add_their_magnitudes() -> None:
     link: list[Element] = [Series(cause="source", resistance=(100.0, 100.0)) for _ in range(6)]
     link.append(Shunt(cause="load", resistance=(1e6, 1e6)))
     many = tolerated(link, spreads_of(link, 0.01, cause="source"), 50.0)
-    few_link = [source(600.0, 600.0), link[-1]]
+    few_link: list[Element] = [source(600.0, 600.0), link[-1]]
     few = tolerated(few_link, spreads_of(few_link, 0.01, cause="source"), 50.0)
     assert many.worst[0] == pytest.approx(few.worst[0], rel=1e-4)
     assert many.bound_95[0] < few.bound_95[0]
@@ -50,7 +50,7 @@ def test_the_bound_of_two_even_spreads() -> None:
 
 
 def test_the_same_seed_gives_the_same_bound() -> None:
-    link = [source(1000.0, 1003.0), load()]
+    link: list[Element] = [source(1000.0, 1003.0), load()]
     spreads = spreads_of(link, 0.02, cause="load")
     first, again, other = (tolerated(link, spreads, [50.0, 1e5], seed=seed).bound_95 for seed in (1, 1, 2))
     np.testing.assert_array_equal(first, again)
@@ -58,14 +58,14 @@ def test_the_same_seed_gives_the_same_bound() -> None:
 
 
 def test_bounds_lie_between_nothing_and_the_worst() -> None:
-    link = [source(1000.0, 1003.0), load()]
+    link: list[Element] = [source(1000.0, 1003.0), load()]
     found = tolerated(link, spreads_of(link, 0.02, cause="load"), [50.0, 1e5])
     assert (found.bound_95 <= found.worst).all()
     assert (found.nominal <= found.worst).all()
 
 
 def test_only_what_is_there_is_spread() -> None:
-    link = [source(), Shunt(cause="load", capacitance=(1e-11, 0.0), across_resistance=100.0)]
+    link: list[Element] = [source(), Shunt(cause="load", capacitance=(1e-11, 0.0), across_resistance=100.0)]
     assert spreads_of(link, 0.1, cause="load") == (
         Spread(element=1, field="capacitance", at=(0,), share=0.1),
         Spread(element=1, field="across_resistance", at=(), share=0.1),
@@ -74,6 +74,6 @@ def test_only_what_is_there_is_spread() -> None:
 
 
 def test_without_spreads_all_three_are_the_nominal() -> None:
-    link = [source(1000.0, 1010.0), load()]
+    link: list[Element] = [source(1000.0, 1010.0), load()]
     found = tolerated(link, (), 50.0)
     assert found.nominal[0] == found.worst[0] == found.bound_95[0] > 0

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-import scipy.linalg
+import scipy.linalg  # type: ignore[import-untyped]
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
@@ -15,7 +15,9 @@ L = np.array([[3.18e-7, 6.6e-8], [6.6e-8, 3.3e-7]])
 C = np.array([[1.08e-10, -1.1e-11], [-1.1e-11, 1.0e-10]])
 
 
-def modes(R: np.ndarray, G: np.ndarray, length: float, omega: np.ndarray, L: np.ndarray = L, C: np.ndarray = C):
+def modes(
+    R: np.ndarray, G: np.ndarray, length: float, omega: np.ndarray, L: np.ndarray = L, C: np.ndarray = C
+) -> tuple[Complexes, Complexes]:
     """Z and Y of a length in modes, from the matrices of the legs."""
     Z = (R + 1j * omega[:, None, None] * L) * length
     Y = (G + 1j * omega[:, None, None] * C) * length
@@ -41,7 +43,9 @@ share = st.floats(-0.9, 0.9)
 
 @settings(max_examples=60, deadline=None)
 @given(positive, positive, share, positive, positive, st.floats(0, 5), st.floats(0, 5), st.floats(-4, 0.5))
-def test_a_line_is_the_matrix_exponential_of_its_length(l1, l2, k, c1, c2, r1, r2, decade) -> None:
+def test_a_line_is_the_matrix_exponential_of_its_length(
+    l1: float, l2: float, k: float, c1: float, c2: float, r1: float, r2: float, decade: float
+) -> None:
     # Telegrapher's equations d(V, I)/dx = −((0, Z), (Y, 0))(V, I); scipy sums the 4 × 4 exponential its own way.
     omega = np.array([10.0**decade])
     mutual, between = k * np.sqrt(l1 * l2), 0.5 * min(c1, c2)
@@ -113,7 +117,7 @@ def test_reciprocity_and_passivity(frequency: float) -> None:
 
 @settings(max_examples=40, deadline=None)
 @given(positive, share, positive, st.floats(0, 5), st.floats(-4, 3))
-def test_a_symmetric_line_never_mixes_the_modes(l1, k, c1, r1, decade) -> None:
+def test_a_symmetric_line_never_mixes_the_modes(l1: float, k: float, c1: float, r1: float, decade: float) -> None:
     Lm, Cm = l1 * np.array([[1, k], [k, 1]]), c1 * np.array([[2.0, -1.0], [-1.0, 2.0]])
     F = chain(1.0, np.array([10.0**decade]), np.diag([r1, r1]), L=Lm, C=Cm)
     assert not F[0, [0, 0, 1, 1, 2, 2, 3, 3], [1, 3, 0, 2, 1, 3, 0, 2]].any()

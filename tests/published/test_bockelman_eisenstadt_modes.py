@@ -12,7 +12,7 @@ import numpy as np
 import pytest
 
 from pairrules.balance.conversion import decibel, solve
-from pairrules.balance.networks import Line, Series, Shunt
+from pairrules.balance.networks import Element, Line, Series, Shunt
 
 skrf = pytest.importorskip("skrf")
 
@@ -38,7 +38,7 @@ def mixed_mode(plus_m: float, minus_m: float, z_plus: float, z_minus: float, del
 def test_lines_of_two_lengths_and_impedances(z_plus: float, z_minus: float, minus_m: float) -> None:
     delay = 6.671e-9
     S = mixed_mode(0.1, minus_m, z_plus, z_minus, delay)
-    link = [
+    link: list[Element] = [
         Series(cause="source", resistance=(50.0, 50.0)),
         Line(
             cause="trace",
@@ -66,7 +66,7 @@ def test_skew_of_matched_legs(skew_ps: float, frequency: float, printed_db: floa
         capacitance=np.diag([1 / z, 1 / z]) * delay,
         lengths=(0.05 + skew_ps * 1e-12 / delay, 0.05),
     )
-    link = [Series(cause="source", resistance=(z, z)), legs, Shunt(cause="load", resistance=(z, z))]
+    link: list[Element] = [Series(cause="source", resistance=(z, z)), legs, Shunt(cause="load", resistance=(z, z))]
     found = solve(link, frequency)
     angle = np.pi * frequency * skew_ps * 1e-12
     np.testing.assert_allclose(np.abs(found.conversion), np.sin(angle), rtol=1e-9)

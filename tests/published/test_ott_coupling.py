@@ -9,7 +9,7 @@ import numpy as np
 import pytest
 
 from pairrules.balance.conversion import decibel, solve
-from pairrules.balance.networks import Series, Shunt
+from pairrules.balance.networks import Element, Series, Shunt
 from pairrules.balance.pickup import edge_pickup, flux_density, magnetic_pickup
 
 SOURCE_IMBALANCE_CH_4 = [
@@ -24,7 +24,7 @@ SOURCE_IMBALANCE_CH_4 = [
 
 @pytest.mark.parametrize(("z_c", "z_s", "difference", "rejection"), SOURCE_IMBALANCE_CH_4)
 def test_source_imbalance(z_c: float, z_s: float, difference: float, rejection: float) -> None:
-    link = [
+    link: list[Element] = [
         Series(cause="source", resistance=(z_s + difference, z_s)),
         Shunt(cause="load", resistance=(z_c, z_c)),
     ]
@@ -44,7 +44,7 @@ def test_unequal_capacitance_to_reference(
     resistance: float, difference: float, frequency: float, expected: float
 ) -> None:
     # |V_d/V_c| ≈ 2πf R |C_1 − C_2|, a winding's or an input's alike.
-    link = [
+    link: list[Element] = [
         Series(cause="source", resistance=(resistance, resistance)),
         Shunt(cause="load", capacitance=(20e-12 + difference, 20e-12)),
     ]
@@ -53,7 +53,7 @@ def test_unequal_capacitance_to_reference(
 
 def test_uneven_phantom_feeds() -> None:
     # Z_s/Z_c · ΔZ_c/Z_c: 100 ohm, 6.81 kohm, 0.4 %: 84.6 dB to first order; the divider itself takes 0.25 dB more.
-    link = [
+    link: list[Element] = [
         Series(cause="source", resistance=(100.0, 100.0)),
         Shunt(cause="load", resistance=(6810.0 * 1.002, 6810.0 * 0.998)),
     ]
@@ -62,7 +62,7 @@ def test_uneven_phantom_feeds() -> None:
 
 def test_unlike_coupling_capacitors() -> None:
     # (f_c/f)(ΔC/C) with 1 µF ±10 % into 100 kohm per leg: −43.84 dB at 50 Hz, −69.86 dB at 1 kHz; exact network below.
-    link = [
+    link: list[Element] = [
         Series(cause="source", resistance=(0.0, 0.0)),
         Series(cause="trace", capacitance=(1.1e-6, 0.9e-6)),
         Shunt(cause="load", resistance=(1e5, 1e5)),
