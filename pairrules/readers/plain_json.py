@@ -14,28 +14,25 @@ import numpy as np
 from pairrules.board.areas import Area
 from pairrules.board.board import Board, DeclaredPair
 from pairrules.board.pads import Pads, PadShape, Part
-from pairrules.board.stackup import Layer, Stackup
 from pairrules.board.tracks import Tracks
 from pairrules.board.units import LENGTH_MM
 from pairrules.board.vias import Vias
 from pairrules.errors import BoardError
 from pairrules.readers.json_paths import Piece, Point, Ruler
+from pairrules.readers.json_stackup import ALL_LAYERS, read_stackup, stackup_gaps
 from pairrules.readers.json_tree import Document, Members, Path, or_list, parse, printable, show, written
 from pairrules.readers.reader import Reader
 
 VERSION = 1
 UNITS = ("mm", "um", "mil", "in")
 PAD_SHAPES = ("rect", "circle", "oval", "round_rect", "polygon")
-LAYER_KINDS = ("copper", "dielectric")
 SIDES = ("top", "bottom")
 NET_KINDS = ("ground", "power", "signal")
-ALL_LAYERS = "all"
 _KINDS_TOLD = 20
 
 _BOARD = frozenset({
     "pairrules_board", "name", "units", "outline", "stackup", "parts", "tracks", "vias", "areas", "pairs", "nets",
 })  # fmt: skip
-_LAYER = frozenset({"name", "kind", "thickness", "permittivity", "loss_tangent"})
 _PART = frozenset({"ref", "value", "package", "side", "pins"})
 _PIN = frozenset({"pin", "net", "at", "layer", "drill", "pad"})
 _PAD = frozenset({"shape", "size", "rotation", "mirror", "radius", "points"})
@@ -88,7 +85,8 @@ class _Reading:
     missing: list[str] = field(default_factory=list)
 
     def board(self, name: str) -> Board:
-        stackup = self._stackup()
+        stackup = read_stackup(self.tree, self.ruler)
+        self.missing += stackup_gaps(stackup)
         self.layers = {layer: index for index, layer in enumerate(stackup.copper)}
         outline = self.tree.get("outline")
         edge = None if outline is None else self.ruler.ring(outline, (None, "outline"))
@@ -119,38 +117,6 @@ class _Reading:
             outline=edge,
             missing=tuple(self.missing),
         )
-
-    def _stackup(self) -> Stackup:
-        self.tree.need("stackup", "give the layers from top to bottom")
-        layers: list[Layer] = []
-        names: set[str] = set()
-        for path, entry in self.tree.entries("stackup", "layers, top to bottom"):
-            members = self.document.members(entry, path, _LAYER, "name and kind")
-            name = members.text("name")
-            if name == ALL_LAYERS or name in names:
-                taken = "no layer may be called so" if name == ALL_LAYERS else "another layer has this name"
-                raise self.document.fault((path, "name"), name, f"choose another; {taken}")
-            names.add(name)
-            layers.append(
-                Layer(
-                    name=name,
-                    kind=members.choice("kind", LAYER_KINDS),
-                    thickness_mm=self.ruler.length(members, "thickness"),
-                    permittivity=members.number(
-                        "permittivity", least=1.0, most=1e6, remedy="give a number of 1 or more"
-                    ),
-                    loss_tangent=members.number(
-                        "loss_tangent", least=0.0, most=10.0, remedy="give a number from 0 to 10"
-                    ),
-                )
-            )
-        stackup = Stackup(layers=tuple(layers))
-        if not stackup.copper:
-            raise self.document.fault(
-                (None, "stackup"), self.tree.get("stackup"), 'give at least one layer of kind "copper"'
-            )
-        self.missing.extend(_gaps(stackup))
-        return stackup
 
     def _layer(self, members: Members, key: str, *, all_too: bool = False) -> int:
         written_name = members.get(key)
@@ -381,27 +347,6 @@ class _Pins:
             drill=np.array(self.drill),
             shapes=tuple(self.shapes),
         )
-
-
-def _gaps(stackup: Stackup) -> list[str]:
-    """What the stackup leaves open, a sentence each."""
-    if len(stackup.copper) > 1 and all(layer.kind == "copper" for layer in stackup.layers):
-        return ["the stackup has no dielectric, so that barrels, delay and impedance are unknown"]
-    open_ends = (
-        ("thickness", "the barrels through it and impedance are unknown", stackup.layers, "thickness_mm"),
-        ("permittivity", "delay and impedance are unknown there", _dielectrics(stackup), "permittivity"),
-        ("loss tangent", "loss in the dielectric is unknown", _dielectrics(stackup), "loss_tangent"),
-    )
-    gaps = []
-    for what, so, layers, column in open_ends:
-        names = [layer.name for layer in layers if getattr(layer, column) is None]
-        if names:
-            gaps.append(f"the stackup has no {what} for {', '.join(names)}: {so}")
-    return gaps
-
-
-def _dielectrics(stackup: Stackup) -> tuple[Layer, ...]:
-    return tuple(layer for layer in stackup.layers if layer.kind == "dielectric")
 
 
 READER = Reader(summary="Plain JSON board", recognises=recognises, read=read)
