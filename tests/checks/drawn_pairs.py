@@ -12,6 +12,7 @@ from pairrules.checks.rule import Rule, Subject
 from pairrules.geometry.measure import measure_link
 from pairrules.pairing.link import Hop, Link
 from pairrules.settings.limit import Limit
+from tests.checks.electrical_cases import electrical, hung, klass, series, with_parts
 from tests.geometry.small_boards import board, pads_of, pin, track
 
 NETS = {"plus": "A_P", "minus": "A_N"}
@@ -32,7 +33,10 @@ def subject(case: Mapping[str, Any]) -> Subject:
             parts.append(pin(part, "1" if leg == "plus" else "2", net, *at, layer=layer))
     vias = [{"drill": 0.3, "pad": 0.6, "from": "TOP", "to": "BOT"} | via for via in case.get("vias", [])]
     more = {"stackup": BARE_STACK} if case.get("stack") == "bare" else {}
-    on = board(tracks=tracks, parts=parts, vias=vias, units=case.get("units", "mm"), **more)
+    tracks += [track(one["net"], *one["points"], layer=one.get("layer", "TOP")) for one in case.get("tracks", [])]
+    areas = [{"layer": "IN1"} | area for area in case.get("areas", [])]
+    on = board(tracks=tracks, parts=parts, vias=vias, areas=areas, units=case.get("units", "mm"), **more)
+    on = with_parts(on, case.get("parts", {}))
     if "lacks" in case:
         on = replace(on, complete=False, missing=(case["lacks"],))
     hops = {}
@@ -47,18 +51,27 @@ def subject(case: Mapping[str, Any]) -> Subject:
         found_by="net name",
         hops_plus=(hops["plus"],),
         hops_minus=(hops["minus"],),
-        series=(),
+        series=series(on, case),
+        hung=hung(on, case),
         source=0,
         load=1,
         missing=("no part at the load end was found",) if case.get("no_load") else (),
     )
-    geometry = measure_link(on, link, reach_mm=case.get("reach_mm"), reference=())
+    reference = tuple(on.nets.index(net) for net in case.get("reference", []))
+    geometry = measure_link(
+        on, link, reach_mm=case.get("reach_mm"), reference=reference, beside=case.get("beside", False)
+    )
+    figures = electrical(on, case)
+    measures = geometric_measures(geometry)
     return Subject(
         board=on,
         link=link,
         geometry=geometry,
-        measures=geometric_measures(geometry),
+        measures=replace(measures, **case.get("measures", {})),
         breakout_mm=case.get("breakout_mm", 0.0),
+        electrical=figures,
+        klass=klass(case),
+        reference=reference,
     )
 
 

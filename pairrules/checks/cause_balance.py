@@ -1,0 +1,86 @@
+"""How far below the common mode one cause alone leaves the difference it makes: what the four rules on causes share."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+from pairrules.balance.pair_electrical import BalanceAt, PairElectrical
+from pairrules.checks.electrical_figures import figures, hertz, wanted_points
+from pairrules.checks.rule import Subject, Undecided
+from pairrules.checks.wording import TOLERANCE, amounts
+from pairrules.result import Finding, Place
+from pairrules.settings.limit import Limit
+
+Advise = Callable[[Subject, PairElectrical, float], tuple[str, tuple[Place, ...]]]
+"""From the pair and the [dB] that are lacking to an advice, and the places it speaks of."""
+
+
+def judge_cause(
+    subject: Subject, limit: Limit, *, cause: str, none: bool, advise: Advise
+) -> tuple[Finding, ...] | Undecided:
+    """Compare −`cause`_db with `least` at each frequency; the worst is told.
+
+    Parameters: none: whether the pair's class says that the link has nothing of that cause.
+    """
+    electrical = figures(subject)
+    if isinstance(electrical, Undecided):
+        return electrical
+    points = wanted_points(subject, electrical)
+    if isinstance(points, Undecided):
+        return points
+    least = limit.quantities["least"]
+    known = [(-figure, one) for one in points if (figure := conversion_db(one, cause)) is not None]
+    if known:
+        below, worst = min(known, key=lambda found: found[0])
+        if below < least - TOLERANCE:
+            return (_finding(subject, limit, electrical, cause, below, worst, advise),)
+    if len(known) == len(points) or (none and not known):
+        return ()
+    lost = next(one for one in points if conversion_db(one, cause) is None)
+    return Undecided(missing=f"what the {cause} converts at {hertz(lost.frequency_hz)} is not known")
+
+
+def conversion_db(point: BalanceAt, cause: str) -> float | None:
+    """The conversion [dB] by one cause ("source", "trace", "cable", "load")."""
+    return {
+        "source": point.source_db,
+        "trace": point.trace_db,
+        "cable": point.cable_db,
+        "load": point.load_db,
+    }[cause]
+
+
+def greatest_cause(point: BalanceAt) -> tuple[str, float] | None:
+    """The cause that converts most at this frequency, with its conversion [dB]; `None` where none is known."""
+    known = [(figure, name) for name in CAUSES if (figure := conversion_db(point, name)) is not None]
+    figure, name = max(known, key=lambda found: found[0], default=(0.0, ""))
+    return (name, figure) if name else None
+
+
+CAUSES = ("source", "trace", "cable", "load")
+
+
+def _finding(
+    subject: Subject,
+    limit: Limit,
+    electrical: PairElectrical,
+    cause: str,
+    below: float,
+    worst: BalanceAt,
+    advise: Advise,
+) -> Finding:
+    least = limit.quantities["least"]
+    measured, required = amounts(below, least, "dB")
+    advice, at = advise(subject, electrical, least - below)
+    return Finding(
+        rule=limit.rule,
+        severity=limit.severity,
+        measured=below,
+        limit=least,
+        unit="dB",
+        message=f"what the {cause} converts lies {measured} below the common mode at {hertz(worst.frequency_hz)}; "
+        f"{required} are required",
+        advice=advice,
+        at=at,
+        source=limit.source,
+    )
