@@ -39,7 +39,7 @@ def test_counts_are_those_of_the_text(board: Board, text: str) -> None:
     plated = text.count('platingStatus="PLATED"')
     assert (board.pads.layer == -1).sum() == plated == 100
     pins = set(re.findall(r'<PinRef pin="([^"]+)" componentRef="([^"]+)"', copper))
-    locating = {("MH1", "J1"), ("MH2", "J1")}  # two pads name no pin; the package has one at each place
+    locating = {("MECH1", "J1"), ("MECH2", "J1")}  # two pads name no pin; the package has one at each place
     assert len(board.pads) == len(pins) + len(locating) == 1748
     assert len(board.parts) == text.count("<Component ") == 56
     nets = set(re.findall(r' net="([^"]*)"', text))
