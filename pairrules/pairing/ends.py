@@ -50,11 +50,10 @@ def ends_of(site: Site, chain: Chain, *, name: str, source: str, load: str) -> E
     series = {part for step in chain.steps for part in (step.plus, step.minus)}
     first, last = (_options(site, chain.nodes[place], series) for place in (0, -1))
     declared: dict[str, int] = {}
-    refs = {part.ref: index for index, part in enumerate(site.board.parts)}
+    near = {site.board.parts[end.part].ref: end.part for end in (*first, *last) if end.part >= 0}
     for role, ref in (("source", source), ("load", load)):
-        part = refs.get(ref, -1)
-        if part >= 0 and any(end.part == part for end in (*first, *last)):
-            declared[role] = part
+        if ref in near:
+            declared[role] = near[ref]
         elif ref:
             missing.append(f"the file declares {ref} as {role}, which has no pins at the ends of both legs")
     wanted = set(declared.values())

@@ -182,11 +182,13 @@ def _borne_out(wiring: Wiring, barred: frozenset[int], reading: Reading, plus: i
 
 
 def _reached(wiring: Wiring, barred: frozenset[int], net: int) -> set[int]:
-    """Stations on the net, and on the nets one part in series away."""
+    """Stations on the net, and on the nets one part in series away that are no supplies."""
     reached = set(wiring.stations_on(net))
     for part in wiring.parts_on(net):
         far = wiring.far_net(part, net)
-        if far >= 0 and wiring.is_passive(part) and far not in barred:
+        if far < 0 or far in barred or wiring.supplies[far] or wiring.is_crowded(far):
+            continue
+        if wiring.is_passive(part):
             reached.update(wiring.stations_on(far))
     return reached
 

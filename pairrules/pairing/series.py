@@ -11,12 +11,8 @@ import numpy as np
 from pairrules.board.board import Board
 from pairrules.board.columns import Bools
 from pairrules.pairing.natural_order import natural_key
-from pairrules.pairing.net_roles import is_supply_name
 from pairrules.pairing.pairs import NetPair
 from pairrules.pairing.wiring import Wiring
-
-_CROWDED = 16
-"""More parts than this on a net without a pair's name, and it is taken for a supply rather than a leg that goes on."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -51,11 +47,7 @@ def site_of(board: Board, wiring: Wiring, pairs: tuple[NetPair, ...], reference:
     for pair in pairs:
         partner[pair.plus], partner[pair.minus] = pair.minus, pair.plus
         sign[pair.plus], sign[pair.minus] = 1, -1
-    silent = [
-        kind in {"ground", "power"} or is_supply_name(name)
-        for kind, name in zip(board.net_kinds, board.nets, strict=True)
-    ]
-    carries = ~np.array(silent, dtype=np.bool_)
+    carries = ~wiring.supplies
     carries[list(partner)] = True
     carries[list(reference)] = False
     return Site(board=board, wiring=wiring, carries=carries, partner=partner, sign=sign)
@@ -136,7 +128,7 @@ def _series(site: Site, net: int, barred: Collection[int]) -> tuple[tuple[int, i
 
 
 def _goes_on(site: Site, net: int) -> bool:
-    return 2 <= len(site.wiring.parts_on(net)) <= _CROWDED
+    return len(site.wiring.parts_on(net)) >= 2 and not site.wiring.is_crowded(net)
 
 
 def _fed_back(site: Site, node: tuple[int, int], to: tuple[int, int]) -> bool:
@@ -171,7 +163,8 @@ def _wound(site: Site, node: tuple[int, int], barred: Collection[int]) -> tuple[
 def _choke(site: Site, part: int, node: tuple[int, int]) -> tuple[int, int] | None:
     """The nets behind a part of four pins on four nets.
 
-    Which winding is whose: by polarity where the nets have one, else by what the names share, else the nearer pad, else the pins' order.
+    Which winding is whose: by polarity where the nets have one, else by what the names share, else by the nearer pad,
+    else by the order of the pins.
     """
     rest = [net for net in site.wiring.nets_of(part) if net not in node]
     if len(rest) != 2:

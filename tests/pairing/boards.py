@@ -22,8 +22,8 @@ def board(
     """A board of one layer.
 
     `parts`: designator to the nets of its pins 1, 2, ... ("" for none). `extra`: nets with nothing on them.
-    `tracks`: nets with a track only. `areas`: net to the side of a square of its copper [mm]. `at`: where pin 1 of a part
-    lies; pins follow 1 mm apart in x. Parts not named there stand in rows 10 mm apart.
+    `tracks`: nets with a track only. `areas`: net to the side of a square of its copper [mm]. `at`: where pin 1 of a
+    part lies; pins follow 1 mm apart in x. Parts not named there stand in rows 10 mm apart.
     """
     pins = {ref: list(nets) for ref, nets in parts.items()}
     names = {net for nets in pins.values() for net in nets if net} | {*extra, *tracks, *(areas or {})}
@@ -45,7 +45,7 @@ def board(
         parts=tuple(Part(ref=ref) for ref in pins),
         pads=Pads(
             at=np.array([row[3:] for row in rows], dtype=float).reshape(-1, 2),
-            layer=np.zeros(len(rows)),
+            layer=np.zeros(len(rows), dtype=np.int64),
             net=np.array([index[row[2]] if row[2] else -1 for row in rows]),
             part=np.array([row[0] for row in rows]),
             pin=tuple(str(row[1]) for row in rows),
@@ -61,7 +61,7 @@ def board(
             centre=np.full((len(drawn), 2), np.nan),
             sweep=np.zeros(len(drawn)),
             width=np.full(len(drawn), 0.2),
-            layer=np.zeros(len(drawn)),
+            layer=np.zeros(len(drawn), dtype=np.int64),
             net=np.array(drawn),
         ),
         vias=Vias(at=[], first=[], last=[], drill=[], pad=[], antipad=[], net=[]),  # type: ignore[arg-type]

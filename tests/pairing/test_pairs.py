@@ -170,3 +170,10 @@ def test_declared_pairs_the_board_lacks() -> None:
 
 def test_names_in_two_places() -> None:
     assert nets_of(together("A_P_P", "A_P_N", "A_N_P", "A_N_N")) == {("A_P_P", "A_P_N"), ("A_N_P", "A_N_N")}
+
+
+@pytest.mark.parametrize("supply", ["VCC", "+3V3", "PULLUP"])
+def test_a_common_supply_is_no_common_part(supply: str) -> None:
+    parts = {"U1": ["A1P", supply, "GND"], "U2": ["A1N", supply, "GND"], "R1": ["A1P", supply], "R2": ["A1N", supply]}
+    others = {f"U{place}": [supply, "GND", ""] for place in range(10, 30)}
+    assert nets_of(board({**parts, **others})) == set()

@@ -12,7 +12,7 @@ from pairrules.pairing.link import Hop, Link
 
 @dataclass(frozen=True, kw_only=True)
 class Told:
-    """A link in names. `plus`, `minus`: "J1.1 S_P R1.1" for each hop, further pads joined by "/", "-" where there are none.
+    """A link in names. `plus`, `minus`: "J1.1 S_P R1.1" for each hop, several pads joined by "/", "-" for none.
 
     `hung`: "R1 across both 0" and the far net where there is one.
     """
