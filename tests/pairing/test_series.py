@@ -128,6 +128,22 @@ def test_names_that_change_polarity_on_the_way() -> None:
     assert link.missing == ("TX_N and RX_P are one leg, though their names differ in polarity",)
 
 
+def test_the_net_that_gives_the_name_says_which_leg_is_plus() -> None:
+    made = board(
+        {
+            "U1": ["A_LONG_P", "A_LONG_N", "GND"],
+            "C1": ["A_LONG_P", "RX_N"],
+            "C2": ["A_LONG_N", "RX_P"],
+            "U2": ["RX_P", "RX_N", "GND"],
+        }
+    )
+    link = one(made)
+    assert link.nets == ("RX_P", "RX_N")
+    assert [hop.split()[1] for hop in link.plus] == ["A_LONG_N", "RX_P"]
+    assert [hop.split()[1] for hop in link.minus] == ["A_LONG_P", "RX_N"]
+    assert link.series == [("C2", "C1")]
+
+
 def test_feedback_is_not_followed() -> None:
     made = board(
         {
