@@ -14,7 +14,7 @@ from pairrules.readers.ipc2581.transform import IDENTITY, Plane, Transform, xfor
 if TYPE_CHECKING:
     from lxml.etree import _Element as Element
 
-MOST_ITEMS = 100_000
+MOST_ITEMS = 20_000
 """Items one user shape may draw; a shape that names others over and over would fill the memory."""
 
 ROUGH_ARC_MM = 0.01
@@ -41,6 +41,7 @@ class Shapes:
     fillings: dict[str, str] = field(default_factory=dict)
     standard: dict[str, Primitive] = field(default_factory=dict)
     user: dict[str, Primitive] = field(default_factory=dict)
+    user_pads: dict[str, Primitive] = field(default_factory=dict)
 
     # -- dictionaries -------------------------------------------------------------------------------------------------
 
@@ -112,6 +113,18 @@ class Shapes:
         moved = placed(found.items, by)
         return Primitive(moved, None if found.pad is None else outer_pad(moved))
 
+    def as_pad(self, element: Element, factor: float) -> Primitive | None:
+        """The same as `shape`, with the outer outline as the pad where lines or several pieces draw it."""
+        found = self.shape(element, factor)
+        if found is None or found.pad is not None or all(item.erase for item in found.items):
+            return found
+        if local(element) != "UserPrimitiveRef":
+            return replace(found, pad=outer_pad(found.items))
+        name = word(element, "id")  # drawn once for all pads that name it
+        if name not in self.user_pads:
+            self.user_pads[name] = replace(found, pad=outer_pad(found.items))
+        return self.user_pads[name]
+
     def _bare_shape(self, element: Element, factor: float, default: Line | None) -> Primitive | None:
         tag = local(element)
         if tag in PRIMITIVES:
@@ -146,7 +159,7 @@ class Shapes:
                 items += drawn.items
                 if len(items) > MOST_ITEMS:
                     wrong(element, f"a user shape draws more than {MOST_ITEMS} pieces")
-        return Primitive(tuple(items), outer_pad(tuple(items)))
+        return Primitive(tuple(items), None)
 
     def _filled(self, element: Element, shape: Primitive, factor: float, default: Line | None) -> Primitive:
         filling = self.filling(element)
@@ -232,9 +245,7 @@ class Shapes:
         centre = complex(length(element, "centerX", factor), length(element, "centerY", factor))
         radius, other = abs(start - centre), abs(end - centre)
         if abs(radius - other) > ROUGH_ARC_MM:
-            self.remarks.count(
-                "{n} arc{s} whose ends lie at unequal distances from the centre {are} read as they stand"
-            )
+            self.remarks.count("{n} arc{s} with ends at unequal distances from the centre {are} kept as written")
         if radius == 0.0 or other == 0.0:
             return None, 0.0
         return centre, sweep(start, end, centre, clockwise=truth(element, "clockwise", default=True))

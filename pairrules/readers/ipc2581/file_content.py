@@ -23,6 +23,14 @@ if TYPE_CHECKING:
 
 ROOT = "IPC-2581"
 
+_BROKEN = {
+    4: "the XML is empty",
+    5: "the XML goes on after its end",
+    76: "an element is closed by the end tag of another",
+    77: "the XML breaks off before its end",
+}
+"""Our words for the parser's commonest codes; its own change with its version. Source: libxml2, `xmlParserErrors`."""
+
 
 @dataclass(slots=True)
 class Step:
@@ -85,9 +93,9 @@ def read_content(data: bytes) -> FileContent:
                 record = None
                 _free(element)
     except etree.XMLSyntaxError as error:
-        text = clean((error.msg or "unknown fault").partition(", line ")[0])
+        found = _BROKEN.get(getattr(error, "code", 0), "the XML is not well formed")
         place = f"line {error.lineno}" if error.lineno else ""
-        raise BoardError(f"the XML is broken: {text}", place=place, remedy="export the file again") from None
+        raise BoardError(found, place=place, remedy="export the file again") from None
     return walk.content
 
 

@@ -10,7 +10,7 @@ from pairrules.readers.ipc2581.drawing import Item, erasing, placed
 from pairrules.readers.ipc2581.elements import NO_NET, child, children, length, line, size, word, wrong
 from pairrules.readers.ipc2581.features import STYLES, Line, Shapes
 from pairrules.readers.ipc2581.layers import DRILLED, FileLayer, LayerTable
-from pairrules.readers.ipc2581.primitives import Primitive, outer_pad
+from pairrules.readers.ipc2581.primitives import outer_pad
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Transform, location
 
@@ -117,13 +117,11 @@ class SetReader:
             elif tag == "PinRef":
                 pins.append((word(inner, "componentRef", ref), word(inner, "pin")))
             elif tag not in _SILENT and not tag.endswith("Attribute"):
-                shape = self.shapes.shape(inner, self.factor)
+                shape = self.shapes.as_pad(inner, self.factor)
                 if shape is None:
                     self.remarks.unknown(tag, "pads")
         if shape is None and stack in self.copper.stacks:
             shape = self.copper.stacks[stack].shapes.get(layer)
-        if shape is not None and shape.pad is None and any(not item.erase for item in shape.items):
-            shape = Primitive(shape.items, outer_pad(shape.items))  # a pad drawn by lines
         self._stand(net, element)
         if erase:
             self.copper.draw(erasing(placed(shape.items if shape else (), by)), layer, net)
@@ -207,7 +205,7 @@ class SetReader:
                 continue
             shape = next(
                 (
-                    self.shapes.shape(drawn, self.factor)
+                    self.shapes.as_pad(drawn, self.factor)
                     for name, drawn in children(inner)
                     if name not in {"Location", *_SILENT}
                 ),

@@ -1,7 +1,7 @@
 """Whether the file's mirrored parts are mirrored first and then turned, or the other way: asked of their pads.
 
-The standard is read as mirrored first (see `transform`); exporters differ, and for a part turned by a right angle the two
-readings lie upside down to each other. Pads that name their pins show which one the exporter meant.
+The standard is read as mirrored first (see `transform`); exporters differ, and for a part turned by a right angle the
+two readings lie upside down to each other. Pads that name their pins show which one the exporter meant.
 """
 
 from __future__ import annotations

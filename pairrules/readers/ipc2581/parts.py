@@ -69,7 +69,7 @@ def read_package(element: Element, parts: Parts, shapes: Shapes, factor: float) 
             elif name == "Location":
                 by = by.then(Transform(shift=location(part, factor)))
             elif name not in STYLES:
-                shape = shapes.shape(part, factor)
+                shape = shapes.as_pad(part, factor)
         pin = PackagePin(by, shape, word(inner, "type").upper() == "THRU")
         pins[word(inner, "number")] = pin
         names.setdefault(word(inner, "name"), pin)

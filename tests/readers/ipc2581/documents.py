@@ -40,14 +40,14 @@ def document(
     more_features: str = "",
 ) -> bytes:
     """A document whose step "board" draws `sets` on `layer`, and `bottom` on BOTTOM."""
-    drilled = f'<LayerFeature layerRef="DRILL">{drill}</LayerFeature>' if drill else ""
-    below = f'<LayerFeature layerRef="BOTTOM">{bottom}</LayerFeature>' if bottom else ""
+    others = f'<LayerFeature layerRef="BOTTOM">{bottom}</LayerFeature>' if bottom else ""
+    others += f'<LayerFeature layerRef="DRILL">{drill}</LayerFeature>' if drill else ""
     return (
         '<?xml version="1.0" encoding="UTF-8"?>\n<IPC-2581 revision="C" xmlns="http://webstds.ipc.org/2581">\n'
         f"<Content>{content}{dictionaries}</Content>{bom}\n"
         f'<Ecad name="e"><CadHeader units="{units}">{specs}</CadHeader>\n<CadData>{layers}{stackup}\n'
         f'<Step name="board">{profile}{step}\n'
-        f'<LayerFeature layerRef="{layer}">\n{sets}\n</LayerFeature>{below}{drilled}{more_features}</Step>{more_steps}\n'
+        f'<LayerFeature layerRef="{layer}">\n{sets}\n</LayerFeature>{others}{more_features}</Step>{more_steps}\n'
         "</CadData></Ecad></IPC-2581>\n"
     ).encode()
 

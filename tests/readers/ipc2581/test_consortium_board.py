@@ -65,9 +65,7 @@ def test_parts_pins_and_values(board: Board) -> None:
     assert parts["C52"][1].value == "10NF"
     assert parts["C52"][1].side == "bottom"
     assert (board.pads.part == parts["U1"][0]).sum() == 576
-    pin = next(
-        i for i in range(len(board.pads)) if board.pads.part[i] == parts["C52"][0] and board.pads.pin[i] == "2"
-    )
+    pin = next(i for i in range(len(board.pads)) if board.pads.part[i] == parts["C52"][0] and board.pads.pin[i] == "2")
     assert board.pads.at[pin] == pytest.approx((10.005045 * 25.4, 12.015265 * 25.4), abs=1e-9)
     assert board.pads.layer[pin] == 1
     assert board.nets[board.pads.net[pin]] == "GND"

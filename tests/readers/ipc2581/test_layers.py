@@ -43,7 +43,8 @@ def test_functions_that_carry_copper(function: str) -> None:
 
 
 @pytest.mark.parametrize(
-    "function", ["SILKSCREEN", "SOLDERMASK", "SOLDERPASTE", "PASTEMASK", "DOCUMENT", "ASSEMBLY", "DIELCORE", "LEGEND", "COURTYARD"]
+    "function",
+    ["SILKSCREEN", "SOLDERMASK", "SOLDERPASTE", "PASTEMASK", "DOCUMENT", "ASSEMBLY", "DIELCORE", "LEGEND", "COURTYARD"],
 )
 def test_what_is_drawn_on_other_layers_is_no_copper(function: str) -> None:
     layers = LAYERS + f'<Layer name="X" layerFunction="{function}" side="TOP" polarity="POSITIVE"/>'
@@ -63,7 +64,9 @@ def test_without_a_stackup_the_sides_order_the_layers() -> None:
 
 
 def test_with_a_stackup_its_sequence_orders_them() -> None:
-    board = four(stack(row("BOTTOM", "0.04", sequence=4), row("TOP", "0.03", sequence=1), row("IN2", "0.02", sequence=2)))
+    board = four(
+        stack(row("BOTTOM", "0.04", sequence=4), row("TOP", "0.03", sequence=1), row("IN2", "0.02", sequence=2))
+    )
     assert board.copper == ("TOP", "IN2", "BOTTOM", "IN1")
     assert "copper layer IN1 is not in the file's stackup; its height is unknown" in board.missing
 
@@ -131,7 +134,11 @@ def test_revision_a_s_free_attributes_are_read_and_said() -> None:
         '<DoubleAttribute name="layer_dielectric" value="4.3"/>'
         '<NonstandardAttribute name="LOSS_TANGENT" type="DOUBLE" value="0.02"/>'
     )
-    board = four(stack(row("TOP", "0.1"), row("IN1", "0.1"), row("D1", "0.2", more=told), row("IN2", "0.1"), row("BOTTOM", "0.1")))
+    board = four(
+        stack(
+            row("TOP", "0.1"), row("IN1", "0.1"), row("D1", "0.2", more=told), row("IN2", "0.1"), row("BOTTOM", "0.1")
+        )
+    )
     (core,) = (layer for layer in board.stackup.layers if layer.name == "D1")
     assert (core.permittivity, core.loss_tangent) == (4.3, 0.02)
     said = "layer_dielectric, which revision A does not define, is read as the relative permittivity"

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-
 import numpy as np
 import pytest
 
@@ -16,7 +15,8 @@ THREE = (
     '<Layer name="TOP" layerFunction="CONDUCTOR" side="TOP" polarity="POSITIVE"/>'
     '<Layer name="MID" layerFunction="CONDUCTOR" side="INTERNAL" polarity="POSITIVE"/>'
     '<Layer name="BOTTOM" layerFunction="CONDUCTOR" side="BOTTOM" polarity="POSITIVE"/>'
-    '<Layer name="DRILL" layerFunction="DRILL" side="ALL" polarity="POSITIVE"><Span fromLayer="TOP" toLayer="MID"/></Layer>'
+    '<Layer name="DRILL" layerFunction="DRILL" side="ALL" polarity="POSITIVE">'
+    '<Span fromLayer="TOP" toLayer="MID"/></Layer>'
 )
 MID = '<LayerFeature layerRef="MID"><Set/></LayerFeature>'
 
@@ -150,7 +150,8 @@ PACKAGE = (
 
 
 def component(ref: str, layer: str, before: str, more: str = "") -> str:
-    return f'<Component refDes="{ref}" packageRef="SO2" part="p" layerRef="{layer}" mountType="SMT">{more}{before}</Component>'
+    named = f'refDes="{ref}" packageRef="SO2" part="p" layerRef="{layer}" mountType="SMT"'
+    return f"<Component {named}>{more}{before}</Component>"
 
 
 def logical(net: str, *pins: str, attributes: str = "") -> str:
@@ -203,17 +204,21 @@ def test_pads_show_whether_parts_are_turned_before_they_are_mirrored() -> None:
     shown = pad(ROUND, before='<Location x="11" y="7"/>', pin="U1.1")
     board = read(document(feature(line((0, 0), (1, 0))), bottom=shown, step=step))
     assert board.pads.at[1] == pytest.approx((16, 7))
-    assert "mirrored parts are read as turned first and then mirrored, as the places of their pads show" in board.missing
+    assert (
+        "mirrored parts are read as turned first and then mirrored, as the places of their pads show" in board.missing
+    )
 
 
 def test_parts_and_their_values() -> None:
     told = '<NonstandardAttribute name="VALUE" value="10k" type="STRING"/>'
     step = PACKAGE + component("R1", "TOP", AT, told) + component("R2", "BOTTOM", AT) + component("R3", "TOP", AT)
     items = (
-        '<BomItem OEMDesignNumberRef="i" quantity="2"><RefDes name="R1"/><RefDes name="R2"/><Characteristics category="ELECTRICAL">'
+        '<BomItem OEMDesignNumberRef="i" quantity="2"><RefDes name="R1"/><RefDes name="R2"/>'
+        '<Characteristics category="ELECTRICAL">'
         '<Textual textualCharacteristicName="TYPE" textualCharacteristicValue="film"/>'
         '<Textual textualCharacteristicName="VALUE" textualCharacteristicValue="22k"/></Characteristics></BomItem>'
-        '<BomItem OEMDesignNumberRef="k" quantity="1"><RefDes name="R3"/><Characteristics category="ELECTRICAL"><Measured '
+        '<BomItem OEMDesignNumberRef="k" quantity="1"><RefDes name="R3"/><Characteristics category="ELECTRICAL">'
+        "<Measured "
         'measuredCharacteristicName="RESISTANCE" measuredCharacteristicValue="47" engineeringUnitOfMeasure="kohm"/>'
         "</Characteristics></BomItem>"
     )
@@ -247,13 +252,17 @@ def test_copper_of_no_net_is_foreign(name: str) -> None:
 
 
 def test_kinds_of_nets() -> None:
-    step = "".join(logical(net, attributes=f'netClass="{kind}"') for net, kind in (("G", "GROUND"), ("P", "POWER"), ("S", "CLK")))
+    step = "".join(
+        logical(net, attributes=f'netClass="{kind}"') for net, kind in (("G", "GROUND"), ("P", "POWER"), ("S", "CLK"))
+    )
     board = read(document(feature(line((0, 0), (1, 0)), net="A"), step=step))
     assert dict(zip(board.nets, board.net_kinds, strict=True)) == {"A": "", "G": "ground", "P": "power", "S": ""}
 
 
 def test_a_net_stands_on_the_line_of_its_first_copper() -> None:
-    sets = "\n".join([feature(line((0, 0), (1, 0)), net="A"), feature(line((0, 1), (1, 1)), net="B"), pad(ROUND, net="A")])
+    sets = "\n".join(
+        [feature(line((0, 0), (1, 0)), net="A"), feature(line((0, 1), (1, 1)), net="B"), pad(ROUND, net="A")]
+    )
     data = document(sets)
     board = read(data)
     lines = data.decode().split("\n")
@@ -263,7 +272,8 @@ def test_a_net_stands_on_the_line_of_its_first_copper() -> None:
 
 def test_physical_net_points_name_copper_that_names_none() -> None:
     points = "".join(
-        f'<PhyNetPoint x="{x}" y="0" layerRef="TOP" netNode="END" exposure="EXPOSED"><Circle diameter="1"/></PhyNetPoint>'
+        f'<PhyNetPoint x="{x}" y="0" layerRef="TOP" netNode="END" exposure="EXPOSED"><Circle diameter="1"/>'
+        "</PhyNetPoint>"
         for x in (0, 2)
     )
     step = f'<PhyNetGroup name="g"><PhyNet name="SIG">{points}</PhyNet></PhyNetGroup>'
@@ -301,7 +311,9 @@ def test_the_polarity_of_package_pins_says_which_is_plus() -> None:
     package = PACKAGE.replace('number="1"', 'number="1" pinPolarity="MINUS"').replace(
         'number="2"', 'number="2" pinPolarity="PLUS"'
     )
-    step = package + component("U1", "TOP", AT) + logical("L1", "U1.1", attributes='netPair="L2"') + logical("L2", "U1.2")
+    step = (
+        package + component("U1", "TOP", AT) + logical("L1", "U1.1", attributes='netPair="L2"') + logical("L2", "U1.2")
+    )
     (pair,) = read(document(feature(line((0, 0), (1, 0))), step=step)).pairs
     assert (pair.plus, pair.minus) == ("L2", "L1")
 
@@ -315,5 +327,3 @@ def test_a_partner_that_is_not_on_the_board_makes_no_pair() -> None:
 def test_a_route_s_net_holds_for_its_sets() -> None:
     step = f'<Route net="R"><LayerFeature layerRef="TOP"><Set><Features>{line((0, 0), (1, 0))}</Features></Set></LayerFeature></Route>'  # noqa: E501
     assert read(document("<Set/>", step=step)).nets == ("R",)
-
-

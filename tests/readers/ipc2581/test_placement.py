@@ -111,7 +111,8 @@ def test_arcs_turn_the_other_way_when_mirrored() -> None:
 
 
 @pytest.mark.parametrize(
-    ("clockwise", "sweep"), [('clockwise="true"', -math.pi / 2), ('clockwise="false"', 3 * math.pi / 2), ("", -math.pi / 2)]
+    ("clockwise", "sweep"),
+    [('clockwise="true"', -math.pi / 2), ('clockwise="false"', 3 * math.pi / 2), ("", -math.pi / 2)],
 )
 def test_curved_steps_turn_as_told_and_clockwise_where_not(clockwise: str, sweep: float) -> None:
     drawn = (

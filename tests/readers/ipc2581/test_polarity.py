@@ -121,7 +121,9 @@ def test_a_plane_of_clearances_alone_is_negative_whatever_its_flag() -> None:
 
 def test_a_positive_plane_with_pads_of_parts_stays_positive() -> None:
     plane = LAYERS.replace('layerFunction="CONDUCTOR" side="BOTTOM"', 'layerFunction="PLANE" side="BOTTOM"')
-    board = read(document(feature(line((0, 0), (1, 0))), bottom=pad('<Circle diameter="1"/>', pin="U1.1"), layers=plane))
+    board = read(
+        document(feature(line((0, 0), (1, 0))), bottom=pad('<Circle diameter="1"/>', pin="U1.1"), layers=plane)
+    )
     assert board.areas == ()
     assert len(board.pads) == 1
 

@@ -20,10 +20,19 @@ AREAS = {
     "rect centre": ('<RectCenter width="3" height="2"/>', 6),
     "rect corner": ('<RectCorner lowerLeftX="1" lowerLeftY="1" upperRightX="4" upperRightY="3"/>', 6),
     "rect round": ('<RectRound width="3" height="2" radius="0.5"/>', 6 - (4 - PI) * 0.25),
-    "rect round, one corner": ('<RectRound width="3" height="2" radius="0.5" upperLeft="true"/>', 6 - (4 - PI) * 0.25 / 4),
-    "rect round, three": ('<RectRound width="3" height="2" radius="0.5" upperLeft="false"/>', 6 - (4 - PI) * 0.25 * 3 / 4),
+    "rect round, one corner": (
+        '<RectRound width="3" height="2" radius="0.5" upperLeft="true"/>',
+        6 - (4 - PI) * 0.25 / 4,
+    ),
+    "rect round, three": (
+        '<RectRound width="3" height="2" radius="0.5" upperLeft="false"/>',
+        6 - (4 - PI) * 0.25 * 3 / 4,
+    ),
     "rect chamfered": ('<RectCham width="3" height="2" chamfer="0.5"/>', 6 - 4 * 0.125),
-    "rect chamfered, two": ('<RectCham width="3" height="2" chamfer="0.5" upperRight="true" lowerLeft="1"/>', 6 - 2 * 0.125),
+    "rect chamfered, two": (
+        '<RectCham width="3" height="2" chamfer="0.5" upperRight="true" lowerLeft="1"/>',
+        6 - 2 * 0.125,
+    ),
     "oval": ('<Oval width="3" height="2"/>', 2 + PI),
     "oval upright": ('<Oval width="2" height="3"/>', 2 + PI),
     "ellipse": ('<Ellipse width="3" height="2"/>', PI * 1.5),
@@ -51,7 +60,7 @@ AREAS = {
     "moire": ('<Moire diameter="5" ringWidth="0.5" ringGap="0.5" ringNumber="2"/>', PI * (6.25 - 4 + 2.25 - 1)),
     # A cross of two lines of 4 by 1, no rings.
     "moire cross": (
-        '<Moire diameter="5" ringWidth="0.5" ringGap="0.5" ringNumber="0" lineWidth="1" lineLength="4" lineAngle="30"/>',
+        '<Moire diameter="5" ringWidth="1" ringGap="1" ringNumber="0" lineWidth="1" lineLength="4" lineAngle="30"/>',
         7,
     ),
     "contour": (f"<Contour>{box(0, 0, 3, 2)}{box(1, 0.5, 2, 1.5, tag='Cutout')}</Contour>", 5),
@@ -74,7 +83,7 @@ def test_spokes_of_a_round_thermal() -> None:
     a, b, g = 1.0, 2.0, 0.5
 
     def segment(r: float) -> float:  # area of a disc within |y| < g/2 and x > 0
-        return (g / 2 * math.sqrt(r * r - g * g / 4) + r * r * math.asin(g / 2 / r))
+        return g / 2 * math.sqrt(r * r - g * g / 4) + r * r * math.asin(g / 2 / r)
 
     drawn = '<Thermal shape="ROUND" outerDiameter="4" innerDiameter="2" spokeCount="4" gap="0.5" spokeStartAngle="45"/>'
     assert area(drawn) == pytest.approx(PI * (b * b - a * a) - 4 * (segment(b) - segment(a)), abs=0.01)
@@ -114,7 +123,9 @@ def test_a_pad_drawn_by_lines_is_their_outline() -> None:
 
 
 def test_shapes_are_kept_once() -> None:
-    pads = read(document(pad('<Circle diameter="2"/>') + pad('<Circle diameter="2"/>') + pad('<Circle diameter="1"/>'))).pads
+    pads = read(
+        document(pad('<Circle diameter="2"/>') + pad('<Circle diameter="2"/>') + pad('<Circle diameter="1"/>'))
+    ).pads
     assert len(pads.shapes) == 2
     assert pads.shape.tolist() == [0, 0, 1]
 
@@ -141,10 +152,12 @@ def test_a_hollow_shape_with_a_line_is_its_outline() -> None:
 
 def test_a_filling_by_name_holds_for_the_polygon_too() -> None:
     fillings = (
-        '<DictionaryFillDesc units="MILLIMETER"><EntryFillDesc id="none"><FillDesc fillProperty="HOLLOW"/></EntryFillDesc>'
-        "</DictionaryFillDesc>"
+        '<DictionaryFillDesc units="MILLIMETER"><EntryFillDesc id="none"><FillDesc fillProperty="HOLLOW"/>'
+        "</EntryFillDesc></DictionaryFillDesc>"
     )
     outline = box(0, 0, 2, 2).replace("</Polygon>", '<FillDescRef id="none"/></Polygon>')
-    board = read(document(feature(f"<Contour>{outline}</Contour>") + feature('<Circle diameter="1"/>'), dictionaries=fillings))
+    board = read(
+        document(feature(f"<Contour>{outline}</Contour>") + feature('<Circle diameter="1"/>'), dictionaries=fillings)
+    )
     assert len(board.areas) == 1
     assert "1 hollow shape without line width is no copper and is left out" in board.missing

@@ -36,7 +36,13 @@ BOARD: dict[str, Any] = {
             "package": "R0603",
             "side": "top",
             "pins": [
-                {"pin": "1", "net": "IN_P", "at": [10, 10], "layer": "TOP", "pad": {"shape": "rect", "size": [0.8, 0.9]}},
+                {
+                    "pin": "1",
+                    "net": "IN_P",
+                    "at": [10, 10],
+                    "layer": "TOP",
+                    "pad": {"shape": "rect", "size": [0.8, 0.9]},
+                },
                 {
                     "pin": "2",
                     "net": "IN_N",
@@ -51,8 +57,22 @@ BOARD: dict[str, Any] = {
             "package": "JACK",
             "side": "top",
             "pins": [
-                {"pin": "1", "net": "IN_P", "at": [40, 9], "layer": "all", "drill": 0.8, "pad": {"shape": "circle", "size": 1.4}},
-                {"pin": "2", "net": "GROUND", "at": [44, 9], "layer": "all", "drill": 0.8, "pad": {"shape": "oval", "size": [1.2, 2]}},
+                {
+                    "pin": "1",
+                    "net": "IN_P",
+                    "at": [40, 9],
+                    "layer": "all",
+                    "drill": 0.8,
+                    "pad": {"shape": "circle", "size": 1.4},
+                },
+                {
+                    "pin": "2",
+                    "net": "GROUND",
+                    "at": [44, 9],
+                    "layer": "all",
+                    "drill": 0.8,
+                    "pad": {"shape": "oval", "size": [1.2, 2]},
+                },
             ],
         },
         {
@@ -155,10 +175,10 @@ def same(read: Board, told: Board, *, antipads: bool = True) -> None:
         for hole, expected in zip(mine.holes, other.holes, strict=True):
             assert hole == pytest.approx(expected, abs=1e-6)
     assert read.outline == pytest.approx(told.outline, abs=1e-6)
-    for layer, expected in zip(read.stackup.layers, told.stackup.layers, strict=True):
-        assert (layer.name, layer.kind) == (expected.name, expected.kind)
+    for layer, meant in zip(read.stackup.layers, told.stackup.layers, strict=True):
+        assert (layer.name, layer.kind) == (meant.name, meant.kind)
         for name in ("thickness_mm", "permittivity", "loss_tangent"):
-            assert getattr(layer, name) == pytest.approx(getattr(expected, name), abs=1e-9)
+            assert getattr(layer, name) == pytest.approx(getattr(meant, name), abs=1e-9)
 
 
 @pytest.mark.parametrize("units", ["MILLIMETER", "INCH", "MICRON"])
