@@ -21,6 +21,7 @@ Bools = npt.NDArray[np.bool_]
 INTERFACE = -2
 PLANE = -1
 _TOUCH = 1e-9  # two points nearer than this share of the section's size are one
+_FURTHER = 100.0  # how much further half-infinite planes are followed than interfaces, where no whole plane is
 _BESIDE = 1e-6  # how far beside a piece, as a share of the section's size, the dielectric is looked up
 
 
@@ -98,6 +99,7 @@ def _outlines(region: Region) -> tuple[Complexes, Complexes, Ints]:
         owners.extend([owner] * len(following))
 
     left, right = region.x_range[0] - region.reach, region.x_range[1] + region.reach
+    further = _FURTHER * region.reach if region.bottom is None and region.top is None else 0.0
     for place in region.members:
         conductor = section.conductors[place]
         if conductor.strip is not None:
@@ -111,7 +113,10 @@ def _outlines(region: Region) -> tuple[Complexes, Complexes, Ints]:
         for x0, x1 in plane.intervals or ():
             a, b = max(x0 / scale, left), min(x1 / scale, right)
             if a < b:
-                add([complex(a, plane.y / scale), complex(b, plane.y / scale)], PLANE, closed=False)
+                # without a whole plane the charge on a half-infinite one fades slowly
+                points = [a - further] * (a == left and further > 0.0) + [a, b]
+                points += [b + further] * (b == right and further > 0.0)
+                add([complex(x, plane.y / scale) for x in points], PLANE, closed=False)
     for y in sorted({edge / scale for layer in section.layers for edge in (layer.y0, layer.y1)}):
         if _within(y, region):
             add([complex(left, y), complex(right, y)], INTERFACE, closed=False)

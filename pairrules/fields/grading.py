@@ -17,25 +17,36 @@ import numpy as np
 from pairrules.fields.boundary import INTERFACE, Bools, Complexes, Floats, Ints, Pieces, Region
 
 _POWER = 3.0
-_GROWTH = 0.42  # β at copper corners and edges
-_WEAK_GROWTH = 0.55  # β at corners where only dielectrics meet
+_OF_COPPER = 0.65  # β at copper corners in one dielectric
+_OF_EDGE = 0.27  # β at the edges of strips and planes
+_OF_EDGE_BETWEEN = 0.3  # the same where dielectrics meet
+_OF_COPPER_BETWEEN = 0.36  # β at copper corners where dielectrics meet
+_OF_INTERFACE = 0.3  # β on an interface that ends at copper
+_OF_DIELECTRIC = 0.55  # β at corners where only dielectrics meet
 _STRAIGHT = 0.75  # corners that turn by less (radians) carry no singular charge worth grading: round outlines
 _SAMPLES = 24
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Cells:
-    """n cells: start, end complex (n,) [region's scale]; piece: the piece each belongs to (n,)."""
+    """n cells: start, end complex (n,) [region's scale]; owner, left, right as in `Pieces` (n,)."""
 
     start: Complexes
     end: Complexes
-    piece: Ints
+    owner: Ints
+    left: Complexes
+    right: Complexes
 
 
 def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     """Grade the pieces; `refine` multiplies the number of cells."""
     corner, at_start, at_end = _corners(pieces)
     points, weight, sharp, reach = _scales(pieces, region, corner, at_start, at_end)
+    divided = _cut_beside_corners(pieces, points[sharp])
+    if divided is not pieces:
+        pieces = divided
+        corner, at_start, at_end = _corners(pieces)
+        points, weight, sharp, reach = _scales(pieces, region, corner, at_start, at_end)
     s = np.linspace(0.0, 1.0, _SAMPLES + 1)
     way = pieces.end - pieces.start
     length = np.abs(way)
@@ -44,20 +55,19 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     apart = x[:, :, None] - points[None, None, :]
     square = apart.real**2 + apart.imag**2
     rows = np.arange(len(way))
-    foreign = square / (weight * weight)[None, None, :]
+    foreign = square * (weight * weight)[None, None, :]
     foreign[:, :, ~sharp] = np.inf
     foreign[rows, :, at_start] = np.inf
     foreign[rows, :, at_end] = np.inf
     rate = 1.0 / np.sqrt(np.maximum(foreign.min(axis=2, initial=np.inf), 1e-30))
     # one over the size that the piece's own two ends ask for, times the slope of the sampling: smooth down to the corner
     demand = rate * (length[:, None] * slope[None, :])
-    for end, run, run_slope in (
-        (at_start, graded, _slope_ratio(s)),
-        (at_end, 1.0 - graded, _slope_ratio(1.0 - s)),
-    ):
+    ratio = _slope_ratio(s)
+    for end, run, across in ((at_start, graded, ratio), (at_end, 1.0 - graded, ratio[::-1])):
         scale = (reach[end] / length)[:, None]
-        beta = weight[end][:, None]
-        near = run_slope[None, :] / (beta * np.cbrt(scale))  # dρ / (β ρ^(2/3) ℓ^(1/3)), p = 3
+        between = (pieces.owner == INTERFACE) & (weight[end] != _OF_DIELECTRIC)
+        beta = np.where(between, _OF_INTERFACE, weight[end])[:, None]
+        near = across[None, :] / (beta * np.cbrt(scale))  # dρ / (β ρ^(2/3) ℓ^(1/3))
         beyond = slope[None, :] / (beta * np.maximum(run[None, :], 1e-12))
         own = np.where(run[None, :] < scale, near, beyond)
         own[~sharp[end]] = 0.0
@@ -68,6 +78,39 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     total = running[:, -1]
     count = np.maximum(np.ceil(total * refine - 1e-6), 1.0).astype(np.int64)
     return _divide(pieces, running, count, s)
+
+
+def _cut_beside_corners(pieces: Pieces, corners: Complexes) -> Pieces:
+    """Cut long pieces where they pass a corner so closely that sampling them from end to end would miss it."""
+    way = pieces.end - pieces.start
+    length = np.abs(way)
+    offset = (corners[None, :] - pieces.start[:, None]) * (way.conj() / length)[:, None]
+    along, apart = offset.real, np.abs(offset.imag)
+    to_end = np.minimum(along, length[:, None] - along)
+    spacing = (4.5 / _SAMPLES) * np.cbrt(np.maximum(to_end, 0.0) ** 2 * length[:, None])
+    of, which = np.nonzero((to_end > apart + 1e-8) & (apart < spacing))
+    if not len(of):
+        return pieces
+    order = np.lexsort((along[of, which], of))
+    of, at, gap = of[order], along[of, which][order], apart[of, which][order]
+    opens = np.ones(len(of), dtype=np.bool_)
+    opens[1:] = (of[1:] != of[:-1]) | (at[1:] - at[:-1] > np.maximum(gap[1:], gap[:-1]))
+    group = np.cumsum(opens) - 1
+    middle = np.bincount(group, at) / np.bincount(group)  # corners that lie close together ask for one cut
+    of = of[opens]
+    source = np.concatenate((np.arange(len(way)), of))
+    begin = np.concatenate((np.zeros(len(way)), middle))
+    order = np.lexsort((begin, source))
+    source, begin = source[order], begin[order]
+    first = np.where(begin == 0.0, pieces.start[source], pieces.start[source] + begin * (way / length)[source])
+    last = np.empty_like(first)
+    last[:-1] = first[1:]
+    closes = np.append(source[1:] != source[:-1], True)
+    last[closes] = pieces.end[source[closes]]
+    far = np.stack((pieces.far[source, 0] & (begin == 0.0), pieces.far[source, 1] & closes), axis=1)
+    return Pieces(
+        start=first, end=last, owner=pieces.owner[source], left=pieces.left[source], right=pieces.right[source], far=far
+    )
 
 
 def _divide(pieces: Pieces, running: Floats, count: Ints, s: Floats) -> Cells:
@@ -87,18 +130,18 @@ def _divide(pieces: Pieces, running: Floats, count: Ints, s: Floats) -> Cells:
     end[:-1] = start[1:]
     last = number == count[piece] - 1
     end[last] = pieces.end[piece[last]]
-    return Cells(start=start, end=end, piece=piece)
+    return Cells(start=start, end=end, owner=pieces.owner[piece], left=pieces.left[piece], right=pieces.right[piece])
 
 
 def _two_sided(t: Floats) -> tuple[Floats, Floats]:
-    """x = t³/(t³ + (1−t)³) and dx/dt."""
+    """The graded share t³/(t³ + (1−t)³) of a piece's length, and its slope."""
     u = 1.0 - t
     below = t**3 + u**3
     return t**3 / below, 3.0 * (t * u) ** 2 / below**2
 
 
 def _slope_ratio(t: Floats) -> Floats:
-    """(dx/dt) / x^(2/3) for `_two_sided`, in the form that stays exact at t = 0."""
+    """Slope of `_two_sided` over x^(2/3), in the form that stays exact at t = 0."""
     u = 1.0 - t
     return 3.0 * u * u / np.cbrt(t**3 + u**3) ** 4
 
@@ -123,7 +166,16 @@ def _scales(
     far = np.zeros(count, dtype=np.bool_)
     far[at_start[pieces.far[:, 0]]] = True
     far[at_end[pieces.far[:, 1]]] = True
-    weight = np.where(has_copper, _GROWTH, _WEAK_GROWTH)
+    sheet = copper & ~np.isnan(pieces.left)
+    has_sheet, has_interface = np.zeros(count, dtype=np.bool_), np.zeros(count, dtype=np.bool_)
+    for chosen, marked in ((sheet, has_sheet), (~copper, has_interface)):
+        marked[at_start[chosen]] = True
+        marked[at_end[chosen]] = True
+    weight = np.select(
+        [has_sheet & has_interface, has_sheet, has_copper & has_interface, has_copper],
+        [_OF_EDGE_BETWEEN, _OF_EDGE, _OF_COPPER_BETWEEN, _OF_COPPER],
+        _OF_DIELECTRIC,
+    )
     # turning at corners where exactly two pieces of one kind meet head to tail
     way = (pieces.end - pieces.start) / np.abs(pieces.end - pieces.start)
     meeting = np.bincount(at_start, minlength=count) + np.bincount(at_end, minlength=count)

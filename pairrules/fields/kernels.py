@@ -18,7 +18,10 @@ import numpy as np
 
 from pairrules.fields.boundary import Bools, Complexes, Floats, Ints
 
-_NEAR = 1.25  # cells nearer than this times the sum of their lengths are integrated exactly
+_BLOCK = 8192  # pairs worked on at once, few enough to stay in the processor's cache
+_BUFFERS = 14
+_FAR = 150.0  # beyond this κx the potential between two planes is below any rounding
+_NEAR = 1.6  # cells nearer than this times the sum of their lengths are integrated exactly
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -32,7 +35,7 @@ class Surroundings:
 def interaction(
     centre: Complexes, way: Complexes, rows_potential: Ints, rows_flux: Ints, around: Surroundings
 ) -> tuple[Floats, Floats]:
-    """Mean potentials (times 2π ε0) and fluxes (times 2π) of cells with unit charge [charge / ε0 for the flux].
+    """Mean potentials (times 2π ε0) and fluxes (times 2π ε0) of cells with unit charge.
 
     Parameters
     ----------
@@ -44,110 +47,227 @@ def interaction(
     -------
     (m, n) and (k, n).
     """
-    potential = np.zeros((len(rows_potential), len(centre)))
-    flux = np.zeros((len(rows_flux), len(centre)))
+    way = _squared_up(way)
+    potential = np.empty((len(rows_potential), len(centre)))
+    flux = np.empty((len(rows_flux), len(centre)))
+    at_once = max(_BLOCK // len(centre), 1)
+    room = np.empty((_BUFFERS, at_once, len(centre)))  # fresh memory for every step would cost more than the arithmetic
     for rows, found, wants_flux in ((rows_potential, potential, False), (rows_flux, flux, True)):
-        for first in range(0, len(rows), 64):
-            block = rows[first : first + 64]
-            found[first : first + 64] = _rows(centre, way, block, around, wants_flux=wants_flux)
+        for first in range(0, len(rows), at_once):
+            block = rows[first : first + at_once]
+            _rows(
+                centre, way, block, around, room[:, : len(block)], found[first : first + at_once], wants_flux=wants_flux
+            )
     return potential, flux
 
 
-def _rows(centre: Complexes, way: Complexes, rows: Ints, around: Surroundings, *, wants_flux: bool) -> Floats:
-    kappa = 0.0 if around.height is None else np.pi / (2.0 * around.height)
-    square = way * way
-    spread = (square[rows, None] + square[None, :]) / 24.0
-    z = centre[rows, None] - centre[None, :]
-    here = (np.arange(len(rows)), rows)
-    z[here] = 1.0
-    size = np.abs(way)
-    reach = (_NEAR * (size[rows, None] + size[None, :])) ** 2
-    if wants_flux:
-        found = _far_flux(z, way[rows], spread, kappa)
-    else:
-        found = _far_potential(z, spread, kappa)
-    near = (z.real**2 + z.imag**2) < reach
-    near[here] = False
-    found += _near(z, way, rows, near, spread, wants_flux=wants_flux)
-    if wants_flux:
-        found[here] = 0.0
-    else:
-        itself = 1.5 - np.log(size[rows])
-        if kappa:
-            itself -= np.log(kappa) + kappa * kappa / 36.0 * square[rows].real
-        found[here] = itself
-    if not around.grounded:
-        return found
-    image = centre[rows, None] - centre.conj()[None, :]
-    spread = (square[rows, None] + square.conj()[None, :]) / 24.0
-    if wants_flux:
-        found -= _far_flux(image, way[rows], spread, kappa)
-    else:
-        found -= _far_potential(image, spread, kappa)
-    shifts = (0.0,) if around.height is None else (0.0, 2.0 * around.height)
-    for shift in shifts:
-        shifted = image - 1j * shift
-        near = (shifted.real**2 + shifted.imag**2) < reach
-        if near.any():
-            found -= _near(shifted, way.conj(), rows, near, spread, wants_flux=wants_flux, testing=way)
-    return found
+def _squared_up(way: Complexes) -> Complexes:
+    """Rounding taken off ways that are level or upright, so that the faster forms for those hold."""
+    tiny = 1e-10 * np.abs(way)
+    squared: Complexes = np.where(np.abs(way.real) < tiny, 0.0, way.real) + 1j * np.where(
+        np.abs(way.imag) < tiny, 0.0, way.imag
+    )
+    return squared
 
 
-def _far_potential(z: Complexes, spread: Complexes, kappa: float) -> Floats:
-    if kappa == 0.0:
-        square = z * z
-        found: Floats = (spread / square).real - 0.5 * np.log(z.real**2 + z.imag**2)
-        return found
-    a = np.clip(kappa * z.real, -300.0, 300.0)
-    b = kappa * z.imag
-    sinh, sin = np.sinh(a), np.sin(b)
-    below = sinh * sinh + sin * sin
-    coth = (sinh * np.sqrt(1.0 + sinh * sinh) - 1j * (sin * np.cos(b))) / below
-    found = -0.5 * np.log(below) + (spread * (kappa * kappa * (coth * coth - 1.0))).real
-    return found
-
-
-def _far_flux(z: Complexes, way: Complexes, spread: Complexes, kappa: float) -> Floats:
-    if kappa == 0.0:
-        slope = 1.0 / z
-        bend = 2.0 * slope * slope
-    else:
-        a = np.clip(kappa * z.real, -300.0, 300.0)
-        b = kappa * z.imag
-        sinh, sin = np.sinh(a), np.sin(b)
-        slope = kappa * (sinh * np.sqrt(1.0 + sinh * sinh) - 1j * (sin * np.cos(b))) / (sinh * sinh + sin * sin)
-        bend = 2.0 * (slope * slope - kappa * kappa)
-    found: Floats = -(way[:, None] * (slope * (1.0 + spread * bend))).imag
-    return found
-
-
-def _near(
-    z: Complexes,
+def _rows(
+    centre: Complexes,
     way: Complexes,
     rows: Ints,
-    near: Bools,
-    spread: Complexes,
+    around: Surroundings,
+    room: Floats,
+    found: Floats,
     *,
     wants_flux: bool,
-    testing: Complexes | None = None,
-) -> Floats:
-    """What the exact mean of the singular term adds to its expansion, at the near pairs; 0 elsewhere."""
-    correction = np.zeros(z.shape)
-    i, j = np.nonzero(near)
-    apart, wide = z[i, j], spread[i, j]
-    own = (way if testing is None else testing)[rows[i]]
-    u, v = own / apart, way[j] / apart
-    corners = np.stack((1 + (u + v) / 2, 1 + (u - v) / 2, 1 - (u - v) / 2, 1 - (u + v) / 2))
-    square = corners.real**2 + corners.imag**2
-    touching = square < 1e-24
-    log = 0.5 * np.log(np.where(touching, 1.0, square)) + 1j * np.arctan2(corners.imag, corners.real)
-    sign = np.array([1.0, -1.0, -1.0, 1.0])[:, None]
-    if wants_flux:
-        mean = (sign * corners * log).sum(axis=0) / (u * v)
-        slope = 1.0 / apart
-        expanded = slope * (1.0 + 2.0 * wide * slope * slope)
-        correction[i, j] = -(own * (mean * slope - expanded)).imag
+) -> None:
+    """Fill `found` with the means for some rows; `room` is memory to work in."""
+    kappa = 0.0 if around.height is None else np.pi / (2.0 * around.height)
+    dx, dx2, dy, apart, image_apart, reach, wide, u, v, below, spare, other, sinh2, sinh_cosh = room
+    square = way * way / 24.0
+    slanted = bool(np.any(square.imag))
+    own, x, y, size = way[rows], centre.real, centre.imag, _NEAR * np.abs(way)
+    here = (np.arange(len(rows)), rows)
+    np.add(square.real[rows, None], square.real, out=wide)
+    np.add(size[rows, None], size, out=reach)
+    np.multiply(reach, reach, out=reach)
+    np.subtract(x[rows, None], x, out=dx)
+    np.multiply(dx, dx, out=dx2)
+    np.subtract(y[rows, None], y, out=dy)
+    np.multiply(dy, dy, out=apart)
+    apart += dx2
+    near = apart < reach
+    near[here] = False
+    exact = [(1.0, near, centre, way)]  # sign, where, charges (or their images) to integrate exactly
+    if around.height is not None and 2.0 * size.max() > 2.0 * around.height - np.ptp(y):
+        for shift in (
+            2.0 * around.height,
+            -2.0 * around.height,
+        ):  # where cells are about as long as the planes are apart
+            exact.append((1.0, dx2 + (dy - shift) ** 2 < reach, centre + 1j * shift, way))
+    if kappa:
+        _hyperbolic(dx, kappa, sinh2, sinh_cosh, spare)
+        _slope_between(kappa * y[rows], -kappa * y, kappa, apart, here, u, v, sinh2, sinh_cosh, spare)
     else:
-        mean = 0.5 * (sign * corners * corners * log).sum(axis=0) / (u * v) - 1.5
-        correction[i, j] = -(mean.real + (wide / (apart * apart)).real)
-    return correction
+        _slope(dx, dy, apart, here, u, v, spare)
+    lean = square.imag[rows, None] + square.imag if slanted else None
+    _expanded(u, v, wide, lean, kappa, own, found, spare, other, wants_flux=wants_flux)
+    found[here] = 0.0
+    if around.grounded:
+        np.add(y[rows, None], y, out=dy)
+        np.multiply(dy, dy, out=image_apart)
+        image_apart += dx2
+        if (y[rows] - size[rows]).min() + (y - size).min() < 0.0:
+            exact.append((-1.0, image_apart < reach, centre.conj(), way.conj()))
+        if around.height is not None and (y + size).max() > around.height:
+            shift = 2.0 * around.height
+            exact.append((-1.0, dx2 + (dy - shift) ** 2 < reach, centre.conj() + 1j * shift, way.conj()))
+        if kappa:
+            _slope_between(kappa * y[rows], kappa * y, kappa, image_apart, None, u, v, sinh2, sinh_cosh, spare)
+        else:
+            _slope(dx, dy, image_apart, None, u, v, spare)
+        lean = square.imag[rows, None] - square.imag if slanted else None
+        _expanded(u, v, wide, lean, kappa, own, below, spare, other, wants_flux=wants_flux)
+        found -= below
+    if not wants_flux:
+        np.divide(image_apart if around.grounded else 1.0, apart, out=below)
+        np.log(below, out=below)
+        below *= 0.5
+        found += below
+        found[here] += 1.5 - np.log(np.abs(own))
+        if kappa:
+            found[here] -= np.log(kappa) + 4.0 * kappa * kappa / 6.0 * square[rows].real
+    for sign, where, charges, ways in exact:
+        i, j = np.nonzero(where)
+        if len(i):
+            found[i, j] += sign * _near(centre[rows[i]] - charges[j], own[i], ways[j], wants_flux=wants_flux)
+
+
+def _slope(
+    dx: Floats, dy: Floats, below: Floats, here: tuple[Ints, Ints] | None, u: Floats, v: Floats, spare: Floats
+) -> None:
+    """1/z = u − iv from z = dx + i dy and `below` = |z|², which is set to 1 at the places `here`, where z = 0."""
+    if here is not None:
+        below[here] = 1.0
+    np.divide(1.0, below, out=spare)
+    np.multiply(dx, spare, out=u)
+    np.multiply(dy, spare, out=v)
+
+
+def _hyperbolic(dx: Floats, kappa: float, sinh2: Floats, sinh_cosh: Floats, spare: Floats) -> None:
+    """sinh² and sinh·cosh of κ dx, which a charge and its image share."""
+    np.multiply(kappa, dx, out=sinh_cosh)
+    np.clip(sinh_cosh, -_FAR, _FAR, out=sinh_cosh)
+    np.exp(sinh_cosh, out=sinh_cosh)
+    np.divide(1.0, sinh_cosh, out=spare)
+    np.subtract(sinh_cosh, spare, out=sinh2)
+    sinh_cosh += spare
+    sinh2 *= 0.5
+    sinh_cosh *= 0.5
+    sinh_cosh *= sinh2
+    sinh2 *= sinh2
+
+
+def _slope_between(
+    angle_i: Floats,
+    angle_j: Floats,
+    kappa: float,
+    below: Floats,
+    here: tuple[Ints, Ints] | None,
+    u: Floats,
+    v: Floats,
+    sinh2: Floats,
+    sinh_cosh: Floats,
+    spare: Floats,
+) -> None:
+    """κ coth κz = u − iv, and |sinh κz|² into `below`; κ times the height of z is the sum of the two angles."""
+    np.multiply(np.sin(angle_i)[:, None], np.cos(angle_j), out=spare)
+    np.multiply(np.cos(angle_i)[:, None], np.sin(angle_j), out=v)
+    spare += v
+    spare *= spare
+    np.add(sinh2, spare, out=below)
+    if here is not None:
+        below[here] = 1.0
+    np.divide(kappa, below, out=spare)
+    np.multiply(np.sin(2.0 * angle_i)[:, None], np.cos(2.0 * angle_j), out=v)
+    np.multiply(np.cos(2.0 * angle_i)[:, None], np.sin(2.0 * angle_j), out=u)
+    v += u
+    v *= 0.5
+    v *= spare
+    np.multiply(sinh_cosh, spare, out=u)
+
+
+def _expanded(
+    u: Floats,
+    v: Floats,
+    wide: Floats,
+    lean: Floats | None,
+    kappa: float,
+    way: Complexes,
+    found: Floats,
+    spare: Floats,
+    other: Floats,
+    *,
+    wants_flux: bool,
+) -> None:
+    """Mean potential without its logarithm, or mean flux, to second order in the cells' lengths, into `found`.
+
+    K″ = κ² − K′² and K‴ = 2 K′ (K′² − κ²); with w = (d_i² + d_j²)/24 · (K′² − κ²) the potential's second-order term is
+    Re w, and the flux is −Im d_i K′ (1 + 2w). wide, lean: real and imaginary part of (d_i² + d_j²)/24, lean `None` where
+    every cell lies level or upright. spare, other: memory to work in.
+    """
+    np.multiply(u, u, out=spare)
+    np.multiply(v, v, out=other)
+    level, upright = way.real[:, None], way.imag[:, None]
+    if lean is not None:
+        real, imaginary = spare - other - kappa * kappa, -2.0 * u * v
+        if not wants_flux:
+            found[:] = wide * real - lean * imaginary
+            return
+        wr, wi = 1.0 + 2.0 * (wide * real - lean * imaginary), 2.0 * (wide * imaginary + lean * real)
+        found[:] = level * (v * wr - u * wi) - upright * (u * wr + v * wi)
+        return
+    if not wants_flux:
+        np.subtract(spare, other, out=found)
+        if kappa:
+            found -= kappa * kappa
+        found *= wide
+        return
+    if np.any(level):
+        np.multiply(3.0, spare, out=found)
+        found -= other
+        found -= kappa * kappa
+        found *= wide
+        found += 0.5
+        found *= v
+        found *= 2.0 * level
+    else:
+        found[:] = 0.0
+    if np.any(upright):
+        other *= -3.0
+        other += spare
+        other -= kappa * kappa
+        other *= wide
+        other += 0.5
+        other *= u
+        other *= 2.0 * upright
+        found -= other
+
+
+def _near(apart: Complexes, own: Complexes, way: Complexes, *, wants_flux: bool) -> Floats:
+    """What the exact mean of the singular term adds to its expansion, for pairs of cells `apart`."""
+    slope = 1.0 / apart
+    u, v = own * slope, way * slope
+    bend = (u * u + v * v) / 24.0
+    half_sum, half_difference = 0.5 * (u + v), 0.5 * (u - v)
+    corners = np.concatenate((1.0 + half_sum, 1.0 - half_sum, 1.0 + half_difference, 1.0 - half_difference))
+    size = corners.real**2 + corners.imag**2
+    log = np.empty_like(corners)
+    log.real = 0.5 * np.log(np.maximum(size, 1e-300))
+    log.imag = np.arctan2(corners.imag, corners.real)
+    log *= corners
+    if not wants_flux:
+        log *= corners
+    plus, minus, across, back = log.reshape(4, -1)
+    mean = (plus + minus - across - back) / (u * v)
+    found: Floats = -(u * (mean - 1.0 - 2.0 * bend)).imag if wants_flux else 1.5 - 0.5 * mean.real - bend.real
+    return found

@@ -5,8 +5,8 @@ from __future__ import annotations
 from pairrules.fields.boundary import Region
 from pairrules.fields.cross_section import CrossSection
 
-_REACH_OPEN = 40.0  # how far open interfaces and planes are followed, in sizes of what stands in the region
-_REACH_SHUT = 5.0  # the same between two infinite planes, in distances of the planes: e^(−5π) is 2e−7
+_REACH_OPEN = 16.0  # how far open interfaces and planes are followed, in sizes of what stands in the region
+_REACH_SHUT = 4.0  # the same between two infinite planes, in distances of the planes: e^(−4π) is 4e−6
 
 
 def regions_of(section: CrossSection) -> tuple[Region, ...]:

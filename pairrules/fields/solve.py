@@ -53,7 +53,7 @@ class SectionSolution:
 
     C, Cair: Maxwell capacitance matrices in the order of `section.conductors` [F/m], with the dielectrics and in air.
     G_per_omega: conductance over angular frequency [F/m] from the loss tangents (the negative imaginary part of the
-    complex capacitance; loss tangents taken as the same at all frequencies). pair: the legs, or `None` where the section
+    complex capacitance, to first order in them; taken as the same at all frequencies). pair: the legs, or `None` where the section
     has not two signals. unknowns: charges solved for. air: charges in air, region by region.
     """
 
@@ -118,14 +118,11 @@ class _Found:
 
 
 def _solve_region(region: Region, refine: float) -> _Found:
-    pieces = pieces_of(region)
-    cells = cells_of(pieces, region, refine=refine)
-    copper_first = np.argsort(pieces.owner[cells.piece] == INTERFACE, kind="stable")
-    piece = cells.piece[copper_first]
+    cells = cells_of(pieces_of(region), region, refine=refine)
+    copper_first = np.argsort(cells.owner == INTERFACE, kind="stable")
     start, end = cells.start[copper_first], cells.end[copper_first]
-    owner = pieces.owner[piece]
+    owner, left, right = cells.owner[copper_first], cells.left[copper_first], cells.right[copper_first]
     copper = int(np.count_nonzero(owner != INTERFACE))
-    left, right = pieces.left[piece], pieces.right[piece]
     between = np.nonzero((owner >= 0) & ~np.isnan(left) & ~np.isnan(right) & (left != right))[0]
     rows_flux = np.concatenate((np.arange(copper, len(owner)), between))
     centre, way, around = _placed(region, start, end)
@@ -192,18 +189,15 @@ def _with_dielectrics(
         return in_air.astype(np.complex128), np.zeros((0, in_air.shape[1]), dtype=np.complex128)
     copper = len(in_air)
     ratio = (left - right) / (np.pi * (left + right))
-    lossless = not (np.any(left.imag) or np.any(right.imag))
     through = flux[:, copper:] - flux[:, :copper] @ response
     driven = flux[:, :copper] @ in_air
-    if lossless:
-        weight = ratio.real[:, None]
-        matrix = weight * through
-        np.fill_diagonal(matrix, matrix.diagonal() + 1.0)
-        interface = np.linalg.solve(matrix, -weight * driven).astype(np.complex128)
-    else:
-        complex_matrix = ratio[:, None] * through
-        np.fill_diagonal(complex_matrix, complex_matrix.diagonal() + 1.0)
-        interface = np.linalg.solve(complex_matrix, -ratio[:, None] * driven)
+    matrix = ratio.real[:, None] * through
+    matrix.flat[:: len(matrix) + 1] += 1.0
+    interface = np.linalg.solve(matrix, -ratio.real[:, None] * driven).astype(np.complex128)
+    if np.any(ratio.imag):
+        # loss tangents are small: what they add is in quadrature, and linear in them. Single precision serves for it
+        added = -ratio.imag[:, None] * (driven + through @ interface.real)
+        interface.imag = np.linalg.solve(matrix.astype(np.float32), added.astype(np.float32))
     return in_air - response @ interface, interface
 
 
