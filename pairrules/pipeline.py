@@ -9,12 +9,16 @@ from fnmatch import fnmatchcase
 from pathlib import Path
 
 from pairrules import __version__
+from pairrules.balance.electrical import electrical
+from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.board.board import Board
 from pairrules.board.given_stackup import with_stackup
 from pairrules.checks.judge_pair import judge_pair, verdict
-from pairrules.checks.measures import geometric_measures
+from pairrules.checks.measures import balance_figures, geometric_measures, with_electrical
 from pairrules.checks.rule import Subject, all_rules
 from pairrules.errors import BoardError, SettingsError, UsageError
+from pairrules.fields.cross_section import CrossSection
+from pairrules.fields.solve import SectionSolution
 from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.measure import measure_link
 from pairrules.pairing.find_links import PairRequest, find_links
@@ -23,7 +27,11 @@ from pairrules.pairing.reference_nets import reference_nets
 from pairrules.readers.reader import read_board
 from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart
 from pairrules.settings.limit import RuleForm
+from pairrules.settings.pair_class import PairClass
 from pairrules.settings.read_settings import Settings, find_settings, read_settings
+
+BESIDE_RULES = frozenset({"neighbour-tilt"})
+"""Rules that look at foreign copper beside the legs, which costs most to find and is left out unless one is asked."""
 
 Progress = Callable[[str, int, int], None]
 """Told what is being done, how much of it is done, and how much there is."""
@@ -53,18 +61,29 @@ def check(
     """
     opened = _open(path, settings, pairs=pairs, step=step)
     rules, board = all_rules(), opened.board
-    copper = BoardCopper(board, opened.reference)
+    copper, store = BoardCopper(board, opened.reference), dict[CrossSection, SectionSolution]()
     results = []
     for done, link in enumerate(opened.links):
         if progress is not None:
             progress("measuring pairs", done, len(opened.links))
         klass = opened.settings.class_of(link.name, _net_names(board, link), link.klass)
         reach = None if klass is None else klass.reach_mm
-        geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference, copper=copper)
-        measures = geometric_measures(geometry)
-        breakout = 0.0 if klass is None else klass.breakout_mm or 0.0
-        subject = Subject(board=board, link=link, geometry=geometry, measures=measures, breakout_mm=breakout)
         limits = opened.settings.limits_for(klass)
+        beside = bool(limits.keys() & BESIDE_RULES)
+        geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference, copper=copper, beside=beside)
+        figures = electrical(board, link, geometry, klass, copper=copper, store=store)
+        measures = with_electrical(geometric_measures(geometry), figures)
+        breakout = 0.0 if klass is None else klass.breakout_mm or 0.0
+        subject = Subject(
+            board=board,
+            link=link,
+            geometry=geometry,
+            measures=measures,
+            breakout_mm=breakout,
+            electrical=figures,
+            klass=klass,
+            reference=opened.reference,
+        )
         judgement = judge_pair(subject, limits, rules)
         found = _found_pair(board, link, None if klass is None else klass.name)
         notes = _notes(link, None if klass is None else klass.name, bool(limits))
@@ -83,9 +102,11 @@ def check(
                 routed=geometry.routed,
                 verdict=verdict(judgement, geometry.routed),
                 measures=measures,
+                balance=balance_figures(figures, () if klass is None else klass.frequencies),
                 findings=judgement.findings,
                 unjudged=judgement.unjudged,
-                missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *notes))),
+                missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *_unknown(figures, klass), *notes))),
+                assumed=figures.assumed,
             )
         )
     return Result(version=__version__, board=opened.summary, pairs=tuple(results), unpaired=opened.unpaired)
@@ -140,6 +161,16 @@ def _open(path: str | Path, settings: str | Path | None, *, pairs: str, step: st
     return _Opened(
         board=board, summary=summary, settings=chosen, reference=reference, links=links, unpaired=pairing.unpaired
     )
+
+
+def _unknown(figures: PairElectrical, klass: PairClass | None) -> tuple[str, ...]:
+    """Why electrical figures are unknown: always for the sections, for the rest only where the class asks for it."""
+    wanted = {"sections"}
+    if klass is not None and (klass.frequencies or klass.mask):
+        wanted.add("balance")
+    if klass is not None and klass.pickup is not None:
+        wanted |= {"pickup", "electric"} if klass.pickup.flux_density_t is not None else {"electric"}
+    return tuple(why for group, why in figures.missing.items() if group in wanted)
 
 
 def _notes(link: Link, klass: str | None, limited: bool) -> tuple[str, ...]:

@@ -141,6 +141,7 @@ class PairResult:
     findings: tuple[Finding, ...] = ()
     unjudged: tuple[Unjudged, ...] = ()
     missing: tuple[str, ...] = ()
+    assumed: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

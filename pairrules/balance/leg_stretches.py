@@ -80,8 +80,8 @@ def _runs(
 ) -> list[tuple[tuple[float, float], tuple[float, float]]]:
     """Coupled runs of plus between two lengths, with the length of minus that each faces.
 
-    Runs that follow one another with no more than a sliver between are one. A run that minus faces backwards is left out: there the
-    legs carry the signal in opposite directions.
+    Runs that follow one another with no more than a sliver between are one. A run that minus faces backwards is left
+    out: there the legs carry the signal in opposite directions.
     """
     beside = _advancing(minus, profile)
     runs: list[list[float]] = []

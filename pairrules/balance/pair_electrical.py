@@ -18,12 +18,13 @@ class PairSection:
     plus_mm, minus_mm: (from, to) in track length from the source end; of equal ends where that leg has no part in it.
     hop: how many parts in series lie between the source and it.
     layer: index into `Board.copper`. start, end: (x, y) [mm] on plus, or on the leg that is alone.
-    width_plus_mm, width_minus_mm, gap_mm: NaN where they do not apply.
+    width_plus_mm, width_minus_mm, gap_mm: NaN where they do not apply. thickness_mm: of the copper.
     C, L: per metre [F/m], [H/m], (2, 2) for both legs, (1, 1) for one. R: d.c. resistance per metre of each [ohm/m].
     loss: conductance over angular frequency, like C [F/m].
     impedance_diff_ohm, impedance_common_ohm: of the pair; `None` for one leg.
     delay: of the odd mode, or of the leg alone [s/m].
-    planes: copper layers whose copper bounds the section. neighbours: nets of copper beside it on its own layer.
+    planes: copper layers whose copper bounds the section. neighbours: nets of copper beside it on its own layer, −1 for
+        none. coupling: of each neighbour to each leg of the section [F/m].
     """
 
     leg: str
@@ -36,6 +37,7 @@ class PairSection:
     width_plus_mm: float
     width_minus_mm: float
     gap_mm: float
+    thickness_mm: float
     C: Floats
     L: Floats
     R: Floats
@@ -45,6 +47,12 @@ class PairSection:
     delay: float
     planes: tuple[int, ...]
     neighbours: tuple[int, ...]
+    coupling: tuple[tuple[float, ...], ...] = ()
+
+    @property
+    def widths_mm(self) -> tuple[float, ...]:
+        """Width of each leg of the section."""
+        return tuple(w for w in (self.width_plus_mm, self.width_minus_mm) if w == w)  # noqa: PLR0124 (NaN is absent)
 
     @property
     def capacitance_tilt(self) -> float:
@@ -160,10 +168,10 @@ class PairElectrical:
     source_ohm: each leg's source resistance (plus, minus) [ohm]; `None` where no source is given.
     magnetic_v: differential voltage from the class's field; electric_v: the greatest from its swinging neighbours, and
         `aggressor` the net it comes from. area_mm2: vector loop area (x, y, z).
-    series, terminations, bias, changes: parts and layer changes, for rules.
+    series, hung, terminations, bias, changes: parts and layer changes, for rules.
     quasi_static_hz: up to where the cross-sections' quasi-static fields hold.
     assumed: what the figures rest on beside what is given, one sentence each.
-    missing: figure group ("sections", "balance", "pickup") to why it is unknown.
+    missing: figure group ("sections", "balance", "pickup" by a field, "electric" pickup) to why it is unknown.
     """
 
     sections: tuple[PairSection, ...] = ()
@@ -181,6 +189,7 @@ class PairElectrical:
     aggressor: str = ""
     area_mm2: tuple[float, float, float] | None = None
     series: tuple[Placed, ...] = ()
+    hung: tuple[Placed, ...] = ()
     terminations: tuple[Termination, ...] = ()
     bias: tuple[BiasPath, ...] = ()
     changes: tuple[LayerChange, ...] = ()

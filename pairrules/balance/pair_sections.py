@@ -39,6 +39,7 @@ class _Matrices:
     diff: float | None
     common: float | None
     delay: float
+    coupling: tuple[tuple[float, ...], ...]
 
 
 def pair_sections(
@@ -95,7 +96,9 @@ def _of_pair(solution: SectionSolution) -> _Matrices | str:
     signals = solution.section.signals
     loss = solution.G_per_omega[np.ix_(signals, signals)]
     delay = math.sqrt(pair.er_odd) / SPEED_OF_LIGHT
-    return _Matrices(pair.C, pair.L, loss, pair.impedance_diff_ohm, pair.impedance_common_ohm, delay)
+    return _Matrices(
+        pair.C, pair.L, loss, pair.impedance_diff_ohm, pair.impedance_common_ohm, delay, _coupling(solution)
+    )
 
 
 def _of_one(solution: SectionSolution) -> _Matrices | str:
@@ -105,7 +108,13 @@ def _of_one(solution: SectionSolution) -> _Matrices | str:
         return "no copper that could be its reference lies above or below it"
     L = 1.0 / (SPEED_OF_LIGHT**2 * air)
     loss = solution.G_per_omega[leg : leg + 1, leg : leg + 1]
-    return _Matrices(np.array([[C]]), np.array([[L]]), loss, None, None, math.sqrt(L * C))
+    return _Matrices(np.array([[C]]), np.array([[L]]), loss, None, None, math.sqrt(L * C), _coupling(solution))
+
+
+def _coupling(solution: SectionSolution) -> tuple[tuple[float, ...], ...]:
+    signals = solution.section.signals
+    others = [i for i in range(len(solution.section.conductors)) if i not in signals]
+    return tuple(tuple(-float(solution.C[i, leg]) for leg in signals) for i in others)
 
 
 def _length(cut: Cut) -> float:
@@ -177,6 +186,7 @@ def _section(cut: Cut, matrices: _Matrices, heights: Heights) -> PairSection:
         width_plus_mm=width.get("plus", math.nan),
         width_minus_mm=width.get("minus", math.nan),
         gap_mm=gap,
+        thickness_mm=high - low,
         C=matrices.C,
         L=matrices.L,
         R=np.array([COPPER_OHM_M / a if a > 0 else math.nan for a in area]),
@@ -186,4 +196,5 @@ def _section(cut: Cut, matrices: _Matrices, heights: Heights) -> PairSection:
         delay=matrices.delay,
         planes=tuple(k for k, _ in cut.planes),
         neighbours=cut.beside_nets,
+        coupling=matrices.coupling,
     )

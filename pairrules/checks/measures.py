@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
+from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.geometry.pair_geometry import LegRoute, PairGeometry
-from pairrules.result import Measures
+from pairrules.result import BalancePoint, Measures
 
 
 def geometric_measures(geometry: PairGeometry) -> Measures:
@@ -28,6 +31,39 @@ def geometric_measures(geometry: PairGeometry) -> Measures:
         stub_plus_mm=plus.stub_mm if plus else None,
         stub_minus_mm=minus.stub_mm if minus else None,
         reference_uncovered_mm=geometry.reference_uncovered_mm,
+    )
+
+
+def with_electrical(measures: Measures, figures: PairElectrical) -> Measures:
+    """The figures with those that the electrical stage found."""
+    plus, minus = figures.delay_plus_ps, figures.delay_minus_ps
+    return replace(
+        measures,
+        delay_plus_ps=plus,
+        delay_minus_ps=minus,
+        delay_mismatch_ps=None if plus is None or minus is None else plus - minus,
+        impedance_diff_ohm=figures.impedance_diff_ohm,
+        impedance_common_ohm=figures.impedance_common_ohm,
+        resistance_mismatch_ohm=figures.resistance_mismatch_ohm,
+        capacitance_mismatch_pf=figures.capacitance_mismatch_pf,
+        inductance_mismatch_nh=figures.inductance_mismatch_nh,
+    )
+
+
+def balance_figures(figures: PairElectrical, frequencies: tuple[float, ...]) -> tuple[BalancePoint, ...]:
+    """The balance at the class's own frequencies, in their rising order."""
+    return tuple(
+        BalancePoint(
+            frequency_hz=point.frequency_hz,
+            source_db=point.source_db,
+            trace_db=point.trace_db,
+            cable_db=point.cable_db,
+            load_db=point.load_db,
+            total_db=point.total_db,
+            rejection_db=point.rejection_db,
+        )
+        for point in figures.balance
+        if point.frequency_hz in frequencies
     )
 
 

@@ -53,7 +53,7 @@ class CrossCuts:
         drawn = of.half[shape] > 0
         shapes[drawn] = shapely.buffer(shapes[drawn], of.half[shape][drawn])
         pieces, row = shapely.get_parts(shapely.intersection(lines[cut], shapes), return_index=True)
-        use = shapely.get_dimensions(pieces) == 1
+        use = (shapely.get_dimensions(pieces) == 1) & ~shapely.is_empty(pieces)
         pieces, row = pieces[use], row[use]
         bounds = shapely.get_point(pieces, 0), shapely.get_point(pieces, -1)
         own = cut[row]

@@ -1,0 +1,272 @@
+"""The link of one pair as a chain of elements: source, cable, sections, vias, series parts, what hangs on it, load."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+
+from pairrules.balance.board_parts import hung_elements, series_element, value_of
+from pairrules.balance.cable import cable_elements
+from pairrules.balance.load_models import LoadModel, load_model
+from pairrules.balance.networks import DifferenceInput, Element, Line, Series, Shunt, via
+from pairrules.balance.pair_electrical import PairSection
+from pairrules.balance.source_models import source_elements
+from pairrules.balance.tolerance import Spread, spreads_of
+from pairrules.balance.track_resistance import track_resistance
+from pairrules.board.board import Board
+from pairrules.board.columns import Floats
+from pairrules.geometry.pair_geometry import LegRoute, ViaUse
+from pairrules.pairing.link import Link
+from pairrules.settings.pair_class import PairClass
+
+VIA_PITCH = 5.08e-9 / 25.4e-3
+"""Inductance of a barrel per metre [H/m] before the logarithm: L = 5.08 h (ln(4h/d) + 1) nH, h and d in inch.
+Source: H. Johnson and M. Graham, High-Speed Digital Design, 1993 (recalled, not re-read)."""
+
+
+class NoModelError(Exception):
+    """The link cannot be modelled; the sentence says what is missing."""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class BoardLink:
+    """A link ready to be solved.
+
+    Parameters
+    ----------
+    elements: source first. load: the receiver's model. spreads: values that tolerances let vary.
+    source_ohm: each leg's source resistance [ohm]. assumed: one sentence each.
+    """
+
+    elements: tuple[Element, ...]
+    load: LoadModel
+    spreads: tuple[Spread, ...]
+    source_ohm: tuple[float, float]
+    assumed: tuple[str, ...]
+
+
+def board_link(
+    board: Board,
+    link: Link,
+    klass: PairClass,
+    sections: tuple[PairSection, ...],
+    legs: tuple[LegRoute, LegRoute],
+    frequencies: Floats,
+    reference: frozenset[int],
+) -> BoardLink:
+    """The chain of a pair of the class.
+
+    Raises: NoModelError where source or load are not given, or a value that counts is not known.
+    """
+    if klass.source is None:
+        raise NoModelError(f"no source is given: add source to class {klass.name} in the settings")
+    assumed: list[str] = []
+    try:
+        source = source_elements(klass.source.kind, klass.source.values)
+        cable = () if klass.cable is None else cable_elements(klass.cable.values)
+        load = _load(klass)
+    except ValueError as error:
+        raise NoModelError(f"class {klass.name}: {error}") from error
+    steps = len(link.series)
+    hung = hung_elements(board, link, reference, load_step=steps, given=_given(klass))
+    if load is None and not any(step >= steps for step, _ in hung.shunts):
+        raise NoModelError(f"no load is given and no part makes one: add load to class {klass.name} in the settings")
+    if hung.unknown:
+        assumed.append(f"left out, as their values are not known: {', '.join(hung.unknown)}")
+    elements: list[Element] = [*source, *cable]
+    for hop in range(steps + 1):
+        elements += _lines(tuple(s for s in sections if s.hop == hop), frequencies)
+        elements += _vias(board, link, legs, hop)
+        elements += [shunt for step, shunt in hung.shunts if step == hop]
+        if hop < steps:
+            part, note = series_element(board, link.series[hop])
+            if part is None:
+                raise NoModelError(note)
+            if note:
+                assumed.append(note)
+            elements.append(part)
+    model = load or LoadModel(elements=())
+    elements += model.elements
+    spreads = _spreads(klass, elements)
+    return BoardLink(
+        elements=tuple(elements),
+        load=model,
+        spreads=spreads,
+        source_ohm=_source_ohm(source),
+        assumed=tuple(assumed),
+    )
+
+
+def load_admittance(link: BoardLink, frequencies: Floats) -> Floats:
+    """Greatest admittance magnitude [S] of one leg's load in common mode at each frequency (F,)."""
+    omega = 2 * np.pi * frequencies[:, None]
+    total = np.zeros((len(frequencies), 2), dtype=np.complex128)
+    for element in link.elements:
+        if element.cause != "load":
+            continue
+        if isinstance(element, Shunt):
+            total += 1 / np.asarray(element.resistance) + 1j * omega * np.asarray(element.capacitance)
+        elif isinstance(element, DifferenceInput):
+            total += 1 / (np.asarray(element.r1) + np.asarray(element.r2))
+    found: Floats = np.abs(total).max(axis=1)
+    return found
+
+
+def _load(klass: PairClass) -> LoadModel | None:
+    if klass.load is None:
+        return None
+    return load_model(klass.load.kind, klass.load.values, klass.load.rejection)
+
+
+def _given(klass: PairClass) -> frozenset[str]:
+    """What the load says in full, so that parts of the board there are not counted again.
+
+    Plain impedances are the whole load as it is seen; the other kinds describe a device, to which parts add.
+    """
+    if klass.load is None:
+        return frozenset()
+    values = klass.load.values
+    if klass.load.kind == "impedance":
+        given = {key.partition(".")[2] for key in values if key.startswith(("plus.", "minus."))}
+        return frozenset(given | {key for key in values if key.startswith("across.")})
+    return frozenset({"across.resistance"} if "across" in values or klass.load.kind == "transformer" else ())
+
+
+def _lines(sections: tuple[PairSection, ...], frequencies: Floats) -> list[Element]:
+    """Sections of one hop as lines; where legs alone follow each other they advance together.
+
+    A coupled section has one length, the shorter leg's; what the longer leg has more is a line of its own with the
+    section's odd-mode figures.
+    """
+    found: list[Element] = []
+    alone: list[list[PairSection]] = [[], []]
+
+    def flush() -> None:
+        found.extend(_alone(alone, frequencies))
+        alone[0], alone[1] = [], []
+
+    for section in sections:
+        if section.leg != "both":
+            alone[0 if section.leg == "plus" else 1].append(section)
+            continue
+        flush()
+        lengths = [(span[1] - span[0]) * 1e-3 for span in (section.plus_mm, section.minus_mm)]
+        common = min(lengths)
+        R = track_resistance(section.R, section.widths_mm, section.thickness_mm, frequencies)
+        G = 2 * np.pi * frequencies[:, None, None] * section.loss
+        if common > 0:
+            found.append(
+                Line(
+                    cause="trace",
+                    inductance=section.L,
+                    capacitance=section.C,
+                    resistance=R[:, :, None] * np.eye(2),
+                    conductance=G,
+                    lengths=(common, common),
+                )
+            )
+        if max(lengths) - common > 1e-12:
+            excess = [length - common for length in lengths]
+            L = float(section.L[0, 0] + section.L[1, 1] - 2 * section.L[0, 1]) / 2
+            C = 1 / (L * (1 / section.delay) ** 2)
+            found.append(
+                Line(
+                    cause="trace",
+                    inductance=np.eye(2) * L,
+                    capacitance=np.eye(2) * C,
+                    resistance=R[:, :, None] * np.eye(2),
+                    lengths=excess,
+                )
+            )
+    flush()
+    return found
+
+
+def _alone(alone: list[list[PairSection]], frequencies: Floats) -> list[Element]:
+    """Stretches of each leg alone as uncoupled lines, leg by leg side by side, the longer leg's rest after them."""
+    found: list[Element] = []
+    for k in range(max(len(alone[0]), len(alone[1]))):
+        pair = [legs[k] if k < len(legs) else None for legs in alone]
+        some = next(s for s in pair if s is not None)
+        each = [s or some for s in pair]
+        lengths = [0.0 if s is None else _own_length(s) for s in pair]
+        R = np.stack([track_resistance(s.R, s.widths_mm, s.thickness_mm, frequencies)[:, 0] for s in each], axis=-1)
+        G = np.zeros((len(frequencies), 2, 2))
+        for leg, s in enumerate(each):
+            G[:, leg, leg] = 2 * np.pi * frequencies * s.loss[0, 0]
+        found.append(
+            Line(
+                cause="trace",
+                inductance=np.diag([float(s.L[0, 0]) for s in each]),
+                capacitance=np.diag([float(s.C[0, 0]) for s in each]),
+                resistance=R[:, :, None] * np.eye(2),
+                conductance=G,
+                lengths=lengths,
+            )
+        )
+    return found
+
+
+def _own_length(section: PairSection) -> float:
+    """Length [m] of the leg that is alone in a section."""
+    start, end = section.plus_mm if section.leg == "plus" else section.minus_mm
+    return (end - start) * 1e-3
+
+
+def _vias(board: Board, link: Link, legs: tuple[LegRoute, LegRoute], hop: int) -> list[Element]:
+    """The barrels of one hop, plus's and minus's together, as inductances; a barrel of unknown height is left out."""
+    inductance = [0.0, 0.0]
+    for leg, (route, hops) in enumerate(zip(legs, (link.hops_plus, link.hops_minus), strict=True)):
+        net = hops[min(hop, len(hops) - 1)].net
+        for use in route.vias:
+            if use.via >= 0 and int(board.vias.net[use.via]) == net and hop < len(hops):
+                inductance[leg] += barrel_inductance(board, use)
+    return list(via(inductance, (0.0, 0.0))) if any(inductance) else []
+
+
+def barrel_inductance(board: Board, use: ViaUse) -> float:
+    """Inductance [H] of a barrel alone, its return far away; 0 where height or drill is unknown."""
+    height = board.stackup.barrel_mm(use.enter, use.leave) * 1e-3
+    drill = float(board.vias.drill[use.via]) * 1e-3 if use.via >= 0 else math.nan
+    if not (height > 0 and drill > 0):
+        return 0.0
+    return max(0.0, VIA_PITCH * height * (math.log(4 * height / drill) + 1))
+
+
+def _spreads(klass: PairClass, elements: list[Element]) -> tuple[Spread, ...]:
+    found: list[Spread] = []
+    for cause, spec in (("source", klass.source), ("load", klass.load)):
+        share = 0.0 if spec is None else spec.values.get("tolerance", 0.0)
+        if share > 0:
+            found += spreads_of(elements, share, cause=cause)
+    return tuple(found)
+
+
+def part_spreads(board: Board, link: Link, elements: tuple[Element, ...]) -> tuple[Spread, ...]:
+    """Spreads of series parts whose tolerance is written on them; series elements stand in the order of the steps."""
+    found: list[Spread] = []
+    rows = [i for i, e in enumerate(elements) if isinstance(e, Series) and e.cause == "trace" and not _is_via(e)]
+    for row, step in zip(rows, link.series, strict=False):
+        for leg, part in enumerate((step.plus, step.minus)):
+            if part < 0 or step.plus == step.minus:
+                continue
+            value = value_of(board, part)
+            name = {"resistor": "resistance", "capacitor": "capacitance", "inductor": "inductance"}.get(value.kind)
+            if value.tolerance and name:
+                found.append(Spread(element=row, field=name, at=(leg,), share=value.tolerance))
+    return tuple(found)
+
+
+def _is_via(element: Series) -> bool:
+    bare = not np.any(np.asarray(element.resistance)) and np.all(np.isinf(np.asarray(element.capacitance)))
+    return bool(bare and np.any(np.asarray(element.inductance)))
+
+
+def _source_ohm(source: tuple[Element, ...]) -> tuple[float, float]:
+    total = np.zeros(2)
+    for element in source:
+        if isinstance(element, Series):
+            total += np.asarray(element.resistance)
+    return float(total[0]), float(total[1])

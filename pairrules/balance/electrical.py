@@ -1,0 +1,343 @@
+"""The electrical stage: one pair's sections, delays, mismatches, balance and pickup, with what each rests on.
+
+A pair's geometry comes in, one frozen record goes out. What cannot be known is `None`, and `missing` says why:
+"sections" for what the stackup lacks, "balance" for what the class leaves open, "pickup" for a field, "electric" for
+swinging neighbours.
+"""
+
+from __future__ import annotations
+
+import math
+from fnmatch import fnmatchcase
+
+import numpy as np
+
+from pairrules.balance.board_link import BoardLink, NoModelError, board_link, load_admittance, part_spreads
+from pairrules.balance.board_parts import bias_paths, placed_hung, placed_series, terminations
+from pairrules.balance.layer_changes import layer_changes
+from pairrules.balance.link_balance import balance_points
+from pairrules.balance.pair_electrical import BalanceAt, PairElectrical, PairSection
+from pairrules.balance.pair_sections import UnsolvableError, pair_sections
+from pairrules.balance.pickup import edge_pickup, magnetic_pickup
+from pairrules.balance.section_store import Store
+from pairrules.balance.stack_heights import Heights, heights_of, lacking
+from pairrules.balance.tolerance import tolerated
+from pairrules.board.board import Board
+from pairrules.board.columns import Floats
+from pairrules.geometry.board_copper import BoardCopper
+from pairrules.geometry.loop_area import vector_area
+from pairrules.geometry.pair_geometry import BARREL, JOIN, LegRoute, PairGeometry
+from pairrules.pairing.link import Link
+from pairrules.settings.pair_class import PairClass
+
+SPEED_OF_LIGHT = 299792458.0
+
+_SECTIONS, _BALANCE, _PICKUP = "sections", "balance", "pickup"
+
+
+def electrical(
+    board: Board, link: Link, geometry: PairGeometry, klass: PairClass | None, *, copper: BoardCopper, store: Store
+) -> PairElectrical:
+    """The electrical figures of one pair.
+
+    Parameters
+    ----------
+    klass: the pair's class, whose source, cable, load, frequencies, mask and pickup are used; `None` where it has none.
+    copper: of the board. store: sections solved so far; added to.
+    """
+    plus, minus = geometry.plus, geometry.minus
+    if plus is None or minus is None or geometry.profile_plus is None:
+        why = "a leg is not routed from end to end"
+        return PairElectrical(missing=dict.fromkeys((_SECTIONS, _BALANCE, _PICKUP), why))
+    stage = _Stage(board, link, geometry, klass, copper, store)
+    return stage.run(plus, minus)
+
+
+class _Stage:
+    """Gathers one pair's figures; lives only while they are worked out."""
+
+    def __init__(
+        self,
+        board: Board,
+        link: Link,
+        geometry: PairGeometry,
+        klass: PairClass | None,
+        copper: BoardCopper,
+        store: Store,
+    ) -> None:
+        self._board, self._link, self._geometry, self._klass = board, link, geometry, klass
+        self._copper, self._store = copper, store
+        self._reference = frozenset(copper.reference_nets)
+        self._missing: dict[str, str] = {}
+        self._assumed: list[str] = []
+
+    def run(self, plus: LegRoute, minus: LegRoute) -> PairElectrical:
+        board, link, klass = self._board, self._link, self._klass
+        gap = lacking(board.stackup)
+        heights = None if gap else heights_of(board.stackup)
+        if heights is None:
+            self._missing[_SECTIONS] = (
+                f"the stackup lacks the {gap[0]}: give it in the board file or under stackup: in the settings"
+            )
+            sections: tuple[PairSection, ...] = ()
+        else:
+            sections = self._sections(heights)
+        balance, source_ohm = self._balance(sections, plus, minus)
+        area = self._area(heights, plus, minus)
+        electric, aggressor = self._electric(sections, source_ohm)
+        changes = [
+            change
+            for leg, route, cover in (
+                ("plus", plus, self._geometry.cover_plus),
+                ("minus", minus, self._geometry.cover_minus),
+            )
+            if cover is not None
+            for change in layer_changes(board, self._reference, leg, route, cover)
+        ]
+        resistive = klass is not None and klass.load is not None and _gives_path(klass)
+        return PairElectrical(
+            sections=sections,
+            **_figures(sections, plus, minus, self._barrel_delay(heights)),
+            balance=balance,
+            source_ohm=source_ohm,
+            magnetic_v=self._magnetic(area),
+            electric_v=electric,
+            aggressor=aggressor,
+            area_mm2=area,
+            series=placed_series(link, plus, minus),
+            hung=placed_hung(board, link, plus, minus),
+            terminations=terminations(board, link, self._reference, plus, minus),
+            bias=bias_paths(board, link, load_resistance=resistive),
+            changes=tuple(changes),
+            quasi_static_hz=None if heights is None else _quasi_static(heights, sections),
+            assumed=tuple(dict.fromkeys(self._assumed)),
+            missing=dict(sorted(self._missing.items())),
+        )
+
+    def _sections(self, heights: Heights) -> tuple[PairSection, ...]:
+        if not self._reference:
+            self._missing[_SECTIONS] = "no net is known as reference: name it under reference_nets: in the settings"
+            return ()
+        own = frozenset(hop.net for hop in (*self._link.hops_plus, *self._link.hops_minus))
+        try:
+            sections = pair_sections(
+                self._geometry,
+                heights,
+                self._copper.cuts,
+                layers=self._board.copper,
+                own=own,
+                reference=self._reference,
+                store=self._store,
+            )
+        except UnsolvableError as error:
+            self._missing[_SECTIONS] = str(error)
+            return ()
+        self._assumed += heights.assumed
+        return sections
+
+    def _balance(
+        self, sections: tuple[PairSection, ...], plus: LegRoute, minus: LegRoute
+    ) -> tuple[tuple[BalanceAt, ...], tuple[float, float] | None]:
+        klass = self._klass
+        if klass is None or not (klass.frequencies or klass.mask):
+            self._missing[_BALANCE] = (
+                "the pair has no class with source, load and frequencies in the settings"
+                if klass is None
+                else f"no frequencies are given: add frequencies to class {klass.name} in the settings"
+            )
+            return (), None
+        if _SECTIONS in self._missing:
+            self._missing[_BALANCE] = self._missing[_SECTIONS]
+            return (), None
+        at = np.array(sorted({*klass.frequencies, *(f for f, _ in klass.mask)}), dtype=np.float64)
+        try:
+            link = board_link(self._board, self._link, klass, sections, (plus, minus), at, reference=self._reference)
+        except NoModelError as error:
+            self._missing[_BALANCE] = str(error)
+            return (), None
+        self._assumed += link.assumed
+        return self._points(link, at), link.source_ohm
+
+    def _points(self, link: BoardLink, at: Floats) -> tuple[BalanceAt, ...]:
+        points = balance_points(link.elements, at, link.load.own_rejection(at))
+        spreads = (*link.spreads, *part_spreads(self._board, self._link, link.elements))
+        spread = tolerated(link.elements, spreads, at) if spreads else None
+        admittance = load_admittance(link, at)
+        found = []
+        for i, point in enumerate(points):
+            size, gain = abs(point.conversion), abs(point.gain)
+            found.append(
+                BalanceAt(
+                    frequency_hz=point.frequency_hz,
+                    source_db=point.source_db,
+                    trace_db=point.trace_db,
+                    cable_db=point.cable_db,
+                    load_db=point.load_db,
+                    total_db=point.total_db,
+                    rejection_db=point.rejection_db,
+                    conversion_loss_db=_db(gain / size) if size > 0 and gain > 0 else None,
+                    worst_db=None if spread is None else _db(float(spread.worst[i])),
+                    bound_db=None if spread is None else _db(float(spread.bound_95[i])),
+                    load_ohm=1 / float(admittance[i]) if admittance[i] > 0 else math.inf,
+                )
+            )
+        return tuple(found)
+
+    def _area(self, heights: Heights | None, plus: LegRoute, minus: LegRoute) -> tuple[float, float, float] | None:
+        middles = [math.nan] * len(self._board.copper)
+        if heights is not None:
+            middles = [(low + high) / 2 for low, high in heights.copper]
+        if not len(plus.pieces) or not len(minus.pieces):
+            return None
+        x, y, z = vector_area(plus.pieces, minus.pieces, np.array(middles))
+        return float(x), float(y), float(z)
+
+    def _magnetic(self, area: tuple[float, float, float] | None) -> float | None:
+        pickup = None if self._klass is None else self._klass.pickup
+        if pickup is None or pickup.flux_density_t is None or pickup.frequency_hz is None:
+            self._missing.setdefault(_PICKUP, "no field is given: add pickup to the pair's class in the settings")
+            return None
+        if area is None or any(math.isnan(v) for v in area):
+            self._missing.setdefault(_PICKUP, "the heights of the layers are unknown, and with them the loop in space")
+            return None
+        found = magnetic_pickup(
+            pickup.flux_density_t,
+            [v * 1e-6 for v in area],
+            [pickup.frequency_hz],
+            direction=pickup.direction,
+        )
+        return float(found[0])
+
+    def _electric(
+        self, sections: tuple[PairSection, ...], source_ohm: tuple[float, float] | None
+    ) -> tuple[float | None, str]:
+        pickup = None if self._klass is None else self._klass.pickup
+        if pickup is None or not pickup.aggressors:
+            return None, ""
+        if not sections or source_ohm is None:
+            why = self._missing.get(_SECTIONS) or self._missing.get(_BALANCE) or "the pair has no source"
+            self._missing.setdefault("electric", why)
+            return None, ""
+        worst, name = 0.0, ""
+        for net in sorted({net for section in sections for net in section.neighbours if net >= 0}):
+            for aggressor in pickup.aggressors:
+                if not fnmatchcase(self._board.nets[net], aggressor.net):
+                    continue
+                capacitance = _coupled(sections, net)
+                volts = abs(edge_pickup(aggressor.swing_v, aggressor.rise_time_s, capacitance, source_ohm))
+                if volts > worst:
+                    worst, name = volts, self._board.nets[net]
+        return worst, name
+
+    def _barrel_delay(self, heights: Heights | None) -> float:
+        """Delay of a barrel [s/mm], by the mean permittivity of the stack."""
+        if heights is None or not heights.slabs:
+            return math.nan
+        total = math.fsum(slab.y1 - slab.y0 for slab in heights.slabs)
+        mean = math.fsum(slab.er * (slab.y1 - slab.y0) for slab in heights.slabs) / total
+        return math.sqrt(mean) / SPEED_OF_LIGHT * 1e-3
+
+
+def _gives_path(klass: PairClass) -> bool:
+    values = {} if klass.load is None else klass.load.values
+    if klass.load is not None and klass.load.kind == "difference-amplifier":
+        return True
+    return any(key in values for key in ("resistance", "plus.resistance", "minus.resistance")) and (
+        klass.load is None or klass.load.kind != "transformer"
+    )
+
+
+def _coupled(sections: tuple[PairSection, ...], net: int) -> tuple[float, float]:
+    """Capacitance [F] from a net to plus and to minus, over all sections that it runs beside."""
+    total = [0.0, 0.0]
+    for section in sections:
+        lengths = [(span[1] - span[0]) * 1e-3 for span in (section.plus_mm, section.minus_mm)]
+        legs = (0, 1) if section.leg == "both" else ((0,) if section.leg == "plus" else (1,))
+        for neighbour, coupling in zip(section.neighbours, section.coupling, strict=True):
+            if neighbour == net:
+                for place, leg in enumerate(legs):
+                    total[leg] += coupling[place] * lengths[leg]
+    return total[0], total[1]
+
+
+def _figures(
+    sections: tuple[PairSection, ...], plus: LegRoute, minus: LegRoute, barrel_s_mm: float
+) -> dict[str, float | None]:
+    """Impedances, delays and mismatches from the sections; all `None` where there are none."""
+    names = (
+        "impedance_diff_ohm",
+        "impedance_common_ohm",
+        "delay_plus_ps",
+        "delay_minus_ps",
+        "resistance_mismatch_ohm",
+        "capacitance_mismatch_pf",
+        "inductance_mismatch_nh",
+    )
+    if not sections:
+        return dict.fromkeys(names)
+    both = [s for s in sections if s.leg == "both"]
+    weight = math.fsum(s.plus_mm[1] - s.plus_mm[0] for s in both)
+
+    def mean(values: list[float | None]) -> float | None:
+        if weight <= 0 or None in values:
+            return None
+        return math.fsum((v or 0.0) * (s.plus_mm[1] - s.plus_mm[0]) for v, s in zip(values, both, strict=True)) / weight
+
+    totals = []
+    for leg, route in enumerate((plus, minus)):
+        delay = resistance = capacitance = inductance = length = 0.0
+        for s in sections:
+            span = (s.plus_mm, s.minus_mm)[leg]
+            own = (span[1] - span[0]) * 1e-3
+            if own <= 0 or s.leg not in {"both", ("plus", "minus")[leg]}:
+                continue
+            row = leg if s.leg == "both" else 0
+            length += own
+            delay += s.delay * own
+            resistance += float(s.R[row]) * own
+            capacitance += float(s.C[row].sum()) * own
+            inductance += float(s.L[row, row]) * own
+        delay += _beside_tracks(route, delay / length if length else math.nan, barrel_s_mm)
+        totals.append((delay, resistance, capacitance, inductance))
+    (delay_p, r_p, c_p, l_p), (delay_m, r_m, c_m, l_m) = totals
+    found = (
+        mean([s.impedance_diff_ohm for s in both]),
+        mean([s.impedance_common_ohm for s in both]),
+        delay_p * 1e12,
+        delay_m * 1e12,
+        r_p - r_m,
+        (c_p - c_m) * 1e12,
+        (l_p - l_m) * 1e9,
+    )
+    return {name: None if v is None or math.isnan(v) else v for name, v in zip(names, found, strict=True)}
+
+
+def _beside_tracks(route: LegRoute, track_s_m: float, barrel_s_mm: float) -> float:
+    """Delay [s] of joins inside pads, at the tracks' mean, and of barrels; barrels of unknown height are left out."""
+    pieces = route.pieces
+    joins = float(pieces.length[pieces.kind == JOIN].sum())
+    barrels = float(np.nansum(pieces.length[pieces.kind == BARREL]))
+    total = joins * 1e-3 * track_s_m if joins else 0.0
+    return total + (barrels * barrel_s_mm if barrels else 0.0)
+
+
+def _quasi_static(heights: Heights, sections: tuple[PairSection, ...]) -> float | None:
+    """Frequency [Hz] at which the widest section spans a tenth of a wavelength in its dielectric.
+
+    Common practice, no source: below it the cross-section's field is quasi-static to a per cent or so.
+    """
+    if not sections or not heights.slabs:
+        return None
+    spans = [
+        max(
+            sum(s.widths_mm) + (0.0 if math.isnan(s.gap_mm) else s.gap_mm),
+            *(abs(heights.copper[k][0] - heights.copper[s.layer][0]) for k in s.planes or (s.layer,)),
+        )
+        for s in sections
+    ]
+    er = max(slab.er for slab in heights.slabs)
+    return SPEED_OF_LIGHT / (10 * math.sqrt(er) * max(spans) * 1e-3)
+
+
+def _db(ratio: float) -> float:
+    return 20 * math.log10(max(ratio, 1e-20))
