@@ -134,6 +134,7 @@ def _section(on: Board, said: Mapping[str, Any]) -> PairSection:
         width_plus_mm=0.2,
         width_minus_mm=0.2,
         gap_mm=0.3,
+        thickness_mm=0.035,
         C=C,
         L=L,
         R=np.zeros(len(C)),
