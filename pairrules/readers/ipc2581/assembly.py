@@ -15,8 +15,12 @@ from pairrules.readers.ipc2581.layers import build_stackup
 from pairrules.readers.ipc2581.nets import declared_pairs, name_unnamed
 from pairrules.readers.ipc2581.parts import part_list
 from pairrules.readers.ipc2581.pins_and_vias import JoinedPad, JoinedVia, join, place_pins
+from pairrules.readers.ipc2581.primitives import signed_area
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Plane
+
+LEAST_MM2 = 1e-9
+"""An area below this, a square of 30 nanometres, is none."""
 
 
 def assemble(content: FileContent, wanted: str) -> Board:
@@ -121,7 +125,7 @@ def _pads(pads: list[JoinedPad], nets: dict[str, int], parts: dict[str, int]) ->
     shapes: dict[PadShape, int] = {}
     rows: list[int] = []
     for pad in pads:
-        shape = None if pad.row.shape is None else pad.row.shape.scaled_pad(pad.row.by.scale)
+        shape = pad.row.outline
         rows.append(-1 if shape is None else shapes.setdefault(shape, len(shapes)))
     return Pads(
         at=_pairs([pad.row.at for pad in pads]),
@@ -152,8 +156,8 @@ def _vias(vias: list[JoinedVia], nets: dict[str, int]) -> Vias:
 def _areas(rows: list[FillRow], nets: dict[str, int], layers: dict[str, int], remarks: Remarks) -> tuple[Area, ...]:
     areas = []
     for row in rows:
-        if len(row.fill.outline) < 3:
-            remarks.count("{n} area{s} of fewer than three corners {are} left out")
+        if len(row.fill.outline) < 3 or abs(signed_area(row.fill.outline)) < LEAST_MM2:
+            remarks.count("{n} area{s} without extent {are} left out")
             continue
         holes = tuple(_points(hole) for hole in row.fill.holes if len(hole) > 2)
         areas.append(

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
+from pairrules.board import PadShape
 from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed
 from pairrules.readers.ipc2581.primitives import Primitive
 from pairrules.readers.ipc2581.transform import Transform
@@ -70,10 +71,16 @@ class PadRow:
         return self.by.shift
 
     @property
+    def outline(self) -> PadShape | None:
+        """The pad's shape at its scale; `None` where it is unknown, or without extent as exporters write no pad."""
+        pad = None if self.shape is None else self.shape.scaled_pad(self.by.scale)
+        return None if pad is None or min(pad.size) <= 0 else pad
+
+    @property
     def smallest_mm(self) -> float | None:
         """The lesser side, of a circle the diameter; `None` where the shape is unknown."""
-        pad = None if self.shape is None else self.shape.pad
-        return None if pad is None else min(pad.size) * self.by.scale
+        pad = self.outline
+        return None if pad is None else min(pad.size)
 
     @property
     def clearance(self) -> bool:

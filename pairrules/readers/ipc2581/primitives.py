@@ -66,14 +66,19 @@ def polygon_pad(outline: Plane) -> PadShape:
 def outer_pad(items: tuple[Item, ...]) -> PadShape | None:
     """The pad of several pieces: the outline of the largest, holes closed; `None` where nothing is covered."""
     pieces = fills(shapely.union_all([item.region() for item in items if not item.erase]))
-    areas = [abs(_signed_area(piece.outline)) for piece in pieces]
+    areas = [abs(signed_area(piece.outline)) for piece in pieces]
     if not areas:
         return None
     return polygon_pad(pieces[areas.index(max(areas))].outline)
 
 
-def _signed_area(outline: Plane) -> float:
-    """Source: shoelace formula (elementary geometry)."""
+def signed_area(outline: Plane) -> float:
+    """Area [mm²] of a closed outline, positive where it runs counter-clockwise.
+
+    Taken about the first corner, which keeps the digits of a small outline far from the origin.
+    Source: shoelace formula (elementary geometry).
+    """
+    outline = outline - outline[0]
     return float(np.sum((outline.conjugate() * np.roll(outline, -1)).imag)) / 2
 
 

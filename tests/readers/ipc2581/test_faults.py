@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+import re
+
 import pytest
 
+from fixtures.ipc2581_writer import to_ipc2581
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581 import READER
 from pairrules.readers.reader import read_board
 from tests.readers.ipc2581.documents import PROFILE, box, document, feature, line, pad, read
+from tests.readers.ipc2581.test_round_trip import BOARD
 
 TRACK = feature(line((0, 0), (1, 0)))
 MEND = "correct it there or export the file again"
@@ -189,6 +193,7 @@ def test_the_reader_is_chosen_by_content() -> None:
             feature('<Contour><Polygon><PolyBegin x="0" y="0"/><PolyStepSegment x="1" y="0"/></Polygon></Contour>'),
             "1 outline of fewer than three corners is left out",
         ),
+        (feature('<Circle diameter="0"/>'), "1 area without extent is left out"),
         (feature('<Hexagon length="1"/>'), "1 hexagon or octagon is read with the length from corner to corner"),
         (
             feature(
@@ -222,3 +227,36 @@ def test_measurements_and_other_lists_are_passed_over() -> None:
         + "</DfxMeasurement></DfxMeasurementList>"
     )
     assert len(read(document(TRACK, more_features=measured)).tracks) == 1
+
+
+def changed(data: bytes) -> list[bytes]:
+    """The document with every kind of attribute once made nonsense or taken away."""
+    text = data.decode()
+    seen: set[tuple[str, str]] = set()
+    changes: list[bytes] = []
+    for tag in re.finditer(r"<([A-Za-z]+) ([^<>]*)>", text):
+        for attribute in re.finditer(r'([A-Za-z]+)="([^"]*)"', tag[2]):
+            kind = (tag[1], attribute[1])
+            if kind in seen:
+                continue
+            seen.add(kind)
+            start, end = tag.start(2) + attribute.start(), tag.start(2) + attribute.end()
+            others = ("", *(f'{attribute[1]}="{junk}"' for junk in ("", "x", "-1")))
+            changes += [(text[:start] + other + text[end:]).encode() for other in others]
+    return changes
+
+
+@pytest.mark.parametrize("revision", ["A", "C"])
+def test_any_attribute_may_be_nonsense(revision: str) -> None:
+    """A file is read or refused in one line, whatever stands in it."""
+    changes = changed(to_ipc2581(BOARD, revision=revision))
+    assert len(changes) > 300
+    outcomes, sentences = set(), []
+    for data in changes:
+        try:
+            outcomes.add(read(data).format)
+        except BoardError as error:
+            outcomes.add("refused")
+            sentences.append(str(error))
+    assert outcomes == {"IPC-2581", "refused"}
+    assert [said for said in sentences if "; " not in said or not said.isprintable()] == []

@@ -127,6 +127,13 @@ def test_via_pads_without_a_hole_are_a_via_with_unknown_drill() -> None:
     assert "1 via was found by pads alone; no hole is drilled there in the file" in board.missing
 
 
+def test_a_pad_without_extent_is_no_shape() -> None:
+    both = pad('<Circle diameter="0"/>', before=AT, usage="VIA")
+    board = read(document(both + pad('<Circle diameter="0"/>', pin="U1.1"), drill=hole(5, 5)))
+    assert board.pads.shape.tolist() == [-1]
+    assert np.isnan(board.vias.pad[0])
+
+
 def test_slots_are_holes_of_their_width() -> None:
     size = 'name="S" platingStatus="PLATED" plusTol="0" minusTol="0"'
     slot = f'<Set net="A"><SlotCavity {size}><Xform rotation="90"/><Location x="5" y="5"/><Oval width="3" height="1"/></SlotCavity></Set>'  # noqa: E501
