@@ -23,6 +23,7 @@ _OF_EDGE_BETWEEN = 0.3  # the same where dielectrics meet
 _OF_COPPER_BETWEEN = 0.36  # β at copper corners where dielectrics meet
 _OF_INTERFACE = 0.3  # β on an interface that ends at copper
 _OF_DIELECTRIC = 0.55  # β at corners where only dielectrics meet
+_LEAST_SHARE = 0.45
 _STRAIGHT = 0.75  # corners that turn by less (radians) carry no singular charge worth grading: round outlines
 _SAMPLES = 24
 
@@ -72,12 +73,23 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
         own = np.where(run[None, :] < scale, near, beyond)
         own[~sharp[end]] = 0.0
         demand = np.maximum(demand, own)
+    demand *= _share(pieces)[:, None]
     step = 1.0 / _SAMPLES
     running = np.zeros_like(demand)
     np.cumsum((demand[:, 1:] + demand[:, :-1]) * (0.5 * step), axis=1, out=running[:, 1:])
     total = running[:, -1]
     count = np.maximum(np.ceil(total * refine - 1e-6), 1.0).astype(np.int64)
     return _divide(pieces, running, count, s)
+
+
+def _share(pieces: Pieces) -> Floats:
+    """How finely an interface needs to be divided against one between laminate and air: its charge is in proportion to
+    |ε_l − ε_r|/(ε_l + ε_r), and the error to the cube of the cells."""
+    share = np.ones(len(pieces.start))
+    on = pieces.owner == INTERFACE
+    contrast = np.abs(pieces.left[on] - pieces.right[on]) / np.abs(pieces.left[on] + pieces.right[on])
+    share[on] = np.clip(np.cbrt(contrast / 0.6), _LEAST_SHARE, 1.0)
+    return share
 
 
 def _cut_beside_corners(pieces: Pieces, corners: Complexes) -> Pieces:

@@ -18,7 +18,7 @@ import numpy as np
 
 from pairrules.fields.boundary import Bools, Complexes, Floats, Ints
 
-_BLOCK = 8192  # pairs worked on at once, few enough to stay in the processor's cache
+_BLOCK = 20000  # pairs worked on at once, few enough to stay in the processor's cache
 _BUFFERS = 14
 _FAR = 150.0  # beyond this κx the potential between two planes is below any rounding
 _NEAR = 1.6  # cells nearer than this times the sum of their lengths are integrated exactly
@@ -33,31 +33,40 @@ class Surroundings:
 
 
 def interaction(
-    centre: Complexes, way: Complexes, rows_potential: Ints, rows_flux: Ints, around: Surroundings
+    centre: Complexes, way: Complexes, copper: int, rows_flux: Ints, around: Surroundings
 ) -> tuple[Floats, Floats]:
     """Mean potentials (times 2π ε0) and fluxes (times 2π ε0) of cells with unit charge.
 
     Parameters
     ----------
-    centre, way: complex (n,): centres of the cells and the way from start to end.
-    rows_potential, rows_flux: the cells where the potential and the flux are wanted, (m,) and (k,).
+    centre, way: complex (n,): centres of the cells and the way from start to end; y = 0 is the plane, if there is one.
+    copper: at how many cells, from the first on, the potential is wanted. rows_flux: the cells where the flux is (k,).
     around: the infinite planes.
 
     Returns
     -------
-    (m, n) and (k, n).
+    (copper, n) and (k, n).
     """
     way = _squared_up(way)
-    potential = np.empty((len(rows_potential), len(centre)))
-    flux = np.empty((len(rows_flux), len(centre)))
-    at_once = max(_BLOCK // len(centre), 1)
-    room = np.empty((_BUFFERS, at_once, len(centre)))  # fresh memory for every step would cost more than the arithmetic
-    for rows, found, wants_flux in ((rows_potential, potential, False), (rows_flux, flux, True)):
-        for first in range(0, len(rows), at_once):
-            block = rows[first : first + at_once]
-            _rows(
-                centre, way, block, around, room[:, : len(block)], found[first : first + at_once], wants_flux=wants_flux
-            )
+    count = len(centre)
+    potential = np.empty((copper, count))
+    flux = np.empty((len(rows_flux), count))
+    room = np.empty((_BUFFERS, max(_BLOCK, count)))  # fresh memory for every step would cost more than the arithmetic
+    first = 0
+    while first < copper:  # the means are symmetric: what lies left of the diagonal is known from above it
+        across = count - first
+        last = min(first + max(_BLOCK // across, 1), copper)
+        space = room[:, : (last - first) * across].reshape(_BUFFERS, last - first, across)
+        rows = np.arange(last - first)
+        part = potential[first:last, first:]
+        _rows(centre[first:], way[first:], rows, around, space, part, wants_flux=False)
+        potential[last:, first:last] = part[:, last - first : copper - first].T
+        first = last
+    at_once = max(_BLOCK // count, 1)
+    for first in range(0, len(rows_flux), at_once):
+        rows = rows_flux[first : first + at_once]
+        space = room[:, : len(rows) * count].reshape(_BUFFERS, len(rows), count)
+        _rows(centre, way, rows, around, space, flux[first : first + at_once], wants_flux=True)
     return potential, flux
 
 

@@ -119,14 +119,16 @@ class _Found:
 
 def _solve_region(region: Region, refine: float) -> _Found:
     cells = cells_of(pieces_of(region), region, refine=refine)
-    copper_first = np.argsort(cells.owner == INTERFACE, kind="stable")
-    start, end = cells.start[copper_first], cells.end[copper_first]
-    owner, left, right = cells.owner[copper_first], cells.left[copper_first], cells.right[copper_first]
+    # copper first, then level interfaces, then others: blocks of rows alike are filled faster
+    way = cells.end - cells.start
+    order = np.argsort((cells.owner == INTERFACE) * (1 + (np.abs(way.imag) > 1e-9 * np.abs(way))), kind="stable")
+    start, end = cells.start[order], cells.end[order]
+    owner, left, right = cells.owner[order], cells.left[order], cells.right[order]
     copper = int(np.count_nonzero(owner != INTERFACE))
     between = np.nonzero((owner >= 0) & ~np.isnan(left) & ~np.isnan(right) & (left != right))[0]
     rows_flux = np.concatenate((np.arange(copper, len(owner)), between))
     centre, way, around = _placed(region, start, end)
-    potential, flux = interaction(centre, way, np.arange(copper), rows_flux, around)
+    potential, flux = interaction(centre, way, copper, rows_flux, around)
     if region.bottom is None and region.top is not None:
         flux = -flux  # the region was turned over, and left and right with it
     open_below = not around.grounded
