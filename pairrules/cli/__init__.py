@@ -118,6 +118,9 @@ def _reader_gone() -> int:
 
 def main() -> None:
     """Entry point."""
+    # Sections are systems of a few hundred unknowns: threads of the linear algebra library cost more than they give.
+    for name in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS"):
+        os.environ.setdefault(name, "1")
     sys.exit(run())
 
 
