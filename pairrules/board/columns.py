@@ -19,7 +19,7 @@ def freeze(record: Any, columns: dict[str, tuple[type, tuple[int, ...]]]) -> Non
     """
     rows: int | None = None
     for name, (kind, trailing) in columns.items():
-        array = np.array(getattr(record, name), dtype=kind)
+        array: np.ndarray[Any, Any] = np.array(getattr(record, name), dtype=kind)
         if array.size == 0:
             array = array.reshape((0, *trailing))
         if array.shape[1:] != trailing:
