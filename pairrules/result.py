@@ -1,8 +1,10 @@
-"""The result of a check: plain frozen records, version 1 of the JSON result. `None` means unknown, with a word on why."""
+"""The result of a check: plain frozen records, version 1 of the JSON result. `None` is unknown, with a word on why."""
 
 from __future__ import annotations
 
 from dataclasses import dataclass
+
+from pairrules.drawing import Drawing, PairDrawing
 
 RESULT_VERSION = 1
 SEVERITIES = ("blocker", "review", "note")
@@ -51,7 +53,7 @@ class Measures:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class BalancePoint:
-    """How much common mode turns into signal at one frequency, by cause [dB]; `None` where that cause is not modelled."""
+    """How much common mode turns into signal at one frequency, by cause [dB]; `None` where a cause is not modelled."""
 
     frequency_hz: float
     source_db: float | None
@@ -121,8 +123,28 @@ class FoundPair:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class RuleInfo:
+    """A rule as a report explains it.
+
+    Parameters
+    ----------
+    name: the rule's. summary: what is wrong where it fires. unit: of `Finding.measured`.
+    help: parts of the rule's docstring as (title, text), such as "What it judges" and "Source".
+    """
+
+    name: str
+    summary: str
+    unit: str
+    help: tuple[tuple[str, str], ...]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class PairResult:
-    """One pair: what it is, what was measured, what was found."""
+    """One pair: what it is, what was measured, what was found.
+
+    `line_plus`, `line_minus`: line of the board file where that leg's copper first stands, 0 where unknown.
+    `drawing`: only where it was asked for.
+    """
 
     name: str
     plus: str
@@ -142,6 +164,9 @@ class PairResult:
     unjudged: tuple[Unjudged, ...] = ()
     missing: tuple[str, ...] = ()
     assumed: tuple[str, ...] = ()
+    line_plus: int = 0
+    line_minus: int = 0
+    drawing: PairDrawing | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -169,12 +194,17 @@ class FoundPairs:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Result:
-    """Everything a report may tell of one board."""
+    """Everything a report may tell of one board.
+
+    `rules`: every rule there is, by name. `drawing`: only where it was asked for.
+    """
 
     version: str
     board: BoardSummary
     pairs: tuple[PairResult, ...]
     unpaired: tuple[str, ...]
+    rules: tuple[RuleInfo, ...] = ()
+    drawing: Drawing | None = None
 
     @property
     def summary(self) -> dict[str, int]:

@@ -13,8 +13,8 @@ import pytest
 
 PACKAGE = Path(__file__).resolve().parents[1] / "pairrules"
 
-LEAVES = {"errors", "result"}
-"""The result's types and the errors a user can cause: open to every room, themselves above none."""
+LEAVES = {"drawing", "errors", "result"}
+"""The result's types, what is drawn, and the errors a user can cause: open to every room, themselves above none."""
 
 ROOMS = {
     "board": set(),
@@ -29,6 +29,7 @@ ROOMS = {
     "schemas": set(),
     "shipped": set(),
     "errors": set(),
+    "drawing": set(),
     "result": set(),
 }
 """Each room and those below it. `cli`, `pipeline` and the package itself sit on top and may import everything."""
