@@ -49,8 +49,11 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         return electrical
     if "terminations" in electrical.missing:
         return lacking(electrical, "terminations", "")
-    most = limit.quantities.get("most")
-    near = [one for one in electrical.terminations if _at_load(one, most)]
+    most = limit.quantities.get("most", math.inf)
+    halves = [one for one in electrical.terminations if one.to_load_mm <= one.to_source_mm + TOLERANCE]
+    near = [
+        one for one in (electrical.terminations if most < math.inf else halves) if one.to_load_mm <= most + TOLERANCE
+    ]
     if near:
         refs = ", ".join(_refs(subject, one) for one in near)
         unwritten = next((one for one in near if one.resistance is None), None)
@@ -59,11 +62,13 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         conductance = math.fsum(1 / one.resistance for one in near if one.resistance)
         resistance = 1 / conductance if conductance else 0.0
         return _judge_value(subject, limit, electrical, resistance, refs, near)
+    # A resistor in the load's half of the pair is its termination, however far off; what the class says of the load
+    # stands in only where the board has none.
     load = None if subject.klass is None else subject.klass.load
     inside = math.inf if load is None else _between_legs(load)
-    if math.isfinite(inside):
+    if math.isfinite(inside) and not halves:
         return _judge_value(subject, limit, electrical, inside, "the load itself", [])
-    return (_missing(subject, limit, electrical, most),)
+    return (_missing(subject, limit, electrical),)
 
 
 def _between_legs(load: LoadSpec) -> float:
@@ -81,15 +86,11 @@ def _between_legs(load: LoadSpec) -> float:
     return 1 / conductance if conductance else math.inf
 
 
-def _at_load(one: Termination, most: float | None) -> bool:
-    return one.to_load_mm <= (one.to_source_mm if most is None else most) + TOLERANCE
-
-
 def _refs(subject: Subject, one: Termination) -> str:
     return " and ".join(subject.board.parts[part].ref for part in one.parts)
 
 
-def _missing(subject: Subject, limit: Limit, electrical: PairElectrical, most: float | None) -> Finding:
+def _missing(subject: Subject, limit: Limit, electrical: PairElectrical) -> Finding:
     impedance = electrical.impedance_diff_ohm
     value = "the pair's impedance" if impedance is None else f"about {impedance:.0f} ohm"
     load = subject.board.parts[subject.link.load].ref if subject.link.load >= 0 else "the load"
@@ -98,8 +99,8 @@ def _missing(subject: Subject, limit: Limit, electrical: PairElectrical, most: f
         return _finding(limit, f"nothing terminates the pair at {load}", fit, subject, [])
     nearest = min(electrical.terminations, key=lambda one: one.to_load_mm)
     refs = _refs(subject, nearest)
-    allowed = most or 0.0
-    measured, said = amounts(nearest.to_load_mm, allowed, "mm")
+    most = limit.quantities.get("most")
+    measured, said = amounts(nearest.to_load_mm, most or 0.0, "mm")
     bound = "it stands nearer to the source" if most is None else f"{said} is allowed"
     message = f"the termination {refs} stands {measured} from {load}; {bound}"
     return _finding(limit, message, f"move {refs} to {load}, or {fit}", subject, [nearest])

@@ -6,10 +6,10 @@ import math
 
 import numpy as np
 import pytest
-from tests.geometry.drawn_legs import leg
 
 from pairrules.checks.leg_line import leg_line
 from pairrules.geometry.pair_geometry import BARREL, SERIES
+from tests.geometry.drawn_legs import leg
 
 # A quarter turn about (10, 2) from (10, 0) to (12, 2), then up; a part in series, and a via down to layer 1.
 ROUND = leg((0.0, 0.0), (10.0, 0.0), (12.0, 2.0), (12.0, 8.0), arcs={1: ((10.0, 2.0), math.pi / 2)})

@@ -5,10 +5,10 @@ from __future__ import annotations
 from dataclasses import replace
 
 import pytest
-from tests.checks.drawn_pairs import subject
-from tests.geometry.small_boards import board, pin
 
 from pairrules.checks.leg_parts import part_pairs, spot_of, told
+from tests.checks.drawn_pairs import subject
+from tests.geometry.small_boards import board, pin
 
 PARTS = {
     "R1": {"value": "10k", "package": "R0402"},
