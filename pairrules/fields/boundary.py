@@ -114,8 +114,11 @@ def _outlines(region: Region) -> tuple[Complexes, Complexes, Ints]:
             a, b = max(x0 / scale, left), min(x1 / scale, right)
             if a < b:
                 # without a whole plane the charge on a half-infinite one fades slowly
-                points = [a - further] * (a == left and further > 0.0) + [a, b]
-                points += [b + further] * (b == right and further > 0.0)
+                points = [a, b]
+                if further and a == left:
+                    points.insert(0, a - further)
+                if further and b == right:
+                    points.append(b + further)
                 add([complex(x, plane.y / scale) for x in points], PLANE, closed=False)
     for y in sorted({edge / scale for layer in section.layers for edge in (layer.y0, layer.y1)}):
         if _within(y, region):
@@ -186,7 +189,7 @@ def _cut(start: Complexes, end: Complexes, owner: Ints, region: Region) -> tuple
 
 def _refuse_crossings(region: Region, one: Ints, other: Ints) -> None:
     for a, b in sorted(set(zip(one.tolist(), other.tolist(), strict=True))):
-        if a != INTERFACE and b != INTERFACE and a != b:
+        if INTERFACE not in {a, b} and a != b:
             _refuse_contact(region, a, b)
         if a == b and a >= 0:
             raise ValueError(f"the outline of conductor {region.section.conductors[a].name!r} crosses itself")
@@ -233,10 +236,9 @@ def _with_dielectrics(start: Complexes, end: Complexes, owner: Ints, region: Reg
     epsilon[copper >= 0] = np.nan
     left, right = epsilon[: len(start)], epsilon[len(start) :]
     within_left, within_right = copper[: len(start)], copper[len(start) :]
-    for place in np.nonzero((owner != INTERFACE) & ((within_left >= 0) | (within_right >= 0)))[0]:
-        for inside_of in (int(within_left[place]), int(within_right[place])):
-            if inside_of >= 0 and inside_of != owner[place]:
-                _refuse_contact(region, int(owner[place]), inside_of)
+    for piece in np.nonzero((owner != INTERFACE) & ((within_left >= 0) | (within_right >= 0)))[0].tolist():
+        for other in {int(within_left[piece]), int(within_right[piece])} - {-1, int(owner[piece])}:
+            _refuse_contact(region, int(owner[piece]), other)
     solid = np.array([c.polygon is not None for c in region.section.conductors], dtype=np.bool_)
     is_solid = (owner >= 0) & solid[np.maximum(owner, 0)]
     buried = np.isnan(left) & np.isnan(right)

@@ -1,7 +1,7 @@
 """What a cross-section is made of: dielectric layers and patches, planes at 0 V, conductors. Millimetres throughout.
 
-x runs across the board, y upward. Layers are slabs infinite in x; patches are painted over them; where neither is, there
-is air. Planes have no thickness and lie at 0 V. Conductors win over dielectrics.
+x runs across the board, y upward. Layers are slabs infinite in x; patches are painted over them; where neither is,
+there is air. Planes have no thickness and lie at 0 V. Conductors win over dielectrics.
 """
 
 from __future__ import annotations

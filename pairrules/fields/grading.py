@@ -1,11 +1,11 @@
 """Divides the pieces of a boundary into cells, fine at corners and near other edges, coarse where little happens.
 
 The wanted cell size at distance ρ from a corner is β ρ^(1−1/p) ℓ^(1/p) up to the corner's own scale ℓ and β ρ beyond,
-the algebraic grading x ∝ t^p that suits charge densities ∝ ρ^(−1/2) (strip edge) and ρ^(−1/3) (square copper corner);
-the corners of other pieces ask for β d at distance d. A piece's cell count is the integral of one over the least of
-these sizes, and the cells divide that integral equally, so a mirrored section gets a mirrored mesh.
-Source: R. Schneider and others on graded meshes for boundary elements give the exponent (from memory); β and p are
-settled by the convergence tests of this project.
+the algebraic grading x ∝ t^p, p = 3, that suits charge densities ∝ ρ^(−1/2) (strip edge) and ρ^(−1/3) (square copper
+corner); the corners of other pieces ask for β d at distance d. A piece's cell count is the integral of one over the
+least of these sizes, and the cells divide that integral equally, so a mirrored section gets a mirrored mesh.
+Source: algebraic grading for piecewise constant charges on polygons is common practice in boundary elements (p greater
+than 3/2 over the exponent of the energy; from memory); the values of β are settled by tests against finite elements.
 """
 
 from __future__ import annotations
@@ -24,6 +24,7 @@ _OF_COPPER_BETWEEN = 0.36  # β at copper corners where dielectrics meet
 _OF_INTERFACE = 0.3  # β on an interface that ends at copper
 _OF_DIELECTRIC = 0.55  # β at corners where only dielectrics meet
 _LEAST_SHARE = 0.45
+_OPEN = 1.4  # how much finer where no whole plane holds the field together
 _STRAIGHT = 0.75  # corners that turn by less (radians) carry no singular charge worth grading: round outlines
 _SAMPLES = 24
 
@@ -61,7 +62,7 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     foreign[rows, :, at_start] = np.inf
     foreign[rows, :, at_end] = np.inf
     rate = 1.0 / np.sqrt(np.maximum(foreign.min(axis=2, initial=np.inf), 1e-30))
-    # one over the size that the piece's own two ends ask for, times the slope of the sampling: smooth down to the corner
+    # cells wanted in a step of the sampling: length over size, in a form that stays smooth down to the corner
     demand = rate * (length[:, None] * slope[None, :])
     ratio = _slope_ratio(s)
     for end, run, across in ((at_start, graded, ratio), (at_end, 1.0 - graded, ratio[::-1])):
@@ -74,6 +75,8 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
         own[~sharp[end]] = 0.0
         demand = np.maximum(demand, own)
     demand *= _share(pieces)[:, None]
+    if region.bottom is None and region.top is None:
+        demand *= _OPEN
     step = 1.0 / _SAMPLES
     running = np.zeros_like(demand)
     np.cumsum((demand[:, 1:] + demand[:, :-1]) * (0.5 * step), axis=1, out=running[:, 1:])
@@ -83,8 +86,10 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
 
 
 def _share(pieces: Pieces) -> Floats:
-    """How finely an interface needs to be divided against one between laminate and air: its charge is in proportion to
-    |ε_l − ε_r|/(ε_l + ε_r), and the error to the cube of the cells."""
+    """How finely an interface needs to be divided, against one between laminate and air.
+
+    Its charge is in proportion to |ε_l − ε_r|/(ε_l + ε_r), and the error to the cube of the cells.
+    """
     share = np.ones(len(pieces.start))
     on = pieces.owner == INTERFACE
     contrast = np.abs(pieces.left[on] - pieces.right[on]) / np.abs(pieces.left[on] + pieces.right[on])
@@ -155,7 +160,8 @@ def _two_sided(t: Floats) -> tuple[Floats, Floats]:
 def _slope_ratio(t: Floats) -> Floats:
     """Slope of `_two_sided` over x^(2/3), in the form that stays exact at t = 0."""
     u = 1.0 - t
-    return 3.0 * u * u / np.cbrt(t**3 + u**3) ** 4
+    ratio: Floats = 3.0 * u * u / np.cbrt(t**3 + u**3) ** 4
+    return ratio
 
 
 def _corners(pieces: Pieces) -> tuple[Complexes, Ints, Ints]:

@@ -1,13 +1,14 @@
 """Mean potential and flux between straight cells that carry charge, for no, one and two infinite planes.
 
-Two cells with complex centres z_i, z_j and complex lengths d: the potential of a charge spread over cell j, averaged over
-cell i, is −1/(2π ε0) times the mean of Re K(z_i − z_j), with K = log z in free space, log z − log z̃ over a plane at y = 0
-(z̃ = z_i − z_j*, the image), and log sinh κz − log sinh κz̃ between planes at y = 0 and y = b, κ = π/(2b) (the images of
-both planes summed: the strip mapped on a half-plane). The flux through cell i to its left is −Im of the mean of d_i K′ over 2π.
-Cells far apart use the means' expansion to second order in d; near ones, and the images near them, the exact double
+Two cells have complex centres z_i, z_j and complex lengths d. The potential of a charge spread over cell j, averaged
+over cell i, is −1/(2π ε0) times the mean of Re K(z_i − z_j), with K = log z in free space, log z − log z̃ over a plane
+at y = 0 (z̃ = z_i − z_j*, the image), and log sinh κz − log sinh κz̃ between planes at y = 0 and y = b, κ = π/(2b) (the
+images in both planes summed). The flux through cell i to its left is −Im of the mean of d_i K′, over 2π.
+
+Cells far apart use the means' expansion to second order in d. Near ones, and the images near them, get the exact double
 integral: the second antiderivatives of log z and 1/z at the four corners of the parallelogram z ± d_i/2 ± d_j/2,
 each corner divided by z so that no corner crosses the logarithm's cut.
-Source: images and conformal maps, W. R. Smythe, Static and Dynamic Electricity (from memory); the integrals are elementary.
+Source: images and conformal maps, W. R. Smythe, Static and Dynamic Electricity (from memory); the rest is calculus.
 """
 
 from __future__ import annotations
@@ -16,7 +17,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pairrules.fields.boundary import Bools, Complexes, Floats, Ints
+from pairrules.fields.boundary import Complexes, Floats, Ints
 
 _BLOCK = 20000  # pairs worked on at once, few enough to stay in the processor's cache
 _BUFFERS = 14
@@ -108,11 +109,11 @@ def _rows(
     near[here] = False
     exact = [(1.0, near, centre, way)]  # sign, where, charges (or their images) to integrate exactly
     if around.height is not None and 2.0 * size.max() > 2.0 * around.height - np.ptp(y):
-        for shift in (
-            2.0 * around.height,
-            -2.0 * around.height,
-        ):  # where cells are about as long as the planes are apart
-            exact.append((1.0, dx2 + (dy - shift) ** 2 < reach, centre + 1j * shift, way))
+        # a cell's own images in both planes, where cells are about as long as the planes are apart
+        exact.extend(
+            (1.0, dx2 + (dy - shift) ** 2 < reach, centre + 1j * shift, way)
+            for shift in (2.0 * around.height, -2.0 * around.height)
+        )
     if kappa:
         _hyperbolic(dx, kappa, sinh2, sinh_cosh, spare)
         _slope_between(kappa * y[rows], -kappa * y, kappa, apart, here, u, v, sinh2, sinh_cosh, spare)
@@ -220,9 +221,9 @@ def _expanded(
 ) -> None:
     """Mean potential without its logarithm, or mean flux, to second order in the cells' lengths, into `found`.
 
-    K″ = κ² − K′² and K‴ = 2 K′ (K′² − κ²); with w = (d_i² + d_j²)/24 · (K′² − κ²) the potential's second-order term is
-    Re w, and the flux is −Im d_i K′ (1 + 2w). wide, lean: real and imaginary part of (d_i² + d_j²)/24, lean `None` where
-    every cell lies level or upright. spare, other: memory to work in.
+    K″ = κ² − K′² and K‴ = 2 K′ (K′² − κ²); with w = (d_i² + d_j²)/24 · (K′² − κ²) the potential's second-order term
+    is Re w, and the flux is −Im d_i K′ (1 + 2w). wide, lean: real and imaginary part of (d_i² + d_j²)/24, lean `None`
+    where every cell lies level or upright. spare, other: memory to work in.
     """
     np.multiply(u, u, out=spare)
     np.multiply(v, v, out=other)

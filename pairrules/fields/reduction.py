@@ -21,8 +21,9 @@ class Pair:
 
     C, Cair [F/m]; L [H/m], `None` where no copper at 0 V lets common-mode current return.
     impedance_diff_ohm = √(Ldd/Cdd), impedance_common_ohm = √(Lcc/Ccc) for Vd = V1 − V2, Vc = (V1 + V2)/2,
-    Id = (I1 − I2)/2, Ic = I1 + I2; the common one `None` like L. er_odd, er_even: effective permittivities Ldd Cdd c² and
-    Lcc Ccc c² of the two modes so defined. er_modes: those of the true modes, the eigenvalues of L C c², smaller first.
+    Id = (I1 − I2)/2, Ic = I1 + I2; the common one `None` like L. er_odd, er_even: effective permittivities Ldd Cdd c²
+    and Lcc Ccc c² of the two modes so defined. er_modes: those of the true modes, the eigenvalues of L C c², smaller
+    first.
     """
 
     C: Floats
@@ -48,7 +49,12 @@ class Pair:
 
 
 def pair_of(section: CrossSection, c: Floats, cair: Floats) -> Pair | None:
-    """The pair of a section with exactly two signals, else `None`. c, cair: Maxwell matrices of all conductors [F/m]."""
+    """The pair of a section with exactly two signals, else `None`.
+
+    Parameters
+    ----------
+    c, cair: Maxwell matrices of all conductors [F/m], with the dielectrics and in air.
+    """
     if len(section.signals) != 2:
         return None
     reduced = reduce_matrix(section, c)

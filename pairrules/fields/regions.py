@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import itertools
+
 from pairrules.fields.boundary import Region
 from pairrules.fields.cross_section import CrossSection
 
@@ -20,7 +22,7 @@ def regions_of(section: CrossSection) -> tuple[Region, ...]:
     bounds = [None, *heights, None]
     found = []
     placed: set[int] = set()
-    for bottom, top in zip(bounds[:-1], bounds[1:], strict=True):
+    for bottom, top in itertools.pairwise(bounds):
         members = tuple(
             place
             for place, conductor in enumerate(section.conductors)

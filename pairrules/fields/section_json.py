@@ -71,7 +71,7 @@ def section_from(item: object, name: str, place: str) -> CrossSection:
     if not isinstance(identity, str):
         raise reader.fault("id", f"id is {_shown(identity)}", "give a text")
     reader.scale = UNIT_MM[unit]
-    return reader.built(
+    section: CrossSection = reader.built(
         "",
         lambda: CrossSection(
             id=identity,
@@ -81,6 +81,7 @@ def section_from(item: object, name: str, place: str) -> CrossSection:
             conductors=tuple(reader.conductor(value, at) for at, value in reader.items(fields, "conductors")),
         ),
     )
+    return section
 
 
 def answer(section: CrossSection, *, name: str = "", solution: SectionSolution | None = None) -> dict[str, Any]:
@@ -93,9 +94,9 @@ def answer(section: CrossSection, *, name: str = "", solution: SectionSolution |
     Returns
     -------
     `id`, `conductors` (names), `C_pF_per_m`, `Cair_pF_per_m` (Maxwell matrices in the order of `conductors`),
-    `G_over_omega_pF_per_m` (conductance over angular frequency, from the loss tangents), `pair` (`None` unless there are
-    two signals) with `C_pF_per_m`, `Cair_pF_per_m`, `L_nH_per_m`, `er_odd`, `er_even`, `er_modes`; `impedance_diff_ohm`,
-    `impedance_common_ohm`, `unknowns`; `why_null`, a reason for each figure that is null.
+    `G_over_omega_pF_per_m` (conductance over angular frequency, from the loss tangents), `pair` (`None` unless there
+    are two signals) with `C_pF_per_m`, `Cair_pF_per_m`, `L_nH_per_m`, `er_odd`, `er_even`, `er_modes`;
+    `impedance_diff_ohm`, `impedance_common_ohm`, `unknowns`; `why_null`, a reason for each figure that is null.
 
     Raises
     ------
@@ -183,7 +184,7 @@ class _Reader:
     def number(self, value: object, place: str) -> float:
         if isinstance(value, bool) or not isinstance(value, int | float):
             raise self.fault(place, f"{_shown(value)} is no number", "give a number")
-        if isinstance(value, int) and abs(value) > 10**15 or not math.isfinite(value):
+        if abs(value) > 10**15 or not math.isfinite(value):
             raise self.fault(place, f"{_shown(value)} is out of reach", "give a number of ordinary size")
         return float(value)
 

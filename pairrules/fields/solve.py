@@ -1,16 +1,18 @@
 """Capacitance of a cross-section by boundary elements: charges on copper and on the interfaces of dielectrics.
 
 Unknowns are the total charges q of straight cells (free and polarisation charge together), in free space or between
-the images of the infinite planes. Copper cells demand that their mean potential is the conductor's, interface cells that the flux
-of D through the whole cell is the same on both sides: with E the field of all other charges normal to the cell,
-(ε_l + ε_r)/2 · q/ε0 + (ε_l − ε_r) ∫E = 0, which conserves charge. Testing by means over cells is Galerkin's method on
-copper, so the error of C falls with the square of the charge's. Free charge on copper is ε of the dielectric outside
+the images of the infinite planes. Copper cells demand that their mean potential is the conductor's; interface cells
+that the flux of D through the whole cell is the same on both sides: with E the field of all other charges normal to
+the cell, (ε_l + ε_r)/2 · q/ε0 + (ε_l − ε_r) ∫E = 0, which conserves charge. Testing by means over cells is Galerkin's method
+on copper, so the error of C falls with the square of the charge's. Free charge on copper is ε of the dielectric outside
 times the total charge; on a strip between unlike dielectrics (ε_l + ε_r)/2 · q + (ε_l − ε_r) ε0 ∫E.
-Where no infinite plane is near, an unknown constant potential and a row that makes the total charge zero stand in for it.
-Quasi-static, ideal conductors: exact for d.c. capacitance and for the external inductance µ0 ε0 Cair⁻¹ where the skin
-depth is small against the copper.
-Source: R. F. Harrington, Field Computation by Moment Methods, 1968, and C. Wei, R. F. Harrington, J. R. Mautz and
-T. K. Sarkar, Multiconductor transmission lines in multilayered dielectric media, IEEE Trans. MTT 32 (1984) 439–450 (from memory).
+
+Without an infinite plane, an unknown constant potential and a row that makes the total charge zero take its place.
+Quasi-static, ideal conductors: right for capacitance as long as the section is small against the wavelength, and for
+the external inductance µ0 ε0 Cair⁻¹ where the skin depth is small against the copper.
+Source: R. F. Harrington, Field Computation by Moment Methods, 1968; C. Wei, R. F. Harrington, J. R. Mautz and
+T. K. Sarkar, Multiconductor transmission lines in multilayered dielectric media, IEEE Transactions on Microwave Theory
+and Techniques 32 (1984) 439–450 (both from memory).
 """
 
 from __future__ import annotations
@@ -19,7 +21,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pairrules.fields.boundary import INTERFACE, PLANE, Complexes, Floats, Ints, Pieces, Region, pieces_of
+from pairrules.fields.boundary import INTERFACE, PLANE, Complexes, Floats, Ints, Region, pieces_of
 from pairrules.fields.cross_section import CrossSection
 from pairrules.fields.grading import cells_of
 from pairrules.fields.kernels import Surroundings, interaction
@@ -35,8 +37,8 @@ class AirCharge:
     """Charge on the copper of one region in air, for loss figures.
 
     length: cells' lengths [m] (n,). owner: place of the conductor, or −1 for a plane (n,). charge: charge of each cell
-    [C/m], one column for 1 V on each conductor in turn, the others and the planes at 0 V (n, conductors). middle: cells'
-    centres [m], complex (n,). bottom, top: heights [m] of the region's infinite planes, `None` where there is none.
+    [C/m], one column for 1 V on each conductor in turn, the others and the planes at 0 V (n, conductors). middle:
+    cells' centres [m], complex (n,). bottom, top: heights [m] of the region's infinite planes, `None` where none is.
     """
 
     length: Floats
@@ -53,8 +55,8 @@ class SectionSolution:
 
     C, Cair: Maxwell capacitance matrices in the order of `section.conductors` [F/m], with the dielectrics and in air.
     G_per_omega: conductance over angular frequency [F/m] from the loss tangents (the negative imaginary part of the
-    complex capacitance, to first order in them; taken as the same at all frequencies). pair: the legs, or `None` where the section
-    has not two signals. unknowns: charges solved for. air: charges in air, region by region.
+    complex capacitance, to first order in them; taken as the same at all frequencies). pair: the legs, or `None` where
+    the section has not two signals. unknowns: charges solved for. air: charges in air, region by region.
     """
 
     section: CrossSection
@@ -146,9 +148,10 @@ def _solve_region(region: Region, refine: float) -> _Found:
         every = np.concatenate((charge_copper, charge_interface))
         free[between] += (left - right)[between, None] * (flux[len(owner) - copper :] @ every) / (2 * np.pi)
     factor = 2.0 * np.pi * EPSILON_0
+    capacitance, in_air_only = factor * (volts.T @ free), factor * (volts.T @ in_air)
     return _Found(
-        capacitance=_symmetric(factor * (volts.T @ free)),
-        air_capacitance=_symmetric(factor * (volts.T @ in_air)),
+        capacitance=(capacitance + capacitance.T) / 2,
+        air_capacitance=(in_air_only + in_air_only.T) / 2,
         unknowns=len(owner) + int(open_below),
         start=start[:copper],
         end=end[:copper],
@@ -179,7 +182,7 @@ def _copper_solution(own: Floats, interface: Floats, volts: Floats, *, open_belo
         matrix[copper, :copper] = matrix[:copper, copper] = 1.0
         total = np.concatenate((np.zeros(volts.shape[1]), np.ones(interface.shape[1])))
         wanted = np.concatenate((wanted, total[None, :]))
-    found = np.linalg.solve(matrix, wanted)[: len(own)]
+    found = np.linalg.solve(matrix, wanted)[: len(own)].astype(np.float64, copy=False)
     return found[:, : volts.shape[1]], found[:, volts.shape[1] :]
 
 
@@ -195,7 +198,7 @@ def _with_dielectrics(
     driven = flux[:, :copper] @ in_air
     matrix = ratio.real[:, None] * through
     matrix.flat[:: len(matrix) + 1] += 1.0
-    interface = np.linalg.solve(matrix, -ratio.real[:, None] * driven).astype(np.complex128)
+    interface: Complexes = np.linalg.solve(matrix, -ratio.real[:, None] * driven).astype(np.complex128)
     if np.any(ratio.imag):
         # loss tangents are small: what they add is in quadrature, and linear in them. Single precision serves for it
         added = -ratio.imag[:, None] * (driven + through @ interface.real)
@@ -267,10 +270,6 @@ def _air_charge(region: Region, found: _Found, count: int) -> AirCharge:
         bottom=None if region.bottom is None else region.bottom * metres,
         top=None if region.top is None else region.top * metres,
     )
-
-
-def _symmetric(matrix: np.ndarray) -> np.ndarray:  # type: ignore[type-arg]
-    return (matrix + matrix.T) / 2
 
 
 def _frozen(matrix: Floats) -> Floats:
