@@ -85,6 +85,8 @@ class _Stage:
         balance, source_ohm = self._balance(sections, plus, minus)
         area = self._area(heights, plus, minus)
         electric, aggressor = self._electric(sections, source_ohm)
+        limit = None if heights is None else _quasi_static(heights, sections)
+        self._note_validity(limit)
         changes = [
             change
             for leg, route, cover in (
@@ -109,10 +111,19 @@ class _Stage:
             terminations=terminations(board, link, self._reference, plus, minus),
             bias=bias_paths(board, link, load_resistance=resistive),
             changes=tuple(changes),
-            quasi_static_hz=None if heights is None else _quasi_static(heights, sections),
+            quasi_static_hz=limit,
             assumed=tuple(dict.fromkeys(self._assumed)),
             missing=dict(sorted(self._missing.items())),
         )
+
+    def _note_validity(self, limit: float | None) -> None:
+        klass = self._klass
+        asked = [] if klass is None else [*klass.frequencies, *(f for f, _ in klass.mask)]
+        if limit is not None and asked and max(asked) > limit:
+            self._assumed.append(
+                f"above {limit / 1e9:.2g} GHz the cross-sections are wider than a tenth of a wavelength, "
+                "and their quasi-static figures no more than an approximation"
+            )
 
     def _sections(self, heights: Heights) -> tuple[PairSection, ...]:
         if not self._reference:
