@@ -13,6 +13,7 @@ from pairrules.balance.electrical import electrical
 from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.board.board import Board
 from pairrules.board.given_stackup import with_stackup
+from pairrules.checks.held_limits import held_limits
 from pairrules.checks.judge_pair import judge_pair, verdict
 from pairrules.checks.measures import balance_figures, geometric_measures, with_electrical
 from pairrules.checks.rule import Subject, all_rules
@@ -85,6 +86,7 @@ def check(
             reference=opened.reference,
         )
         judgement = judge_pair(subject, limits, rules)
+        balance = balance_figures(figures, () if klass is None else klass.frequencies)
         found = _found_pair(board, link, None if klass is None else klass.name)
         notes = _notes(link, None if klass is None else klass.name, bool(limits))
         results.append(
@@ -102,14 +104,21 @@ def check(
                 routed=geometry.routed,
                 verdict=verdict(judgement, geometry.routed),
                 measures=measures,
-                balance=balance_figures(figures, () if klass is None else klass.frequencies),
+                balance=balance,
                 findings=judgement.findings,
                 unjudged=judgement.unjudged,
                 missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *_unknown(figures, klass), *notes))),
                 assumed=figures.assumed,
+                limits=held_limits(limits, rules, judgement, measures, balance),
             )
         )
-    return Result(version=__version__, board=opened.summary, pairs=tuple(results), unpaired=opened.unpaired)
+    return Result(
+        version=__version__,
+        board=opened.summary,
+        pairs=tuple(results),
+        unpaired=opened.unpaired,
+        settings=tuple(Path(name).name for name in opened.settings.files),
+    )
 
 
 def find_pairs(path: str | Path, settings: str | Path | None = None, *, pairs: str = "*", step: str = "") -> FoundPairs:

@@ -97,6 +97,28 @@ class Unjudged:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class HeldLimit:
+    """A limit that a pair was held against.
+
+    Parameters
+    ----------
+    says: its quantities in words, "" where it has none. source: where it comes from.
+    outcome: "kept", "broken", "waived", or "undecided" with `missing` saying why.
+    measured, limit: in `unit`; `None` where the rule compares no single figure.
+    """
+
+    rule: str
+    severity: str
+    says: str
+    outcome: str
+    measured: float | None
+    limit: float | None
+    unit: str
+    missing: str
+    source: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class SeriesPart:
     """A part in series with the legs: its reference, value, and the leg ("plus", "minus" or "both")."""
 
@@ -142,6 +164,7 @@ class RuleInfo:
 class PairResult:
     """One pair: what it is, what was measured, what was found.
 
+    `limits`: every limit that holds for the pair, by rule.
     `line_plus`, `line_minus`: line of the board file where that leg's copper first stands, 0 where unknown.
     `drawing`: only where it was asked for.
     """
@@ -164,6 +187,7 @@ class PairResult:
     unjudged: tuple[Unjudged, ...] = ()
     missing: tuple[str, ...] = ()
     assumed: tuple[str, ...] = ()
+    limits: tuple[HeldLimit, ...] = ()
     line_plus: int = 0
     line_minus: int = 0
     drawing: PairDrawing | None = None
@@ -196,7 +220,8 @@ class FoundPairs:
 class Result:
     """Everything a report may tell of one board.
 
-    `rules`: every rule there is, by name. `drawing`: only where it was asked for.
+    `rules`: every rule there is, by name. `drawing`: only where it was asked for. `settings`: the settings files by
+    their names without folders, the deepest base first.
     """
 
     version: str
@@ -205,6 +230,7 @@ class Result:
     unpaired: tuple[str, ...]
     rules: tuple[RuleInfo, ...] = ()
     drawing: Drawing | None = None
+    settings: tuple[str, ...] = ()
 
     @property
     def summary(self) -> dict[str, int]:
