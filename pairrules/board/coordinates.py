@@ -14,6 +14,11 @@ def unit_name(units: str) -> str:
     return name if name in _DECIMALS else "mm"
 
 
+def decimals(unit: str) -> int:
+    """How many decimals coordinates in this unit (a name of `unit_name`) are written with at most."""
+    return _DECIMALS[unit]
+
+
 def coordinates(x_mm: float, y_mm: float, units: str) -> str:
     """A place such as "(12.0, 30.5) mm" or "(0.4724, 1.2008) in".
 
