@@ -9,6 +9,9 @@ from pairrules.checks.rule import Subject, Undecided
 from pairrules.checks.wording import place
 from pairrules.result import Place
 
+PS_PER_MM = 1e9
+"""[ps/mm] in one [s/m]."""
+
 _SAME = 1e-9
 """Relative: frequencies nearer than this are one."""
 
@@ -23,6 +26,16 @@ def figures(subject: Subject) -> PairElectrical | Undecided:
 def lacking(electrical: PairElectrical, group: str, otherwise: str) -> Undecided:
     """Why a figure of the group is unknown, in the words of the stage that looked for it; else `otherwise`."""
     return Undecided(missing=electrical.missing.get(group, otherwise).rstrip("."))
+
+
+def ps_per_mm(electrical: PairElectrical, legs: tuple[str, ...] = ("plus", "minus")) -> float | None:
+    """The legs' mean delay per length over their sections [ps/mm]; `None` where they have no section."""
+    spans = {"plus": lambda one: one.plus_mm, "minus": lambda one: one.minus_mm}
+    parts = [(spans[leg](one), one.delay) for leg in legs for one in electrical.sections]
+    whole = math.fsum(last - first for (first, last), _ in parts)
+    if not whole > 0:
+        return None
+    return math.fsum((last - first) * delay for (first, last), delay in parts) / whole * PS_PER_MM
 
 
 def wanted_points(subject: Subject, electrical: PairElectrical) -> tuple[BalanceAt, ...] | Undecided:

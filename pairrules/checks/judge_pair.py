@@ -7,6 +7,7 @@ from dataclasses import dataclass, replace
 
 from pairrules.checks.fingerprint import copper_digest, fingerprint
 from pairrules.checks.rule import Rule, Subject, Undecided
+from pairrules.checks.timed_limit import in_own_unit
 from pairrules.result import SEVERITIES, Finding, Unjudged
 from pairrules.settings.limit import Limit
 
@@ -32,7 +33,8 @@ def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str
     unjudged: list[Unjudged] = []
     judged: list[str] = []
     for name in sorted(limits):
-        answer = rules[name].judge(subject, limits[name])
+        limit = in_own_unit(subject, limits[name], rules[name])
+        answer = limit if isinstance(limit, Undecided) else rules[name].judge(subject, limit)
         if isinstance(answer, Undecided):
             unjudged.append(Unjudged(rule=name, missing=answer.missing))
         else:

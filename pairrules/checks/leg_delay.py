@@ -9,7 +9,8 @@ Why it matters
     length on different layers arrive at different times.
 
 Formula
-    |delay_mismatch_ps| [ps] ≤ most [ps]. A delay Δτ converts sin(π f Δτ).
+    |delay_mismatch_ps| [ps] ≤ most [ps]; most may be a share of the class's rise time or unit interval. A delay Δτ
+    converts sin(π f Δτ).
 
 Source
     Conversion by skew: mode definitions of Bockelman and Eisenstadt, IEEE Trans. MTT 43 (1995), from memory; the sine
@@ -26,14 +27,11 @@ Example
 from __future__ import annotations
 
 from pairrules.balance.pair_electrical import PairElectrical, PairSection
-from pairrules.checks.electrical_figures import figures, lacking
+from pairrules.checks.electrical_figures import PS_PER_MM, figures, lacking, ps_per_mm
 from pairrules.checks.rule import Rule, Subject, Undecided
 from pairrules.checks.wording import TOLERANCE, amounts, place, spot
 from pairrules.result import Finding
 from pairrules.settings.limit import Limit
-
-_PS_PER_MM = 1e9
-"""[ps/mm] in one [s/m]."""
 
 
 def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
@@ -50,7 +48,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     later, earlier = ("plus", "minus") if mismatch > 0 else ("minus", "plus")
     measured, allowed = amounts(abs(mismatch), most, "ps")
     advice = f"delay {earlier} by {measured}"
-    slowness = _ps_per_mm(electrical, earlier)
+    slowness = ps_per_mm(electrical, (earlier,))
     if slowness:
         advice += f", about {abs(mismatch) / slowness:.2f} mm more track"
     where = _greatest_share(electrical, mismatch)
@@ -76,20 +74,20 @@ def _lengths(section: PairSection) -> tuple[float, float]:
     return section.plus_mm[1] - section.plus_mm[0], section.minus_mm[1] - section.minus_mm[0]
 
 
-def _ps_per_mm(electrical: PairElectrical, leg: str) -> float | None:
-    """The leg's mean delay per length over its sections."""
-    lengths = [(_lengths(one)[0 if leg == "plus" else 1], one.delay) for one in electrical.sections]
-    whole = sum(length for length, _ in lengths)
-    return sum(length * delay for length, delay in lengths) / whole * _PS_PER_MM if whole > 0 else None
-
-
 def _greatest_share(electrical: PairElectrical, mismatch: float) -> PairSection | None:
     """The section that makes at least half of the mismatch [ps]; `None` where no single one does."""
     for section in electrical.sections:
         plus, minus = _lengths(section)
-        if (plus - minus) * section.delay * _PS_PER_MM / mismatch >= 1 / 2:
+        if (plus - minus) * section.delay * PS_PER_MM / mismatch >= 1 / 2:
             return section
     return None
 
 
-RULE = Rule(summary="the legs differ in delay", unit="ps", quantities={"most": "time"}, required=("most",), judge=judge)
+RULE = Rule(
+    summary="the legs differ in delay",
+    unit="ps",
+    quantities={"most": "time"},
+    required=("most",),
+    judge=judge,
+    timed=("most",),
+)

@@ -10,7 +10,7 @@ Why it matters
 
 Formula
     |length_plus_mm − length_minus_mm| [mm] ≤ most [mm]. Barrels of unknown height cancel where both legs pass the
-    same ones.
+    same ones. Where most is said as a time, or a share of one, it is that time over the pair's delay per length.
 
 Source
     Conversion by skew: mode definitions of Bockelman and Eisenstadt, IEEE Trans. MTT 43 (1995), from memory; the sine
@@ -128,5 +128,10 @@ def _length_to(pieces: Pieces, row: Ints, points: Floats) -> Floats:
 
 
 RULE = Rule(
-    summary="the legs differ in length", unit="mm", quantities={"most": "length"}, required=("most",), judge=judge
+    summary="the legs differ in length",
+    unit="mm",
+    quantities={"most": "length"},
+    required=("most",),
+    judge=judge,
+    timed=("most",),
 )

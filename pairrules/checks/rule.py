@@ -13,7 +13,7 @@ from pairrules.board.board import Board
 from pairrules.geometry.pair_geometry import PairGeometry
 from pairrules.pairing.link import Link
 from pairrules.result import Finding, Measures
-from pairrules.settings.limit import Limit
+from pairrules.settings.limit import Limit, RuleForm
 from pairrules.settings.pair_class import PairClass
 
 
@@ -54,6 +54,8 @@ class Rule:
     summary: what is wrong where it fires, in a few words. unit: of `Finding.measured` and `limit`, "" where none.
     quantities: what its limit may say: key to dimension. required: keys of which at least one must be given.
     judge: subject and limit to findings (empty: passed) or `Undecided`.
+    timed: quantities that may also be said as a time or a share of one; `judge` gets them in their own dimension.
+    models: models of `schemas.glossary` its judgement rests on, where the figures its docstring names do not tell.
     """
 
     summary: str
@@ -61,6 +63,13 @@ class Rule:
     quantities: Mapping[str, str]
     required: tuple[str, ...]
     judge: Callable[[Subject, Limit], tuple[Finding, ...] | Undecided]
+    timed: tuple[str, ...] = ()
+    models: tuple[str, ...] = ()
+
+    @property
+    def form(self) -> RuleForm:
+        """What settings may say of it."""
+        return RuleForm(quantities=self.quantities, required=self.required, timed=self.timed)
 
 
 @cache

@@ -7,7 +7,8 @@ Why it matters
     An open branch reflects, and loads the one leg that has it with capacitance the other does not have.
 
 Formula
-    length of each stub [mm] ≤ most [mm]. The unused part of a via's barrel is none of it.
+    length of each stub [mm] ≤ most [mm]; most said as a time, or a share of one, is that time over the pair's delay per
+    length. The unused part of a via's barrel is none of it.
 
 Source
     Common practice, no source (trade: below a tenth of the rise time times the velocity).
@@ -63,5 +64,10 @@ def _judge_leg(subject: Subject, limit: Limit, name: str, leg: LegRoute) -> tupl
 
 
 RULE = Rule(
-    summary="a stub branches off a leg", unit="mm", quantities={"most": "length"}, required=("most",), judge=judge
+    summary="a stub branches off a leg",
+    unit="mm",
+    quantities={"most": "length"},
+    required=("most",),
+    judge=judge,
+    timed=("most",),
 )

@@ -169,10 +169,9 @@ def _of_class(
 def _class_named(settings: str, name: str) -> PairClass:
     # Rules and the settings reader are only needed here.
     from pairrules.checks.rule import all_rules
-    from pairrules.settings.limit import RuleForm
     from pairrules.settings.read_settings import read_settings
 
-    forms = {rule: RuleForm(quantities=r.quantities, required=r.required) for rule, r in all_rules().items()}
+    forms = {name: rule.form for name, rule in all_rules().items()}
     chosen = read_settings(Path(settings), forms=forms)
     for klass in chosen.classes:
         if klass.name == name:

@@ -9,7 +9,7 @@ from typing import Any
 
 from pairrules.board.stackup import Layer
 from pairrules.settings.faults import Faults
-from pairrules.settings.limit import Limit
+from pairrules.settings.limit import Limit, Timed
 from pairrules.settings.network_models import cable_spec, curve, load_spec, pickup_spec, source_spec
 from pairrules.settings.nodes import Node, Sequence
 from pairrules.settings.pair_class import LimitsAndOff, PairClass, unreachable
@@ -127,6 +127,7 @@ class _Build:
 
     def _limit(self, rule: str, entry: Entry) -> Limit:
         quantities = {key: value for key, value in sorted(entry.values.items()) if isinstance(value, float)}
+        timed = {key: value for key, value in sorted(entry.values.items()) if isinstance(value, Timed)}
         if quantities.get("least", 0.0) > quantities.get("most", float("inf")):
             self._faults.add(f"{entry.path}: least is greater than most", "exchange or mend them", entry.node)
         source = entry.get("source") or self._default_source
@@ -136,6 +137,7 @@ class _Build:
             quantities=quantities,
             source=re.sub(r"\s+", " ", source),
             place=self._place(entry.node),
+            timed=timed,
         )
 
     def classes(self, entry: Entry | None) -> tuple[tuple[PairClass, ...], tuple[tuple[str, Node], ...]]:

@@ -3,13 +3,15 @@
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 from pairrules.board.units import quantity
 from pairrules.settings import nodes
 from pairrules.settings.faults import Faults, nearest
+from pairrules.settings.limit import TIMES, Timed
 from pairrules.settings.nodes import Node
 from pairrules.settings.shapes import Either, Flag, Kinds, ListOf, Named, Number, Quantity, Shape, Table, Text
 
@@ -37,8 +39,9 @@ def read_shape(node: Node, shape: Shape, path: str, faults: Faults) -> Any:
 
     Returns
     -------
-    Quantity, Number: float. Text: str. Flag: bool. ListOf: tuple. Table, Named, Kinds: `Entry`; Kinds with the value
-    "kind" in it. None where a fault was noted; faulty parts of a list or table are left out of it.
+    Quantity: float, or `Timed` where its shape allows a time or a share of one. Number: float. Text: str. Flag: bool.
+    ListOf: tuple. Table, Named, Kinds: `Entry`; Kinds with the value "kind" in it. None where a fault was noted; faulty
+    parts of a list or table are left out of it.
     """
     match shape:
         case Quantity() | Number() | Text() | Flag():
@@ -89,7 +92,20 @@ def _one_of(text: str, words: tuple[str, ...]) -> str:
     return f"write {words[0]!r}" if len(words) == 1 else f"write one of {', '.join(words)}"
 
 
-def _quantity(node: nodes.Scalar, shape: Quantity, path: str, faults: Faults) -> float | None:
+_SHARE_OF = re.compile(r"(?P<share>.*?)\bof\b\s*(?P<of>.*)\Z")
+
+
+def _quantity(node: nodes.Scalar, shape: Quantity, path: str, faults: Faults) -> float | Timed | None:
+    share = _SHARE_OF.match(node.text) if shape.or_share else None
+    if share is not None:
+        if share["of"] not in TIMES:
+            faults.add(f"{path} is a share of {share['of']!r}", _one_of(share["of"], TIMES), node)
+            return None
+        part = _quantity(replace(node, text=share["share"].strip()), _PART, path, faults)
+        return Timed(amount=part, of=share["of"]) if isinstance(part, float) else None
+    if shape.or_time and shape.dimension != "time" and _is_time(node.text):
+        time = _quantity(node, _TIME, path, faults)
+        return Timed(amount=time) if isinstance(time, float) else None
     try:
         value = quantity(node.text, shape.dimension)
     except ValueError as error:
@@ -108,6 +124,18 @@ def _quantity(node: nodes.Scalar, shape: Quantity, path: str, faults: Faults) ->
         faults.add(f"{path} is {node.text!r}", f"write less than {100 * shape.below:g} %", node)
         return None
     return value * shape.scale
+
+
+_PART = Quantity(dimension="share")
+_TIME = Quantity(dimension="time")
+
+
+def _is_time(text: str) -> bool:
+    try:
+        quantity(text, "time")
+    except ValueError:
+        return False
+    return True
 
 
 def _number(node: nodes.Scalar, shape: Number, path: str, faults: Faults) -> float | None:

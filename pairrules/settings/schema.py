@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from pairrules.board.units import DIMENSIONS
-from pairrules.settings.limit import RuleForm
+from pairrules.settings.limit import TIMES, RuleForm
 from pairrules.settings.settings_form import settings_form
 from pairrules.settings.shapes import Either, Flag, Kinds, ListOf, Named, Number, Quantity, Shape, Table, Text
 
@@ -63,11 +63,12 @@ def _quantity(shape: Quantity) -> Schema:
     if shape.dimension == "count":
         return {"type": ["number", "string"], "pattern": rf"^\s*{sign}{_DIGITS}\s*$"}
     unit = {"1": "%", "degree": "degrees"}.get(DIMENSIONS[shape.dimension], DIMENSIONS[shape.dimension])
-    return {
-        "type": "string",
-        "pattern": rf"^\s*{sign}{_DIGITS}\s*[^\s\d.]",
-        "description": f"{shape.dimension}: a number with its unit, such as {unit}",
-    }
+    described = f"{shape.dimension}: a number with its unit, such as {unit}"
+    if shape.or_time and shape.dimension != "time":
+        described += "; or a time, such as 20 ps"
+    if shape.or_share:
+        described += f"; or a share, such as 5 % of {' or '.join(TIMES)}"
+    return {"type": "string", "pattern": rf"^\s*{sign}{_DIGITS}\s*[^\s\d.]", "description": described}
 
 
 def _table(shape: Table) -> Schema:

@@ -77,7 +77,8 @@ def _limits(forms: Mapping[str, RuleForm]) -> Table:
         for key, dimension in form.quantities.items():
             if dimension not in DIMENSIONS:
                 raise ValueError(f"rule {name}: {dimension!r} is no dimension")
-            keys[key] = Quantity(dimension=dimension, signed=dimension in _SIGNED)
+            timed = key in form.timed
+            keys[key] = Quantity(dimension=dimension, signed=dimension in _SIGNED, or_time=timed, or_share=timed)
         keys["severity"] = Text(words=SEVERITIES)
         keys["source"] = Text()
         rules[name] = Either(scalar=Text(words=("off",)), nested=Table(keys=keys, any_of=tuple(form.required)))

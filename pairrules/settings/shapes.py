@@ -21,6 +21,7 @@ class Quantity:
     scale: multiplies what `board.units.quantity` returns (to reach SI units).
     signed: may be negative. positive: must not be zero.
     below: its magnitude must be less than this; for shares.
+    or_time: may instead be a time. or_share: may instead be a share of one of `limit.TIMES`. Both are read as `Timed`.
     """
 
     dimension: str
@@ -28,6 +29,8 @@ class Quantity:
     signed: bool = False
     positive: bool = False
     below: float = math.inf
+    or_time: bool = False
+    or_share: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

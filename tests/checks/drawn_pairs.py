@@ -4,14 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import replace
+from pathlib import Path
 from typing import Any
 
-from pairrules.board.units import quantity
+import yaml
+
 from pairrules.checks.measures import geometric_measures
 from pairrules.checks.rule import Rule, Subject
 from pairrules.geometry.measure import measure_link
 from pairrules.pairing.link import Hop, Link
 from pairrules.settings.limit import Limit
+from pairrules.settings.read_settings import read_settings
 from tests.checks.electrical_cases import electrical, hung, klass, series, with_parts
 from tests.geometry.small_boards import board, pads_of, pin, track
 
@@ -76,11 +79,7 @@ def subject(case: Mapping[str, Any]) -> Subject:
 
 
 def limit(name: str, rule: Rule, written: Mapping[str, Any]) -> Limit:
-    """A limit as settings would give it."""
-    return Limit(
-        rule=name,
-        severity="review",
-        quantities={key: quantity(str(text), rule.quantities[key]) for key, text in written.items()},
-        source="this test",
-        place="case",
-    )
+    """A limit as settings give it."""
+    said = {name: {**written, "severity": "review", "source": "this test"}}
+    text = yaml.safe_dump({"extends": [], "limits": said})
+    return read_settings(Path("case.yaml"), forms={name: rule.form}, text=text).limits[name]
