@@ -3,9 +3,9 @@
 Unknowns are the total charges q of straight cells (free and polarisation charge together), in free space or between
 the images of the infinite planes. Copper cells demand that their mean potential is the conductor's; interface cells
 that the flux of D through the whole cell is the same on both sides: with E the field of all other charges normal to
-the cell, (ε_l + ε_r)/2 · q/ε0 + (ε_l − ε_r) ∫E = 0, which conserves charge. Testing by means over cells is Galerkin's method
-on copper, so the error of C falls with the square of the charge's. Free charge on copper is ε of the dielectric outside
-times the total charge; on a strip between unlike dielectrics (ε_l + ε_r)/2 · q + (ε_l − ε_r) ε0 ∫E.
+the cell, (ε_l + ε_r)/2 · q/ε0 + (ε_l − ε_r) ∫E = 0, which conserves charge. Testing by means over cells is Galerkin's
+method on copper, so the error of C falls with the square of the charge's. Free charge on copper is ε of the dielectric
+outside times the total charge; on a strip between unlike dielectrics (ε_l + ε_r)/2 · q + (ε_l − ε_r) ε0 ∫E.
 
 Without an infinite plane, an unknown constant potential and a row that makes the total charge zero take its place.
 Quasi-static, ideal conductors: right for capacitance as long as the section is small against the wavelength, and for
