@@ -17,13 +17,14 @@ from pairrules.checks.held_limits import held_limits
 from pairrules.checks.judge_pair import judge_pair, verdict
 from pairrules.checks.measures import balance_figures, geometric_measures, with_electrical
 from pairrules.checks.rule import Subject, all_rules
+from pairrules.checks.rule_help import rule_infos
 from pairrules.errors import BoardError, SettingsError, UsageError
 from pairrules.fields.cross_section import CrossSection
 from pairrules.fields.solve import SectionSolution
 from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.measure import measure_link
 from pairrules.pairing.find_links import PairRequest, find_links
-from pairrules.pairing.link import Link
+from pairrules.pairing.link import Hop, Link
 from pairrules.pairing.reference_nets import reference_nets
 from pairrules.readers.reader import read_board
 from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart
@@ -110,6 +111,8 @@ def check(
                 missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *_unknown(figures, klass), *notes))),
                 assumed=figures.assumed,
                 limits=held_limits(limits, rules, judgement, measures, balance),
+                line_plus=_line(board, link.plus, link.hops_plus),
+                line_minus=_line(board, link.minus, link.hops_minus),
             )
         )
     return Result(
@@ -118,6 +121,7 @@ def check(
         pairs=tuple(results),
         unpaired=opened.unpaired,
         settings=tuple(Path(name).name for name in opened.settings.files),
+        rules=rule_infos(rules),
     )
 
 
@@ -235,6 +239,11 @@ def _wanted(board: Board, link: Link, pattern: str) -> bool:
 def _net_names(board: Board, link: Link) -> tuple[str, ...]:
     hops = (*link.hops_plus, *link.hops_minus)
     return tuple(dict.fromkeys(board.nets[net] for net in (link.plus, link.minus, *(hop.net for hop in hops))))
+
+
+def _line(board: Board, net: int, hops: tuple[Hop, ...]) -> int:
+    """Line of the file where a leg's copper first stands: that of the net that names it, else of its first that has."""
+    return next((board.net_lines[one] for one in (net, *(hop.net for hop in hops)) if board.net_lines[one]), 0)
 
 
 def _found_pair(board: Board, link: Link, klass: str | None) -> FoundPair:

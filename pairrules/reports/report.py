@@ -34,6 +34,8 @@ class Report:
     commands: the commands that offer it ("check", "measure").
     render: the result as text, ending with a line break.
     join: texts of several boards to one.
+    unreadable: what takes the place of a board that cannot be read, from its file, the reason, and our version; `None`
+        where the report cannot tell of one.
     """
 
     name: str
@@ -41,6 +43,7 @@ class Report:
     commands: tuple[str, ...]
     render: Callable[[Result, Look], str]
     join: Callable[[tuple[str, ...]], str] = apart
+    unreadable: Callable[[str, str, str], str] | None = None
 
 
 @cache
