@@ -34,7 +34,7 @@ def held_limits(
     undecided = {one.rule: one.missing for one in judgement.unjudged}
     held = []
     for name in sorted(limits):
-        limit, rule = limits[name], rules[name]
+        limit, rule = judgement.limits.get(name, limits[name]), rules[name]
         findings = [finding for finding in judgement.findings if finding.rule == name]
         standing = [finding for finding in findings if not finding.waived]
         first = next(iter(standing or findings), None)
@@ -63,9 +63,9 @@ def held_limits(
 
 def says(limit: Limit, rule: Rule) -> str:
     """The limit's quantities in words: "spread 20 %, for 5 mm"; "" where the rule has none."""
-    return ", ".join(
-        f"{key} {_amount(value, rule.quantities.get(key, ''))}" for key, value in sorted(limit.quantities.items())
-    )
+    said = {key: _amount(value, rule.quantities.get(key, "")) for key, value in limit.quantities.items()}
+    said |= {key: time.said for key, time in limit.timed.items()}
+    return ", ".join(f"{key} {amount}" for key, amount in sorted(said.items()))
 
 
 def _amount(value: float, dimension: str) -> str:

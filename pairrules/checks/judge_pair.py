@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 
 from pairrules.checks.fingerprint import copper_digest, fingerprint
 from pairrules.checks.rule import Rule, Subject, Undecided
@@ -19,12 +19,13 @@ class Judgement:
     Parameters
     ----------
     findings: worst severity first, then by rule. unjudged: rules that could not judge.
-    judged: names of the rules that did judge.
+    judged: names of the rules that did judge. limits: as they were judged, by rule; a time as the length it comes to.
     """
 
     findings: tuple[Finding, ...]
     unjudged: tuple[Unjudged, ...]
     judged: tuple[str, ...]
+    limits: Mapping[str, Limit] = field(default_factory=dict)
 
 
 def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str, Rule]) -> Judgement:
@@ -32,9 +33,14 @@ def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str
     findings: list[Finding] = []
     unjudged: list[Unjudged] = []
     judged: list[str] = []
+    applied = dict(limits)
     for name in sorted(limits):
         limit = in_own_unit(subject, limits[name], rules[name])
-        answer = limit if isinstance(limit, Undecided) else rules[name].judge(subject, limit)
+        if isinstance(limit, Undecided):
+            unjudged.append(Unjudged(rule=name, missing=limit.missing))
+            continue
+        applied[name] = limit
+        answer = rules[name].judge(subject, limit)
         if isinstance(answer, Undecided):
             unjudged.append(Unjudged(rule=name, missing=answer.missing))
         else:
@@ -44,7 +50,7 @@ def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str
         digest = copper_digest(subject.board, subject.link)
         findings = [replace(finding, fingerprint=fingerprint(finding.rule, digest)) for finding in findings]
     findings.sort(key=lambda finding: SEVERITIES.index(finding.severity))
-    return Judgement(findings=tuple(findings), unjudged=tuple(unjudged), judged=tuple(judged))
+    return Judgement(findings=tuple(findings), unjudged=tuple(unjudged), judged=tuple(judged), limits=applied)
 
 
 def verdict(judgement: Judgement, routed: str) -> str:

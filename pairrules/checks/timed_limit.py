@@ -24,7 +24,7 @@ def in_own_unit(subject: Subject, limit: Limit, rule: Rule) -> Limit | Undecided
         time = _picoseconds(subject, timed)
         if isinstance(time, Undecided):
             return time
-        said = f"{timed.amount * 100:g} % of {timed.of} are {time:.4g} ps" if timed.of else f"{time:g} ps"
+        said = f"{timed.said} are {time:.4g} ps" if timed.of else timed.said
         if rule.quantities[key] == "time":
             quantities[key] = time
         else:

@@ -16,6 +16,11 @@ class Timed:
     amount: float
     of: str = ""
 
+    @property
+    def said(self) -> str:
+        """In words: "20 ps", "5 % of rise_time"."""
+        return f"{self.amount * 100:.6g} % of {self.of}" if self.of else f"{self.amount:.6g} ps"
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class RuleForm:

@@ -10,6 +10,7 @@ import pytest
 
 from pairrules.board import Board
 from pairrules.checks.fingerprint import copper_digest
+from pairrules.checks.held_limits import held_limits
 from pairrules.checks.judge_pair import Judgement, judge_pair, verdict
 from pairrules.checks.rule import Subject, all_rules
 from pairrules.result import Finding, Unjudged
@@ -51,6 +52,26 @@ def test_a_broken_pair_is_undecided_even_where_every_rule_passes() -> None:
     found = judged(broken, {"half-pair": {}})
     assert found.findings == () and found.judged == ("half-pair",)
     assert verdict(found, "partial") == "undecided"
+
+
+def test_a_limit_said_as_a_time_is_kept_as_the_length_it_comes_to() -> None:
+    case = CASE | {"electrical": {"sections": [{"mm": [0, 20], "delay": 6e-9}]}}
+    rules = all_rules()
+    found = judged(case, {"leg-length": {"most": "9 ps"}})
+    assert [one.limit for one in found.findings] == pytest.approx([1.5])
+    given = {"leg-length": limit("leg-length", rules["leg-length"], {"most": "9 ps"})}
+    (held,) = held_limits(given, rules, found, subject(case).measures, ())
+    assert (held.says, held.outcome, held.limit) == ("most 1.5 mm", "broken", pytest.approx(1.5))
+
+
+def test_a_limit_said_as_a_share_of_nothing_known_is_undecided() -> None:
+    rules = all_rules()
+    found = judged(CASE, {"leg-length": {"most": "5 % of rise_time"}})
+    why = "the limit is a share of rise_time, and the pair has no class that gives one"
+    assert found.unjudged == (Unjudged(rule="leg-length", missing=why),) and found.judged == ()
+    given = {"leg-length": limit("leg-length", rules["leg-length"], {"most": "5 % of rise_time"})}
+    (held,) = held_limits(given, rules, found, subject(CASE).measures, ())
+    assert (held.says, held.outcome, held.missing) == ("most 5 % of rise_time", "undecided", why)
 
 
 FINDING = Finding(rule="r", severity="note", measured=None, limit=None, unit="", message="m", advice="a")
