@@ -28,7 +28,6 @@ from pairrules.pairing.link import Hop, Link
 from pairrules.pairing.reference_nets import reference_nets
 from pairrules.readers.reader import read_board
 from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart
-from pairrules.settings.limit import RuleForm
 from pairrules.settings.pair_class import PairClass
 from pairrules.settings.read_settings import Settings, find_settings, read_settings
 
@@ -149,7 +148,7 @@ class _Opened:
 
 def _open(path: str | Path, settings: str | Path | None, *, pairs: str, step: str) -> _Opened:
     name = str(path)
-    forms = {rule: RuleForm(quantities=r.quantities, required=r.required) for rule, r in all_rules().items()}
+    forms = {name: rule.form for name, rule in all_rules().items()}
     data = _bytes(Path(path), name)
     chosen = read_settings(_settings_path(path, settings), forms=forms)
     board = _stacked(read_board(data, name, step=step), chosen)
