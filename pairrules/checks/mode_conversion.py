@@ -25,7 +25,11 @@ Example
 
 from __future__ import annotations
 
+import math
+
+from pairrules.balance.conversion import FLOOR_DB
 from pairrules.balance.load_models import rejection_at
+from pairrules.balance.pair_electrical import BalanceAt
 from pairrules.checks.cause_balance import greatest_cause
 from pairrules.checks.electrical_figures import figures, hertz, lacking, most_tilted
 from pairrules.checks.rule import Rule, Subject, Undecided
@@ -58,10 +62,11 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         if not asked:
             continue
         judged += 1
-        if point.conversion_loss_db is None:
+        loss = _loss(point)
+        if loss is None:
             lost = lost or point
-        elif worst is None or point.conversion_loss_db - max(asked) < worst[0]:
-            worst = (point.conversion_loss_db - max(asked), max(asked), point)
+        elif worst is None or loss - max(asked) < worst[0]:
+            worst = (loss - max(asked), max(asked), point)
     if worst is not None and worst[0] < -TOLERANCE:
         _, required, point = worst
         loss = required + worst[0]
@@ -93,6 +98,13 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     if lost is not None:
         return lacking(electrical, "balance", f"the conversion loss at {hertz(lost.frequency_hz)} is not known")
     return ()
+
+
+def _loss(point: BalanceAt) -> float | None:
+    """The conversion loss [dB]; inf where nothing converts at all, so that there is no ratio."""
+    if point.conversion_loss_db is None and point.total_db is not None and point.total_db <= FLOOR_DB + TOLERANCE:
+        return math.inf
+    return point.conversion_loss_db
 
 
 RULE = Rule(

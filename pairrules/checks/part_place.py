@@ -76,7 +76,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
 
 def _along(electrical: PairElectrical, pair: PartPair) -> tuple[float, float] | None:
     """Track length from the source end to the parts of plus and of minus."""
-    where = {(one.part, one.leg): one.along_mm for one in electrical.series}
+    where = {(one.part, one.leg): one.along_mm for one in (*electrical.series, *electrical.hung)}
     plus, minus = where.get((pair.plus, "plus")), where.get((pair.minus, "minus"))
     return None if plus is None or minus is None else (plus, minus)
 

@@ -41,7 +41,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         return electrical
     voltage, most = electrical.electric_v, limit.quantities["most"]
     if voltage is None:
-        return lacking(electrical, "pickup", "the pair's class names no neighbour that swings")
+        return lacking(electrical, "electric", "the pair's class names no neighbour that swings")
     if voltage <= most * (1 + _SAME):
         return ()
     measured, allowed = amounts(voltage * _MILLIVOLT, most * _MILLIVOLT, "mV")

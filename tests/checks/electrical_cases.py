@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from pathlib import Path
 from typing import Any
@@ -74,10 +74,7 @@ def electrical(on: Board, case: Case) -> PairElectrical | None:
     made: dict[str, Any] = {
         "sections": tuple(_section(on, one) for one in said.pop("sections", [])),
         "balance": tuple(_balance(one) for one in said.pop("balance", [])),
-        "series": tuple(
-            Placed(part=_part(on, ref), leg=leg, along_mm=along, step=step)
-            for ref, leg, along, step in said.pop("series", [])
-        ),
+        **{name: _placed(on, said.pop(name, [])) for name in ("series", "hung")},
         "terminations": tuple(
             Termination(**one | {"parts": tuple(_part(on, ref) for ref in one["parts"])})
             for one in said.pop("terminations", [])
@@ -105,6 +102,10 @@ def electrical(on: Board, case: Case) -> PairElectrical | None:
         if name in said:
             made[name] = tuple(said.pop(name))
     return PairElectrical(**made, **said)
+
+
+def _placed(on: Board, said: Sequence[tuple[str, str, float, int]]) -> tuple[Placed, ...]:
+    return tuple(Placed(part=_part(on, ref), leg=leg, along_mm=along, step=step) for ref, leg, along, step in said)
 
 
 def _balance(said: Mapping[str, Any]) -> BalanceAt:
