@@ -5,12 +5,23 @@ from __future__ import annotations
 import os
 import sys
 import tempfile
+from collections.abc import Sequence
+from dataclasses import dataclass
 from pathlib import Path
 
 import click
 
 from pairrules.errors import UsageError
 from pairrules.reports.report import Look
+
+
+@dataclass(frozen=True, slots=True)
+class ToWrite:
+    """A text and the file it goes to. `option`: what named the file, for messages."""
+
+    text: str
+    file: str
+    option: str = "--output"
 
 
 def write(text: str, output: str | None) -> None:
@@ -20,26 +31,51 @@ def write(text: str, output: str | None) -> None:
     """
     if output is None:
         click.echo(text, nl=False)
-        return
-    target = Path(output)
+    else:
+        write_files((ToWrite(text, output),))
+
+
+def write_files(files: Sequence[ToWrite]) -> None:
+    """Write several files. Only when the texts of all are on the disk do they take the places of the old ones.
+
+    Raises: UsageError where one cannot be written; then none is changed, but where the medium fails between two
+    renames.
+    """
+    staged: list[tuple[Path, ToWrite]] = []
+    try:
+        for one in files:
+            staged.append((_stage(one), one))
+        for temporary, one in staged:
+            try:
+                temporary.replace(one.file)
+            except OSError as error:
+                raise _unwritable(one, error) from error
+    finally:
+        for temporary, _ in staged:
+            temporary.unlink(missing_ok=True)
+
+
+def _stage(one: ToWrite) -> Path:
+    """The text in a file beside its target, of the target's mode."""
+    target = Path(one.file)
     if target.is_dir():
-        raise UsageError("--output names a folder", file=output, remedy="name a file in it")
+        raise UsageError(f"{one.option} names a folder", file=one.file, remedy="name a file in it")
     try:
         # In the same folder, since only within one file system a rename replaces a file in one step.
         handle, name = tempfile.mkstemp(prefix=f".{target.name}.", dir=target.parent)
-    except OSError as error:
-        raise _unwritable(output, error) from error
+    except (OSError, ValueError) as error:
+        raise _unwritable(one, error) from error
     try:
         with os.fdopen(handle, "w", encoding="utf-8", newline="\n") as file:
-            file.write(text)
+            file.write(one.text)
         Path(name).chmod(_mode(target))
-        Path(name).replace(target)
     except OSError as error:
         Path(name).unlink(missing_ok=True)
-        raise _unwritable(output, error) from error
+        raise _unwritable(one, error) from error
     except BaseException:
         Path(name).unlink(missing_ok=True)
         raise
+    return Path(name)
 
 
 def look(output: str | None) -> Look:
@@ -57,7 +93,9 @@ def _mode(target: Path) -> int:
     return 0o666 & ~mask
 
 
-def _unwritable(output: str, error: OSError) -> UsageError:
+def _unwritable(one: ToWrite, error: OSError | ValueError) -> UsageError:
     return UsageError(
-        f"--output cannot be written ({error.strerror})", file=output, remedy="name a file in a folder you may write to"
+        f"{one.option} cannot be written ({getattr(error, 'strerror', None) or error})",
+        file=one.file,
+        remedy="name a file in a folder you may write to",
     )

@@ -17,7 +17,7 @@ ROWS = 50
 DETAILS = 20
 _PLACES = 4
 _WORDS = (("flag", "flagged"), ("undecided", "undecided"), ("waived", "waived"), ("pass", "passed"))
-_MARKED = re.compile(r"[&<>|`*_\[\]()\\~!\"'$:{}^=+@#]")
+_MARKED = re.compile(r"[&<>|`*_\[\]\\~!${}@#]|:(?=\S)")
 _UNCALLED = {"@": "@&#8203;", "#": "&#35;&#8203;"}
 _BARE_LINK = re.compile(r"(www)\.", re.IGNORECASE)
 _CHANGE = re.compile(r"\b(?=[0-9a-f]*[a-f])(?=[0-9a-f]*[0-9])([0-9a-f]{6})([0-9a-f]{1,34})\b")
