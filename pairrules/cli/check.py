@@ -2,17 +2,21 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 
 import click
 
+from pairrules import __version__
 from pairrules.cli.error_lines import error_lines
 from pairrules.cli.options import output_option, pair_option, settings_option, step_option
-from pairrules.cli.output import look, write
+from pairrules.cli.output import ToWrite, look, write, write_files
 from pairrules.cli.progress import ProgressLine
-from pairrules.errors import UserError
+from pairrules.cli.report_option import file_reports, report_option
+from pairrules.errors import BoardError, UserError
 from pairrules.pipeline import check
-from pairrules.reports.report import reports_of
+from pairrules.reports.report import Look, Report, reports_of
+from pairrules.reports.safe_text import safe
 from pairrules.result import SEVERITIES, Result
 from pairrules.shipped import demo_folder
 
@@ -32,6 +36,7 @@ DEMO = ("tide-gauge-buoy.json", "pairrules.yaml")
     help="How the result is written.",
 )
 @output_option
+@report_option
 @click.option(
     "--severity",
     type=click.Choice(SEVERITIES),
@@ -50,6 +55,7 @@ def command(
     settings: str | None,
     form: str,
     output: str | None,
+    wanted: tuple[str, ...],
     severity: str,
     pair: str,
     step: str,
@@ -65,7 +71,9 @@ def command(
         settings = str(demo_folder() / DEMO[1]) if settings is None else settings
     if not boards:
         raise click.UsageError("no BOARD is given; name a file, or take --demo", ctx)
-    report, results, status = reports_of("check")[form], [], 0
+    report, status = reports_of("check")[form], 0
+    also = file_reports(wanted, reports_of("check"), output, ctx)
+    outcomes: list[Result | BoardError] = []
     said: set[str] = set()
     for board in boards:
         try:
@@ -77,15 +85,37 @@ def command(
                 if line not in said:
                     click.echo(line, err=True)
                 said.add(line)
+            if isinstance(error, BoardError):
+                outcomes.append(error)
             continue
         status = max(status, int(_flagged(result, severity)))
         # Where the package is installed says nothing about the demo board.
-        results.append(replace(result, board=replace(result.board, file=DEMO[0])) if demo else result)
-    if not results or (output is not None and len(results) < len(boards)):
-        ctx.exit(status)
-    texts = tuple(report.render(result, look(output)) for result in results)
-    write(report.join(texts) if len(boards) > 1 else texts[0], output)
+        outcomes.append(replace(result, board=replace(result.board, file=DEMO[0])) if demo else result)
+    text, whole = _told(report, outcomes, len(boards), look(output))
+    files = [] if output is None or not whole else [ToWrite(text, output)]
+    for one in also:
+        told, complete = _told(one.report, outcomes, len(boards), Look())
+        if complete:
+            files.append(ToWrite(told, one.file, f"--report {one.report.name}"))
+        else:
+            click.echo(f"pairrules: {safe(one.file)} is not written, since not all boards could be judged", err=True)
+    write_files(files)
+    if output is None:
+        write(text, None)
     ctx.exit(status)
+
+
+def _told(report: Report, outcomes: Sequence[Result | BoardError], boards: int, seen: Look) -> tuple[str, bool]:
+    """The report, and whether it tells of every board: some reports cannot tell of one that could not be read."""
+    texts = []
+    for one in outcomes:
+        if isinstance(one, Result):
+            texts.append(report.render(one, seen))
+        elif report.unreadable is not None:
+            texts.append(report.unreadable(one.file, str(one), __version__))
+    if not texts:
+        return "", False
+    return report.join(tuple(texts)) if boards > 1 else texts[0], len(texts) == boards
 
 
 def _flagged(result: Result, severity: str) -> bool:

@@ -44,7 +44,8 @@ def write_files(files: Sequence[ToWrite]) -> None:
     staged: list[tuple[Path, ToWrite]] = []
     try:
         for one in files:
-            staged.append((_stage(one), one))
+            temporary = _stage(one)
+            staged.append((temporary, one))
         for temporary, one in staged:
             try:
                 temporary.replace(one.file)
