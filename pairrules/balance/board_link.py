@@ -17,6 +17,7 @@ from pairrules.balance.tolerance import Spread, spreads_of
 from pairrules.balance.track_resistance import track_resistance
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats
+from pairrules.fields.loss import resistance
 from pairrules.geometry.pair_geometry import LegRoute, ViaUse
 from pairrules.pairing.link import Link
 from pairrules.settings.pair_class import PairClass
@@ -154,7 +155,7 @@ def _lines(sections: tuple[PairSection, ...], frequencies: Floats) -> list[Eleme
         flush()
         lengths = [(span[1] - span[0]) * 1e-3 for span in (section.plus_mm, section.minus_mm)]
         common = min(lengths)
-        R = track_resistance(section.R, section.widths_mm, section.thickness_mm, frequencies)
+        R = _pair_resistance(section, frequencies)
         G = 2 * np.pi * frequencies[:, None, None] * section.loss
         if common > 0:
             found.append(
@@ -162,7 +163,7 @@ def _lines(sections: tuple[PairSection, ...], frequencies: Floats) -> list[Eleme
                     cause="trace",
                     inductance=section.L,
                     capacitance=section.C,
-                    resistance=R[:, :, None] * np.eye(2),
+                    resistance=R,
                     conductance=G,
                     lengths=(common, common),
                 )
@@ -176,7 +177,7 @@ def _lines(sections: tuple[PairSection, ...], frequencies: Floats) -> list[Eleme
                     cause="trace",
                     inductance=np.eye(2) * L,
                     capacitance=np.eye(2) * C,
-                    resistance=R[:, :, None] * np.eye(2),
+                    resistance=R * np.eye(2),
                     lengths=excess,
                 )
             )
@@ -207,6 +208,13 @@ def _alone(alone: list[list[PairSection]], frequencies: Floats) -> list[Element]
             )
         )
     return found
+
+
+def _pair_resistance(section: PairSection, frequencies: Floats) -> Floats:
+    """Resistance of both legs (F, 2, 2) [ohm/m]; the reference is ideal. Zero where copper has no height."""
+    if section.skin is None or np.isnan(section.skin.direct).any():
+        return np.zeros((len(frequencies), 2, 2))
+    return resistance(section.skin, frequencies)
 
 
 def _own_length(section: PairSection) -> float:

@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 
 from pairrules.board.columns import Floats
+from pairrules.fields.loss import SkinIntegrals
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -20,6 +21,7 @@ class PairSection:
     layer: index into `Board.copper`. start, end: (x, y) [mm] on plus, or on the leg that is alone.
     width_plus_mm, width_minus_mm, gap_mm: NaN where they do not apply. thickness_mm: of the copper.
     C, L: per metre [F/m], [H/m], (2, 2) for both legs, (1, 1) for one. R: d.c. resistance per metre of each [ohm/m].
+    skin: what gives the legs' resistance at any frequency; `None` for one leg.
     loss: conductance over angular frequency, like C [F/m].
     impedance_diff_ohm, impedance_common_ohm: of the pair; `None` for one leg.
     delay: of the odd mode, or of the leg alone [s/m].
@@ -42,6 +44,7 @@ class PairSection:
     L: Floats
     R: Floats
     loss: Floats
+    skin: SkinIntegrals | None
     impedance_diff_ohm: float | None
     impedance_common_ohm: float | None
     delay: float

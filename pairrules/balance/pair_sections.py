@@ -15,14 +15,12 @@ from pairrules.balance.section_store import Store, solved
 from pairrules.balance.stack_heights import Heights
 from pairrules.board.columns import Floats
 from pairrules.fields.cross_section import CrossSection
+from pairrules.fields.loss import COPPER_OHM_M, SkinIntegrals, skin_integrals
 from pairrules.fields.solve import SectionSolution
 from pairrules.geometry.cross_cut import CrossCuts
 from pairrules.geometry.pair_geometry import LegRoute, PairGeometry
 
 SPEED_OF_LIGHT = 299792458.0
-COPPER_OHM_M = 1.7241e-8
-"""Resistivity of annealed copper at 20 °C. Source: IEC 60028 (recalled, not re-read)."""
-
 _BORROWED_SHARE = 0.05
 """Up to this share of the route may take over the section beside it where its own cannot be solved."""
 
@@ -31,7 +29,7 @@ class UnsolvableError(Exception):
     """A pair's sections cannot be solved; the sentence says why."""
 
 
-@dataclass(frozen=True, slots=True, eq=False)
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class _Matrices:
     C: Floats
     L: Floats
@@ -39,6 +37,7 @@ class _Matrices:
     diff: float | None
     common: float | None
     delay: float
+    skin: SkinIntegrals | None
     coupling: tuple[tuple[float, ...], ...]
 
 
@@ -97,7 +96,14 @@ def _of_pair(solution: SectionSolution) -> _Matrices | str:
     loss = solution.G_per_omega[np.ix_(signals, signals)]
     delay = math.sqrt(pair.er_odd) / SPEED_OF_LIGHT
     return _Matrices(
-        pair.C, pair.L, loss, pair.impedance_diff_ohm, pair.impedance_common_ohm, delay, _coupling(solution)
+        C=pair.C,
+        L=pair.L,
+        loss=loss,
+        diff=pair.impedance_diff_ohm,
+        common=pair.impedance_common_ohm,
+        delay=delay,
+        skin=skin_integrals(solution),
+        coupling=_coupling(solution),
     )
 
 
@@ -108,7 +114,16 @@ def _of_one(solution: SectionSolution) -> _Matrices | str:
         return "no copper that could be its reference lies above or below it"
     L = 1.0 / (SPEED_OF_LIGHT**2 * air)
     loss = solution.G_per_omega[leg : leg + 1, leg : leg + 1]
-    return _Matrices(np.array([[C]]), np.array([[L]]), loss, None, None, math.sqrt(L * C), _coupling(solution))
+    return _Matrices(
+        C=np.array([[C]]),
+        L=np.array([[L]]),
+        loss=loss,
+        diff=None,
+        common=None,
+        delay=math.sqrt(L * C),
+        skin=None,
+        coupling=_coupling(solution),
+    )
 
 
 def _coupling(solution: SectionSolution) -> tuple[tuple[float, ...], ...]:
@@ -191,6 +206,7 @@ def _section(cut: Cut, matrices: _Matrices, heights: Heights) -> PairSection:
         L=matrices.L,
         R=np.array([COPPER_OHM_M / a if a > 0 else math.nan for a in area]),
         loss=matrices.loss,
+        skin=matrices.skin,
         impedance_diff_ohm=matrices.diff,
         impedance_common_ohm=matrices.common,
         delay=matrices.delay,

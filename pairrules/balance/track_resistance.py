@@ -1,4 +1,4 @@
-"""Resistance of a track against frequency."""
+"""Resistance of a track on its own against frequency."""
 
 from __future__ import annotations
 
@@ -9,9 +9,7 @@ import numpy as np
 import numpy.typing as npt
 
 from pairrules.board.columns import Floats
-
-COPPER_OHM_M = 1.7241e-8
-"""Resistivity of annealed copper at 20 °C. Source: IEC 60028 (recalled, not re-read)."""
+from pairrules.fields.loss import COPPER_OHM_M
 
 MU_0 = 4e-7 * math.pi
 
