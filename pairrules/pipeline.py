@@ -13,9 +13,11 @@ from pairrules.balance.electrical import electrical
 from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.board.board import Board
 from pairrules.board.given_stackup import with_stackup
+from pairrules.checks.electrical_figures import ps_per_mm
 from pairrules.checks.held_limits import held_limits
 from pairrules.checks.judge_pair import judge_pair, verdict
 from pairrules.checks.measures import balance_figures, geometric_measures, with_electrical
+from pairrules.checks.pin_lengths import pin_extra
 from pairrules.checks.rule import Subject, all_rules
 from pairrules.checks.rule_help import rule_infos
 from pairrules.errors import BoardError, SettingsError, UsageError
@@ -74,6 +76,14 @@ def check(
         geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference, copper=copper, beside=beside)
         figures = electrical(board, link, geometry, klass, copper=copper, store=store)
         measures = with_electrical(geometric_measures(geometry), figures)
+        pins = pin_extra(
+            board,
+            link,
+            geometry,
+            lengths=opened.settings.pin_lengths_for(klass),
+            expected=() if klass is None else klass.expects_pin_lengths,
+            slowness=ps_per_mm(figures),
+        )
         breakout = 0.0 if klass is None else klass.breakout_mm or 0.0
         subject = Subject(
             board=board,
@@ -84,11 +94,12 @@ def check(
             electrical=figures,
             klass=klass,
             reference=opened.reference,
+            pins=pins,
         )
         judgement = judge_pair(subject, limits, rules)
         balance = balance_figures(figures, () if klass is None else klass.frequencies)
         found = _found_pair(board, link, None if klass is None else klass.name)
-        notes = _notes(link, None if klass is None else klass.name, bool(limits))
+        notes = (*_notes(link, None if klass is None else klass.name, bool(limits)), *filter(None, (pins.missing,)))
         results.append(
             PairResult(
                 name=found.name,

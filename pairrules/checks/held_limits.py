@@ -16,7 +16,7 @@ _CAUSES = {
     "cable-balance": "cable_db",
     "load-balance": "load_db",
 }
-_DIFFERENCES = {"leg-length": "length_mismatch_mm", "leg-delay": "delay_mismatch_ps"}
+_DIFFERENCES = {"leg-length": ("length_mismatch_mm", "mm"), "leg-delay": ("delay_mismatch_ps", "ps")}
 
 
 def held_limits(
@@ -43,7 +43,9 @@ def held_limits(
             measured, bound, unit = first.measured, first.limit, first.unit
         else:
             outcome = "undecided" if name in undecided else "kept"
-            measured, bound = _compared(name, limit, measures, balance) if outcome == "kept" else (None, None)
+            measured, bound = (
+                _compared(name, limit, judgement, measures, balance) if outcome == "kept" else (None, None)
+            )
             unit = rule.unit
         held.append(
             HeldLimit(
@@ -76,13 +78,14 @@ def _amount(value: float, dimension: str) -> str:
 
 
 def _compared(
-    name: str, limit: Limit, measures: Measures, balance: tuple[BalancePoint, ...]
+    name: str, limit: Limit, judgement: Judgement, measures: Measures, balance: tuple[BalancePoint, ...]
 ) -> tuple[float | None, float | None]:
     """The figure that a rule compares, and the number it is compared with; `None` where it does not work that way."""
     given = limit.quantities
     if name in _DIFFERENCES:
-        difference = getattr(measures, _DIFFERENCES[name])
-        return (None, None) if difference is None else (abs(difference), given.get("most"))
+        figure, unit = _DIFFERENCES[name]
+        difference, pins = getattr(measures, figure), judgement.pins.difference(unit)
+        return (None, None) if difference is None or pins is None else (abs(difference + pins), given.get("most"))
     if name == "width-match" and measures.width_plus_mm is not None and measures.width_minus_mm is not None:
         return abs(measures.width_plus_mm - measures.width_minus_mm), given.get("most")
     if name == "via-match" and measures.vias_plus is not None and measures.vias_minus is not None:

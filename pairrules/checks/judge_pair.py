@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 
 from pairrules.checks.fingerprint import copper_digest, fingerprint
+from pairrules.checks.pin_lengths import NOTHING, PinExtra
 from pairrules.checks.rule import Rule, Subject, Undecided
 from pairrules.checks.timed_limit import in_own_unit
 from pairrules.result import SEVERITIES, Finding, Unjudged
@@ -20,12 +21,14 @@ class Judgement:
     ----------
     findings: worst severity first, then by rule. unjudged: rules that could not judge.
     judged: names of the rules that did judge. limits: as they were judged, by rule; a time as the length it comes to.
+    pins: what the pair's pins add, and the rules on length and delay count in.
     """
 
     findings: tuple[Finding, ...]
     unjudged: tuple[Unjudged, ...]
     judged: tuple[str, ...]
     limits: Mapping[str, Limit] = field(default_factory=dict)
+    pins: PinExtra = NOTHING
 
 
 def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str, Rule]) -> Judgement:
@@ -50,7 +53,9 @@ def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str
         digest = copper_digest(subject.board, subject.link)
         findings = [replace(finding, fingerprint=fingerprint(finding.rule, digest)) for finding in findings]
     findings.sort(key=lambda finding: SEVERITIES.index(finding.severity))
-    return Judgement(findings=tuple(findings), unjudged=tuple(unjudged), judged=tuple(judged), limits=applied)
+    return Judgement(
+        findings=tuple(findings), unjudged=tuple(unjudged), judged=tuple(judged), limits=applied, pins=subject.pins
+    )
 
 
 def verdict(judgement: Judgement, routed: str) -> str:

@@ -9,8 +9,8 @@ Why it matters
     length on different layers arrive at different times.
 
 Formula
-    |delay_mismatch_ps| [ps] ≤ most [ps]; most may be a share of the class's rise time or unit interval. A delay Δτ
-    converts sin(π f Δτ).
+    |delay_mismatch_ps| [ps] ≤ most [ps], with what the settings' `pin_lengths` add to each leg; most may be a share
+    of the class's rise time or unit interval. A delay Δτ converts sin(π f Δτ).
 
 Source
     Conversion by skew: mode definitions of Bockelman and Eisenstadt, IEEE Trans. MTT 43 (1995), from memory; the sine
@@ -42,7 +42,10 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     plus, minus = electrical.delay_plus_ps, electrical.delay_minus_ps
     if plus is None or minus is None:
         return lacking(electrical, "sections", "the legs' delays are not known")
-    mismatch, most = plus - minus, limit.quantities["most"]
+    pins = subject.pins.difference("ps")
+    if pins is None:
+        return Undecided(missing="pins add a length to the legs, and the pair's velocity is unknown")
+    mismatch, most = plus - minus + pins, limit.quantities["most"]
     if abs(mismatch) <= most + TOLERANCE:
         return ()
     later, earlier = ("plus", "minus") if mismatch > 0 else ("minus", "plus")
@@ -62,7 +65,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             measured=abs(mismatch),
             limit=most,
             unit="ps",
-            message=f"{later} is {measured} slower than {earlier}; {allowed} is allowed",
+            message=f"{later} is {measured} slower than {earlier}{subject.pins.told('ps')}; {allowed} is allowed",
             advice=advice,
             at=at,
             source=limit.source,

@@ -9,8 +9,9 @@ Why it matters
     sin(π f Δτ) turns into signal, and the signal the other way radiates.
 
 Formula
-    |length_plus_mm − length_minus_mm| [mm] ≤ most [mm]. Barrels of unknown height cancel where both legs pass the
-    same ones. Where most is said as a time, or a share of one, it is that time over the pair's delay per length.
+    |length_plus_mm − length_minus_mm| [mm] ≤ most [mm], with what the settings' `pin_lengths` add to each leg.
+    Barrels of unknown height cancel where both legs pass the same ones. Where most is said as a time, or a share of
+    one, it is that time over the pair's delay per length.
 
 Source
     Conversion by skew: mode definitions of Bockelman and Eisenstadt, IEEE Trans. MTT 43 (1995), from memory; the sine
@@ -50,7 +51,10 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         return Undecided(
             missing="the legs pass different vias, and the stackup does not say how long their barrels are"
         )
-    mismatch, most = plus.length_mm - minus.length_mm, limit.quantities["most"]
+    pins = subject.pins.difference("mm")
+    if pins is None:
+        return Undecided(missing="pins add a time to the legs, and the pair's velocity is unknown")
+    mismatch, most = plus.length_mm - minus.length_mm + pins, limit.quantities["most"]
     if abs(mismatch) <= most + TOLERANCE:
         return ()
     longer, shorter = ("plus", "minus") if mismatch > 0 else ("minus", "plus")
@@ -68,7 +72,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             measured=abs(mismatch),
             limit=most,
             unit="mm",
-            message=f"{longer} is {measured} longer than {shorter}; {allowed} is allowed",
+            message=f"{longer} is {measured} longer than {shorter}{subject.pins.told('mm')}; {allowed} is allowed",
             advice=advice,
             at=() if where is None else (where,),
             source=limit.source,

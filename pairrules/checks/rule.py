@@ -10,6 +10,7 @@ from functools import cache
 
 from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.board.board import Board
+from pairrules.checks.pin_lengths import NOTHING, PinExtra
 from pairrules.geometry.pair_geometry import PairGeometry
 from pairrules.pairing.link import Link
 from pairrules.result import Finding, Measures
@@ -26,6 +27,7 @@ class Subject:
     breakout_mm: track length at each end of each leg that rules on the gap and on running apart leave out.
     electrical: what the electrical stage found; `None` where it was not asked for.
     klass: the pair's class, `None` where it has none. reference: indices of the reference nets.
+    pins: what the pins it passes add to its legs.
     """
 
     board: Board
@@ -36,6 +38,7 @@ class Subject:
     electrical: PairElectrical | None = None
     klass: PairClass | None = None
     reference: tuple[int, ...] = ()
+    pins: PinExtra = NOTHING
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -12,7 +12,7 @@ from pairrules.settings.faults import Faults
 from pairrules.settings.limit import Limit, Timed
 from pairrules.settings.network_models import cable_spec, curve, load_spec, pickup_spec, source_spec
 from pairrules.settings.nodes import Node, Sequence
-from pairrules.settings.pair_class import LimitsAndOff, PairClass, unreachable
+from pairrules.settings.pair_class import LimitsAndOff, PairClass, PinLengths, unreachable
 from pairrules.settings.read_shape import Entry
 from pairrules.settings.settings import ListedPair
 
@@ -31,6 +31,7 @@ class OneFile:
     ignore: tuple[str, ...] = ()
     classes: tuple[PairClass, ...] = ()
     limits: LimitsAndOff = field(default_factory=lambda: ({}, ()))
+    pin_lengths: PinLengths = field(default_factory=dict)
     waivers: Path | None = None
     like_nodes: tuple[tuple[str, Node], ...] = ()
 
@@ -57,6 +58,7 @@ def one_file(entry: Entry, faults: Faults, *, folder: Path, shipped: bool) -> On
         ignore=ignore,
         classes=classes,
         limits=build.limits(entry.get("limits")),
+        pin_lengths=_pin_lengths(entry.get("pin_lengths")),
         waivers=None if waivers is None else folder / waivers,
         like_nodes=like_nodes,
     )
@@ -173,4 +175,19 @@ class _Build:
             unit_interval_ps=entry.get("unit_interval"),
             pickup=parts["pickup"] and pickup_spec(parts["pickup"], self._faults),
             mask=curve(entry.get("mask") or (), self._faults),
+            pin_lengths=_pin_lengths(entry.get("pin_lengths")),
+            expects_pin_lengths=entry.get("expects_pin_lengths") or (),
+            places=self._places(entry),
         )
+
+    def _places(self, entry: Entry) -> dict[str, str]:
+        """Where each key of a class stands, and each limit in it."""
+        found = {key: self._place(entry.nodes[key]) for key in entry.values if key != "limits"}
+        limits = entry.get("limits")
+        if limits is not None:
+            found |= {f"limits.{rule}": self._place(limits.nodes[rule]) for rule in limits.values}
+        return found
+
+
+def _pin_lengths(entry: Entry | None) -> PinLengths:
+    return {} if entry is None else {part: dict(pins.values) for part, pins in sorted(entry.values.items())}

@@ -6,8 +6,11 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field, replace
 from fnmatch import fnmatchcase
 
-from pairrules.settings.limit import Limit
+from pairrules.settings.limit import Limit, Timed
 from pairrules.settings.network_models import CableSpec, Curve, LoadSpec, PickupSpec, SourceSpec
+
+PinLengths = Mapping[str, Mapping[str, float | Timed]]
+"""What pins add: part to pin to length [mm] or time."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -23,6 +26,8 @@ class PairClass:
     reach_mm: how far apart legs still count as coupled. breakout_mm: stretch at each end that geometry rules exempt.
     rise_time_ps, unit_interval_ps: of its signal.
     pickup: fields and neighbours it has to bear. mask: least conversion loss as (frequency [Hz], ratio [dB]).
+    pin_lengths: what pins add to its legs. expects_pin_lengths: patterns of parts of which every pin ought to have one.
+    places: key of the settings ("source", "rise_time", "limits.gap-band") to file and line it was read at.
     """
 
     name: str
@@ -41,6 +46,9 @@ class PairClass:
     unit_interval_ps: float | None = None
     pickup: PickupSpec | None = None
     mask: Curve = ()
+    pin_lengths: PinLengths = field(default_factory=dict)
+    expects_pin_lengths: tuple[str, ...] = ()
+    places: Mapping[str, str] = field(default_factory=dict)
 
     def holds_for(self, names: Iterable[str]) -> bool:
         """Whether a pattern fits one of the names. Case counts; a pattern that is the name itself always fits."""
@@ -58,6 +66,7 @@ _SAID_ONCE = (
     "unit_interval_ps",
     "pickup",
     "mask",
+    "expects_pin_lengths",
 )
 
 
@@ -67,7 +76,15 @@ def laid_over(upper: PairClass, lower: PairClass) -> PairClass:
     for name in ("reach_mm", "breakout_mm", "rise_time_ps", "unit_interval_ps"):
         said[name] = getattr(lower, name) if getattr(upper, name) is None else getattr(upper, name)
     limits, off = limits_over((upper.limits, upper.off), (lower.limits, lower.off))
-    return replace(upper, limits=limits, off=off, **said)
+    pins = pins_over(upper.pin_lengths, lower.pin_lengths)
+    places = {**lower.places, **upper.places}
+    return replace(upper, limits=limits, off=off, pin_lengths=pins, places=places, **said)
+
+
+def pins_over(upper: PinLengths, lower: PinLengths) -> PinLengths:
+    """Lengths of pins, the upper's before the lower's, pin by pin."""
+    parts = sorted({*upper, *lower})
+    return {part: {**lower.get(part, {}), **upper.get(part, {})} for part in parts}
 
 
 LimitsAndOff = tuple[Mapping[str, Limit], tuple[str, ...]]

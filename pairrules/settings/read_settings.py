@@ -16,7 +16,7 @@ from pairrules.settings.faults import Faults, nearest
 from pairrules.settings.limit import Limit, RuleForm
 from pairrules.settings.nodes import LARGEST_BYTES, Node, decode, parse
 from pairrules.settings.one_file import OneFile, one_file
-from pairrules.settings.pair_class import LimitsAndOff, PairClass, laid_over, limits_over
+from pairrules.settings.pair_class import LimitsAndOff, PairClass, laid_over, limits_over, pins_over
 from pairrules.settings.read_shape import Entry, read_shape
 from pairrules.settings.settings import Settings
 from pairrules.settings.settings_form import settings_form
@@ -163,6 +163,7 @@ def _merged(files: list[_Read], faults: Faults) -> Settings:
             reference_nets=merged.reference_nets if own.reference_nets is None else own.reference_nets,
             pairs=own.pairs + merged.pairs,
             ignore=own.ignore + merged.ignore,
+            pin_lengths=pins_over(own.pin_lengths, merged.pin_lengths),
             waivers=merged.waivers if own.waivers is None else own.waivers,
             files=(*merged.files, read.faults.file),
         )

@@ -8,7 +8,7 @@ from pathlib import Path
 
 from pairrules.board.stackup import Layer
 from pairrules.settings.limit import Limit
-from pairrules.settings.pair_class import PairClass
+from pairrules.settings.pair_class import PairClass, PinLengths, pins_over
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -32,6 +32,7 @@ class Settings:
     pairs, ignore: listed pairs, and patterns of nets that are in no pair, the project's own first.
     classes: the project's own first; the first that holds counts.
     limits: hold for every pair unless its class says otherwise.
+    pin_lengths: what pins add, for every class that does not say otherwise.
     waivers: the waiver file, None where none is named.
     files: every file read, as named, the deepest base first.
     """
@@ -42,6 +43,7 @@ class Settings:
     ignore: tuple[str, ...] = ()
     classes: tuple[PairClass, ...] = ()
     limits: Mapping[str, Limit] = field(default_factory=dict)
+    pin_lengths: PinLengths = field(default_factory=dict)
     waivers: Path | None = None
     files: tuple[str, ...] = ()
 
@@ -59,3 +61,7 @@ class Settings:
             return self.limits
         kept = {rule: limit for rule, limit in self.limits.items() if rule not in klass.off}
         return dict(sorted({**kept, **klass.limits}.items()))
+
+    def pin_lengths_for(self, klass: PairClass | None) -> PinLengths:
+        """What pins add to a pair of this class (None: to one without)."""
+        return self.pin_lengths if klass is None else pins_over(klass.pin_lengths, self.pin_lengths)

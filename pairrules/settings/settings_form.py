@@ -15,6 +15,8 @@ _LENGTH = Quantity(dimension="length")
 _TIME = Quantity(dimension="time", positive=True)
 _SIGNED = {"ratio", "angle"}
 
+_PIN_LENGTHS = Named(of=Named(of=Quantity(dimension="length", or_time=True)))
+
 _LAYER = Table(
     keys={
         "name": Text(),
@@ -45,6 +47,7 @@ def settings_form(forms: Mapping[str, RuleForm]) -> Table:
             "pairs": ListOf(of=_PAIR),
             "classes": Named(of=_class(limits)),
             "limits": limits,
+            "pin_lengths": _PIN_LENGTHS,
             "waivers": Text(),
         }
     )
@@ -66,6 +69,8 @@ def _class(limits: Table) -> Table:
             "unit_interval": _TIME,
             "pickup": PICKUP_FORM,
             "mask": CURVE,
+            "pin_lengths": _PIN_LENGTHS,
+            "expects_pin_lengths": _TEXTS,
         }
     )
 

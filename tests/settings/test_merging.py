@@ -6,7 +6,7 @@ import pytest
 
 from pairrules.checks.rule import all_rules
 from pairrules.errors import SettingsError
-from pairrules.settings.limit import RuleForm
+from pairrules.settings.limit import RuleForm, Timed
 from pairrules.settings.pair_class import PairClass, unreachable
 from pairrules.settings.read_settings import find_settings, read_settings
 from pairrules.settings.settings import Settings
@@ -211,3 +211,28 @@ def test_the_nearest_settings_upward_are_found(tmp_path: Path) -> None:
     assert find_settings(deep / "board.json") == tmp_path / "pairrules.yaml"
     (tmp_path / "project" / "pairrules.yaml").write_text("")
     assert find_settings(deep / "board.json") == tmp_path / "project" / "pairrules.yaml"
+
+
+def test_lengths_of_pins_are_merged_pin_by_pin_and_a_class_wins(tmp_path: Path) -> None:
+    settings = read(
+        tmp_path,
+        one="extends: []\npin_lengths: {U1: {A1: 1 mm, A2: 2 mm}}\n",
+        top="extends: [./one.yaml]\n"
+        "pin_lengths: {U1: {A2: 12 ps}, J1: {5: 3 mm}}\n"
+        "classes: {a: {match: [A], pin_lengths: {U1: {A1: 4 mm}}}}\n",
+    )
+    assert settings.pin_lengths_for(None) == {"J1": {"5": 3.0}, "U1": {"A1": 1.0, "A2": Timed(amount=12.0)}}
+    assert settings.pin_lengths_for(settings.classes[0])["U1"] == {"A1": 4.0, "A2": Timed(amount=12.0)}
+
+
+def test_each_value_of_a_class_knows_where_it_was_said(tmp_path: Path) -> None:
+    settings = read(
+        tmp_path,
+        one="extends: []\nclasses:\n  base:\n    rise_time: 1 ns\n    limits: {half-pair: off}\n    breakout: 1 mm\n",
+        top="extends: [./one.yaml]\nclasses:\n  a:\n    match: [A]\n    like: base\n    breakout: 2 mm\n",
+    )
+    places = next(one for one in settings.classes if one.name == "a").places
+    one, top = tmp_path / "one.yaml", tmp_path / "top.yaml"
+    assert places["rise_time"] == f"{one} line 4"
+    assert places["limits.half-pair"] == f"{one} line 5"
+    assert places["breakout"] == f"{top} line 6"
