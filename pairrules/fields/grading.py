@@ -43,12 +43,12 @@ class Cells:
 def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     """Grade the pieces; `refine` multiplies the number of cells."""
     corner, at_start, at_end = _corners(pieces)
-    points, weight, sharp, reach = _scales(pieces, region, corner, at_start, at_end)
-    divided = _cut_beside_corners(pieces, points[sharp])
+    points, weight, sharp, smooth, reach = _scales(pieces, region, corner, at_start, at_end)
+    divided = _cut_beside_corners(pieces, points, _foreign(pieces, sharp, smooth))
     if divided is not pieces:
         pieces = divided
         corner, at_start, at_end = _corners(pieces)
-        points, weight, sharp, reach = _scales(pieces, region, corner, at_start, at_end)
+        points, weight, sharp, smooth, reach = _scales(pieces, region, corner, at_start, at_end)
     s = np.linspace(0.0, 1.0, _SAMPLES + 1)
     way = pieces.end - pieces.start
     length = np.abs(way)
@@ -58,7 +58,7 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     square = apart.real**2 + apart.imag**2
     rows = np.arange(len(way))
     foreign = square * (weight * weight)[None, None, :]
-    foreign[:, :, ~sharp] = np.inf
+    foreign.transpose(0, 2, 1)[~_foreign(pieces, sharp, smooth)] = np.inf
     foreign[rows, :, at_start] = np.inf
     foreign[rows, :, at_end] = np.inf
     rate = 1.0 / np.sqrt(np.maximum(foreign.min(axis=2, initial=np.inf), 1e-30))
@@ -85,6 +85,11 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     return _divide(pieces, running, count, s)
 
 
+def _foreign(pieces: Pieces, sharp: Bools, smooth: Ints) -> Bools:
+    """Which corners ask which pieces for small cells: sharp ones all, those of round copper only other things."""
+    return sharp[None, :] | ((smooth >= 0)[None, :] & (smooth[None, :] != pieces.owner[:, None]))
+
+
 def _share(pieces: Pieces) -> Floats:
     """How finely an interface needs to be divided, against one between laminate and air.
 
@@ -97,7 +102,7 @@ def _share(pieces: Pieces) -> Floats:
     return share
 
 
-def _cut_beside_corners(pieces: Pieces, corners: Complexes) -> Pieces:
+def _cut_beside_corners(pieces: Pieces, corners: Complexes, foreign: Bools) -> Pieces:
     """Cut long pieces where they pass a corner so closely that sampling them from end to end would miss it."""
     way = pieces.end - pieces.start
     length = np.abs(way)
@@ -105,7 +110,7 @@ def _cut_beside_corners(pieces: Pieces, corners: Complexes) -> Pieces:
     along, apart = offset.real, np.abs(offset.imag)
     to_end = np.minimum(along, length[:, None] - along)
     spacing = (4.5 / _SAMPLES) * np.cbrt(np.maximum(to_end, 0.0) ** 2 * length[:, None])
-    of, which = np.nonzero((to_end > apart + 1e-8) & (apart < spacing))
+    of, which = np.nonzero(foreign & (to_end > apart + 1e-8) & (apart < spacing))
     if not len(of):
         return pieces
     order = np.lexsort((along[of, which], of))
@@ -174,8 +179,8 @@ def _corners(pieces: Pieces) -> tuple[Complexes, Ints, Ints]:
 
 def _scales(
     pieces: Pieces, region: Region, corner: Complexes, at_start: Ints, at_end: Ints
-) -> tuple[Complexes, Floats, Bools, Floats]:
-    """Corners, their β, whether they count, and their scale ℓ."""
+) -> tuple[Complexes, Floats, Bools, Ints, Floats]:
+    """Corners, their β, whether they are sharp, whose round copper they belong to (else −1), and their scale ℓ."""
     count = len(corner)
     copper = pieces.owner != INTERFACE
     has_copper = np.zeros(count, dtype=np.bool_)
@@ -203,7 +208,9 @@ def _scales(
     out[at_start] = np.arange(len(way))
     through = (meeting == 2) & (into >= 0) & (out >= 0) & (pieces.owner[into] == pieces.owner[out])
     turn = np.abs(np.angle(way[np.maximum(out, 0)] / way[np.maximum(into, 0)]))
-    sharp = ~far & ~(through & (turn < _STRAIGHT))
+    round_off = through & (turn < _STRAIGHT)
+    sharp = ~far & ~round_off
+    smooth = np.where(round_off & has_copper & (turn > 1e-6), pieces.owner[np.maximum(into, 0)], -1)
     apart = np.abs(corner[:, None] - corner[None, :])
     np.fill_diagonal(apart, np.inf)
     apart[:, far] = np.inf
@@ -221,4 +228,4 @@ def _scales(
         if bound is not None:
             gap = np.abs(corner.imag - bound)
             reach = np.minimum(reach, np.where(gap > 1e-9, gap, np.inf))
-    return corner, weight, sharp, np.where(np.isfinite(reach), reach, 1.0)
+    return corner, weight, sharp, smooth, np.where(np.isfinite(reach), reach, 1.0)

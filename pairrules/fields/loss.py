@@ -39,7 +39,8 @@ _WAVES = 1500  # points of the integral over wave numbers for the current in an 
 class SkinIntegrals:
     """∮ J_i J_j dl for 1 A in leg i and 1 A in leg j [1/m], (2, 2).
 
-    legs, grounded: over the copper of the legs, and over all that is at 0 V. direct: 1/A of each leg [1/m²], (2,). why_nan: why entries are NaN, if they are.
+    legs, grounded: over the copper of the legs, and over all that is at 0 V. direct: 1/A of each leg [1/m²], (2,).
+    why_nan: why entries are NaN, if they are.
     """
 
     legs: Floats
@@ -143,31 +144,31 @@ def _places(section: CrossSection, role: str) -> list[int]:
 
 
 def _on_planes(air: AirCharge, charge: Floats) -> Floats:
-    """∮ J_i J_j dl over a region's infinite planes, by Parseval's theorem over wave numbers k along the plane.
+    """∮ J_i J_j dl over a region's infinite planes.
 
-    A line charge q at height y over one plane draws a density whose transform is −q e^(−ky); between two planes at 0
-    and b it is −q sinh k(b−y)/sinh kb on the lower and −q sinh ky/sinh kb on the upper one.
+    A line charge at height y over one plane draws the density −(1/π) y/(x² + y²); the product of two of them,
+    integrated along the plane, is (1/π) (y + y′)/((x − x′)² + (y + y′)²). Between two planes Parseval's theorem over
+    wave numbers k serves: the transforms are −sinh k(b−y)/sinh kb on the lower plane and −sinh ky/sinh kb on the upper one.
     """
-    if air.bottom is None and air.top is None:
-        return np.zeros((2, 2))
     x = air.middle.real
     low = air.middle.imag - air.bottom if air.bottom is not None else None
     high = air.top - air.middle.imag if air.top is not None else None
-    heights = [h for h in (low, high) if h is not None]
-    nearest = min(float(h[h > 0.0].min()) for h in heights)
-    span = max(float(np.ptp(x)), *(float(h.max()) for h in heights))
+    if low is None or high is None:
+        height = low if low is not None else high
+        if height is None:
+            return np.zeros((2, 2))
+        both = height[:, None] + height
+        drawn: Floats = charge.T @ (both / (np.pi * ((x[:, None] - x) ** 2 + both**2))) @ charge
+        return drawn
+    gap = float((low + high)[0])
+    copper = np.minimum(low, high)
     # even steps of log k: fine where the wide things are, and still far enough for the close ones
-    k = np.geomspace(1e-5 / span, 20.0 / nearest, _WAVES)
+    k = np.geomspace(1e-5 / max(float(np.ptp(x)), gap), 20.0 / float(copper[copper > 0.0].min()), _WAVES)
     weight = k * np.log(k[1] / k[0]) / np.pi
-    waves = np.exp(1j * k[:, None] * x[None, :])
+    waves = np.exp(1j * k[:, None] * x)
     total = np.zeros((2, 2))
     for near, far in ((low, high), (high, low)):
-        if near is None:
-            continue
-        fall = np.exp(-k[:, None] * near[None, :])
-        if far is not None:
-            gap = float((near + far)[0])
-            fall = fall * -np.expm1(-2.0 * k[:, None] * far[None, :]) / -np.expm1(-2.0 * k[:, None] * gap)
+        fall = np.exp(-k[:, None] * near) * np.expm1(-2.0 * k[:, None] * far) / np.expm1(-2.0 * k[:, None] * gap)
         seen = (waves * fall) @ charge
         total += ((seen.conj() * weight[:, None]).T @ seen).real
     return total
