@@ -261,7 +261,7 @@ def _found_pair(board: Board, link: Link, klass: str | None) -> FoundPair:
         name=link.name,
         plus=board.nets[link.plus],
         minus=board.nets[link.minus],
-        klass=klass,
+        klass=klass or link.klass or None,
         found_by=link.found_by,
         nets_plus=tuple(board.nets[hop.net] for hop in link.hops_plus),
         nets_minus=tuple(board.nets[hop.net] for hop in link.hops_minus),

@@ -20,8 +20,8 @@ def track_resistance(
     """Resistance per metre (F, legs) [ohm/m].
 
     √(Rdc² + Rs²): Rs lets the current flow in one skin depth along the circumference 2(w + t), evenly. The two
-    regimes meet near δ = t/2. The crowding at the edges and the loss of the planes are left out; together they raise Rs
-    by a quarter to a half on common cross-sections (common practice, no source), which changes attenuation, not balance.
+    regimes meet near δ = t/2. Crowding at the edges and loss of the planes are left out; together they raise Rs
+    by a quarter to a half on common cross-sections (common practice, no source): attenuation, not balance.
 
     Parameters: direct: (legs,) [ohm/m] at d.c. widths_mm: of each leg. frequencies: (F,) [Hz].
     Source: skin depth δ = √(ρ/(π f µ0)) (textbook).

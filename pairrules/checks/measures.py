@@ -68,4 +68,5 @@ def balance_figures(figures: PairElectrical, frequencies: tuple[float, ...]) -> 
 
 
 def _vias(leg: LegRoute | None) -> int | None:
-    return None if leg is None else len(leg.vias)
+    """Vias of the route; a pin's plated hole that it passes is none of them."""
+    return None if leg is None else sum(use.via >= 0 for use in leg.vias)

@@ -35,16 +35,16 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     found = both_legs(subject)
     if isinstance(found, Undecided):
         return found
-    plus, minus = found
-    difference, most = abs(len(plus.vias) - len(minus.vias)), limit.quantities["most"]
+    # A pin's plated hole that the route passes is a layer change too, but no via.
+    plus, minus = ([use for use in leg.vias if use.via >= 0] for leg in found)
+    difference, most = abs(len(plus) - len(minus)), limit.quantities["most"]
     if difference <= most:
         return ()
-    more, fewer, leg = ("plus", "minus", plus) if len(plus.vias) > len(minus.vias) else ("minus", "plus", minus)
+    more, fewer, vias = ("plus", "minus", plus) if len(plus) > len(minus) else ("minus", "plus", minus)
     board = subject.board
-    at = tuple(place(board, via.enter, via.x_mm, via.y_mm) for via in leg.vias)
+    at = tuple(place(board, via.enter, via.x_mm, via.y_mm) for via in vias)
     changes = "; ".join(
-        f"{spot(board, where)} to {layer_name(board, via.leave)}"
-        for where, via in zip(at[:4], leg.vias[:4], strict=True)
+        f"{spot(board, where)} to {layer_name(board, via.leave)}" for where, via in zip(at[:4], vias[:4], strict=True)
     )
     return (
         Finding(
@@ -53,8 +53,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             measured=float(difference),
             limit=most,
             unit="",
-            message=f"plus passes {_vias(len(plus.vias))}, minus {len(minus.vias)}; "
-            f"a difference of {most:.0f} is allowed",
+            message=f"plus passes {_vias(len(plus))}, minus {len(minus)}; a difference of {most:.0f} is allowed",
             advice=f"give {fewer} the same layer changes as {more} or take {_vias(difference)} out of {more}, "
             f"which changes layer at {changes}",
             at=at,
