@@ -2,7 +2,8 @@
 
 What it judges
     `apart_mm`: the greater of the two legs' track lengths along which the other leg does not run beside it (same
-    layer, within reach, turned less than 30 degrees). The class's `breakout` at each end of each leg is left out.
+    layer, within reach, turned less than 30 degrees). The class's `breakout` at each end of each leg is
+    left out, and what lies in it told apart.
 
 Why it matters
     Where the legs run apart they enclose a loop that a magnetic field drives, each sees its own neighbours, and the
@@ -27,7 +28,7 @@ import math
 
 from pairrules.checks.routed_legs import both_legs, unrouted
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.checks.stretches import alone
+from pairrules.checks.stretches import alone, in_breakout
 from pairrules.checks.wording import TOLERANCE, amounts, spot
 from pairrules.result import Finding
 from pairrules.settings.limit import Limit
@@ -48,13 +49,14 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     )
     plus_mm, minus_mm = (math.fsum(stretch.length_mm for stretch in stretches) for stretches in (on_plus, on_minus))
     if plus_mm >= minus_mm:
-        name, leg, stretches, apart_mm = "plus", plus, on_plus, plus_mm
+        name, leg, profile, stretches, apart_mm = "plus", plus, geometry.profile_plus, on_plus, plus_mm
     else:
-        name, leg, stretches, apart_mm = "minus", minus, on_minus, minus_mm
+        name, leg, profile, stretches, apart_mm = "minus", minus, geometry.profile_minus, on_minus, minus_mm
     allowed_mm = min(given.get("most", math.inf), given.get("share", math.inf) * leg.track_mm)
     if apart_mm <= allowed_mm + TOLERANCE:
         return ()
     measured, allowed = amounts(apart_mm, allowed_mm, "mm")
+    left_out = in_breakout(alone(subject.board, profile), stretches, subject.breakout_mm)
     spots = [f"{spot(subject.board, s.first)} to {spot(subject.board, s.last)}" for s in stretches[:3]]
     rest = f" and {len(stretches) - 3} more" if len(stretches) > 3 else ""
     return (
@@ -64,7 +66,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             measured=apart_mm,
             limit=allowed_mm,
             unit="mm",
-            message=f"{name} runs {measured} without the other leg beside it; {allowed} is allowed",
+            message=f"{name} runs {measured} without the other leg beside it; {allowed} is allowed{left_out}",
             advice=f"lead the legs side by side from {'; from '.join(spots)}{rest}"
             if spots
             else "lead the legs side by side",

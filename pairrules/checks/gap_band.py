@@ -3,7 +3,7 @@
 What it judges
     The gap, track edge to track edge, along the coupled length of plus. Its band is the pair's own median gap give or
     take `spread`, or the absolute `least` and `most`; where both are given both hold. The class's `breakout` at each
-    end is left out; stretches no longer than `for` are excused.
+    end is left out, and what lies in it told apart; stretches no longer than `for` are excused.
 
 Why it matters
     Coupling and odd-mode impedance follow the gap. A stretch that is wider or narrower reflects, and where the legs
@@ -32,7 +32,7 @@ import math
 
 from pairrules.checks.routed_legs import unrouted
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.checks.stretches import Stretch, narrower, wider
+from pairrules.checks.stretches import Stretch, in_breakout, narrower, wider
 from pairrules.checks.wording import TOLERANCE, amounts, decimals, spot
 from pairrules.result import Finding
 from pairrules.settings.limit import Limit
@@ -51,25 +51,20 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         least = max(least, median * (1 - given["spread"]))
         most = min(most, median * (1 + given["spread"]))
     excused = given.get("for", 0.0) + TOLERANCE
-    wide = [
-        stretch
-        for stretch in wider(subject.board, profile, most, breakout_mm=subject.breakout_mm)
-        if stretch.length_mm > excused
-    ]
-    narrow = [
-        stretch
-        for stretch in narrower(subject.board, profile, least, breakout_mm=subject.breakout_mm)
-        if stretch.length_mm > excused
-    ]
     band = _band(least, most)
-    return tuple(
-        _finding(subject, limit, stretches, bound, band)
-        for stretches, bound in ((narrow, least), (wide, most))
-        if stretches
-    )
+    findings = []
+    for beyond, bound in ((narrower, least), (wider, most)):
+        judged = beyond(subject.board, profile, bound, breakout_mm=subject.breakout_mm)
+        stretches = [stretch for stretch in judged if stretch.length_mm > excused]
+        if stretches:
+            left_out = in_breakout(beyond(subject.board, profile, bound), judged, subject.breakout_mm)
+            findings.append(_finding(subject, limit, stretches, bound, band, left_out))
+    return tuple(findings)
 
 
-def _finding(subject: Subject, limit: Limit, stretches: list[Stretch], bound: float, band: str) -> Finding:
+def _finding(
+    subject: Subject, limit: Limit, stretches: list[Stretch], bound: float, band: str, left_out: str
+) -> Finding:
     longest, board = stretches[0], subject.board
     worst = (max if longest.worst > bound else min)(stretch.worst for stretch in stretches)
     measured, _ = amounts(worst, bound, "mm")
@@ -85,7 +80,7 @@ def _finding(subject: Subject, limit: Limit, stretches: list[Stretch], bound: fl
         limit=bound,
         unit="mm",
         message=f"the gap {'falls' if narrow else 'grows'} to {measured}, outside its band over "
-        f"{longest.length_mm:.2f} mm{more}; {band} is allowed{at_most}",
+        f"{longest.length_mm:.2f} mm{more}; {band} is allowed{at_most}{left_out}",
         advice=f"{'part the legs' if narrow else 'bring the legs together'} to {band} between "
         f"{spot(board, longest.first)} and {spot(board, longest.last)}",
         at=tuple(place for stretch in stretches for place in (stretch.first, stretch.last)),

@@ -5,6 +5,8 @@
 
 from __future__ import annotations
 
+import math
+from collections.abc import Iterable
 from dataclasses import dataclass
 
 import numpy as np
@@ -54,6 +56,17 @@ def wider(board: Board, profile: SpacingProfile, than_mm: float, *, breakout_mm:
 def narrower(board: Board, profile: SpacingProfile, than_mm: float, *, breakout_mm: float = 0.0) -> tuple[Stretch, ...]:
     """Where the coupled gap is less than `than_mm`, longest first. `worst` is the least gap."""
     return _outside(board, profile, than_mm, -1.0, breakout_mm)
+
+
+def in_breakout(whole: Iterable[Stretch], judged: Iterable[Stretch], breakout_mm: float) -> str:
+    """The end of a message that tells how much of the same lies in the breakout and is not judged; "" where none does.
+
+    Parameters: whole: the stretches found without a breakout. judged: those found with it.
+    """
+    left_out = math.fsum(one.length_mm for one in whole) - math.fsum(one.length_mm for one in judged)
+    if left_out <= TOLERANCE:
+        return ""
+    return f"; another {left_out:.2f} mm lie in the breakout of {breakout_mm:.2f} mm at each end and are not judged"
 
 
 def _outside(
