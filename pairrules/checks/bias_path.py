@@ -140,4 +140,5 @@ RULE = Rule(
     quantities={"most": "share"},
     required=(),
     judge=judge,
+    models=("parts",),
 )

@@ -122,4 +122,5 @@ RULE = Rule(
     quantities={"least": "length"},
     required=("least",),
     judge=judge,
+    models=("reference-cover",),
 )

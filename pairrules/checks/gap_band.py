@@ -103,4 +103,5 @@ RULE = Rule(
     quantities={"spread": "share", "least": "length", "most": "length", "for": "length"},
     required=("spread", "least", "most"),
     judge=judge,
+    models=("spacing",),
 )

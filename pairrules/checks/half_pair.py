@@ -69,4 +69,11 @@ def _has_copper(subject: Subject, hops: tuple[Hop, ...]) -> bool:
     return any(area.net in nets for area in board.areas)
 
 
-RULE = Rule(summary="one leg has no copper", unit="", quantities={}, required=(), judge=judge)
+RULE = Rule(
+    summary="one leg has no copper",
+    unit="",
+    quantities={},
+    required=(),
+    judge=judge,
+    models=("routes",),
+)

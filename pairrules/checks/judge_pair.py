@@ -8,6 +8,7 @@ from dataclasses import dataclass, field, replace
 from pairrules.checks.fingerprint import copper_digest, fingerprint
 from pairrules.checks.pin_lengths import NOTHING, PinExtra
 from pairrules.checks.rule import Rule, Subject, Undecided
+from pairrules.geometry.board_copper import BoardCopper
 from pairrules.checks.timed_limit import in_own_unit
 from pairrules.result import SEVERITIES, Finding, Unjudged
 from pairrules.settings.limit import Limit
@@ -31,8 +32,10 @@ class Judgement:
     pins: PinExtra = NOTHING
 
 
-def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str, Rule]) -> Judgement:
-    """Every rule that has a limit, in the order of their names."""
+def judge_pair(
+    subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str, Rule], copper: BoardCopper | None = None
+) -> Judgement:
+    """Every rule that has a limit, in the order of their names. `copper`: the board's, where it is at hand."""
     findings: list[Finding] = []
     unjudged: list[Unjudged] = []
     judged: list[str] = []
@@ -50,8 +53,8 @@ def judge_pair(subject: Subject, limits: Mapping[str, Limit], rules: Mapping[str
             judged.append(name)
             findings.extend(answer)
     if findings:
-        digest = copper_digest(subject.board, subject.link)
-        findings = [replace(finding, fingerprint=fingerprint(finding.rule, digest)) for finding in findings]
+        digest = copper_digest(subject, copper or BoardCopper(subject.board, subject.reference))
+        findings = [replace(finding, fingerprint=fingerprint(finding.rule, subject, digest)) for finding in findings]
     findings.sort(key=lambda finding: SEVERITIES.index(finding.severity))
     return Judgement(
         findings=tuple(findings), unjudged=tuple(unjudged), judged=tuple(judged), limits=applied, pins=subject.pins

@@ -101,4 +101,5 @@ RULE = Rule(
     quantities={"most": "length"},
     required=("most",),
     judge=judge,
+    models=("routes",),
 )

@@ -105,4 +105,5 @@ RULE = Rule(
     quantities={"rejection": "ratio", "least": "resistance"},
     required=("rejection", "least"),
     judge=judge,
+    models=("balance",),
 )

@@ -108,5 +108,10 @@ def _loss(point: BalanceAt) -> float | None:
 
 
 RULE = Rule(
-    summary="the pair converts between its modes", unit="dB", quantities={"least": "ratio"}, required=(), judge=judge
+    summary="the pair converts between its modes",
+    unit="dB",
+    quantities={"least": "ratio"},
+    required=(),
+    judge=judge,
+    models=("balance",),
 )

@@ -162,4 +162,5 @@ RULE = Rule(
     quantities={"gap": "length", "share": "share", "for": "length"},
     required=("gap", "share"),
     judge=judge,
+    models=("neighbours",),
 )

@@ -130,4 +130,11 @@ def _apart(plus_ref: str, plus: str, minus_ref: str, minus: str) -> float | Unde
     return abs(values[0] - values[1]) / mean if mean else 0.0
 
 
-RULE = Rule(summary="the parts on the legs differ", unit="%", quantities={"most": "share"}, required=(), judge=judge)
+RULE = Rule(
+    summary="the parts on the legs differ",
+    unit="%",
+    quantities={"most": "share"},
+    required=(),
+    judge=judge,
+    models=("parts",),
+)

@@ -87,4 +87,5 @@ RULE = Rule(
     quantities={"most": "length"},
     required=("most",),
     judge=judge,
+    models=("parts", "routes"),
 )

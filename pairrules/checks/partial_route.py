@@ -36,6 +36,8 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         return ()
     if geometry.routed == "none":
         return Undecided(missing="neither leg has copper in the file")
+    if not geometry.broken and not link.missing:
+        return unrouted(subject)
     hops = {"plus": link.hops_plus, "minus": link.hops_minus}
     for leg, chain in sorted(hops.items(), reverse=True):
         if not chain or any(not hop.start or not hop.end for hop in chain):
@@ -65,4 +67,11 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     )
 
 
-RULE = Rule(summary="a leg is not routed from end to end", unit="", quantities={}, required=(), judge=judge)
+RULE = Rule(
+    summary="a leg is not routed from end to end",
+    unit="",
+    quantities={},
+    required=(),
+    judge=judge,
+    models=("routes",),
+)

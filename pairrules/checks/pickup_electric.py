@@ -77,5 +77,10 @@ def _beside(subject: Subject, net: str) -> tuple[Place, ...]:
 
 
 RULE = Rule(
-    summary="a neighbour couples too much", unit="mV", quantities={"most": "voltage"}, required=("most",), judge=judge
+    summary="a neighbour couples too much",
+    unit="mV",
+    quantities={"most": "voltage"},
+    required=("most",),
+    judge=judge,
+    models=("electric-pickup",),
 )

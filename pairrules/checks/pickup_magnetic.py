@@ -81,4 +81,5 @@ RULE = Rule(
     quantities={"most": "voltage"},
     required=("most",),
     judge=judge,
+    models=("magnetic-pickup",),
 )

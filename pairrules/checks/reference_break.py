@@ -202,4 +202,5 @@ RULE = Rule(
     quantities={"most": "length"},
     required=("most",),
     judge=judge,
+    models=("reference-cover",),
 )

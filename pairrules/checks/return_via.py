@@ -88,4 +88,5 @@ RULE = Rule(
     quantities={"most": "length"},
     required=("most",),
     judge=judge,
+    models=("routes", "reference-cover"),
 )

@@ -70,4 +70,5 @@ RULE = Rule(
     required=("most",),
     judge=judge,
     timed=("most",),
+    models=("routes",),
 )

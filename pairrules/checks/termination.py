@@ -165,4 +165,5 @@ RULE = Rule(
     quantities={"tolerance": "share", "most": "length"},
     required=("tolerance", "most"),
     judge=judge,
+    models=("parts",),
 )
