@@ -6,14 +6,11 @@ import re
 import textwrap
 
 from pairrules.board.coordinates import coordinates
+from pairrules.reports.cautions import CAUTIONS
 from pairrules.reports.report import Look, Report
 from pairrules.reports.safe_text import safe
 from pairrules.result import SEVERITIES, Finding, PairResult, Place, Result
 
-CAUTIONS = (
-    "All figures are estimates from the exported copper. They are no proof of isolation, of electromagnetic "
-    "compatibility or of safety. Measure the built board; local codes and licensed practice decide."
-)
 _PLACES_SHOWN = 4
 _COLOURS = {"blocker": "1;31", "review": "1;33", "note": "1;36"}
 _TEXT_AT = len("  undecided  ")

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import re
 
-from pairrules.reports.listing import CAUTIONS, REPORT
+from pairrules.reports.cautions import CAUTIONS
+from pairrules.reports.listing import REPORT
 from pairrules.reports.report import Look
 from tests.reports.results import finding, pair, result, undecided
 
