@@ -57,9 +57,9 @@ MODELS: Mapping[str, Model] = {
             "their centre line, arcs exactly; inside pads and areas the way is straight; a via adds its "
             "barrel between the layers used; a part in series adds nothing.",
             valid="exact for the copper as drawn",
-            leaves_out="That current takes the inner side of a bend, and what lies inside packages and connectors unless "
-            "pin_lengths in the settings says it. Barrels of unknown height are left out, and the pair says "
-            "so.",
+            leaves_out="That current takes the inner side of a bend, and what lies inside packages and connectors "
+            "unless pin_lengths in the settings says it. Barrels of unknown height are left out, and the pair "
+            "says so.",
             source="shortest way: E. W. Dijkstra, Numerische Mathematik 1 (1959) 269 (from memory)",
         ),
         Model(
@@ -110,8 +110,8 @@ MODELS: Mapping[str, Model] = {
             "length. Copper of reference nets next to the legs is a sheet at 0 V; foreign copper beside them "
             "is taken as quiet.",
             valid=_CROSS_SECTION,
-            leaves_out="Radiation, fields along the pair at bends and vias, roughness and trapezoid edges, the frequency "
-            "dependence of the permittivity. The reference conductor is ideal. Delays add barrels at the "
+            leaves_out="Radiation, fields along the pair at bends and vias, roughness, the frequency dependence of "
+            "the permittivity. The reference conductor is ideal. Delays add barrels at the "
             "mean permittivity of the stack. Resistance differences are those at direct current.",
             source="R. F. Harrington, Field Computation by Moment Methods (1968), and Wei, Harrington, Mautz and "
             "Sarkar, IEEE Trans. MTT 32 (1984) 439 (from memory)",
