@@ -22,7 +22,7 @@ class Place:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Measures:
-    """The figures of one pair; definitions and models in `schemas.glossary`. Where a figure cannot be known it is `None`."""
+    """The figures of one pair, `None` where one cannot be known; definitions and models in `schemas.glossary`."""
 
     length_plus_mm: float | None = None
     length_minus_mm: float | None = None
