@@ -20,6 +20,8 @@ from pairrules.checks.measures import balance_figures, geometric_measures, with_
 from pairrules.checks.pin_lengths import pin_extra
 from pairrules.checks.rule import Subject, all_rules
 from pairrules.checks.rule_help import rule_infos
+from pairrules.drawn.pair_drawing import board_drawing, pair_drawing
+from pairrules.drawn.window_copper import DrawnBoard
 from pairrules.errors import BoardError, SettingsError, UsageError
 from pairrules.fields.cross_section import CrossSection
 from pairrules.fields.solve import SectionSolution
@@ -46,6 +48,7 @@ def check(
     *,
     pairs: str = "*",
     step: str = "",
+    drawing: bool = False,
     progress: Progress | None = None,
 ) -> Result:
     """Read a board, measure its pairs, judge them.
@@ -55,6 +58,7 @@ def check(
     path: the board file. settings: the settings file; `None` takes the nearest `pairrules.yaml` upward from the board.
     pairs: which pairs, a pattern (`*`, `?`, `[…]`) over pair and net names.
     step: which board, where the file has several.
+    drawing: whether the result carries what pictures and pages draw, which takes longer.
     progress: called as the work goes on.
 
     Raises
@@ -65,7 +69,7 @@ def check(
     opened = _open(path, settings, pairs=pairs, step=step)
     rules, board = all_rules(), opened.board
     copper, store = BoardCopper(board, opened.reference), dict[CrossSection, SectionSolution]()
-    results = []
+    results, drawn = [], DrawnBoard(copper)
     for done, link in enumerate(opened.links):
         if progress is not None:
             progress("measuring pairs", done, len(opened.links))
@@ -123,6 +127,7 @@ def check(
                 limits=held_limits(limits, rules, judgement, measures, balance),
                 line_plus=_line(board, link.plus, link.hops_plus),
                 line_minus=_line(board, link.minus, link.hops_minus),
+                drawing=pair_drawing(subject, judgement.findings, limits, rules, drawn=drawn) if drawing else None,
             )
         )
     return Result(
@@ -132,6 +137,7 @@ def check(
         unpaired=opened.unpaired,
         settings=tuple(Path(name).name for name in opened.settings.files),
         rules=rule_infos(rules),
+        drawing=board_drawing(board) if drawing else None,
     )
 
 

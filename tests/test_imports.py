@@ -24,6 +24,7 @@ ROOMS = {
     "fields": set(),
     "balance": {"board", "fields", "geometry", "pairing", "settings"},
     "checks": {"board", "balance", "fields", "geometry", "pairing", "settings"},
+    "drawn": {"balance", "board", "checks", "geometry", "pairing", "settings"},
     "settings": {"board", "shipped"},
     "reports": {"board"},
     "schemas": set(),

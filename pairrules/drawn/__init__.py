@@ -1,0 +1,1 @@
+"""Drawing data: from the records of the stages to the plain numbers that pictures and pages draw."""
