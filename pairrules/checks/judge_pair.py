@@ -8,8 +8,8 @@ from dataclasses import dataclass, field, replace
 from pairrules.checks.fingerprint import copper_digest, fingerprint
 from pairrules.checks.pin_lengths import NOTHING, PinExtra
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.geometry.board_copper import BoardCopper
 from pairrules.checks.timed_limit import in_own_unit
+from pairrules.geometry.board_copper import BoardCopper
 from pairrules.result import SEVERITIES, Finding, Unjudged
 from pairrules.settings.limit import Limit
 

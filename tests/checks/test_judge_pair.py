@@ -1,18 +1,15 @@
-"""What the rules' answers add up to, and the fingerprints of what they find."""
+"""What the rules' answers add up to."""
 
 from __future__ import annotations
 
 from dataclasses import replace
 from typing import Any
 
-import numpy as np
 import pytest
 
-from pairrules.board import Board
-from pairrules.checks.fingerprint import copper_digest
 from pairrules.checks.held_limits import held_limits
 from pairrules.checks.judge_pair import Judgement, judge_pair, verdict
-from pairrules.checks.rule import Subject, all_rules
+from pairrules.checks.rule import all_rules
 from pairrules.result import Finding, Unjudged
 from tests.checks.drawn_pairs import limit, subject
 
@@ -96,50 +93,3 @@ def test_verdicts(
     findings: tuple[Finding, ...], unjudged: tuple[Unjudged, ...], rules_judged: tuple[str, ...], expected: str
 ) -> None:
     assert verdict(Judgement(findings=findings, unjudged=unjudged, judged=rules_judged), "complete") == expected
-
-
-def digest(of: Subject) -> str:
-    return copper_digest(of.board, of.link)
-
-
-def moved(board: Board, dx: float, dy: float) -> Board:
-    by = np.array([dx, dy])
-    tracks, vias, pads = board.tracks, board.vias, board.pads
-    return replace(
-        board,
-        tracks=replace(tracks, start=tracks.start + by, end=tracks.end + by, centre=tracks.centre + by),
-        vias=replace(vias, at=vias.at + by),
-        pads=replace(pads, at=pads.at + by),
-    )
-
-
-@pytest.mark.parametrize("by", [(100.0, -37.0), (0.0127, 2.54), (1e-4 / 3, 7.7777777), (-1234.5678, 0.1)])
-def test_moving_the_board_leaves_the_fingerprint(by: tuple[float, float]) -> None:
-    # 0.5 mil and half a micrometre: the grids on which rounding is at an edge.
-    grids = {"plus": [[[0, 0], [10.0127, 0.0005], [20.0005, 0]]], "minus": [[[0, 0.5], [20, 0.5]]]}
-    here = subject(grids)
-    assert copper_digest(moved(here.board, *by), here.link) == digest(here)
-
-
-def test_drawing_order_and_direction_leave_it() -> None:
-    cut = {"plus": [[[0, 0], [10, 0]], [[10, 0], [20, 0]]], "minus": [[[0, 0.5], [20, 0.5]]]}
-    turned = cut | {"plus": [[[20, 0], [10, 0]], [[10, 0], [0, 0]]], "ends_plus": [[0, 0], [20, 0]]}
-    assert digest(subject(cut)) == digest(subject(turned))
-
-
-@pytest.mark.parametrize(
-    "other",
-    [
-        {"plus": [[[0, 0], [10, 0], [10, -1.01], [12, -1.01], [12, 0], [20, 0]]]},
-        {"plus": [{"points": PLUS[0], "width": 0.21}]},
-        {"vias": [{"net": "A_P", "at": [10, 0]}]},
-    ],
-)
-def test_other_copper_has_another(other: dict[str, Any]) -> None:
-    assert digest(subject(CASE | other)) != digest(subject(CASE))
-
-
-def test_each_rule_has_its_own() -> None:
-    case = CASE | {"minus": [{"points": [[0, 0.5], [20, 0.5]], "width": 0.3}]}
-    marks = [finding.fingerprint for finding in judged(case).findings]
-    assert len(marks) == 2 and len(set(marks)) == 2 and all(len(mark) == 32 for mark in marks)
