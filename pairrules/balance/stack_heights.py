@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 from pairrules.board.stackup import Layer, Stackup
 from pairrules.fields import cross_section
@@ -40,8 +41,11 @@ def lacking(stackup: Stackup) -> tuple[str, ...]:
     """What a cross-section would need that the stack does not have, as "thickness of D1"; empty where nothing is."""
     inner = _between_outer_copper(stackup)
     found = [f"thickness of {layer.name}" for layer in stackup.layers if layer.thickness_mm is None]
-    if not any(layer.kind == "dielectric" for layer in inner):
-        found.append("dielectric between the copper layers")
+    found += [
+        f"dielectric between {upper.name} and {lower.name}"
+        for upper, lower in pairwise(inner)
+        if upper.kind == lower.kind == "copper"
+    ]
     found += [
         f"permittivity of {layer.name}"
         for layer in stackup.layers

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from itertools import pairwise
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -46,7 +47,8 @@ class Stackup:
         first, last = sorted((first, last))
         places = [i for i, layer in enumerate(self.layers) if layer.kind == "copper"]
         span = self.layers[places[first] : places[last] + 1]
-        if not any(layer.kind == "dielectric" for layer in span):
+        # Copper on copper cannot be: the file leaves out what lies between, and with it the distance.
+        if any(upper.kind == lower.kind == "copper" for upper, lower in pairwise(span)):
             return math.nan
         sizes = [math.nan if layer.thickness_mm is None else layer.thickness_mm for layer in span]
         return math.fsum(sizes) - (sizes[0] + sizes[-1]) / 2

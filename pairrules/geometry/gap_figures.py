@@ -12,6 +12,10 @@ from pairrules.geometry.nearest_track import COUPLED_TURN
 from pairrules.geometry.pair_geometry import SpacingProfile
 
 _BIN_MM = 0.001
+_MOST_BINS = 2000
+"""A run over more bins than these (two millimetres) is not spelled out: a leg that leaves its partner for metres would
+fill the memory."""
+
 _SAME_MM = 1e-9
 
 
@@ -39,20 +43,40 @@ def usual_gap(profile: SpacingProfile) -> float | None:
     # A run that spans many bins spreads over them, so that only steady ones make a mode.
     first, last = np.floor(low / _BIN_MM + 1e-6).astype(np.int64), np.floor(high / _BIN_MM + 1e-6).astype(np.int64)
     span = last - first + 1
-    bins = np.repeat(first, span) + (np.arange(span.sum()) - np.repeat(np.cumsum(span) - span, span))
-    share = np.repeat(weight / span, span)
-    middle = np.repeat((low + high) / 2, span)
-    centre = np.where(np.repeat(span, span) == 1, middle, (bins + 0.5) * _BIN_MM)
-    distinct, place = np.unique(bins, return_inverse=True)
-    mass = np.bincount(place, share)
-    moment = np.bincount(place, share * centre)
-    first, last = np.searchsorted(distinct, distinct - 1), np.searchsorted(distinct, distinct + 2)
+    wide = span > _MOST_BINS
+    narrow = np.where(wide, 0, span)
+    bins = np.repeat(first, narrow) + (np.arange(narrow.sum()) - np.repeat(np.cumsum(narrow) - narrow, narrow))
+    share = np.repeat(weight / span, narrow)
+    middle = np.repeat((low + high) / 2, narrow)
+    centre = np.where(np.repeat(narrow, narrow) == 1, middle, (bins + 0.5) * _BIN_MM)
+    beside = [bins - 1, bins + 1, *_near_ends(first[wide], last[wide])] if wide.any() else []
+    distinct, place = np.unique(np.concatenate([bins, *beside]), return_inverse=True)
+    spread = _spread(distinct, first[wide], last[wide], (weight / span)[wide])
+    place = place[: len(bins)]
+    mass: Floats = spread + np.bincount(place, share, minlength=len(distinct))
+    moment: Floats = spread * (distinct + 0.5) * _BIN_MM + np.bincount(place, share * centre, minlength=len(distinct))
+    left, right = np.searchsorted(distinct, distinct - 1), np.searchsorted(distinct, distinct + 2)
     total = np.concatenate([[0.0], np.cumsum(mass)])
-    window = total[last] - total[first]
+    window = total[right] - total[left]
     best = int(np.argmax(window > window.max() * (1 - 1e-9)))
     # The heaviest bin of the window speaks for it, so that a steady gap comes out as drawn.
-    heaviest = first[best] + int(np.argmax(mass[first[best] : last[best]]))
+    heaviest = left[best] + int(np.argmax(mass[left[best] : right[best]]))
     return float(moment[heaviest] / mass[heaviest])
+
+
+def _near_ends(first: Ints, last: Ints) -> list[Ints]:
+    """The bins at and about the ends of wide runs: between these what all of them add up to does not change."""
+    return [end + step for end in (first, last) for step in range(-2, 3)]
+
+
+def _spread(bins: Ints, first: Ints, last: Ints, share: Floats) -> Floats:
+    """What wide runs that put `share` into each bin from first to last put into each of `bins`."""
+    if not len(share):
+        return np.zeros(len(bins))
+    begins, ends = np.argsort(first, kind="stable"), np.argsort(last, kind="stable")
+    begun = np.concatenate([[0.0], np.cumsum(share[begins])])[np.searchsorted(first[begins], bins, side="right")]
+    ended = np.concatenate([[0.0], np.cumsum(share[ends])])[np.searchsorted(last[ends], bins, side="left")]
+    return np.asarray(begun - ended)
 
 
 def gap_figures(profile: SpacingProfile) -> GapFigures:

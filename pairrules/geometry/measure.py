@@ -16,6 +16,10 @@ from pairrules.geometry.reference_cover import reference_cover
 from pairrules.geometry.spacing_profile import spacing_profiles
 from pairrules.pairing.link import Hop, Link
 
+LONGEST_LEG_MM = 50_000.0
+"""Time and memory grow with the length of track; no pair is longer than the board, and none of those than ten metres.
+Common practice, no source."""
+
 LEAST_BESIDE_MM = 1.0
 """Foreign copper is looked for within the pair's reach, and this far at least."""
 
@@ -44,6 +48,9 @@ def measure_link(
     minus = leg_route(board, index, link.hops_minus)
     if not isinstance(plus, LegRoute) or not isinstance(minus, LegRoute):
         return _broken(board, index, link, plus, minus)
+    beyond = [_beyond(name, leg) for name, leg in (("plus", plus), ("minus", minus)) if _beyond(name, leg)]
+    if beyond:
+        return PairGeometry(routed="partial", plus=None, minus=None, missing=(*link.missing, *beyond))
     missing = list(link.missing)
     if not plus.barrels_known or not minus.barrels_known:
         missing.append("the stackup's thicknesses are unknown, so the barrels of its vias are left out of the lengths")
@@ -75,6 +82,16 @@ def measure_link(
         neighbours_minus=_beside(copper, link, minus, reach) if beside else None,
         missing=tuple(missing),
     )
+
+
+def _beyond(name: str, leg: LegRoute) -> str:
+    """Why a leg that is routed cannot be measured all the same; "" where it can."""
+    if not len(leg.pieces):
+        return f"{name} has no length: the pads at its two ends lie at one place"
+    if leg.track_mm > LONGEST_LEG_MM:
+        most = LONGEST_LEG_MM / 1000
+        return f"{name} is {leg.track_mm / 1000:.0f} m long; legs longer than {most:.0f} m are not measured"
+    return ""
 
 
 def _beside(copper: BoardCopper, link: Link, leg: LegRoute, reach_mm: float) -> NeighbourProfile:

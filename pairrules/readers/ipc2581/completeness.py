@@ -5,7 +5,14 @@ from __future__ import annotations
 import re
 from typing import TYPE_CHECKING
 
-from pairrules.readers.ipc2581.layers import DRILLED, FileLayer, LayerTable, undeclared_stack_names
+from pairrules.readers.ipc2581.layers import (
+    DRILLED,
+    FileLayer,
+    LayerTable,
+    StackedLayer,
+    inner_rows,
+    undeclared_stack_names,
+)
 from pairrules.readers.ipc2581.remarks import Remarks
 
 if TYPE_CHECKING:
@@ -72,15 +79,20 @@ def _named_but_absent(table: LayerTable, remarks: Remarks) -> bool:
     absent = undeclared_stack_names(table)
     for name in absent:
         remarks.count(f"the stackup names layer {name}, which is not in the file")
-    return any(_is_copper_row(table, name) for name in absent)
-
-
-def _is_copper_row(table: LayerTable, name: str) -> bool:
-    rows = [row for group in table.groups or [] for row in group if row.name == name]
+    inner = inner_rows(table)
+    gone = set(absent)
     return any(
-        "copper" in row.described or any(table.specs[spec].conductor for spec in row.specs if spec in table.specs)
-        for row in rows
+        _may_be_copper(table, row, inside=place in inner) for place, row in enumerate(table.rows) if row.name in gone
     )
+
+
+def _may_be_copper(table: LayerTable, row: StackedLayer, *, inside: bool) -> bool:
+    """Whether a row is told to be copper, or lies between copper and is told to be nothing at all."""
+    materials = [table.specs[spec] for spec in row.specs if spec in table.specs]
+    if "copper" in row.described or any(material.conductor for material in materials):
+        return True
+    told = row.described or any(one.permittivity is not None for one in (row.material, *materials))
+    return inside and not told
 
 
 def _declared_but_bare(step: Step, names: tuple[str, ...], remarks: Remarks) -> bool:

@@ -1,4 +1,8 @@
-"""Walks the file once, element by element, and keeps of it what a board needs; what has been read is freed."""
+"""Walks the file once, record by record, and keeps of it what a board needs; what has been read is freed.
+
+Only elements that matter are handed over by the parser; the corners of a long outline are taken in as soon as it
+closes, so that memory holds neither a whole plane's elements nor an object a corner.
+"""
 
 from __future__ import annotations
 
@@ -15,6 +19,7 @@ from pairrules.readers.ipc2581.layer_features import SetReader, net_name
 from pairrules.readers.ipc2581.layers import LayerTable, read_layer, read_spec, read_stackup
 from pairrules.readers.ipc2581.nets import Nets, note_partner, read_logical_net, read_phy_net
 from pairrules.readers.ipc2581.parts import Parts, read_bom_item, read_component, read_package
+from pairrules.readers.ipc2581.prolog import root_name
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Plane
 
@@ -30,6 +35,15 @@ _BROKEN = {
     77: "the XML breaks off before its end",
 }
 """Our words for the parser's commonest codes; its own change with its version. Source: libxml2, `xmlParserErrors`."""
+
+
+_DICTIONARIES = {f"Dictionary{name}" for name in ("Color", "FillDesc", "Firmware", "Font", "LineDesc", "Standard", "User")}
+_OUTLINES = {"Cutout", "Polygon"}
+_FEW = 8
+"""Outlines of no more corners are read with their record."""
+
+_LEFT_OUT = {"AvlItem", "BomHeader", "EntryColor", "EntryFirmware", "EntryFont", "HistoryRecord", "LogisticHeader"}
+"""Asked for only to be freed: a file may hold many of them."""
 
 
 @dataclass(slots=True)
@@ -69,9 +83,12 @@ def read_content(data: bytes) -> FileContent:
     from lxml import etree
 
     walk = _Walk(FileContent())
+    # The root is among them whatever it is called, to be judged before anything else.
+    names = {*walk.records, *walk.openings, *_DICTIONARIES, *_OUTLINES, *_LEFT_OUT, root_name(data) or ROOT}
     events = etree.iterparse(
         io.BytesIO(data),
         events=("start", "end"),
+        tag=[f"{{*}}{name}" for name in sorted(names)],
         resolve_entities=False,
         no_network=True,
         load_dtd=False,
@@ -92,6 +109,8 @@ def read_content(data: bytes) -> FileContent:
                 walk.take(element)
                 record = None
                 _free(element)
+            else:
+                walk.outline(record, element)
     except etree.XMLSyntaxError as error:
         found = _BROKEN.get(getattr(error, "code", 0), "the XML is not well formed")
         place = f"line {error.lineno}" if error.lineno else ""
@@ -168,6 +187,14 @@ class _Walk:
     def take(self, element: Element) -> None:
         """A record has closed."""
         self.records[local(element)](element)
+        self.content.shapes.outlines.clear()
+
+    def outline(self, record: Element, element: Element) -> None:
+        """An outline within a record has closed: keep its corners and drop its elements."""
+        if local(element) in _OUTLINES and len(element) > _FEW:
+            factor = self.dictionary if local(record).startswith("Entry") else self.content.factor
+            if factor:
+                self.content.shapes.keep_outline(element, factor)
 
     def ends(self, element: Element) -> None:
         """An element that is no record has closed."""
@@ -206,7 +233,9 @@ class _Walk:
         return self.content.factor
 
     def _spec(self, element: Element) -> None:
-        self.content.table.specs[word(element, "name")] = read_spec(element, self._need_units(element))
+        self.content.table.specs[word(element, "name")] = read_spec(
+            element, self._need_units(element), self.content.remarks
+        )
 
     def _layer(self, element: Element) -> None:
         layer = read_layer(element)
@@ -214,10 +243,16 @@ class _Walk:
 
     def _stackup(self, element: Element) -> None:
         table = self.content.table
+        groups = read_stackup(element, self._need_units(element), self.content.remarks)
         if table.groups is not None:
-            self.content.remarks.count("the file has several stackups; the first is read")
+            if groups != table.groups and not table.several:
+                table.several = True
+                self.content.remarks.count(
+                    "the file has several stackups, and which holds where is not read: thicknesses and permittivities "
+                    "are unknown unless the settings give them"
+                )
             return
-        table.groups = read_stackup(element, self._need_units(element))
+        table.groups = groups
         table.group_names = {word(group, "name") for group in element if local(group) == "StackupGroup"}
 
     # -- step ---------------------------------------------------------------------------------------------------------

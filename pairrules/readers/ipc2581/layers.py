@@ -18,6 +18,10 @@ COPPER = {"CONDUCTOR", "SIGNAL", "PLANE", "MIXED", "CONDFILM", "CONDFOIL"}
 DRILLED = {"DRILL", "ROUT"}
 _COATED = {"SOLDERMASK", "COATINGNONCOND"}
 
+_POSSIBLE = {"permittivity": (1.0, 1e6), "loss_tangent": (0.0, 1.0), "thickness_mm": (1e-6, 100.0)}
+"""Figures a material can have; beyond them the file is wrong. Nothing polarises less than vacuum, a nanometre is less
+than any layer, ten centimetres more than any board (common practice, no source)."""
+
 _UNIT_MM = {
     "MM": 1.0,
     "MILLIMETER": 1.0,
@@ -80,12 +84,18 @@ class StackedLayer:
 
 @dataclass(slots=True)
 class LayerTable:
-    """All layers of the file and its first stackup."""
+    """All layers of the file and its first stackup. several: there are others, unlike it, for other zones."""
 
     layers: dict[str, FileLayer] = field(default_factory=dict)
     specs: dict[str, Material] = field(default_factory=dict)
     groups: list[list[StackedLayer]] | None = None
     group_names: set[str] = field(default_factory=set)
+    several: bool = False
+
+    @property
+    def rows(self) -> list[StackedLayer]:
+        """The rows of the stackup, group after group."""
+        return [layer for group in self.groups or [] for layer in group]
 
     @property
     def copper(self) -> list[FileLayer]:
@@ -106,7 +116,7 @@ def read_layer(element: Element) -> FileLayer:
     )
 
 
-def read_spec(element: Element, factor: float) -> Material:
+def read_spec(element: Element, factor: float, remarks: Remarks) -> Material:
     """Permittivity, loss tangent and thickness of a `Spec` (revisions B and later).
 
     A length without a unit is in the header's, `factor` millimetres each.
@@ -126,7 +136,7 @@ def read_spec(element: Element, factor: float) -> Material:
         if wanted is None or wanted in found:
             continue
         value = _property(inner, factor if wanted == "thickness_mm" else None)
-        if value is not None:
+        if value is not None and _possible(wanted, value, remarks):
             found[wanted] = value
     return Material(**found, conductor=conductor)
 
@@ -151,31 +161,43 @@ def _property(element: Element, factor: float | None) -> float | None:
     return None
 
 
-def read_stackup(element: Element, factor: float) -> list[list[StackedLayer]]:
+def _possible(what: str, value: float, remarks: Remarks) -> bool:
+    """Whether a material can have such a figure; where it cannot, it is unknown."""
+    low, high = _POSSIBLE[what]
+    if low <= value <= high:
+        return True
+    remarks.count(f"{{n}} {what.removesuffix('_mm').replace('_', ' ')} that no material has {{are}} left out")
+    return False
+
+
+def read_stackup(element: Element, factor: float, remarks: Remarks) -> list[list[StackedLayer]]:
     """The groups of a `Stackup` element, each in sequence order where it gives one."""
     groups: list[list[StackedLayer]] = []
     for tag, group in children(element):
         if tag != "StackupGroup":
             continue
-        stacked = [_stacked(inner, factor) for name, inner in children(group) if name == "StackupLayer"]
+        stacked = [_stacked(inner, factor, remarks) for name, inner in children(group) if name == "StackupLayer"]
         if all(math.isfinite(layer.sequence) for layer in stacked):
             stacked.sort(key=lambda layer: layer.sequence)
         groups.append(stacked)
     return groups
 
 
-def _stacked(element: Element, factor: float) -> StackedLayer:
+def _stacked(element: Element, factor: float, remarks: Remarks) -> StackedLayer:
     thickness = size(element, "thickness", factor, 0.0)
     permittivity = loss = None
     for tag, inner in children(element):
         name = word(inner, "name").lower()
         if tag == "DoubleAttribute" and name == "layer_dielectric":
-            permittivity = number(inner, "value")
+            value = number(inner, "value")
+            permittivity = value if _possible("permittivity", value, remarks) else None
         elif tag == "NonstandardAttribute" and name == "loss_tangent":
-            loss = number(inner, "value")
+            value = number(inner, "value")
+            loss = value if _possible("loss_tangent", value, remarks) else None
+    known = thickness > 0 and _possible("thickness_mm", thickness, remarks)  # exporters write 0 where they do not know
     return StackedLayer(
         name=word(element, "layerOrGroupRef"),
-        thickness_mm=thickness if thickness > 0 else None,  # exporters write 0 where they do not know
+        thickness_mm=thickness if known else None,
         material=Material(permittivity, loss),
         described=word(element, "materialType").lower(),
         sequence=number(element, "sequence", math.nan),
@@ -196,15 +218,20 @@ def build_stackup(table: LayerTable, remarks: Remarks) -> Stackup:
 
     Without a stackup the file's order holds, layers of side TOP first and of side BOTTOM last.
     """
-    if not any(table.groups or []):
+    if not table.rows:
         remarks.count("the file has no stackup: barrel lengths and impedances are unknown")
         return Stackup(layers=tuple(Layer(name=layer.name, kind="copper") for layer in _by_side(table.copper)))
-    stacked = [layer for group in table.groups or [] for layer in group]
+    stacked = table.rows
     layers: list[Layer] = []
-    for row in stacked:
-        layer = _stack_row(row, table, remarks)
-        if layer is not None and layer.name not in {other.name for other in layers}:
+    names: set[str] = set()
+    inner = inner_rows(table)
+    for place, row in enumerate(stacked):
+        layer = _stack_row(row, table, remarks, inside=place in inner)
+        if layer is not None and layer.name not in names:
             layers.append(layer)
+            names.add(layer.name)
+    if table.several:
+        layers = [Layer(name=layer.name, kind=layer.kind) for layer in layers]
     copper = [layer.name for layer in layers if layer.kind == "copper"]
     if copper and table.layers[copper[0]].side == "BOTTOM" and table.layers[copper[-1]].side == "TOP":
         layers.reverse()
@@ -219,21 +246,31 @@ def _by_side(layers: list[FileLayer]) -> list[FileLayer]:
     return sorted(layers, key=lambda layer: {"TOP": 0, "BOTTOM": 2}.get(layer.side, 1))
 
 
-def _stack_row(row: StackedLayer, table: LayerTable, remarks: Remarks) -> Layer | None:
-    """A row of the stackup as a layer; `None` where it is neither copper nor dielectric, or not declared."""
+def inner_rows(table: LayerTable) -> range:
+    """Places in the stackup between its outermost copper layers."""
+    copper = {layer.name for layer in table.copper}
+    places = [place for place, row in enumerate(table.rows) if row.name in copper]
+    return range(places[0], places[-1] + 1) if places else range(0)
+
+
+def _stack_row(row: StackedLayer, table: LayerTable, remarks: Remarks, *, inside: bool) -> Layer | None:
+    """A row of the stackup as a layer; `None` where it is no copper and nothing that stands between copper.
+
+    inside: it lies between copper layers, where all that is no copper keeps them apart, whatever the file calls it.
+    """
     declared = table.layers.get(row.name)
-    if declared is None:
-        return None
-    if declared.copper:
+    function = "" if declared is None else declared.function
+    kept_apart = inside and row.name != "" and row.name not in table.group_names
+    if function in COPPER:
         kind = "copper"
-    elif declared.function.startswith("DIEL") or declared.function in _COATED:
+    elif kept_apart or function.startswith("DIEL") or function in _COATED:
         kind = "dielectric"
     else:
         return None
     material = row.material
     if material.permittivity is not None:
         remarks.count("layer_dielectric, which revision A does not define, is read as the relative permittivity")
-    for name in (*row.specs, *declared.specs):
+    for name in (*row.specs, *(() if declared is None else declared.specs)):
         material = material.over(table.specs.get(name, Material()))
     told = kind == "dielectric"
     return Layer(
@@ -258,5 +295,4 @@ def _remark_on_gaps(layers: list[Layer], remarks: Remarks) -> None:
 
 def undeclared_stack_names(table: LayerTable) -> list[str]:
     """Rows of the stackup that name no declared layer and no group: layers left out of the file."""
-    stacked = [layer for group in table.groups or [] for layer in group]
-    return [row.name for row in stacked if row.name not in table.layers and row.name not in table.group_names]
+    return [row.name for row in table.rows if row.name not in table.layers and row.name not in table.group_names]
