@@ -68,15 +68,15 @@ def quantity(text: str, dimension: str) -> float:
     """
     found = _WRITTEN.match(text)
     if found is None:
-        raise ValueError(f"{text!r} is no quantity; write a number and a unit, such as {_example(dimension)}")
+        raise ValueError(f"{text!r} is no quantity; write a number and a unit, such as {example(dimension)}")
     number, unit = float(found[1]), (found[2] or "").replace("Ω", "ohm").replace("²", "2").strip()
     if not math.isfinite(number):
         raise ValueError(f"{text!r} is not finite")
     if not unit and dimension != "count":
-        raise ValueError(f"{text!r} has no unit; write {_example(dimension)}")
+        raise ValueError(f"{text!r} has no unit; write {example(dimension)}")
     factor = _factor(unit, dimension)
     if factor is None:
-        raise ValueError(f"{text!r} is no {dimension}; write {_example(dimension)}")
+        raise ValueError(f"{text!r} is no {dimension}; write {example(dimension)}")
     return number * factor
 
 
@@ -119,7 +119,8 @@ def _prefixed(unit: str, base: str, scale: float) -> float | None:
     return None if prefix is None else prefix * scale
 
 
-def _example(dimension: str) -> str:
+def example(dimension: str) -> str:
+    """A quantity of the dimension as a user may write it."""
     return {
         "length": "0.5 mm",
         "area": "20 mm2",

@@ -24,6 +24,7 @@ class Model:
     ----------
     brief: what it is, in a few words. text: how it works.
     valid: where it holds, in a few words. leaves_out: what it does not know of.
+    assumes: values it takes where none is given; a pair's own `assumed` names those that were.
     source: where it comes from. electrical: whether what a pair's electrical figures assume counts for it.
     """
 
@@ -32,6 +33,7 @@ class Model:
     text: str
     valid: str
     leaves_out: str
+    assumes: str
     source: str
     electrical: bool = False
 
@@ -60,6 +62,7 @@ MODELS: Mapping[str, Model] = {
             leaves_out="That current takes the inner side of a bend, and what lies inside packages and connectors "
             "unless pin_lengths in the settings says it. Barrels of unknown height are left out, and the pair "
             "says so.",
+            assumes="Nothing: where an end or a layer is unknown, so is the figure.",
             source="shortest way: E. W. Dijkstra, Numerische Mathematik 1 (1959) 269 (from memory)",
         ),
         Model(
@@ -70,6 +73,7 @@ MODELS: Mapping[str, Model] = {
             "0.3 mm, or what the class says) and their directions differ by less than 30 degrees.",
             valid="exact for the tracks as drawn; reach and 30 degrees are common practice, no source",
             leaves_out="Pads, via pads and poured areas of the legs, and coupling between layers.",
+            assumes="A reach of four times the pair's usual gap, where the class says none.",
             source="elementary geometry",
         ),
         Model(
@@ -80,6 +84,7 @@ MODELS: Mapping[str, Model] = {
             "sign.",
             valid="exact for the copper as drawn",
             leaves_out="The heights of the layers, and the loops that the source and the load make beyond their pads.",
+            assumes="Nothing.",
             source="Green's theorem (textbook)",
         ),
         Model(
@@ -90,6 +95,7 @@ MODELS: Mapping[str, Model] = {
             "their kinds and names in the file.",
             valid="exact for the copper as drawn; unknown where a layer is not in the file",
             leaves_out="Copper farther away than the next layer, and how the return current spreads.",
+            assumes="Nothing: without a known reference net the figure is unknown.",
             source="common practice, no source",
         ),
         Model(
@@ -99,6 +105,7 @@ MODELS: Mapping[str, Model] = {
             "edge to edge.",
             valid="gaps to 5 % or 1 micrometre along a stretch",
             leaves_out="Copper on other layers.",
+            assumes="Nothing.",
             source="elementary geometry",
         ),
         Model(
@@ -113,6 +120,10 @@ MODELS: Mapping[str, Model] = {
             leaves_out="Radiation, fields along the pair at bends and vias, roughness, the frequency dependence of "
             "the permittivity. The reference conductor is ideal. Delays add barrels at the "
             "mean permittivity of the stack. Resistance differences are those at direct current.",
+            assumes="Copper of 1.7241e-8 ohm m (IEC 60028, 20 °C; recalled, not re-read). Dielectrics without a loss "
+            "tangent are lossless. Between the tracks of an inner layer stands the one of its two dielectrics "
+            "that has the lower permittivity. Sections are looked for every millimetre. Up to a twentieth of "
+            "a route that cannot be solved takes over the section beside it.",
             source="R. F. Harrington, Field Computation by Moment Methods (1968), and Wei, Harrington, Mautz and "
             "Sarkar, IEEE Trans. MTT 32 (1984) 439 (from memory)",
             electrical=True,
@@ -131,6 +142,8 @@ MODELS: Mapping[str, Model] = {
             leaves_out="Radiation, common-mode current on screens, ground potential differences along the reference. "
             "What the class does not say (a cable, an imbalance, a tolerance) is taken as absent, not as "
             "typical.",
+            assumes="Chokes and beads are shorts, parts without a written value are left out. A barrel has L = 5.08 h "
+            "(ln(4h/d) + 1) nH, h and d in inch (Johnson and Graham, 1993; recalled, not re-read).",
             source="C. R. Paul, Analysis of Multiconductor Transmission Lines; H. W. Ott, Electromagnetic "
             "Compatibility Engineering (2009), chapter 4; Pallàs-Areny and Webster, IEEE Trans. IM 40 (1991) "
             "669 (from memory)",
@@ -144,6 +157,7 @@ MODELS: Mapping[str, Model] = {
             valid="while the loop is much smaller than a wavelength and its load much above its reactance",
             leaves_out="Shielding by planes and parts, fields that are not uniform over the pair, the loops beyond its "
             "pads.",
+            assumes="The worst direction of the field, where the class gives none.",
             source="H. W. Ott, Electromagnetic Compatibility Engineering (2009), chapter 2 (from memory)",
         ),
         Model(
@@ -154,6 +168,7 @@ MODELS: Mapping[str, Model] = {
             "difference is picked up.",
             valid=_CROSS_SECTION + ", and where the legs are electrically short",
             leaves_out="Inductive coupling, neighbours on other layers, reflections, several neighbours at a time.",
+            assumes="The source resistances are all that the legs have to reference.",
             source="H. W. Ott, Electromagnetic Compatibility Engineering (2009), chapter 2 (from memory)",
             electrical=True,
         ),
@@ -164,6 +179,7 @@ MODELS: Mapping[str, Model] = {
             "from the letters of its designator, its value from the text beside it.",
             valid="as far as the values in the file are those that are fitted",
             leaves_out="Parasitics, and whether a part is fitted at all.",
+            assumes="Nothing: a value that is not written is unknown.",
             source="common practice, no source",
         ),
     )
