@@ -124,6 +124,7 @@ def check(
                 unjudged=judgement.unjudged,
                 missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *_unknown(figures, klass), *notes))),
                 assumed=figures.assumed,
+                quasi_static_hz=figures.quasi_static_hz,
                 limits=held_limits(limits, rules, judgement, measures, balance),
                 line_plus=_line(board, link.plus, link.hops_plus),
                 line_minus=_line(board, link.minus, link.hops_minus),

@@ -165,6 +165,7 @@ class PairResult:
     """One pair: what it is, what was measured, what was found.
 
     `limits`: every limit that holds for the pair, by rule.
+    `assumed`: what its electrical figures take beside what is given. `quasi_static_hz`: up to where they hold.
     `line_plus`, `line_minus`: line of the board file where that leg's copper first stands, 0 where unknown.
     `drawing`: only where it was asked for.
     """
@@ -187,6 +188,7 @@ class PairResult:
     unjudged: tuple[Unjudged, ...] = ()
     missing: tuple[str, ...] = ()
     assumed: tuple[str, ...] = ()
+    quasi_static_hz: float | None = None
     limits: tuple[HeldLimit, ...] = ()
     line_plus: int = 0
     line_minus: int = 0
