@@ -77,6 +77,8 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     demand *= _share(pieces)[:, None]
     if region.bottom is None and region.top is None:
         demand *= _OPEN
+    if region.bottom is not None and region.top is not None:  # a longer cell would feel more images than are exact
+        demand = np.maximum(demand, length[:, None] * slope / (region.top - region.bottom))
     step = 1.0 / _SAMPLES
     running = np.zeros_like(demand)
     np.cumsum((demand[:, 1:] + demand[:, :-1]) * (0.5 * step), axis=1, out=running[:, 1:])

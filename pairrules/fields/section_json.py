@@ -112,10 +112,12 @@ def answer(section: CrossSection, *, name: str = "", solution: SectionSolution |
     pair = solution.pair
     why: dict[str, str] = {}
     if pair is None:
-        why["pair"] = f"a pair needs two signal conductors; this section has {len(section.signals)}"
+        lacking = f"a pair needs two signal conductors; this section has {len(section.signals)}"
+        why = dict.fromkeys(("pair", "impedance_diff_ohm", "impedance_common_ohm"), lacking)
     elif pair.L is None:
-        why["pair.L_nH_per_m"] = "no plane and no grounded conductor lets common-mode current return"
-        why["impedance_common_ohm"] = why["pair.L_nH_per_m"]
+        lacking = "no plane and no grounded conductor lets common-mode current return"
+        keys = ("pair.L_nH_per_m", "pair.er_even", "pair.er_modes", "impedance_common_ohm")
+        why = dict.fromkeys(keys, lacking)
     found: dict[str, Any] = {
         "id": section.id,
         "conductors": [conductor.name for conductor in section.conductors],

@@ -36,15 +36,16 @@ EPSILON_0 = 8.8541878128e-12
 class AirCharge:
     """Charge on the copper of one region in air, for loss figures.
 
-    length: cells' lengths [m] (n,). owner: place of the conductor, or −1 for a plane (n,). charge: charge of each cell
-    [C/m], one column for 1 V on each conductor in turn, the others and the planes at 0 V (n, conductors). middle:
-    cells' centres [m], complex (n,). bottom, top: heights [m] of the region's infinite planes, `None` where none is.
+    middle, way: cells' centres, and the ways from their starts to their ends [m], complex (n,). owner: place of the
+    conductor, or −1 for a plane (n,). charge: charge of each cell [C/m], one column for 1 V on each conductor in turn,
+    the others and the planes at 0 V (n, conductors). bottom, top: heights [m] of the region's infinite planes, `None`
+    where none is.
     """
 
-    length: Floats
+    middle: Complexes
+    way: Complexes
     owner: Ints
     charge: Floats
-    middle: Complexes
     bottom: float | None
     top: float | None
 
@@ -263,7 +264,7 @@ def _air_charge(region: Region, found: _Found, count: int) -> AirCharge:
     charge = np.zeros((len(found.owner), count))
     charge[:, list(region.members)] = found.air_charge
     return AirCharge(
-        length=np.abs(found.end - found.start) * metres,
+        way=(found.end - found.start) * metres,
         owner=np.where(found.owner == PLANE, -1, found.owner),
         charge=charge,
         middle=(found.start + found.end) / 2 * metres,
