@@ -26,7 +26,7 @@ ROOMS = {
     "checks": {"board", "balance", "fields", "geometry", "pairing", "settings"},
     "drawn": {"balance", "board", "checks", "geometry", "pairing", "settings"},
     "settings": {"board", "shipped"},
-    "manual": {"board", "checks", "schemas", "settings", "shipped"},
+    "manual": {"board", "checks", "reports", "schemas", "settings", "shipped"},
     "reports": {"board"},
     "schemas": set(),
     "shipped": set(),

@@ -14,6 +14,7 @@ from pairrules.cli.output import ToWrite, look, write, write_files
 from pairrules.cli.progress import ProgressLine
 from pairrules.cli.report_option import file_reports, report_option
 from pairrules.errors import BoardError, UserError
+from pairrules.manual.rule_page import explained
 from pairrules.pipeline import check
 from pairrules.reports.report import Look, Report, reports_of
 from pairrules.reports.safe_text import safe
@@ -44,6 +45,7 @@ DEMO = ("tide-gauge-buoy.json", "pairrules.yaml")
     show_default=True,
     help="Exit with 1 only where something is flagged at or above this.",
 )
+@click.option("--explain", is_flag=True, help="Tell in the listing what each finding rests on and where that holds.")
 @pair_option
 @step_option
 @click.pass_context
@@ -57,6 +59,7 @@ def command(
     output: str | None,
     wanted: tuple[str, ...],
     severity: str,
+    explain: bool,
     pair: str,
     step: str,
 ) -> None:
@@ -69,6 +72,8 @@ def command(
             raise click.UsageError("--demo takes no BOARD", ctx)
         boards = (str(demo_folder() / DEMO[0]),)
         settings = str(demo_folder() / DEMO[1]) if settings is None else settings
+    if explain and form != "listing":
+        raise click.UsageError("--explain belongs to the listing; leave it or --format out", ctx)
     if not boards:
         raise click.UsageError("no BOARD is given; name a file, or take --demo", ctx)
     report, status = reports_of("check")[form], 0
@@ -91,7 +96,8 @@ def command(
         status = max(status, int(_flagged(result, severity)))
         # Where the package is installed says nothing about the demo board.
         outcomes.append(replace(result, board=replace(result.board, file=DEMO[0])) if demo else result)
-    text, whole = _told(report, outcomes, len(boards), look(output))
+    seen = replace(look(output), explained=explained()) if explain else look(output)
+    text, whole = _told(report, outcomes, len(boards), seen)
     files = [] if output is None or not whole else [ToWrite(text, output)]
     for one in also:
         told, complete = _told(one.report, outcomes, len(boards), Look())

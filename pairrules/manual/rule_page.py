@@ -6,6 +6,7 @@ import importlib
 import inspect
 import json
 import re
+from collections.abc import Mapping
 from functools import cache
 
 from pairrules.board.units import example
@@ -13,6 +14,7 @@ from pairrules.checks.rule import Rule, all_rules
 from pairrules.checks.rule_help import rule_infos
 from pairrules.manual.page import Code, Page, Paragraph, Section, Terms
 from pairrules.manual.shipped_limits import ShippedLimit, in_words, said_quantities, shipped_limits
+from pairrules.reports.report import Explained
 from pairrules.result import SEVERITIES
 from pairrules.schemas.glossary import MODELS, Model, glossary
 from pairrules.settings.limit import TIMES
@@ -30,6 +32,16 @@ def models_of(name: str) -> tuple[Model, ...]:
     figures = (entry.model for word, entry in glossary().items() if re.search(rf"\b{word}\b", judged))
     used = {*rule.models, *figures}
     return tuple(model for model in MODELS.values() if model.name in used)
+
+
+def explained() -> Mapping[str, tuple[Explained, ...]]:
+    """What every rule rests on, in short."""
+    return {
+        name: tuple(
+            Explained(model=model.brief, valid=model.valid, electrical=model.electrical) for model in models_of(name)
+        )
+        for name in all_rules()
+    }
 
 
 def rule_page(name: str) -> Page:

@@ -7,7 +7,7 @@ import textwrap
 
 from pairrules.board.coordinates import coordinates
 from pairrules.reports.cautions import CAUTIONS
-from pairrules.reports.report import Look, Report
+from pairrules.reports.report import Explained, Look, Report
 from pairrules.reports.safe_text import safe
 from pairrules.result import SEVERITIES, Finding, PairResult, Place, Result
 
@@ -64,6 +64,8 @@ def _flagged(result: Result, pair: PairResult, look: Look) -> list[str]:
     lines = _wrap(f"{safe(pair.name)}  ({safe(pair.plus)} and {safe(pair.minus)}{klass})", look, "", "  ")
     for finding in pair.findings:
         lines += _finding(result, finding, look)
+        for text in _rests_on(pair, look.explained.get(finding.rule, ())):
+            lines += _labelled("", text, look, "")
     for text, rules in _reasons(pair).items():
         if rules:
             lines += _labelled("undecided", f"{', '.join(rules)}: {text}", look, "")
@@ -82,6 +84,16 @@ def _finding(result: Result, finding: Finding, look: Look) -> list[str]:
     if finding.source:
         lines += _labelled("", f"limit from: {safe(finding.source)}", look, "")
     return lines
+
+
+def _rests_on(pair: PairResult, explained: tuple[Explained, ...]) -> list[str]:
+    """What a finding's figure rests on, up to where it holds for this pair, and what was assumed for it."""
+    texts = [f"rests on: {one.model}; valid: {one.valid}" for one in explained]
+    if any(one.electrical for one in explained):
+        if pair.quasi_static_hz is not None:
+            texts.append(f"valid here up to {pair.quasi_static_hz / 1e9:.3g} GHz")
+        texts += [f"assumed: {safe(text)}" for text in pair.assumed]
+    return texts
 
 
 def _undecided(pair: PairResult, look: Look) -> list[str]:

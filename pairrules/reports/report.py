@@ -5,18 +5,32 @@ from __future__ import annotations
 import importlib
 import pkgutil
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cache
 
 from pairrules.result import Result
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Explained:
+    """What a rule rests on, in short: `model` and where it is `valid`. `electrical`: whether solved sections are in it."""
+
+    model: str
+    valid: str
+    electrical: bool
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Look:
-    """How a report meant for people is drawn. `width`: columns. `colour`: whether terminal colours may be used."""
+    """How a report meant for people is drawn.
+
+    `width`: columns. `colour`: whether terminal colours may be used. `explained`: what each rule rests on, for reports
+    that tell it beside findings; empty where that is not asked for.
+    """
 
     width: int = 80
     colour: bool = False
+    explained: Mapping[str, tuple[Explained, ...]] = field(default_factory=dict)
 
 
 def apart(texts: tuple[str, ...]) -> str:
