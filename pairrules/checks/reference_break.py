@@ -144,7 +144,7 @@ def _gap_finding(
         limit=most,
         unit="mm",
         message=f"{worst.leg} runs {measured} without reference copper above or below{more}; {allowed} is allowed"
-        + _compared(legs, worst, bare),
+        + _compared(subject, legs, worst, bare),
         advice=f"close the reference copper from {spot(subject.board, worst.first)} to "
         f"{spot(subject.board, worst.last)}, or lead both legs around the gap",
         at=tuple(where for one in longer for where in (one.first, one.last)),
@@ -152,8 +152,8 @@ def _gap_finding(
     )
 
 
-def _compared(legs: tuple[LegRoute, LegRoute], worst: _Bare, bare: list[list[_Bare]]) -> str:
-    """What the other leg has there, in words; "" where it does not run on the same layer."""
+def _compared(subject: Subject, legs: tuple[LegRoute, LegRoute], worst: _Bare, bare: list[list[_Bare]]) -> str:
+    """What the other leg has there, in words; "" where it does not run beside this one."""
     own, other = _LEGS.index(worst.leg), 1 - _LEGS.index(worst.leg)
     lines = [leg_line(leg.pieces) for leg in legs]
     mine, theirs = lines[own], lines[other]
@@ -162,6 +162,10 @@ def _compared(legs: tuple[LegRoute, LegRoute], worst: _Bare, bare: list[list[_Ba
     at, _, layer = mine.at(np.array([worst.s_from, worst.s_to]))
     first, last = theirs.facing(at, layer).tolist()
     if np.isnan(first) or np.isnan(last):
+        return ""
+    # Where the legs part, as on their ways to a connector, the nearest place of the other says nothing.
+    reach = (subject.geometry.reach_mm or 0.0) + sum((leg.width_mm or 0.0) / 2 for leg in legs)
+    if (np.hypot(*(theirs.at(np.array([first, last]))[0] - at).T) > reach + TOLERANCE).any():
         return ""
     first, last = sorted((first, last))
     beside = [one for one in bare[other] if one.s_from < last - TOLERANCE and one.s_to > first + TOLERANCE]

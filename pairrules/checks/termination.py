@@ -67,8 +67,16 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     load = None if subject.klass is None else subject.klass.load
     inside = math.inf if load is None else _between_legs(load)
     if math.isfinite(inside) and not halves:
-        return _judge_value(subject, limit, electrical, inside, "the load itself", [])
-    return (_missing(subject, limit, electrical),)
+        impedance = electrical.impedance_diff_ohm
+        if impedance is None:
+            return lacking(electrical, "sections", "the pair's impedance is not known")
+        if inside <= _ENDS * impedance:
+            return _judge_value(subject, limit, electrical, inside, "the load itself", [])
+    return (_missing(subject, limit, electrical, inside),)
+
+
+_ENDS = 10.0
+"""An input of more than so many times the pair's impedance is no termination: it reflects over eight tenths."""
 
 
 def _between_legs(load: LoadSpec) -> float:
@@ -90,13 +98,14 @@ def _refs(subject: Subject, one: Termination) -> str:
     return " and ".join(subject.board.parts[part].ref for part in one.parts)
 
 
-def _missing(subject: Subject, limit: Limit, electrical: PairElectrical) -> Finding:
+def _missing(subject: Subject, limit: Limit, electrical: PairElectrical, inside: float) -> Finding:
     impedance = electrical.impedance_diff_ohm
     value = "the pair's impedance" if impedance is None else f"about {impedance:.0f} ohm"
     load = subject.board.parts[subject.link.load].ref if subject.link.load >= 0 else "the load"
     fit = f"fit {value} between the legs right at {load}"
     if not electrical.terminations:
-        return _finding(limit, f"nothing terminates the pair at {load}", fit, subject, [])
+        own = f", which has {ohms(inside)} between the legs" if math.isfinite(inside) else ""
+        return _finding(limit, f"nothing terminates the pair at {load}{own}", fit, subject, [])
     nearest = min(electrical.terminations, key=lambda one: one.to_load_mm)
     refs = _refs(subject, nearest)
     most = limit.quantities.get("most")

@@ -44,12 +44,16 @@ def _advise(subject: Subject, electrical: PairElectrical, _: float) -> tuple[str
         (electrical.capacitance_mismatch_pf, "pF"),
         (electrical.inductance_mismatch_nh, "nH"),
     )
-    said = [f"{figure:+.3g} {unit}" for figure, unit in amounts if figure is not None]
+    said = [f"{figure:+.3g} {unit}" for figure, unit in amounts if figure is not None and abs(figure) > _NOTHING]
     advice = f"make the legs alike, plus differs from minus by {', '.join(said)}" if said else "make the legs alike"
     where = most_tilted(subject, electrical)
     if where is None:
         return advice, ()
     return f"{advice}; their capacitances differ most from {spot(subject.board, where)} on", (where,)
+
+
+_NOTHING = 1e-9
+"""Differences below this, in any of the units, are rounding of sums."""
 
 
 RULE = Rule(

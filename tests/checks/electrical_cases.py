@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import replace
+from dataclasses import fields, replace
 from pathlib import Path
 from typing import Any
 
@@ -124,28 +124,31 @@ def _section(on: Board, said: Mapping[str, Any]) -> PairSection:
     L = np.array([[3e-7, 6e-8], [6e-8, 3e-7]])
     if leg != "both":
         C, L = C[:1, :1], L[:1, :1]
-    return PairSection(
-        leg=leg,
-        plus_mm=plus_mm,
-        minus_mm=(minus_mm[0], minus_mm[1]),
-        hop=said.get("hop", 0),
-        layer=0,
-        start=(first, 0.0),
-        end=(last, 0.0),
-        width_plus_mm=0.2,
-        width_minus_mm=0.2,
-        gap_mm=0.3,
-        thickness_mm=0.035,
-        C=C,
-        L=L,
-        R=np.zeros(len(C)),
-        loss=np.zeros_like(C),
-        impedance_diff_ohm=said.get("ohm"),
-        impedance_common_ohm=None,
-        delay=said.get("delay", 6e-9),
-        planes=(1,),
-        neighbours=tuple(on.nets.index(net) for net in said.get("neighbours", [])),
-    )
+    figures: dict[str, Any] = {
+        "leg": leg,
+        "plus_mm": plus_mm,
+        "minus_mm": (minus_mm[0], minus_mm[1]),
+        "hop": said.get("hop", 0),
+        "layer": 0,
+        "start": (first, 0.0),
+        "end": (last, 0.0),
+        "width_plus_mm": 0.2,
+        "width_minus_mm": 0.2,
+        "gap_mm": 0.3,
+        "thickness_mm": 0.035,
+        "C": C,
+        "L": L,
+        "R": np.zeros(len(C)),
+        "loss": np.zeros_like(C),
+        "impedance_diff_ohm": said.get("ohm"),
+        "impedance_common_ohm": None,
+        "delay": said.get("delay", 6e-9),
+        "planes": (1,),
+        "neighbours": tuple(on.nets.index(net) for net in said.get("neighbours", [])),
+    }
+    # What rules do not look at is not said.
+    unsaid = {one.name: None for one in fields(PairSection)}
+    return PairSection(**{**unsaid, **figures})
 
 
 def _part(on: Board, ref: str | None) -> int:
