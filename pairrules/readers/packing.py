@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import io
-import lzma
 import struct
 import zipfile
 import zlib
@@ -12,21 +11,27 @@ from collections.abc import Callable, Iterable
 from pairrules.errors import BoardError
 
 MOST_BYTES = 2 * 1024**3
-"""Unpacked size that is still taken for a board."""
+"""Size, unpacked, that is still taken for a board."""
 
-MOST_RATIO = 1000
-"""Unpacked to packed size that is still taken for text. Deflate itself reaches 1032 (zlib's technical notes)."""
+MOST_RATIO = 200
+"""Unpacked to packed size that is still taken for text: boards reach 10 to 40, deflate itself 1032 (zlib's technical
+notes; the rest common practice, no source)."""
 
-_SMALL_BYTES = 1024**2
-"""Below this size no ratio is asked: a tiny file of blanks harms nobody."""
+_SMALL_BYTES = 16 * 1024**2
+"""Below this size no ratio is asked: so much repetition harms nobody."""
 
 _MOST_MEMBERS = 1000
-"""Members that are looked into for a board."""
+"""Members of a zip that are looked into for a board."""
+
+_MOST_LISTED = 100_000
+"""Members a zip may list, and a gzip file may be joined of; reading a list of millions would take minutes."""
+
+_METHODS = {zipfile.ZIP_STORED, zipfile.ZIP_DEFLATED, zipfile.ZIP_BZIP2}
+"""Packings whose memory is small whatever the archive says. LZMA's dictionary may be of gigabytes."""
 
 _ZIP_FAULTS = (
     zipfile.BadZipFile,
     zlib.error,
-    lzma.LZMAError,
     struct.error,
     EOFError,
     NotImplementedError,
@@ -37,6 +42,10 @@ _ZIP_FAULTS = (
 """What the standard library raises for damaged, locked or strangely packed members."""
 
 _CHUNK = 1024**2
+_FED = 16 * 1024
+"""Bytes given to gzip at a time: what is left of them is copied where a member ends."""
+
+_LONGEST_NAME = 200
 _BOARD_NAMES = (".xml", ".cvg", ".json")
 _HEAD = 4096
 
@@ -64,26 +73,34 @@ def unpack(data: bytes, name: str) -> tuple[bytes, str]:
 def _gunzip(data: bytes, name: str) -> bytes:
     """All members of a gzip file, one after the other."""
     parts: list[bytes] = []
-    rest = data
-    total = 0
-    while rest.startswith(b"\x1f\x8b"):
+    total = place = members = 0
+    while data.startswith(b"\x1f\x8b", place):
+        members += 1
+        if members > _MOST_LISTED:
+            raise BoardError("the archive has too many members", file=name, remedy="give the board file itself")
         engine = zlib.decompressobj(wbits=31)
+        rest = b""
         try:
             while not engine.eof:
+                if not rest:
+                    rest = data[place : place + _FED]
+                    place += len(rest)
+                    if not rest:
+                        raise _broken(name, "the gzip data breaks off")
                 piece = engine.decompress(rest, _CHUNK)
                 rest = engine.unconsumed_tail
-                if not piece and not rest and not engine.eof:
-                    raise _broken(name, "the gzip data breaks off")
                 parts.append(piece)
                 total += len(piece)
                 _check_size(total, len(data), name)
         except zlib.error:
             raise _broken(name, "the gzip data is damaged") from None
-        rest = engine.unused_data
+        place -= len(engine.unused_data)
     return b"".join(parts)
 
 
 def _from_zip(data: bytes, name: str) -> tuple[bytes, str]:
+    if data.count(b"PK\x01\x02") > _MOST_LISTED:
+        raise BoardError("the archive has too many members", file=name, remedy="give the board file itself")
     try:
         with zipfile.ZipFile(io.BytesIO(data)) as archive:
             members = [member for member in archive.infolist() if not member.is_dir()]
@@ -93,6 +110,10 @@ def _from_zip(data: bytes, name: str) -> tuple[bytes, str]:
                     "the archive holds no board", file=name, remedy="put an .xml, .cvg or .json board in it"
                 )
             label = f"{name}: {_shown(chosen.filename)}"
+            if chosen.compress_type not in _METHODS:
+                raise BoardError(
+                    "the archive is packed in an unusual way", file=label, remedy="pack it with deflate, as is usual"
+                )
             plain = _member(archive, chosen, name, None)
     except _ZIP_FAULTS as error:
         locked = "encrypted" in str(error)
@@ -109,7 +130,7 @@ def _choose(
     named = [member for member in members if member.filename.lower().endswith(_BOARD_NAMES)]
     if len(named) == 1:
         return named[0]
-    candidates = (named or members)[:_MOST_MEMBERS]
+    candidates = [member for member in named or members if member.compress_type in _METHODS][:_MOST_MEMBERS]
     return next((member for member in candidates if _looks_like_board(head(member, _HEAD))), None)
 
 
@@ -147,4 +168,5 @@ def _broken(name: str, found: str) -> BoardError:
 
 
 def _shown(filename: str) -> str:
-    return "".join(c for c in filename if c.isprintable())
+    plain = "".join(c for c in filename if c.isprintable())
+    return plain if len(plain) <= _LONGEST_NAME else f"{plain[:_LONGEST_NAME]}…"

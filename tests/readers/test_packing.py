@@ -50,7 +50,7 @@ def test_gzip_larger_than_a_chunk() -> None:
     assert unpack(gzip.compress(data), "b.gz")[0] == data
 
 
-@pytest.mark.parametrize("method", [zipfile.ZIP_STORED, zipfile.ZIP_DEFLATED, zipfile.ZIP_BZIP2, zipfile.ZIP_LZMA])
+@pytest.mark.parametrize("method", [zipfile.ZIP_STORED, zipfile.ZIP_DEFLATED, zipfile.ZIP_BZIP2])
 def test_the_only_board_file_of_a_zip(method: int) -> None:
     data = zipped(("readme.txt", b"IPC-2581"), ("out/board.xml", BOARD), method=method)
     assert unpack(data, "archive.zip") == (BOARD, "archive.zip: out/board.xml")
@@ -98,9 +98,17 @@ def test_damaged_zip() -> None:
     assert refused(data[:60] + b"\xff" * 20 + data[80:]) == said
 
 
-@pytest.mark.parametrize("method", [zipfile.ZIP_BZIP2, zipfile.ZIP_LZMA])
-def test_damaged_members_of_other_packings(method: int) -> None:
-    data = zipped(("board.xml", bz2.compress(bytes(range(256)) * 40)), method=method)
+def test_a_packing_whose_memory_has_no_bound_is_refused() -> None:
+    lzma = zipped(("board.xml", BOARD), method=zipfile.ZIP_LZMA)
+    assert refused(lzma) == (
+        "archive.zip: board.xml: the archive is packed in an unusual way; pack it with deflate, as is usual"
+    )
+    two = zipped(("a.xml", BOARD), ("b.xml", BOARD), method=zipfile.ZIP_LZMA)
+    assert refused(two) == "archive.zip: the archive holds no board; put an .xml, .cvg or .json board in it"
+
+
+def test_damaged_members_of_other_packings() -> None:
+    data = zipped(("board.xml", bz2.compress(bytes(range(256)) * 40)), method=zipfile.ZIP_BZIP2)
     assert refused(data[:60] + b"\xff" * 20 + data[80:]) == f"archive.zip: the zip archive is damaged; {GIVE}"
 
 
@@ -112,6 +120,7 @@ def test_a_locked_zip() -> None:
 
 
 def test_unpacking_stops_at_the_ratio(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(packing, "_SMALL_BYTES", 1_000_000)
     monkeypatch.setattr(packing, "MOST_RATIO", 100)
     blanks = b" " * 4_000_000
     said = "archive.zip: the archive unpacks to more than 100 times its size; give the board file itself"
@@ -125,6 +134,18 @@ def test_unpacking_stops_at_the_size(monkeypatch: pytest.MonkeyPatch) -> None:
     said = "archive.zip: the archive unpacks to more than 0 GB; give the board file itself"
     assert refused(gzip.compress(blanks)) == said
     assert refused(zipped(("b.xml", blanks))) == said
+
+
+def test_an_archive_of_too_many_members(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(packing, "_MOST_LISTED", 10)
+    said = "archive.zip: the archive has too many members; give the board file itself"
+    assert refused(gzip.compress(b" ") * 11) == said
+    assert refused(zipped(*((f"{i}.xml", b"") for i in range(11)))) == said
+
+
+def test_gzip_members_that_end_anywhere_in_what_is_fed() -> None:
+    pieces = [bytes([i % 251]) * (i * 37 % 5000) for i in range(300)]
+    assert unpack(b"".join(map(gzip.compress, pieces)), "b.gz")[0] == b"".join(pieces)
 
 
 def test_what_lies_within_the_bounds_comes_out() -> None:
