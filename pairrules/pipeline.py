@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import hashlib
+import os
+import stat
 from collections.abc import Callable
 from dataclasses import dataclass
 from fnmatch import fnmatchcase
@@ -30,6 +32,7 @@ from pairrules.geometry.measure import measure_link
 from pairrules.pairing.find_links import PairRequest, find_links
 from pairrules.pairing.link import Hop, Link
 from pairrules.pairing.reference_nets import reference_nets
+from pairrules.readers.packing import MOST_BYTES
 from pairrules.readers.reader import read_board
 from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart
 from pairrules.settings.pair_class import PairClass
@@ -228,7 +231,11 @@ def _stacked(board: Board, settings: Settings) -> Board:
 
 def _bytes(path: Path, name: str) -> bytes:
     try:
-        data = path.read_bytes()
+        with path.open("rb") as file:
+            mode = os.fstat(file.fileno()).st_mode
+            if not (stat.S_ISREG(mode) or stat.S_ISFIFO(mode)):
+                raise BoardError("this is a device, not a file", file=name, remedy="name the board file")
+            data = file.read(MOST_BYTES + 1)
     except FileNotFoundError as error:
         raise BoardError("there is no such file", file=name, remedy="check the path") from error
     except IsADirectoryError as error:
@@ -240,6 +247,9 @@ def _bytes(path: Path, name: str) -> bytes:
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         raise BoardError(f"the file cannot be read ({reason})", file=name, remedy="check path and medium") from error
+    if len(data) > MOST_BYTES:
+        found = f"the file is larger than {MOST_BYTES // 1024**3} GB"
+        raise BoardError(found, file=name, remedy="export the board by itself, not a panel or an archive of many")
     if not data:
         raise BoardError("the file is empty", file=name, remedy="export the board again")
     return data
