@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -106,13 +106,17 @@ def fills(region: Any) -> tuple[Fill, ...]:
     )
 
 
-def ring(points: list[complex], centres: list[complex | None], sweeps: list[float]) -> Plane:
-    """A closed outline as corners, arcs flattened, the closing corner left out."""
+def ring(points: Sequence[complex] | Plane, centres: Sequence[complex | None], sweeps: Sequence[float]) -> Plane:
+    """A closed outline as corners, arcs flattened, the closing corner left out. No centres: all steps are straight."""
+    corners = np.array(points, dtype=np.complex128)
     if any(centre is not None for centre in centres):
-        flat = Stroke(tuple(points), tuple(centres), tuple(sweeps), 0.0).flattened()
-        corners = np.array([complex(x, y) for x, y in flat])
-    else:
-        corners = np.array(points, dtype=np.complex128)
+        pieces = [corners[:1]]
+        for start, end, centre, angle in zip(corners, corners[1:], centres, sweeps, strict=False):
+            if centre is not None:
+                rounded = arcs.flatten((start.real, start.imag), (centre.real, centre.imag), angle)
+                pieces.append(rounded[:-1].copy().view(np.complex128)[:, 0])
+            pieces.append(np.array([end]))
+        corners = np.concatenate(pieces)
     if len(corners) > 1 and abs(corners[0] - corners[-1]) < 1e-9:
         corners = corners[:-1]
     return corners

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING
 
+from pairrules.readers.ipc2581.corners import corners
 from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, sweep
 from pairrules.readers.ipc2581.elements import child, children, length, local, size, truth, word, wrong
 from pairrules.readers.ipc2581.primitives import Primitive, hollow, outer_pad, polygon_pad, primitive
@@ -42,6 +43,8 @@ class Shapes:
     standard: dict[str, Primitive] = field(default_factory=dict)
     user: dict[str, Primitive] = field(default_factory=dict)
     user_pads: dict[str, Primitive] = field(default_factory=dict)
+    outlines: dict[Element, Plane] = field(default_factory=dict)
+    """Corners of outlines whose own elements are dropped already, of the record that is being read."""
 
     # -- dictionaries -------------------------------------------------------------------------------------------------
 
@@ -188,7 +191,24 @@ class Shapes:
 
     def outline(self, element: Element, factor: float) -> Plane:
         """The closed outline of a `Polygon` or `Cutout`."""
-        return ring(*self._steps(element, factor))
+        held = self.outlines.get(element)
+        return ring(*self._steps(element, factor)) if held is None else held
+
+    def keep_outline(self, element: Element, factor: float) -> None:
+        """Take in the corners of an outline that nothing is wrong with, and drop its elements; leave any other be."""
+        found = corners(element, factor)
+        if found is None:
+            return
+        points, curves = found
+        centres: list[complex | None] = []
+        sweeps: list[float] = []
+        if curves:
+            centres, sweeps = [None] * (len(points) - 1), [0.0] * (len(points) - 1)
+            for place, inner in curves:
+                start, end = complex(points[place - 1]), complex(points[place])
+                centres[place - 1], sweeps[place - 1] = self._round(inner, start, end, factor)
+        self.outlines[element] = ring(points, centres, sweeps)
+        del element[:]
 
     # -- lines --------------------------------------------------------------------------------------------------------
 

@@ -7,6 +7,7 @@ closes, so that memory holds neither a whole plane's elements nor an object a co
 from __future__ import annotations
 
 import io
+import re
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
@@ -37,12 +38,18 @@ _BROKEN = {
 """Our words for the parser's commonest codes; its own change with its version. Source: libxml2, `xmlParserErrors`."""
 
 
-_DICTIONARIES = {f"Dictionary{name}" for name in ("Color", "FillDesc", "Firmware", "Font", "LineDesc", "Standard", "User")}
+_DICTIONARIES = {
+    f"Dictionary{held}" for held in ("Color", "FillDesc", "Firmware", "Font", "LineDesc", "Standard", "User")
+}
 _OUTLINES = {"Cutout", "Polygon"}
 _FEW = 8
 """Outlines of no more corners are read with their record."""
 
-_LEFT_OUT = {"AvlItem", "BomHeader", "EntryColor", "EntryFirmware", "EntryFont", "HistoryRecord", "LogisticHeader"}
+_LEFT_OUT = {
+    *("Approval", "AvlItem", "BomHeader", "ChangeRec", "Datum", "DfxMeasurement", "DfxMeasurementList", "Enterprise"),
+    *("EntryColor", "EntryFirmware", "EntryFont", "HistoryRecord", "LogisticHeader", "NonstandardAttribute", "Person"),
+    *("Role", "StepRef", "BomRef", "AvlRef"),
+}
 """Asked for only to be freed: a file may hold many of them."""
 
 
@@ -84,7 +91,7 @@ def read_content(data: bytes) -> FileContent:
 
     walk = _Walk(FileContent())
     # The root is among them whatever it is called, to be judged before anything else.
-    names = {*walk.records, *walk.openings, *_DICTIONARIES, *_OUTLINES, *_LEFT_OUT, root_name(data) or ROOT}
+    names = {*walk.records, *walk.openings, *_DICTIONARIES, *_OUTLINES, *_LEFT_OUT, _root_name(data)}
     events = etree.iterparse(
         io.BytesIO(data),
         events=("start", "end"),
@@ -116,6 +123,11 @@ def read_content(data: bytes) -> FileContent:
         place = f"line {error.lineno}" if error.lineno else ""
         raise BoardError(found, place=place, remedy="export the file again") from None
     return walk.content
+
+
+def _root_name(data: bytes) -> str:
+    name = root_name(data)
+    return name if re.fullmatch(r"[\w.-]+", name) else ROOT
 
 
 def _free(element: Element) -> None:
