@@ -280,6 +280,15 @@ class PairDrawing:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class DrawnOutline:
+    """A part of the board: the convex hull of its pads. `side`: "top", "bottom" or "" where unknown."""
+
+    ref: str
+    side: str
+    outline: Ring
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Drawing:
     """What a picture or page draws of the whole board.
 
@@ -288,10 +297,11 @@ class Drawing:
     layers: names of the copper layers, top first; drawn records refer to them by index.
     outline: the board's edge, () where the file has none. extent: x_min, y_min, x_max, y_max [mm] of outline and
         copper, `None` for an empty board.
-    units: the file's, as written.
+    units: the file's, as written. parts: all parts whose pads are known.
     """
 
     layers: tuple[str, ...]
     outline: Ring
     extent: tuple[float, float, float, float] | None
     units: str
+    parts: tuple[DrawnOutline, ...] = ()

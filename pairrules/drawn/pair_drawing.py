@@ -15,6 +15,7 @@ from pairrules.drawing import Drawing, DrawnPad, DrawnPart, DrawnPlace, PairDraw
 from pairrules.drawn.along_pair import drawn_pieces, impedance_along, running_difference, spacing
 from pairrules.drawn.conversion_curves import conversion_curves
 from pairrules.drawn.drawn_limits import drawn_limits
+from pairrules.drawn.part_outlines import part_outlines
 from pairrules.drawn.plain_shapes import plain_shapes, point, ring
 from pairrules.drawn.window_copper import DrawnBoard, Roles, Window, drawn_copper, drawn_openings, drawn_vias
 from pairrules.geometry.curves import Curves, chords
@@ -41,7 +42,7 @@ def board_drawing(board: Board) -> Drawing:
         low, high = point(every.min(axis=0)), point(every.max(axis=0))
         extent = (*low, *high)
     outline = () if board.outline is None else ring(board.outline)
-    return Drawing(layers=board.copper, outline=outline, extent=extent, units=board.units)
+    return Drawing(layers=board.copper, outline=outline, extent=extent, units=board.units, parts=part_outlines(board))
 
 
 def pair_drawing(
