@@ -62,7 +62,7 @@ def area_polygon(area: Area) -> shapely.Geometry:
     if not len(inner):
         return whole
     islands: Shapes = np.asarray(shapely.polygons(inner), dtype=np.object_)
-    return shapely.multipolygons(np.array([whole, *islands.tolist()], dtype=np.object_))
+    return shapely.MultiPolygon([whole, *islands.tolist()])
 
 
 def _rings(rings: Sequence[Floats]) -> Shapes:

@@ -44,10 +44,9 @@ def corners(element: Element, factor: float) -> tuple[Plane, list[tuple[int, Ele
         # Joined, since a look for each would cost more than the reading: `float` takes 1_0, the file may not.
         if not x or "_" in "".join(x) or "_" in "".join(y):  # type: ignore[arg-type]
             return None
-        points = np.empty(len(x), dtype=np.complex128)
-        points.real, points.imag = list(map(float, x)), list(map(float, y))  # type: ignore[arg-type]
+        at = np.array([list(map(float, x)), list(map(float, y))]) * factor  # type: ignore[arg-type]
     except (TypeError, ValueError):
         return None
-    points *= factor
-    within = (np.abs(points.real) < FARTHEST_MM) & (np.abs(points.imag) < FARTHEST_MM)
-    return (points, curves) if within.all() else None
+    if not (np.abs(at) < FARTHEST_MM).all():
+        return None
+    return at[0] + 1j * at[1], curves
