@@ -42,7 +42,7 @@ def command(
     Without RULE all rules are listed, each in a line.
     """
     if (rule is not None) + (figure is not None) + everything > 1:
-        raise click.UsageError("RULE, --figure and --all exclude each other", ctx)
+        raise click.UsageError("give one of RULE, --figure and --all", ctx)
     if everything:
         pages = manual()
     elif figure is not None:

@@ -13,7 +13,7 @@ from pairrules.result import Result
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Explained:
-    """What a rule rests on, in short: `model` and where it is `valid`. `electrical`: whether solved sections are in it."""
+    """What a rule rests on, in short: `model`, and where it is `valid`. `electrical`: with solved sections in it."""
 
     model: str
     valid: str
