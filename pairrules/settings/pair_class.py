@@ -98,7 +98,9 @@ def limits_over(upper: LimitsAndOff, lower: LimitsAndOff) -> LimitsAndOff:
     limits = {rule: limit for rule, limit in lower[0].items() if rule not in upper[1]}
     for rule, limit in upper[0].items():
         below = limits.get(rule)
-        limits[rule] = replace(limit, severity=below.severity) if below and not limit.severity else limit
+        if below and not limit.severity:
+            limit = replace(limit, severity=below.severity, severity_place=below.severity_place or below.place)
+        limits[rule] = limit
     off = {*upper[1], *lower[1]} - upper[0].keys()
     return dict(sorted(limits.items())), tuple(sorted(off))
 

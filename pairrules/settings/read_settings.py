@@ -169,7 +169,7 @@ def _merged(files: list[_Read], faults: Faults) -> Settings:
         )
     resolved = _without_like(classes, places)
     faults.raise_if_any()
-    general = {rule: replace(limit, severity=limit.severity or _DEFAULT_SEVERITY) for rule, limit in limits[0].items()}
+    general = {rule: _with_severity(limit, None) for rule, limit in limits[0].items()}
     return replace(merged, limits=general, classes=tuple(_with_severities(one, general) for one in resolved))
 
 
@@ -214,10 +214,14 @@ def _note_like(
 
 
 def _with_severities(one: PairClass, general: Mapping[str, Limit]) -> PairClass:
-    limits = {
-        rule: replace(
-            limit, severity=limit.severity or (general[rule].severity if rule in general else _DEFAULT_SEVERITY)
-        )
-        for rule, limit in one.limits.items()
-    }
+    limits = {rule: _with_severity(limit, general.get(rule)) for rule, limit in one.limits.items()}
     return replace(one, limits=limits)
+
+
+def _with_severity(limit: Limit, general: Limit | None) -> Limit:
+    """The limit with the severity of the one for all pairs, or with the usual one, where it says none itself."""
+    if limit.severity:
+        return limit
+    if general is None:
+        return replace(limit, severity=_DEFAULT_SEVERITY, severity_place="default")
+    return replace(limit, severity=general.severity, severity_place=general.severity_place or general.place)
