@@ -260,7 +260,8 @@ def _settings_path(board: str | Path, settings: str | Path | None) -> Path | Non
 
 
 def _wanted(board: Board, link: Link, pattern: str) -> bool:
-    return any(fnmatchcase(name, pattern) for name in (link.name, *_net_names(board, link)))
+    # A name with brackets in it is found by itself, though as a pattern it stands for another.
+    return any(name == pattern or fnmatchcase(name, pattern) for name in (link.name, *_net_names(board, link)))
 
 
 def _net_names(board: Board, link: Link) -> tuple[str, ...]:
