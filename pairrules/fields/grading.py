@@ -89,7 +89,8 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
 
 def _foreign(pieces: Pieces, sharp: Bools, smooth: Ints) -> Bools:
     """Which corners ask which pieces for small cells: sharp ones all, those of round copper only other things."""
-    return sharp[None, :] | ((smooth >= 0)[None, :] & (smooth[None, :] != pieces.owner[:, None]))
+    asks: Bools = sharp[None, :] | ((smooth >= 0)[None, :] & (smooth[None, :] != pieces.owner[:, None]))
+    return asks
 
 
 def _share(pieces: Pieces) -> Floats:

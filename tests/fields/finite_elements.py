@@ -1,9 +1,9 @@
 """Capacitance of a cross-section by finite elements, as a second opinion on the boundary elements.
 
-Quadrilaterals of second order on a tensor grid whose lines pass through every edge of copper and dielectric and crowd
-toward them geometrically; copper is left out or held at its potential; C follows from the energy, so it falls toward its
-limit as the grid is refined. Open space ends in a remote box. Three depths of grading are extrapolated (Aitken): the
-error at a corner falls by one factor with each layer. The assembly and elements are those of scikit-fem
+Quadrilaterals of second order on a tensor grid whose lines pass through every edge of copper and dielectric and
+crowd toward them geometrically; copper is left out or held at its potential; C follows from the energy, so it falls
+toward its limit as the grid is refined. Open space ends in a remote box. Three depths of grading are extrapolated
+(Aitken): the error at a corner falls by one factor with each layer. The assembly and elements are those of scikit-fem
 (T. Gustafsson, G. D. McBain, scikit-fem: a Python package for finite element assembly, JOSS 5 (2020) 2369).
 """
 
@@ -13,9 +13,9 @@ import itertools
 
 import numpy as np
 import numpy.typing as npt
-import scipy.sparse.linalg
-import skfem
-from skfem.helpers import dot, grad
+import scipy.sparse.linalg  # type: ignore[import-untyped]
+import skfem  # type: ignore[import-untyped]
+from skfem.helpers import dot, grad  # type: ignore[import-untyped]
 
 from pairrules.fields.cross_section import CrossSection
 
@@ -27,8 +27,8 @@ EPSILON_0 = 8.8541878128e-12
 def capacitance(
     section: CrossSection, *, depths: tuple[int, int, int] = (8, 10, 12), air: bool = False
 ) -> tuple[Floats, float]:
-    """Maxwell matrix [F/m] in the order of the conductors, and how far the last refinement still moved it, relatively."""
-    a, b, c = (_capacitance(section, depth, air=air) for depth in depths)
+    """Maxwell matrix [F/m] in the order of the conductors, and how far extrapolation still moves it, relatively."""
+    a, b, c = (at_depth(section, depth, air=air) for depth in depths)
     scale = np.sqrt(np.outer(np.diag(c), np.diag(c)))
     with np.errstate(divide="ignore", invalid="ignore"):
         step = (c - b) ** 2 / ((b - a) - (c - b))
@@ -36,7 +36,8 @@ def capacitance(
     return (extrapolated + extrapolated.T) / 2, float(np.max(np.abs(extrapolated - c) / scale))
 
 
-def _capacitance(section: CrossSection, depth: int, *, air: bool) -> Floats:
+def at_depth(section: CrossSection, depth: int, *, air: bool = False) -> Floats:
+    """Maxwell matrix [F/m] on a grid that halves `depth` times toward each edge; not extrapolated."""
     xs, ys = _lines(section)
     whole = [plane.y for plane in section.planes if plane.infinite]
     low = min(whole) if whole else None

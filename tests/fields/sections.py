@@ -1,4 +1,4 @@
-"""Sections that the tests of the field solution share, each under a name that says what is odd about it. Millimetres."""
+"""Sections that the tests of the field solution share, each under a name that says what is odd about it; in mm."""
 
 from __future__ import annotations
 

@@ -1,8 +1,8 @@
 """The boundary elements against finite elements (scikit-fem) on sections that no closed form covers.
 
-The finite elements are graded and extrapolated until the last refinement moves them by less than a tenth of what is judged.
-Targets: C within 0.1 % of √(C_ii C_jj), that of air 0.05 %, and the legs' difference (C11 − C22)/(C11 + C22), and the
-same of L, within 2e-4: conversion comes from the difference, not from the size.
+The finite elements are graded and extrapolated until the last refinement moves them by less than a tenth of what is
+judged. Targets: C within 0.1 % of √(C_ii C_jj), that of air 0.05 %, and the legs' difference (C11 − C22)/(C11 +
+C22), and the same of L, within 2e-4: conversion comes from the difference, not from the size.
 """
 
 from __future__ import annotations

@@ -80,7 +80,7 @@ def test_means_are_those_of_numerical_integration(around: Surroundings) -> None:
 def test_two_pieces_of_a_cell_add_up_to_the_whole() -> None:
     """Charge spread over a cell is the charge spread over its halves; so is the flux through it."""
     centre = np.array([0.2 + 0.3j, 0.15 + 0.3j, 0.25 + 0.3j, 0.45 + 0.2j])
-    way = np.array([0.2, 0.1, 0.1, 0.1j])
+    way = np.array([0.2, 0.1, 0.1, 0.1j], dtype=np.complex128)
     for around in (Surroundings(grounded=False), Surroundings(grounded=True), Surroundings(grounded=True, height=0.5)):
         potential, flux = interaction(centre, way, 4, np.arange(4), around)
         assert potential[3, 0] == pytest.approx((potential[3, 1] + potential[3, 2]) / 2, abs=1e-3)
@@ -96,7 +96,7 @@ def test_flux_out_of_a_closed_box_is_the_charge_inside(around: Surroundings) -> 
     ends = np.roll(starts, -1)
     inside, outside = np.array([0.35 + 0.4j]), np.array([0.9 + 0.4j])
     centre = np.concatenate(((starts + ends) / 2, inside, outside))
-    way = np.concatenate((ends - starts, [0.05], [0.05j]))
+    way = np.concatenate((ends - starts, np.array([0.05, 0.05j])))
     _, flux = interaction(centre, way, 0, np.arange(len(starts)), around)
     out = -flux.sum(axis=0)  # the box is walked counter-clockwise, so its inside lies left
     assert out[-2] == pytest.approx(2 * math.pi, rel=1e-4)

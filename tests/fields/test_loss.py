@@ -1,4 +1,6 @@
-"""Resistance and conductance: limits at low and high frequency, and laws. Published values: tests/published/test_textbook_wires.py."""
+"""Resistance and conductance: limits at low and high frequency, and laws. Published values:
+tests/published/test_textbook_wires.py.
+"""
 
 from __future__ import annotations
 
@@ -38,7 +40,7 @@ def test_current_crowds_so_resistance_exceeds_that_of_an_even_skin() -> None:
 
 
 def test_wide_leg_close_over_a_plane_is_a_parallel_plate_line() -> None:
-    """One plate of width w carries 1/w on its inner face, and so does the plane; at the edges current spreads a little."""
+    """One plate of width w carries 1/w on its inner face, and so does the plane; current spreads a little at edges."""
     wide = CrossSection(
         conductors=(bar("plus", -80, -20, 0.05, 0.3), bar("minus", 20, 80, 0.05, 0.3)), planes=(Plane(y=0.0),)
     )
@@ -89,10 +91,10 @@ def test_swapped_legs_swap_resistance() -> None:
 
 
 def test_no_return_no_resistance() -> None:
-    with pytest.raises(ValueError, match="^resistance needs two legs and copper at 0 V$"):
+    with pytest.raises(ValueError, match=r"^resistance needs two legs and copper at 0 V$"):
         skin_integrals(solve_section(SECTIONS["no return"]))
     single = dataclasses.replace(SECTIONS["bars"], conductors=SECTIONS["bars"].conductors[:1])
-    with pytest.raises(ValueError, match="^conductance of a pair needs two legs$"):
+    with pytest.raises(ValueError, match=r"^conductance of a pair needs two legs$"):
         conductance(solve_section(single), [1e6])
 
 

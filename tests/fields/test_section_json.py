@@ -1,5 +1,7 @@
 """Sections in JSON: what is read, what is answered, and the whole line for each fault."""
 
+# ruff: noqa: E501  the sentences are asserted whole, one case a line
+
 from __future__ import annotations
 
 import copy
@@ -68,7 +70,7 @@ def test_a_polygon_may_be_closed_or_open_and_go_round_either_way() -> None:
     closed = read_sections(json.dumps(changed("conductors.0.polygon", [*corners, corners[0]])), "a")[0]
     assert closed == contract_example()
     backward = read_sections(json.dumps(changed("conductors.0.polygon", corners[::-1])), "a")[0]
-    assert solve_section(backward).C == pytest.approx(solve_section(closed).C, rel=1e-9)
+    assert pytest.approx(solve_section(closed).C, rel=1e-9) == solve_section(backward).C
 
 
 def test_stretches_of_a_plane_in_any_order() -> None:
@@ -111,10 +113,9 @@ def test_a_figure_that_is_null_has_a_reason() -> None:
     section = microstrip(w=(0.2, 0.2), s=0.2, h=0.2, er=4.2)
     single = answer(type(section)(conductors=section.conductors[:1], planes=section.planes))
     assert single["pair"] is None
-    assert single["why_null"] == {
-        key: "a pair needs two signal conductors; this section has 1"
-        for key in ("pair", "impedance_diff_ohm", "impedance_common_ohm")
-    }
+    assert single["why_null"] == dict.fromkeys(
+        ("pair", "impedance_diff_ohm", "impedance_common_ohm"), "a pair needs two signal conductors; this section has 1"
+    )
 
 
 def test_many_answers_keep_their_order() -> None:

@@ -1,9 +1,10 @@
-"""S. B. Cohn, Shielded coupled-strip transmission line, IRE Transactions on Microwave Theory and Techniques 3 (1955) 29–38.
+"""S. B. Cohn, Shielded coupled-strip transmission line, IRE Transactions on Microwave Theory and Techniques 3 (1955)
+29–38.
 
-Exact for strips of no thickness midway between two planes, by conformal mapping: Z = (η/4√ε) K(k′)/K(k) with
-k_even = tanh(πw/2b) tanh(π(w + s)/2b) and k_odd = tanh(πw/2b) coth(π(w + s)/2b); a single strip has k = tanh(πw/2b). The
-formulas are from memory; that they are what the paper says is borne out by the field solution, which knows none of them.
-K from scipy.special.ellipk, whose argument is m = k².
+Exact for strips of no thickness midway between two planes, by conformal mapping: Z = (η/4√ε) K(k′)/K(k) with k_even
+= tanh(πw/2b) tanh(π(w + s)/2b) and k_odd = tanh(πw/2b) coth(π(w + s)/2b); a single strip has k = tanh(πw/2b). The
+formulas are from memory; that they are what the paper says is borne out by the field solution, which knows none of
+them. K from scipy.special.ellipk, whose argument is m = k².
 """
 
 from __future__ import annotations

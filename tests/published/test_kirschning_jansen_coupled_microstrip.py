@@ -1,10 +1,10 @@
 """M. Kirschning and R. H. Jansen, Accurate wide-range design equations for the frequency-dependent characteristic of
-parallel coupled microstrip lines, IEEE Transactions on Microwave Theory and Techniques 32 (1984) 83–90; corrections in
-the same journal 33 (1985) 288.
+parallel coupled microstrip lines, IEEE Transactions on Microwave Theory and Techniques 32 (1984) 83–90; corrections
+in the same journal 33 (1985) 288.
 
-Static even- and odd-mode permittivity and impedance of two equal strips of no thickness, equations recalled from memory.
-Stated range 0.1 ≤ u ≤ 10, 0.1 ≤ g ≤ 10, 1 ≤ ε ≤ 18; stated error 0.7 % of permittivity and 0.6 % of impedance. Closed forms
-of coupled lines are judged no closer than 2 %.
+Static even- and odd-mode permittivity and impedance of two equal strips of no thickness, equations recalled from
+memory. Stated range 0.1 ≤ u ≤ 10, 0.1 ≤ g ≤ 10, 1 ≤ ε ≤ 18; stated error 0.7 % of permittivity and 0.6 % of
+impedance. Closed forms of coupled lines are judged no closer than 2 %.
 """
 
 from __future__ import annotations

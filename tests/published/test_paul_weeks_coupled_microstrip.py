@@ -1,11 +1,12 @@
 """Coupled microstrip worked out in the literature on multiconductor lines.
 
-C. R. Paul, Analysis of Multiconductor Transmission Lines, 1994 (recalled, not re-read): two lands of width and distance
-100 mil on 62 mil of ε 4.7, thin: L11 0.3353, L12 0.0370 µH/m; C11 115.5, C12 −4.93 pF/m. Printed by a coarse method; 2.5 %.
+C. R. Paul, Analysis of Multiconductor Transmission Lines, 1994 (recalled, not re-read): two lands of width and
+distance 100 mil on 62 mil of ε 4.7, thin: L11 0.3353, L12 0.0370 µH/m; C11 115.5, C12 −4.93 pF/m. Printed by a
+coarse method; 2.5 %.
 
-W. T. Weeks, IEEE Transactions on Microwave Theory and Techniques 18 (1970) 35–43, as quoted by C. Wei, R. F. Harrington,
-J. R. Mautz and T. K. Sarkar, the same journal 32 (1984) 439–450 (recalled, not re-read): two strips of width 3, thickness 1,
-gap 2, one above the plane on ε 2: C11 92.2, C12 −8.5 pF/m. 2 %.
+W. T. Weeks, IEEE Transactions on Microwave Theory and Techniques 18 (1970) 35–43, as quoted by C. Wei, R. F.
+Harrington, J. R. Mautz and T. K. Sarkar, the same journal 32 (1984) 439–450 (recalled, not re-read): two strips of
+width 3, thickness 1, gap 2, one above the plane on ε 2: C11 92.2, C12 −8.5 pF/m. 2 %.
 """
 
 from __future__ import annotations
