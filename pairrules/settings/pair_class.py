@@ -99,8 +99,10 @@ def limits_over(upper: LimitsAndOff, lower: LimitsAndOff) -> LimitsAndOff:
     for rule, limit in upper[0].items():
         below = limits.get(rule)
         if below and not limit.severity:
-            limit = replace(limit, severity=below.severity, severity_place=below.severity_place or below.place)
-        limits[rule] = limit
+            where = below.severity_place or below.place
+            limits[rule] = replace(limit, severity=below.severity, severity_place=where)
+        else:
+            limits[rule] = limit
     off = {*upper[1], *lower[1]} - upper[0].keys()
     return dict(sorted(limits.items())), tuple(sorted(off))
 
