@@ -7,6 +7,7 @@ import os
 import stat
 from collections.abc import Callable
 from dataclasses import dataclass
+from datetime import date
 from fnmatch import fnmatchcase
 from pathlib import Path
 
@@ -15,6 +16,7 @@ from pairrules.balance.electrical import electrical
 from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.board.board import Board
 from pairrules.board.given_stackup import with_stackup
+from pairrules.board.given_values import with_part_values
 from pairrules.checks.electrical_figures import ps_per_mm
 from pairrules.checks.held_limits import held_limits
 from pairrules.checks.judge_pair import judge_pair, verdict
@@ -22,6 +24,7 @@ from pairrules.checks.measures import balance_figures, geometric_measures, with_
 from pairrules.checks.pin_lengths import pin_extra
 from pairrules.checks.rule import Subject, all_rules
 from pairrules.checks.rule_help import rule_infos
+from pairrules.checks.waiving import left_over, waive
 from pairrules.drawn.pair_drawing import board_drawing, pair_drawing
 from pairrules.drawn.window_copper import DrawnBoard
 from pairrules.errors import BoardError, SettingsError, UsageError
@@ -34,9 +37,10 @@ from pairrules.pairing.link import Hop, Link
 from pairrules.pairing.reference_nets import reference_nets
 from pairrules.readers.packing import MOST_BYTES
 from pairrules.readers.reader import read_board
-from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart
+from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart, WaiverState
 from pairrules.settings.pair_class import PairClass
 from pairrules.settings.read_settings import Settings, find_settings, read_settings
+from pairrules.settings.waivers import Waiver, read_waivers, waivers_path
 
 BESIDE_RULES = frozenset({"neighbour-tilt"})
 """Rules that look at foreign copper beside the legs, which costs most to find and is left out unless one is asked."""
@@ -52,6 +56,8 @@ def check(
     pairs: str = "*",
     step: str = "",
     drawing: bool = False,
+    today: date | None = None,
+    settings_of: str | Path | None = None,
     progress: Progress | None = None,
 ) -> Result:
     """Read a board, measure its pairs, judge them.
@@ -62,15 +68,20 @@ def check(
     pairs: which pairs, a pattern (`*`, `?`, `[…]`) over pair and net names.
     step: which board, where the file has several.
     drawing: whether the result carries what pictures and pages draw, which takes longer.
+    today: the day that decides which waivers have expired; `None` for the clock's.
+    settings_of: the board whose settings and waivers hold, where it is not this one and `settings` is `None`.
     progress: called as the work goes on.
 
     Raises
     ------
-    BoardError: the file cannot be read or is no board. SettingsError: the settings are wrong, all faults at once.
-    UsageError: no pair matches `pairs`.
+    BoardError: the file cannot be read or is no board. SettingsError: the settings or the waivers are wrong, all
+    faults of a file at once. UsageError: no pair matches `pairs`.
     """
-    opened = _open(path, settings, pairs=pairs, step=step)
+    opened = _open(path, settings, pairs=pairs, step=step, settings_of=settings_of)
     rules, board = all_rules(), opened.board
+    waivers = read_waivers(_waiver_file(opened.settings, settings_of or path, settings), rules=rules)
+    states: dict[Waiver, list[WaiverState]] = {waiver: [] for waiver in waivers}
+    day = today or date.today()
     copper, store = BoardCopper(board, opened.reference), dict[CrossSection, SectionSolution]()
     results, drawn = [], DrawnBoard(copper)
     for done, link in enumerate(opened.links):
@@ -103,7 +114,12 @@ def check(
             reference=opened.reference,
             pins=pins,
         )
-        judgement = judge_pair(subject, limits, rules)
+        judgement = judge_pair(subject, limits, rules, copper)
+        nets = [_nets(board, hops) for hops in (link.hops_plus, link.hops_minus)]
+        own = [waiver for waiver in waivers if waiver.means(link.name, *nets)]
+        judgement, became = waive(judgement, own, day, name=link.name)
+        for waiver, state in zip(own, became, strict=True):
+            states[waiver].append(state)
         balance = balance_figures(figures, () if klass is None else klass.frequencies)
         found = _found_pair(board, link, None if klass is None else klass.name)
         notes = (*_notes(link, None if klass is None else klass.name, bool(limits)), *filter(None, (pins.missing,)))
@@ -131,6 +147,8 @@ def check(
                 limits=held_limits(limits, rules, judgement, measures, balance),
                 line_plus=_line(board, link.plus, link.hops_plus),
                 line_minus=_line(board, link.minus, link.hops_minus),
+                ends_plus=_ends(board, link.hops_plus),
+                ends_minus=_ends(board, link.hops_minus),
                 drawing=pair_drawing(subject, judgement.findings, limits, rules, drawn=drawn) if drawing else None,
             )
         )
@@ -142,7 +160,26 @@ def check(
         settings=tuple(Path(name).name for name in opened.settings.files),
         rules=rule_infos(rules),
         drawing=board_drawing(board) if drawing else None,
+        waivers=tuple(
+            state
+            for waiver, found in states.items()
+            for state in (found or (left_over([waiver]) if pairs == "*" else ()))
+        ),
     )
+
+
+def waiver_file_of(path: str | Path, settings: str | Path | None = None) -> Path:
+    """Where a board's waivers stand or, where there are none yet, belong. Parameters and errors as of `check`."""
+    return _waiver_file(_settings(path, settings), path, settings)
+
+
+def _settings(path: str | Path, settings: str | Path | None) -> Settings:
+    forms = {name: rule.form for name, rule in all_rules().items()}
+    return read_settings(_settings_path(path, settings), forms=forms)
+
+
+def _waiver_file(chosen: Settings, path: str | Path, settings: str | Path | None) -> Path:
+    return waivers_path(chosen.waivers, _settings_path(path, settings), Path(path))
 
 
 def find_pairs(path: str | Path, settings: str | Path | None = None, *, pairs: str = "*", step: str = "") -> FoundPairs:
@@ -167,12 +204,13 @@ class _Opened:
     unpaired: tuple[str, ...]
 
 
-def _open(path: str | Path, settings: str | Path | None, *, pairs: str, step: str) -> _Opened:
+def _open(
+    path: str | Path, settings: str | Path | None, *, pairs: str, step: str, settings_of: str | Path | None = None
+) -> _Opened:
     name = str(path)
-    forms = {name: rule.form for name, rule in all_rules().items()}
     data = _bytes(Path(path), name)
-    chosen = read_settings(_settings_path(path, settings), forms=forms)
-    board = _stacked(read_board(data, name, step=step), chosen)
+    chosen = _settings(settings_of or path, settings)
+    board = with_part_values(_stacked(read_board(data, name, step=step), chosen), chosen.part_values)
     reference = reference_nets(board, chosen.reference_nets)
     listed = tuple(PairRequest(plus=p.plus, minus=p.minus, name=p.name, place=p.place) for p in chosen.pairs)
     pairing = find_links(board, listed=listed, ignore=chosen.ignore, reference=reference)
@@ -262,6 +300,17 @@ def _settings_path(board: str | Path, settings: str | Path | None) -> Path | Non
 def _wanted(board: Board, link: Link, pattern: str) -> bool:
     # A name with brackets in it is found by itself, though as a pattern it stands for another.
     return any(name == pattern or fnmatchcase(name, pattern) for name in (link.name, *_net_names(board, link)))
+
+
+def _nets(board: Board, hops: tuple[Hop, ...]) -> tuple[str, ...]:
+    return tuple(board.nets[hop.net] for hop in hops)
+
+
+def _ends(board: Board, hops: tuple[Hop, ...]) -> tuple[str, ...]:
+    """The pins at which a leg begins and ends."""
+    rows = {row for hop in hops[:1] for row in hop.start} | {row for hop in hops[-1:] for row in hop.end}
+    pads = board.pads
+    return tuple(sorted({f"{board.parts[pads.part[row]].ref}.{pads.pin[row]}" for row in rows if pads.part[row] >= 0}))
 
 
 def _net_names(board: Board, link: Link) -> tuple[str, ...]:

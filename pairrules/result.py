@@ -73,6 +73,7 @@ class Finding:
     measured, limit: in `unit`; `None` where the rule compares no number.
     message: what was measured and what is allowed. advice: what to do about it.
     source: where the limit comes from.
+    baseline: beside an earlier result "new", "worse" or "unchanged" (it stood before and is no worse); else "".
     """
 
     rule: str
@@ -86,6 +87,7 @@ class Finding:
     source: str = ""
     waived: bool = False
     fingerprint: str = ""
+    baseline: str = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -94,6 +96,29 @@ class Unjudged:
 
     rule: str
     missing: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class WaiverState:
+    """What became of a waiver.
+
+    Parameters
+    ----------
+    pair: name of the pair it is of; as the waiver has it where it is of none.
+    state: "held"; or, where its finding is not waived, "expired", "changed" (the copper), "gone" (the finding), or
+        "undecided" (the rule could not judge).
+    why: why it does not hold and what to do, "" where it does.
+    reason, who, until: as the waiver says, `until` as YYYY-MM-DD. line: of the waiver file.
+    """
+
+    rule: str
+    pair: str
+    state: str
+    why: str
+    reason: str
+    who: str
+    until: str
+    line: int = 0
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -168,6 +193,7 @@ class PairResult:
     `assumed`: what its electrical figures take beside what is given. `quasi_static_hz`: up to where they hold.
     `line_plus`, `line_minus`: line of the board file where that leg's copper first stands, 0 where unknown.
     `drawing`: only where it was asked for.
+    `ends_plus`, `ends_minus`: pins at which that leg begins and ends, as "U1.3", sorted.
     """
 
     name: str
@@ -193,6 +219,8 @@ class PairResult:
     line_plus: int = 0
     line_minus: int = 0
     drawing: PairDrawing | None = None
+    ends_plus: tuple[str, ...] = ()
+    ends_minus: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -223,7 +251,7 @@ class Result:
     """Everything a report may tell of one board.
 
     `rules`: every rule there is, by name. `drawing`: only where it was asked for. `settings`: the settings files by
-    their names without folders, the deepest base first.
+    their names without folders, the deepest base first. `waivers`: what became of each waiver, in their file's order.
     """
 
     version: str
@@ -233,6 +261,7 @@ class Result:
     rules: tuple[RuleInfo, ...] = ()
     drawing: Drawing | None = None
     settings: tuple[str, ...] = ()
+    waivers: tuple[WaiverState, ...] = ()
 
     @property
     def summary(self) -> dict[str, int]:

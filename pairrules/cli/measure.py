@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from datetime import date
+
 import click
 
-from pairrules.cli.options import output_option, pair_option, settings_option, step_option
+from pairrules.cli.options import output_option, pair_option, settings_option, step_option, today_option
 from pairrules.cli.output import look, write
 from pairrules.cli.progress import ProgressLine
 from pairrules.pipeline import check
@@ -25,8 +27,11 @@ from pairrules.reports.report import reports_of
 @output_option
 @pair_option
 @step_option
-def command(*, board: str, settings: str | None, form: str, output: str | None, pair: str, step: str) -> None:
+@today_option
+def command(
+    *, board: str, settings: str | None, form: str, output: str | None, pair: str, step: str, today: date | None
+) -> None:
     """Print all figures of the pairs of BOARD. Exit status 0 whatever they are, 2 and 3 as `check`."""
     with ProgressLine() as progress:
-        result = check(board, settings, pairs=pair, step=step, progress=progress)
+        result = check(board, settings, pairs=pair, step=step, today=today, progress=progress)
     write(reports_of("measure")[form].render(result, look(output)), output)

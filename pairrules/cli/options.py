@@ -2,7 +2,22 @@
 
 from __future__ import annotations
 
+from datetime import date
+
 import click
+
+from pairrules.settings.waivers import as_day
+
+
+def as_date(ctx: click.Context, param: click.Parameter, value: str | None) -> date | None:
+    """A day written YYYY-MM-DD, for an option."""
+    if value is None:
+        return None
+    day = as_day(value)
+    if day is None:
+        raise click.BadParameter(f"{value!r} is no day; write it as 2031-05-17", ctx, param)
+    return day
+
 
 settings_option = click.option(
     "--settings",
@@ -14,3 +29,9 @@ pair_option = click.option(
     "--pair", metavar="PATTERN", default="*", help="Only pairs whose name, or a net's name, matches (* ? [...])."
 )
 step_option = click.option("--step", metavar="NAME", default="", help="Which board, where the file has several.")
+today_option = click.option(
+    "--today",
+    metavar="YYYY-MM-DD",
+    callback=as_date,
+    help="The day on which waivers must still hold; else the clock's.",
+)

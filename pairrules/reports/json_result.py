@@ -6,7 +6,7 @@ import json
 from typing import Any
 
 from pairrules.reports.report import Look, Report
-from pairrules.result import RESULT_VERSION, Finding, Measures, PairResult, Result
+from pairrules.result import RESULT_VERSION, Finding, Measures, PairResult, Result, WaiverState
 
 
 def render(result: Result, look: Look) -> str:
@@ -38,6 +38,7 @@ def as_plain(result: Result) -> dict[str, Any]:
         },
         "pairs": [_pair(pair) for pair in result.pairs],
         "unpaired": list(result.unpaired),
+        "waivers": [_waiver(waiver) for waiver in result.waivers],
         "summary": result.summary,
     }
 
@@ -53,6 +54,8 @@ def _pair(pair: PairResult) -> dict[str, Any]:
         "nets_minus": list(pair.nets_minus),
         "source": pair.source,
         "load": pair.load,
+        "ends_plus": list(pair.ends_plus),
+        "ends_minus": list(pair.ends_minus),
         "series": [{"ref": part.ref, "value": part.value, "leg": part.leg} for part in pair.series],
         "routed": pair.routed,
         "verdict": pair.verdict,
@@ -79,7 +82,12 @@ def _finding(finding: Finding) -> dict[str, Any]:
         "at": [{"layer": at.layer, "x_mm": _number(at.x_mm), "y_mm": _number(at.y_mm)} for at in finding.at],
         "advice": finding.advice,
         "source": finding.source,
+        **({"baseline": finding.baseline} if finding.baseline else {}),
     }
+
+
+def _waiver(waiver: WaiverState) -> dict[str, Any]:
+    return {key: getattr(waiver, key) for key in WaiverState.__dataclass_fields__}
 
 
 def _number(value: float | None) -> float | int | None:

@@ -9,7 +9,7 @@ from pairrules.board.coordinates import coordinates
 from pairrules.reports.cautions import CAUTIONS
 from pairrules.reports.report import Explained, Look, Report
 from pairrules.reports.safe_text import safe
-from pairrules.result import SEVERITIES, Finding, PairResult, Place, Result
+from pairrules.result import SEVERITIES, Finding, PairResult, Place, Result, WaiverState
 
 _PLACES_SHOWN = 4
 _COLOURS = {"blocker": "1;31", "review": "1;33", "note": "1;36"}
@@ -18,11 +18,12 @@ _HELD = "\ue000"
 """Stands for a space that must not end a line; private, so that `safe` lets none through from a name."""
 
 _TOGETHER = re.compile(r"\(-?[\d.]+, -?[\d.]+\) (?:mm|um|mil|in)\b|[\d.]+ (?:mm²?|ohm|ps|dB)\b")
+_BASELINES = {"unchanged": "stood before; ", "worse": "worse than before; ", "new": "new; "}
 _SUMMARY = (("flag", "flagged"), ("undecided", "undecided"), ("waived", "waived"), ("pass", "passed"))
 
 
 def render(result: Result, look: Look) -> str:
-    """Summary; flagged, undecided, waived, passed pairs; left-over nets; what the file lacked; what it is all worth."""
+    """Summary; pairs by verdict, flagged first; waivers; left-over nets; what the file lacked; what it is all worth."""
     lines = _summary(result, look)
     for pair in sorted((pair for pair in result.pairs if pair.verdict == "flag"), key=_worst_first):
         lines += ["", *_flagged(result, pair, look)]
@@ -34,6 +35,9 @@ def render(result: Result, look: Look) -> str:
         names = [pair.name for pair in result.pairs if pair.verdict == word]
         if names:
             lines += ["", *_named(f"{title} ({len(names)}): ", names, look)]
+    if result.waivers:
+        lines += ["", f"Waivers ({len(result.waivers)})"]
+        lines += [line for waiver in result.waivers for line in _waiver(waiver, look)]
     if result.unpaired:
         lines += ["", *_named("Named like half a pair, the other half is missing: ", result.unpaired, look)]
     if result.board.missing:
@@ -53,10 +57,11 @@ def _summary(result: Result, look: Look) -> list[str]:
     return _wrap(f"{head} ({about}, units {safe(board.units)})", look, "", "  ")
 
 
-def _worst_first(pair: PairResult) -> tuple[int, int, str]:
+def _worst_first(pair: PairResult) -> tuple[bool, int, int, str]:
+    """Pairs whose findings all stood before come last."""
     standing = [finding for finding in pair.findings if not finding.waived]
     worst = min(SEVERITIES.index(finding.severity) for finding in standing)
-    return worst, -len(standing), pair.name
+    return all(finding.baseline == "unchanged" for finding in standing), worst, -len(standing), pair.name
 
 
 def _flagged(result: Result, pair: PairResult, look: Look) -> list[str]:
@@ -74,7 +79,9 @@ def _flagged(result: Result, pair: PairResult, look: Look) -> list[str]:
 
 def _finding(result: Result, finding: Finding, look: Look) -> list[str]:
     word = "waived" if finding.waived else finding.severity
-    lines = _labelled(word, f"{finding.rule}: {safe(finding.message)}", look, _COLOURS.get(word, ""))
+    before = _BASELINES.get(finding.baseline, "")
+    colour = "" if finding.baseline == "unchanged" else _COLOURS.get(word, "")
+    lines = _labelled(word, f"{finding.rule}: {before}{safe(finding.message)}", look, colour)
     if finding.at:
         shown = "; ".join(_place(result, place) for place in finding.at[:_PLACES_SHOWN])
         rest = len(finding.at) - _PLACES_SHOWN
@@ -84,6 +91,12 @@ def _finding(result: Result, finding: Finding, look: Look) -> list[str]:
     if finding.source:
         lines += _labelled("", f"limit from: {safe(finding.source)}", look, "")
     return lines
+
+
+def _waiver(waiver: WaiverState, look: Look) -> list[str]:
+    who = f" ({safe(waiver.who)})" if waiver.who else ""
+    says = f"until {waiver.until}{who}: {safe(waiver.reason)}" if waiver.state == "held" else safe(waiver.why)
+    return _labelled(waiver.state, f"{safe(waiver.rule)} of {safe(waiver.pair)}, {says}", look, "")
 
 
 def _rests_on(pair: PairResult, explained: tuple[Explained, ...]) -> list[str]:
