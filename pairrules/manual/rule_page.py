@@ -13,10 +13,11 @@ from pairrules.board.units import example
 from pairrules.checks.rule import Rule, all_rules
 from pairrules.checks.rule_help import rule_infos
 from pairrules.manual.page import Code, Page, Paragraph, Section, Terms
-from pairrules.manual.shipped_limits import ShippedLimit, in_words, said_quantities, shipped_limits
+from pairrules.manual.shipped_limits import ShippedLimit, shipped_limits
 from pairrules.reports.report import Explained
 from pairrules.result import SEVERITIES
 from pairrules.schemas.glossary import MODELS, Model, glossary
+from pairrules.settings.class_values import limit_amounts, limit_in_words
 from pairrules.settings.limit import TIMES
 
 _HEADINGS = {"Example": "An example of a finding", "Source": "Where formula and limits come from"}
@@ -90,7 +91,7 @@ def _shipped(name: str, rule: Rule) -> tuple[Terms | Paragraph, ...]:
 def _shipped_texts(one: ShippedLimit, rule: Rule) -> tuple[str, ...]:
     if one.limit is None:
         return ("off",)
-    return f"{in_words(one.limit, rule)}; severity {one.limit.severity}", f"from: {one.limit.source}"
+    return f"{limit_in_words(one.limit, rule.form)}; severity {one.limit.severity}", f"from: {one.limit.source}"
 
 
 def _tuning(name: str, rule: Rule) -> tuple[Terms | Paragraph | Code, ...]:
@@ -133,7 +134,7 @@ def tuning_example(name: str) -> str:
         said = {key: example(rule.quantities[key]) for key in keys}
         severity = SEVERITIES[1]
     else:
-        said, severity = dict(said_quantities(shipped, rule)), shipped.severity
+        said, severity = dict(limit_amounts(shipped, rule.form)), shipped.severity
     values = ", ".join(
         [
             *(f"{key}: {amount}" for key, amount in said.items()),

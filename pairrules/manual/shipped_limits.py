@@ -7,10 +7,9 @@ from dataclasses import dataclass
 from functools import cache
 from pathlib import Path
 
-from pairrules.checks.rule import Rule, all_rules
+from pairrules.checks.rule import all_rules
 from pairrules.settings.limit import Limit
 from pairrules.settings.read_settings import BASE, read_settings
-from pairrules.settings.written import written
 from pairrules.shipped import rules_folder
 
 
@@ -38,16 +37,3 @@ def shipped_limits() -> Mapping[str, tuple[ShippedLimit, ...]]:
             for name in sorted(said):
                 found.setdefault(name, []).append(ShippedLimit(of=klass.name, limit=said[name]))
     return {name: tuple(limits) for name, limits in sorted(found.items())}
-
-
-def in_words(limit: Limit, rule: Rule) -> str:
-    """The limit's quantities as settings say them: "most 0.5 mm", "spread 20 %, for 5 mm"; "on" where it has none."""
-    said = said_quantities(limit, rule)
-    return ", ".join(f"{key} {amount}" for key, amount in said.items()) or "on"
-
-
-def said_quantities(limit: Limit, rule: Rule) -> Mapping[str, str]:
-    """Key to the quantity as settings say it, in the rule's own order."""
-    amounts = {key: written(value, rule.quantities[key]) for key, value in limit.quantities.items()}
-    amounts |= {key: time.said for key, time in limit.timed.items()}
-    return {key: amounts[key] for key in rule.quantities if key in amounts}
