@@ -91,10 +91,16 @@ def hung_elements(
     unknown: list[str] = []
     middles = _middles(board, link, reference)
     for hung in link.hung:
-        if hung.kind == "tap":
-            continue
         found = value_of(board, hung.part)
         ref = board.parts[hung.part].ref
+        if found.kind == "capacitance" and found.value:
+            # A protection part or a further node of a bus, with its capacitance from each leg it is on to reference.
+            cause = "load" if hung.step >= load_step else "trace"
+            legs = tuple(found.value if hung.leg in {leg, "both"} else 0.0 for leg in LEGS)
+            shunts.append((hung.step, Shunt(cause=cause, capacitance=legs)))
+            continue
+        if hung.kind == "tap":
+            continue
         if found.kind not in {"resistor", "capacitor"} or not found.value:
             unknown.append(ref)
             continue

@@ -1,8 +1,8 @@
-"""The board as read from a file: frozen records, lengths in millimetres, y upward, angles counter-clockwise in radians."""
+"""The board as read from a file: frozen records, millimetres, y upward, angles counter-clockwise in radians."""
 
 from pairrules.board.areas import Area
 from pairrules.board.board import Board, DeclaredPair
-from pairrules.board.pads import PadShape, Pads, Part
+from pairrules.board.pads import Pads, PadShape, Part
 from pairrules.board.stackup import Layer, Stackup
 from pairrules.board.tracks import Tracks
 from pairrules.board.vias import Vias

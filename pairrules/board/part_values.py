@@ -1,7 +1,8 @@
 """What the value written on a two-pin part means: 4k7, 100R, 0.1uF, 4.7UF, 100n/16V, 10k 1%.
 
 The kind comes from the reference designator's letters, as the trade uses them (IEEE 315, clause 22, recalled, not
-re-read): R resistor, C capacitor, L inductor, FB or FL ferrite bead.
+re-read): R resistor, C capacitor, L inductor, FB or FL ferrite bead. Of any other part (a protection diode, a connector)
+a capacitance may be written, which it then has from each leg it is on to reference.
 """
 
 from __future__ import annotations
@@ -16,6 +17,7 @@ _LETTERS = re.compile(r"([A-Za-z]+)")
 _NUMBER = re.compile(
     r"\s*(\d+(?:\.\d+)?|\.\d+)\s*([pnuµμmkMGR]?)(\d*)\s*(ohms?|Ω|R|F|H)?(?=$|[\s/,;_@%±(+-])", re.IGNORECASE
 )
+_IN_FARAD = re.compile(r"\d\s*[pnuµμ]?F\b", re.IGNORECASE)
 _TOLERANCE = re.compile(r"(?:±|\+/-|\s|,|/|;|_|^)\s*(\d+(?:\.\d+)?)\s*%")
 
 
@@ -25,7 +27,7 @@ class PartValue:
 
     Parameters
     ----------
-    kind: one of `KINDS`' values, or "" where the designator does not say.
+    kind: one of `KINDS`' values; "capacitance" for another part whose value is one; else "".
     value: [ohm], [F] or [H]; `None` where it is not written or not understood (and for a bead, whose value is no
         inductance). tolerance: as a share of 1; `None` where it is not written.
     """
@@ -41,6 +43,8 @@ def part_value(ref: str, text: str) -> PartValue:
     kind = KINDS.get(letters[1].upper(), "") if letters else ""
     written = _TOLERANCE.search(text)
     tolerance = float(written[1]) / 100 if written else None
+    if not kind and (farad := _value(text, "capacitor")) is not None and _IN_FARAD.search(text):
+        return PartValue(kind="capacitance", value=farad, tolerance=tolerance)
     value = _value(text, kind) if kind in _UNIT else None
     return PartValue(kind=kind, value=value, tolerance=tolerance)
 
@@ -59,7 +63,7 @@ def _value(text: str, kind: str) -> float | None:
         number = f"{number}.{decimals}"
     if prefix in {"r", "R"}:
         prefix = ""
-    # Capital letters are common in exports (4.7UF, 100NF, 10K); M stays mega on a resistor and is nothing on a capacitor.
+    # Capital letters are common in exports (4.7UF, 100NF, 10K); M is mega on a resistor and nothing on a capacitor.
     scale = _PREFIX.get(prefix, _PREFIX.get(prefix.lower()))
     if scale is None or (prefix in {"k", "K", "M", "G"} and kind != "resistor"):
         return None

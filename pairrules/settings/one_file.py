@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any
@@ -31,6 +32,7 @@ class OneFile:
     ignore: tuple[str, ...] = ()
     classes: tuple[PairClass, ...] = ()
     limits: LimitsAndOff = field(default_factory=lambda: ({}, ()))
+    part_values: Mapping[str, str] = field(default_factory=dict)
     pin_lengths: PinLengths = field(default_factory=dict)
     waivers: Path | None = None
     like_nodes: tuple[tuple[str, Node], ...] = ()
@@ -58,6 +60,7 @@ def one_file(entry: Entry, faults: Faults, *, folder: Path, shipped: bool) -> On
         ignore=ignore,
         classes=classes,
         limits=build.limits(entry.get("limits")),
+        part_values=_part_values(entry.get("part_values")),
         pin_lengths=_pin_lengths(entry.get("pin_lengths")),
         waivers=None if waivers is None else folder / waivers,
         like_nodes=like_nodes,
@@ -187,6 +190,10 @@ class _Build:
         if limits is not None:
             found |= {f"limits.{rule}": self._place(limits.nodes[rule]) for rule in limits.values}
         return found
+
+
+def _part_values(entry: Entry | None) -> dict[str, str]:
+    return {} if entry is None else dict(sorted(entry.values.items()))
 
 
 def _pin_lengths(entry: Entry | None) -> PinLengths:

@@ -163,6 +163,7 @@ def _merged(files: list[_Read], faults: Faults) -> Settings:
             reference_nets=merged.reference_nets if own.reference_nets is None else own.reference_nets,
             pairs=own.pairs + merged.pairs,
             ignore=own.ignore + merged.ignore,
+            part_values={**merged.part_values, **own.part_values},
             pin_lengths=pins_over(own.pin_lengths, merged.pin_lengths),
             waivers=merged.waivers if own.waivers is None else own.waivers,
             files=(*merged.files, read.faults.file),

@@ -32,6 +32,7 @@ class Settings:
     pairs, ignore: listed pairs, and patterns of nets that are in no pair, the project's own first.
     classes: the project's own first; the first that holds counts.
     limits: hold for every pair unless its class says otherwise.
+    part_values: designator to what is written on the part, where the board file says it wrongly or not at all.
     pin_lengths: what pins add, for every class that does not say otherwise.
     waivers: the waiver file, None where none is named.
     files: every file read, as named, the deepest base first.
@@ -43,6 +44,7 @@ class Settings:
     ignore: tuple[str, ...] = ()
     classes: tuple[PairClass, ...] = ()
     limits: Mapping[str, Limit] = field(default_factory=dict)
+    part_values: Mapping[str, str] = field(default_factory=dict)
     pin_lengths: PinLengths = field(default_factory=dict)
     waivers: Path | None = None
     files: tuple[str, ...] = ()

@@ -47,6 +47,7 @@ def settings_form(forms: Mapping[str, RuleForm]) -> Table:
             "pairs": ListOf(of=_PAIR),
             "classes": Named(of=_class(limits)),
             "limits": limits,
+            "part_values": Named(of=Text()),
             "pin_lengths": _PIN_LENGTHS,
             "waivers": Text(),
         }

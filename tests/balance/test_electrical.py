@@ -256,3 +256,16 @@ def test_series_capacitors_and_bias_resistors_of_the_board_count(tmp_path: Path)
     volts = [s * c / (1 + s * c) for c in (1e-6, 1.2e-6)]
     assert found.balance[0].total_db == pytest.approx(20 * math.log10(abs(volts[0] - volts[1])), abs=0.01)
     assert found.balance[0].trace_db == pytest.approx(found.balance[0].total_db or 0, abs=0.01)
+
+
+def test_values_that_the_settings_give_win_and_protection_capacitance_counts(tmp_path: Path) -> None:
+    """1 nF on plus alone behind 1 kohm: |V_d/V_c| = |1 - 1/(1 + jωRC)| with nothing else on the pair."""
+    board = straight()
+    board["parts"].append({"ref": "D1", "value": "5V0", "pins": [pin("1", "IN_P", 20, 0), pin("2", "GND", 20, -3)]})
+    text = CLASS.replace("plus: 350 ohm, minus: 351 ohm", "plus: 1 kohm")
+    start = text.index("    load:")
+    text = text[:start] + "    load: {kind: instrumentation-amplifier, resistance: 1 Tohm}\n    frequencies: [1 kHz]\n"
+    assert run(tmp_path, board, text).balance[0].total_db == pytest.approx(-400, abs=250)
+    found = run(tmp_path, board, "part_values: {D1: 1 nF}\n" + text)
+    expected = abs(1 - 1 / (1 + 2j * math.pi * 1e3 * 1e3 * 1e-9))
+    assert found.balance[0].total_db == pytest.approx(20 * math.log10(expected), abs=0.05)

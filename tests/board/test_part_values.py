@@ -48,3 +48,10 @@ def test_kind_and_tolerance() -> None:
     assert part_value("FB3", "600R").kind == "ferrite bead"
     assert part_value("Q1", "x").kind == ""
     assert part_value("C4", "100nF ±5%").tolerance == pytest.approx(0.05)
+
+
+def test_a_capacitance_written_on_another_part_is_its_own() -> None:
+    found = part_value("D3", "3.5 pF")
+    assert (found.kind, found.value) == ("capacitance", pytest.approx(3.5e-12))
+    assert part_value("D3", "5V0").kind == ""
+    assert part_value("U1", "100").kind == ""

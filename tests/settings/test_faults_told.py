@@ -50,7 +50,7 @@ CASES = {
     "extends: []\nclases: {}\n": "line 2, column 1: the top level knows no 'clases'; write 'classes'",
     "extends: []\nquux: 1\n": (
         "line 2, column 1: the top level knows no 'quux'; "
-        "known are classes, extends, limits, pairs, pin_lengths, reference_nets, stackup, waivers"
+        "known are classes, extends, limits, pairs, part_values, pin_lengths, reference_nets, stackup, waivers"
     ),
     "extends: []\nclasses: {}\n": "line 2, column 10: classes is empty; fill it or leave it out",
     "extends: []\nclasses:\n": "line 2, column 9: classes is empty; write keys and values, such as key: value",
