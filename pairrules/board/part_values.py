@@ -1,8 +1,8 @@
 """What the value written on a two-pin part means: 4k7, 100R, 0.1uF, 4.7UF, 100n/16V, 10k 1%.
 
 The kind comes from the reference designator's letters, as the trade uses them (IEEE 315, clause 22, recalled, not
-re-read): R resistor, C capacitor, L inductor, FB or FL ferrite bead. Of any other part (a protection diode, a connector)
-a capacitance may be written, which it then has from each leg it is on to reference.
+re-read): R resistor, C capacitor, L inductor, FB or FL ferrite bead. Of any other part (a protection diode, a plug) a
+capacitance may be written, which it then has from each leg it is on to reference.
 """
 
 from __future__ import annotations

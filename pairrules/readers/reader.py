@@ -19,7 +19,8 @@ class Reader:
     ----------
     summary: the format in a few words.
     recognises: whether the (unpacked) bytes are of this format; looks at the beginning only, never raises.
-    read: bytes, the file's name for messages, and the wanted board's name ("" where the file must hold just one), to `Board`.
+    read: bytes, the file's name for messages, and the wanted board's name ("" where the file must hold just one), to
+        `Board`.
     """
 
     summary: str
@@ -30,7 +31,7 @@ class Reader:
 def read_board(data: bytes, name: str, *, step: str = "") -> Board:
     """The board in `data`, whichever format and packing it has.
 
-    Parameters: data: the file's bytes. name: the file's name for messages. step: which board, where the file has several.
+    Parameters: data: the file's bytes. name: the file's name for messages. step: which board, where there are several.
     Raises: BoardError where no reader understands the bytes, or the one that does finds them wrong.
     """
     from pairrules.readers.packing import unpack
@@ -42,5 +43,7 @@ def read_board(data: bytes, name: str, *, step: str = "") -> Board:
         if isinstance(reader, Reader) and reader.recognises(plain):
             return reader.read(plain, label, step)
     raise BoardError(
-        "this is no board file", file=label, remedy="give an IPC-2581 XML file or a plain JSON board (see `pairrules schema board`)"
+        "this is no board file",
+        file=label,
+        remedy="give an IPC-2581 XML file or a plain JSON board (see `pairrules schema board`)",
     )
