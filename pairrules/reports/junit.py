@@ -11,6 +11,7 @@ from pairrules.reports.report import Look, Report
 from pairrules.reports.safe_text import safe
 from pairrules.result import Finding, PairResult, Result
 
+BASELINES = {"unchanged": "stood before; ", "worse": "worse than before; ", "new": "new; "}
 _COUNTS = ("tests", "failures", "errors", "skipped")
 
 
@@ -24,11 +25,16 @@ def render(result: Result, look: Look) -> str:
         if pair.verdict == "flag":
             _failure(case, pair)
         elif pair.verdict in {"undecided", "waived"}:
-            ET.SubElement(case, "skipped", message=_skipped(pair))
+            ET.SubElement(case, "skipped", message=_skipped(result, pair))
     lacking = [safe(text) for text in result.board.missing]
     if result.unpaired:
         names = ", ".join(safe(net) for net in result.unpaired)
         lacking.append(f"named like half a pair, the other half is missing: {names}")
+    lacking += [
+        f"waiver of {safe(one.rule)} for {safe(one.pair)}: {safe(one.why)}"
+        for one in result.waivers
+        if one.state != "held"
+    ]
     if lacking:
         ET.SubElement(suite, "system-out").text = "\n".join(lacking)
     return _document([suite])
@@ -77,7 +83,8 @@ def _failure(case: ET.Element, pair: PairResult) -> None:
 
 
 def _lines(finding: Finding) -> list[str]:
-    lines = [f"{finding.severity} {finding.rule}: {safe(finding.message)}"]
+    before = BASELINES.get(finding.baseline, "")
+    lines = [f"{finding.severity} {finding.rule}: {before}{safe(finding.message)}"]
     lines += [f"  at {safe(at.layer)} ({at.x_mm:.3f}, {at.y_mm:.3f}) mm" for at in finding.at]
     if finding.advice:
         lines.append(f"  to do: {safe(finding.advice)}")
@@ -86,9 +93,15 @@ def _lines(finding: Finding) -> list[str]:
     return lines
 
 
-def _skipped(pair: PairResult) -> str:
+def _skipped(result: Result, pair: PairResult) -> str:
     if pair.verdict == "waived":
-        return "waived: " + "; ".join(f"{finding.rule}: {safe(finding.message)}" for finding in pair.findings)
+        reasons = {one.rule: one.reason for one in result.waivers if one.state == "held" and one.pair == pair.name}
+        told = [
+            f"{finding.rule}: {safe(finding.message)}"
+            + (f" ({safe(reasons[finding.rule])})" if finding.rule in reasons else "")
+            for finding in pair.findings
+        ]
+        return "waived: " + "; ".join(told)
     reasons = [f"{one.rule}: {safe(one.missing)}" for one in pair.unjudged] or [safe(text) for text in pair.missing]
     return "undecided: " + ("; ".join(reasons) or "no rule judged it")
 

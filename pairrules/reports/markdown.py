@@ -8,6 +8,7 @@ from __future__ import annotations
 import re
 
 from pairrules.board.coordinates import coordinates
+from pairrules.reports.cautions import CAUTIONS
 from pairrules.reports.report import Look, Report
 from pairrules.reports.safe_text import safe
 from pairrules.result import SEVERITIES, Finding, PairResult, Result
@@ -16,6 +17,7 @@ ROWS = 50
 """Pairs told of in the table; comments longer than some 65 000 characters are refused by servers."""
 DETAILS = 20
 _PLACES = 4
+BASELINES = {"unchanged": "stood before; ", "worse": "worse than before; ", "new": "new; "}
 _WORDS = (("flag", "flagged"), ("undecided", "undecided"), ("waived", "waived"), ("pass", "passed"))
 _MARKED = re.compile(r"[&<>|`*_\[\]\\~!${}@#]|:(?=\S)")
 _UNCALLED = {"@": "@&#8203;", "#": "&#35;&#8203;"}
@@ -46,7 +48,11 @@ def render(result: Result, look: Look) -> str:
     if lacking:
         lines += ["", "<details><summary>What the file lacks</summary>", "", *(f"- {text}" for text in lacking)]
         lines += ["", "</details>"]
-    return "\n".join(lines) + "\n"
+    lapsed = [one for one in result.waivers if one.state != "held"]
+    if lapsed:
+        lines += ["", "Waivers that do not hold:", ""]
+        lines += [f"- {_text(one.rule)} of {_name(one.pair)}: {_text(one.why)}" for one in lapsed]
+    return "\n".join([*lines, "", f"<sub>{CAUTIONS}</sub>"]) + "\n"
 
 
 def unreadable(file: str, why: str, version: str) -> str:
@@ -61,9 +67,12 @@ def _counts(result: Result) -> str:
     return f"{summary['pairs']} pairs: {counts}" if summary["pairs"] else counts
 
 
-def _worst_first(pair: PairResult) -> tuple[int, int, str]:
-    ranks = [SEVERITIES.index(finding.severity) for finding in _standing(pair)]
-    return (min(ranks, default=len(SEVERITIES)), -len(ranks), pair.name)
+def _worst_first(pair: PairResult) -> tuple[bool, int, int, str]:
+    """Pairs whose findings all stood before come after the other flagged ones, undecided ones last."""
+    standing = _standing(pair)
+    ranks = [SEVERITIES.index(finding.severity) for finding in standing]
+    stood = all(finding.baseline == "unchanged" for finding in standing)
+    return (stood, min(ranks, default=len(SEVERITIES)), -len(ranks), pair.name)
 
 
 def _standing(pair: PairResult) -> list[Finding]:
@@ -74,7 +83,7 @@ def _row(pair: PairResult) -> str:
     standing = _standing(pair)
     if standing:
         more = f" (and {len(standing) - 1} more)" if len(standing) > 1 else ""
-        what = f"{standing[0].rule}: {_text(standing[0].message)}{more}"
+        what = f"{standing[0].rule}: {_message(standing[0])}{more}"
         return f"| {_name(pair.name)} | flagged | {standing[0].severity} | {what} |"
     reasons = dict.fromkeys((*(one.missing for one in pair.unjudged), *pair.missing))
     return f"| {_name(pair.name)} | undecided | | {_text(next(iter(reasons), 'no rule judged it'))} |"
@@ -87,7 +96,7 @@ def _details(result: Result, pair: PairResult) -> list[str]:
         "",
     ]
     for finding in _standing(pair):
-        lines.append(f"- **{finding.severity}** {finding.rule}: {_text(finding.message)}")
+        lines.append(f"- **{finding.severity}** {finding.rule}: {_message(finding)}")
         if finding.at:
             spots = [
                 f"{_name(at.layer)} {_text(coordinates(at.x_mm, at.y_mm, result.board.units))}".strip()
@@ -101,6 +110,10 @@ def _details(result: Result, pair: PairResult) -> list[str]:
             lines.append(f"  - limit from: {_text(finding.source)}")
     lines += [f"- undecided {one.rule}: {_text(one.missing)}" for one in pair.unjudged]
     return [*lines, "", "</details>"]
+
+
+def _message(finding: Finding) -> str:
+    return BASELINES.get(finding.baseline, "") + _text(finding.message)
 
 
 def _text(text: str) -> str:

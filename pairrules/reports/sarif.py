@@ -18,6 +18,7 @@ LEVELS = {"blocker": "error", "review": "warning", "note": "note"}
 NO_RULE = "undecided-pair"
 """Stands for a pair that no rule was asked about: a result without a rule's id would be none that servers keep."""
 
+BASELINES = {"new": "new", "worse": "updated", "unchanged": "unchanged"}
 _FINGERPRINT = "pairrulesFinding/v1"
 
 
@@ -112,7 +113,7 @@ def _finding(result: Result, pair: PairResult, finding: Finding, index: dict[str
         "message": {"text": f"{_text(pair.name)}: {_text(finding.message)}{advice}"},
         **_locations(result, pair),
         # Section 3.27.23: where any result tells of suppressions, all do; empty means that nothing suppresses it.
-        "suppressions": [{"kind": "external", "status": "accepted"}] if finding.waived else [],
+        "suppressions": [_suppression(result, pair, finding)] if finding.waived else [],
         "properties": {
             "measured": _number(finding.measured),
             "limit": _number(finding.limit),
@@ -125,6 +126,18 @@ def _finding(result: Result, pair: PairResult, finding: Finding, index: dict[str
     }
     if finding.fingerprint:
         plain["partialFingerprints"] = {_FINGERPRINT: finding.fingerprint}
+    if finding.baseline:
+        plain["baselineState"] = BASELINES[finding.baseline]
+    return plain
+
+
+def _suppression(result: Result, pair: PairResult, finding: Finding) -> dict[str, Any]:
+    """The waiver. SARIF knows no day on which a suppression ends, so that it stands among the properties."""
+    plain: dict[str, Any] = {"kind": "external", "status": "accepted"}
+    for waiver in result.waivers:
+        if waiver.state == "held" and (waiver.rule, waiver.pair) == (finding.rule, pair.name):
+            plain["justification"] = safe(waiver.reason)
+            plain["properties"] = {"who": safe(waiver.who), "until": waiver.until}
     return plain
 
 
@@ -172,13 +185,22 @@ def _file(file: str, line: int = 0) -> dict[str, Any]:
 
 
 def _notifications(result: Result) -> list[dict[str, Any]]:
-    """What the file lacked, pair by pair too, and nets that look like half a pair."""
+    """What the file lacked, pair by pair too, nets that look like half a pair, and waivers that do not hold."""
     texts = [*(_text(one) for one in result.board.missing)]
     if result.unpaired:
         names = ", ".join(_text(net) for net in result.unpaired)
         texts.append(f"named like half a pair, the other half is missing: {names}")
     texts += [f"{_text(pair.name)}: {_text(one)}" for pair in result.pairs for one in pair.missing]
-    return [{"level": "note", "message": {"text": text}} for text in dict.fromkeys(texts)]
+    lapsed = [
+        f"waiver of {_text(one.rule)} for {_text(one.pair)}: {_text(one.why)}"
+        for one in result.waivers
+        if one.state != "held"
+    ]
+    return [
+        {"level": level, "message": {"text": text}}
+        for level, all_of in (("warning", lapsed), ("note", texts))
+        for text in dict.fromkeys(all_of)
+    ]
 
 
 def _text(text: str) -> str:
