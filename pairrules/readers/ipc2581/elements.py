@@ -16,8 +16,14 @@ if TYPE_CHECKING:
 UNIT_MM = {"MILLIMETER": 1.0, "MICRON": 0.001, "INCH": 25.4}
 """Millimetres in the units of a header or dictionary. Source: IPC-2581A schema, `unitsType`."""
 
-FARTHEST_MM = 1e7
-"""No board is ten kilometres long; beyond it a coordinate is a fault of the file and its square loses digits."""
+FARTHEST_MM = 10_000.0
+"""No board is ten metres long; beyond it a coordinate is a fault of the file (common practice, no source)."""
+
+LONGEST_WORD = 4000
+"""Characters of the longest name or value that is read; longer ones are no name (common practice, no source)."""
+
+_LONGEST_NUMBER = 100
+_SHOWN = 60
 
 NO_NET = {"", "no net", "none", "$none$", "n/c", "unconnected"}
 """Names, in small letters, that exporters give to copper of no net (common practice, no source)."""
@@ -59,7 +65,16 @@ def clean(text: str) -> str:
 def word(element: Element, name: str, default: str = "") -> str:
     """A cleaned attribute, `default` where absent."""
     text = element.get(name)
-    return default if text is None else clean(text)
+    if text is None:
+        return default
+    if len(text) > LONGEST_WORD:
+        wrong(element, f"{local(element)} has a {name} of {len(text)} characters", f"write at most {LONGEST_WORD}")
+    return clean(text)
+
+
+def shown(text: str) -> str:
+    """Text of the file in a message: cleaned, and cut where it is long."""
+    return clean(text) if len(text) <= _SHOWN else f"{clean(text[:_SHOWN])}…"
 
 
 def truth(element: Element, name: str, *, default: bool = False) -> bool:
@@ -67,9 +82,9 @@ def truth(element: Element, name: str, *, default: bool = False) -> bool:
     text = element.get(name)
     if text is None:
         return default
-    text = text.strip().lower()
+    text = text[:LONGEST_WORD].strip().lower()
     if text not in {"true", "false", "1", "0"}:
-        wrong(element, f'{local(element)} has {name}="{clean(text)}", which is neither true nor false')
+        wrong(element, f'{local(element)} has {name}="{shown(text)}", which is neither true nor false')
     return text in {"true", "1"}
 
 
@@ -81,11 +96,11 @@ def number(element: Element, name: str, default: float | None = None) -> float:
             wrong(element, f"{local(element)} has no {name}")
         return default
     try:
-        value = float(text)
+        value = float(text) if len(text) <= _LONGEST_NUMBER else math.nan
     except ValueError:
         value = math.nan
     if not math.isfinite(value) or "_" in text:
-        wrong(element, f'{local(element)} has {name}="{clean(text)}", which is no number')
+        wrong(element, f'{local(element)} has {name}="{shown(text)}", which is no number')
     return value
 
 
@@ -93,7 +108,7 @@ def length(element: Element, name: str, factor: float, default: float | None = N
     """A length or coordinate [mm]; `factor` is the millimetres in the unit that holds here."""
     value = number(element, name, default) * factor
     if not -FARTHEST_MM < value < FARTHEST_MM:
-        wrong(element, f'{local(element)} has {name}="{clean(element.get(name) or "")}", which is beyond any board')
+        wrong(element, f'{local(element)} has {name}="{shown(element.get(name) or "")}", which is beyond any board')
     return value
 
 
@@ -101,7 +116,7 @@ def size(element: Element, name: str, factor: float, default: float | None = Non
     """A length that cannot be negative [mm]."""
     value = length(element, name, factor, default)
     if value < 0:
-        wrong(element, f'{local(element)} has {name}="{clean(element.get(name) or "")}", which is negative')
+        wrong(element, f'{local(element)} has {name}="{shown(element.get(name) or "")}", which is negative')
     return value
 
 
@@ -111,7 +126,7 @@ def units(element: Element) -> float:
     if text not in UNIT_MM:
         wrong(
             element,
-            f'{local(element)} has units="{text}"' if text else f"{local(element)} has no units",
+            f'{local(element)} has units="{shown(text)}"' if text else f"{local(element)} has no units",
             "write MILLIMETER, MICRON or INCH",
         )
     return UNIT_MM[text]

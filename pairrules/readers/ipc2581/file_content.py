@@ -6,11 +6,10 @@ closes, so that memory holds neither a whole plane's elements nor an object a co
 
 from __future__ import annotations
 
-import io
 import re
 from collections.abc import Callable
 from dataclasses import dataclass, field
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, cast
 
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.copper import Copper
@@ -34,6 +33,8 @@ _BROKEN = {
     5: "the XML goes on after its end",
     76: "an element is closed by the end tag of another",
     77: "the XML breaks off before its end",
+    110: "the name of an element or attribute is too long",
+    114: "elements are nested too deep, or a text is too long",
 }
 """Our words for the parser's commonest codes; its own change with its version. Source: libxml2, `xmlParserErrors`."""
 
@@ -41,6 +42,11 @@ _BROKEN = {
 _DICTIONARIES = {
     f"Dictionary{held}" for held in ("Color", "FillDesc", "Firmware", "Font", "LineDesc", "Standard", "User")
 }
+MOST_IN_RECORD = 1_000_000
+"""Elements one record may hold beside the corners of its outlines; each takes a tenth of a kilobyte and more."""
+
+_CHUNK = 32 * 1024
+_COUNT_EVERY = 4 * 1024 * 1024
 _OUTLINES = {"Cutout", "Polygon"}
 _FEW = 8
 """Outlines of no more corners are read with their record."""
@@ -92,8 +98,7 @@ def read_content(data: bytes) -> FileContent:
     walk = _Walk(FileContent())
     # The root is among them whatever it is called, to be judged before anything else.
     names = {*walk.records, *walk.openings, *_DICTIONARIES, *_OUTLINES, *_LEFT_OUT, _root_name(data)}
-    events = etree.iterparse(
-        io.BytesIO(data),
+    parser = etree.XMLPullParser(
         events=("start", "end"),
         tag=[f"{{*}}{name}" for name in sorted(names)],
         resolve_entities=False,
@@ -103,24 +108,25 @@ def read_content(data: bytes) -> FileContent:
         remove_comments=True,
         remove_pis=True,
     )
-    record: Element | None = None
+    fault: etree.XMLSyntaxError | None = None
+    for start in range(0, len(data), _CHUNK):
+        try:
+            parser.feed(data[start : start + _CHUNK])
+        except etree.XMLSyntaxError as error:
+            fault = error
+        for event, element in parser.read_events():
+            walk.event(event, cast("Element", element))
+        if fault is not None:
+            break
+        walk.prune(start)
     try:
-        for event, element in events:
-            if event == "start":
-                if record is None and walk.starts(element):
-                    record = element
-            elif record is None:
-                walk.ends(element)
-                _free(element)
-            elif element is record:
-                walk.take(element)
-                record = None
-                _free(element)
-            else:
-                walk.outline(record, element)
+        if fault is None:
+            parser.close()
     except etree.XMLSyntaxError as error:
-        found = _BROKEN.get(getattr(error, "code", 0), "the XML is not well formed")
-        place = f"line {error.lineno}" if error.lineno else ""
+        fault = error
+    if fault is not None:
+        found = _BROKEN.get(getattr(fault, "code", 0), "the XML is not well formed")
+        place = f"line {fault.lineno}" if fault.lineno else ""
         raise BoardError(found, place=place, remedy="export the file again") from None
     return walk.content
 
@@ -150,6 +156,9 @@ class _Walk:
         self.layer = ""
         self.route_net = ""
         self.seen_root = False
+        self.root: Element | None = None
+        self.record: Element | None = None
+        self.counted = 0
         self.records: dict[str, Callable[[Element], None]] = {
             "EntryLineDesc": self._entry,
             "EntryFillDesc": self._entry,
@@ -180,6 +189,39 @@ class _Walk:
         }
 
     # -- walking ------------------------------------------------------------------------------------------------------
+
+    def event(self, event: str, element: Element) -> None:
+        """An element opens or closes."""
+        if self.root is None:
+            self.root = element
+        if event == "start":
+            if self.record is None and self.starts(element):
+                self.record = element
+        elif self.record is None:
+            self.ends(element)
+            _free(element)
+        elif element is self.record:
+            self.take(element)
+            self.record = None
+            _free(element)
+        else:
+            self.outline(self.record, element)
+
+    def prune(self, place: int) -> None:
+        """Drop what closed without having been asked for, and refuse a record that would fill the memory.
+
+        place: bytes read so far. Outside records nothing but the open elements is needed, each the last of its parent.
+        """
+        node = self.root
+        if self.record is not None:
+            if place >= self.counted + _COUNT_EVERY:
+                self.counted = place
+                if sum(1 for _ in self.record.iter()) > MOST_IN_RECORD:
+                    wrong(self.record, f"{local(self.record)} holds more than {MOST_IN_RECORD} elements")
+            return
+        while node is not None and len(node):
+            del node[:-1]
+            node = node[-1]
 
     def starts(self, element: Element) -> bool:
         """An element opens. Returns: whether it is a record, to be handed over whole when it closes."""

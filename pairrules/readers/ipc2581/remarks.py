@@ -4,6 +4,11 @@ from __future__ import annotations
 
 from dataclasses import dataclass, field
 
+MOST_KINDS = 500
+"""Kinds of remarks that are kept; a file of a million strange names would fill memory and report with them."""
+
+_SHOWN = 60
+
 
 @dataclass(slots=True)
 class Remarks:
@@ -13,12 +18,16 @@ class Remarks:
 
     def count(self, sentence: str, times: int = 1) -> None:
         """One more case of a kind."""
-        if times:
-            self.counts[sentence] = self.counts.get(sentence, 0) + times
+        if not times:
+            return
+        if sentence not in self.counts and len(self.counts) >= MOST_KINDS:
+            sentence = "{n} more remark{s} of other kinds {are} not listed"
+        self.counts[sentence] = self.counts.get(sentence, 0) + times
 
     def unknown(self, name: str, where: str) -> None:
         """An element that is not understood at this place."""
         braced = name.replace("{", "").replace("}", "")
+        braced = braced if len(braced) <= _SHOWN else f"{braced[:_SHOWN]}…"
         self.count(f"{{n}} element{{s}} {braced} in {where} {{were}} not understood and {{are}} left out")
 
     def sentences(self) -> tuple[str, ...]:
