@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from datetime import date
+
 import click
 
-from pairrules.cli.options import settings_option, step_option
+from pairrules.cli.options import settings_option, step_option, today_option
 from pairrules.cli.output import write
 from pairrules.cli.progress import ProgressLine
 from pairrules.errors import UsageError
@@ -23,10 +25,11 @@ _NAMED = 8
 @click.option("-o", "--output", metavar="FILE", help="Write there instead of to stdout; all or nothing.")
 @settings_option
 @step_option
-def command(*, board: str, pair: str, output: str | None, settings: str | None, step: str) -> None:
+@today_option
+def command(*, board: str, pair: str, output: str | None, settings: str | None, step: str, today: date | None) -> None:
     """Draw a pair of BOARD: both legs, what lies beside and under them, and the numbered places of its findings."""
     with ProgressLine() as progress:
-        result = check(board, settings, pairs=pair, step=step, drawing=True, progress=progress)
+        result = check(board, settings, pairs=pair, step=step, drawing=True, today=today, progress=progress)
     chosen = _chosen(result, pair, board)
     if chosen.drawing is None:
         raise UsageError(

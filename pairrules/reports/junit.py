@@ -95,10 +95,10 @@ def _lines(finding: Finding) -> list[str]:
 
 def _skipped(result: Result, pair: PairResult) -> str:
     if pair.verdict == "waived":
-        reasons = {one.rule: one.reason for one in result.waivers if one.state == "held" and one.pair == pair.name}
+        given = {one.rule: one.reason for one in result.waivers if one.state == "held" and one.pair == pair.name}
         told = [
             f"{finding.rule}: {safe(finding.message)}"
-            + (f" ({safe(reasons[finding.rule])})" if finding.rule in reasons else "")
+            + (f" ({safe(given[finding.rule])})" if finding.rule in given else "")
             for finding in pair.findings
         ]
         return "waived: " + "; ".join(told)

@@ -14,6 +14,7 @@ from html import escape
 from pathlib import PurePath
 
 from pairrules.drawing import DrawnPiece, DrawnShape, PairDrawing, Point, Ring
+from pairrules.reports.cautions import CAUTIONS
 from pairrules.reports.figures import FIGURES, value
 from pairrules.reports.picture_marks import Canvas, markers, scale_bar
 from pairrules.reports.safe_text import safe
@@ -35,10 +36,6 @@ _FIGURES = (
     "reference_uncovered_mm",
     "impedance_diff_ohm",
     "delay_mismatch_ps",
-)
-_CAUTION = (
-    "Estimates from the exported copper; no proof of isolation, of electromagnetic compatibility or of safety. "
-    "Measure the built board."
 )
 
 
@@ -138,7 +135,8 @@ class _Picture:
             f'<rect x="{canvas.left}" y="{canvas.top}" width="{canvas.width:.2f}" height="{canvas.height:.2f}" '
             f'fill="none" stroke="{_BLACK}"/>\n'
         )
-        out.append(markers(canvas, tuple((place.number, place.at) for place in drawing.places)))
+        ways = [xy for piece in (*drawing.plus, *drawing.minus) for xy in self._samples(piece)]
+        out.append(markers(canvas, tuple((place.number, place.at) for place in drawing.places), clear_of=ways))
         out.append(scale_bar(canvas))
         return "".join(out)
 
@@ -212,6 +210,12 @@ class _Picture:
             last = self.canvas.at(piece.end)
         return "".join(out)
 
+    def _samples(self, piece: DrawnPiece) -> list[tuple[float, float]]:
+        """Points along a piece's chord, near enough that no disc fits between two."""
+        (x0, y0), (x1, y1) = self.canvas.xy(piece.start), self.canvas.xy(piece.end)
+        steps = min(max(math.ceil(math.hypot(x1 - x0, y1 - y0) / 8), 1), 200)
+        return [(x0 + (x1 - x0) * i / steps, y0 + (y1 - y0) * i / steps) for i in range(steps + 1)]
+
     def _step(self, piece: DrawnPiece) -> str:
         if piece.centre is None:
             return f"L{self.canvas.at(piece.end)}"
@@ -238,7 +242,8 @@ class _Picture:
             words = _short(f"{part.ref}{ends.get(part.role, '')}", 30)
             half = _CHARACTER / 2 * len(words)
             x = min(max((min(xs) + max(xs)) / 2, self.canvas.left + half), self.canvas.left + self.canvas.width - half)
-            y = min(ys) - 8 if min(ys) - 22 > self.canvas.top else max(ys) + 18
+            top, bottom = self.canvas.top, self.bottom
+            y = min(ys) - 8 if min(ys) - 20 > top else max(ys) + 18 if max(ys) + 22 < bottom else top + 14
             out.append(
                 f'<text x="{x:.1f}" y="{y:.1f}" text-anchor="middle" stroke="#ffffff" stroke-width="3" '
                 f'paint-order="stroke" fill="{_BLACK}">{_text(words)}</text>\n'
@@ -267,7 +272,7 @@ def _caption(result: Result, pair: PairResult, top: float) -> tuple[str, int]:
         lines.append(f"not in the file, so its reference copper is unknown: {names}")
     lines += [
         f"{PurePath(result.board.file).name}, SHA-256 {result.board.sha256[:16]}…, pairrules {result.version}",
-        _CAUTION,
+        CAUTIONS,
     ]
     out, y = [], top
     for line in lines:

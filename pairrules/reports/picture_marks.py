@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from pairrules.drawing import Point
@@ -55,8 +56,13 @@ class Canvas:
         return f"{x:.2f} {y:.2f}"
 
 
-def markers(canvas: Canvas, places: tuple[tuple[int, Point], ...]) -> str:
-    """A numbered disc beside each place with a line to it; discs keep clear of each other and of the edge."""
+def markers(
+    canvas: Canvas, places: tuple[tuple[int, Point], ...], *, clear_of: Sequence[tuple[float, float]] = ()
+) -> str:
+    """A numbered disc beside each place with a line to it.
+
+    Discs keep clear of each other, of the edge and, where there is room, of the picture's points `clear_of`.
+    """
     spots: list[tuple[float, float, list[int]]] = []
     for number, at in places:
         x, y = canvas.xy(at)
@@ -66,7 +72,7 @@ def markers(canvas: Canvas, places: tuple[tuple[int, Point], ...]) -> str:
         elif number not in near[2]:
             near[2].append(number)
     out: list[str] = []
-    taken: list[tuple[float, float, float]] = [(x, y, 4.0) for x, y, _ in spots]
+    taken = [(x, y, 4.0) for x, y, _ in spots] + [(x, y, 4.0) for x, y in clear_of]
     for x, y, numbers in spots:
         label = ",".join(str(number) for number in numbers)
         half = _RADIUS + 3.5 * (len(label) - 1)
