@@ -5,6 +5,7 @@ from __future__ import annotations
 from functools import cached_property
 
 from pairrules.board.board import Board
+from pairrules.geometry.area_polygons import AreaPolygons
 from pairrules.geometry.copper_index import CopperIndex, index_copper
 from pairrules.geometry.cross_cut import CrossCuts
 from pairrules.geometry.foreign_copper import ForeignCopper
@@ -24,16 +25,21 @@ class BoardCopper:
         return index_copper(self.board)
 
     @cached_property
+    def areas(self) -> AreaPolygons:
+        """Filled copper as polygons."""
+        return AreaPolygons(self.board)
+
+    @cached_property
     def reference(self) -> ReferenceCopper:
         """Copper of the reference nets, by layer."""
-        return ReferenceCopper(self.board, self.reference_nets)
+        return ReferenceCopper(self.board, self.reference_nets, self.areas)
 
     @cached_property
     def foreign(self) -> ForeignCopper:
         """Copper of all nets, among which neighbours are found."""
-        return ForeignCopper(self.board)
+        return ForeignCopper(self.board, self.areas)
 
     @cached_property
     def cuts(self) -> CrossCuts:
         """What a straight cut across the board meets."""
-        return CrossCuts(self.board)
+        return CrossCuts(self.board, self.areas)

@@ -7,11 +7,11 @@ from dataclasses import dataclass
 import numpy as np
 import shapely
 
-from pairrules.board.arcs import FLATTENING_MM
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
-from pairrules.geometry.copper_outlines import Shapes, copper_outlines
-from pairrules.geometry.curves import Curves, chords
+from pairrules.geometry.area_polygons import AreaPolygons
+from pairrules.geometry.area_tiles import tiles
+from pairrules.geometry.copper_outlines import Drawn, drawn_copper, solid_parts
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -31,8 +31,9 @@ class Met:
 class CrossCuts:
     """Cuts through a board's copper; each layer is made ready when it is first cut."""
 
-    def __init__(self, board: Board) -> None:
+    def __init__(self, board: Board, areas: AreaPolygons | None = None) -> None:
         self._board = board
+        self._areas = AreaPolygons(board) if areas is None else areas
         self._layers: dict[int, _Layer] = {}
 
     def across(self, layer: int, origin: Floats, along: Floats, low: Floats, high: Floats) -> Met:
@@ -43,15 +44,16 @@ class CrossCuts:
         origin: (n, 2) [mm]; along: (n, 2) unit vectors; low, high: (n,) [mm] where each cut begins and ends.
         """
         if layer not in self._layers:
-            self._layers[layer] = _layer(self._board, layer)
+            self._layers[layer] = _layer(self._board, layer, self._areas)
         of = self._layers[layer]
         ends = np.stack([origin + along * low[:, None], origin + along * high[:, None]], axis=1)
         lines = np.empty(len(origin), dtype=np.object_)
         lines[:] = shapely.linestrings(ends)
-        cut, shape = of.tree.query(lines, predicate="dwithin", distance=of.widest)
-        shapes = of.shapes[shape]
-        drawn = of.half[shape] > 0
-        shapes[drawn] = shapely.buffer(shapes[drawn], of.half[shape][drawn])
+        cut, shape = of.areas.query(lines, predicate="intersects")
+        near, drawn = of.tree.query(lines, predicate="dwithin", distance=of.widest)
+        rows, place = np.unique(drawn, return_inverse=True)
+        shapes = np.concatenate([of.areas.geometries[shape], of.drawn.outlines(rows)[place]])
+        cut, net = np.concatenate([cut, near]), np.concatenate([of.area_net[shape], of.drawn.net[drawn]])
         pieces, row = shapely.get_parts(shapely.intersection(lines[cut], shapes), return_index=True)
         use = (shapely.get_dimensions(pieces) == 1) & ~shapely.is_empty(pieces)
         pieces, row = pieces[use], row[use]
@@ -61,39 +63,31 @@ class CrossCuts:
             np.einsum("ij,ij->i", shapely.get_coordinates(end).reshape(-1, 2) - origin[own], along[own])
             for end in bounds
         ]
-        return _merged(own, of.net[shape[row]], np.minimum(*places), np.maximum(*places))
+        return _merged(own, net[row], np.minimum(*places), np.maximum(*places))
 
 
 @dataclass(frozen=True, slots=True, eq=False)
 class _Layer:
-    """Copper as polygons (half 0) and as centre lines with a pen of half width `half`."""
+    """Areas in tiles with the net of each, and what else is drawn."""
 
-    shapes: Shapes
-    half: Floats
-    net: Ints
+    areas: shapely.STRtree
+    area_net: Ints
+    drawn: Drawn
     tree: shapely.STRtree
     widest: float
 
 
-def _layer(board: Board, layer: int) -> _Layer:
-    filled = copper_outlines(board, layer, tracks=False)
-    tracks = board.tracks
-    rows = np.flatnonzero(tracks.layer == layer)
-    curves = Curves(start=tracks.start, end=tracks.end, centre=tracks.centre, sweep=tracks.sweep).take(rows)
-    solid = ((curves.start != curves.end).any(axis=1)) | (curves.sweep != 0.0)
-    rows, curves = rows[solid], curves.take(solid)
-    lines = np.empty(len(rows), dtype=np.object_)
-    if len(rows):
-        at, piece = chords(curves, within=FLATTENING_MM)
-        lines[:] = shapely.linestrings(at, indices=piece)
-    shapes = np.concatenate([filled.polygons, lines])
-    half = np.concatenate([np.zeros(len(filled)), tracks.width[rows] / 2])
+def _layer(board: Board, layer: int, areas: AreaPolygons) -> _Layer:
+    rows = np.flatnonzero(areas.layer == layer)
+    parts, row = solid_parts(areas.take(rows))
+    cut = [tiles(part) for part in parts]
+    drawn = drawn_copper(board, layer)
     return _Layer(
-        shapes=shapes,
-        half=half,
-        net=np.concatenate([filled.net, tracks.net[rows]]),
-        tree=shapely.STRtree(shapes),
-        widest=float(half.max(initial=0.0)),
+        areas=shapely.STRtree(np.concatenate(cut) if cut else parts),
+        area_net=np.repeat(areas.net[rows][row], [len(pieces) for pieces in cut]),
+        drawn=drawn,
+        tree=shapely.STRtree(drawn.shapes),
+        widest=float(drawn.half.max(initial=0.0)),
     )
 
 

@@ -1,4 +1,4 @@
-"""The edges of all copper of a board, layer by layer, with the net each belongs to."""
+"""The edges of the copper near given lines, with the net each belongs to; only what lies near is drawn out."""
 
 from __future__ import annotations
 
@@ -9,44 +9,80 @@ import shapely
 
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
-from pairrules.geometry.copper_outlines import copper_outlines
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class LayerEdges:
-    """Straight edges (n, 2, 2) [mm] of a layer's copper, copper to the left of each, and the net (n,) of each.
-
-    Outlines of one net may overlap: an edge may lie within other copper of its net.
-    """
-
-    edges: Floats
-    net: Ints
-    tree: shapely.STRtree
+from pairrules.geometry.area_polygons import AreaPolygons
+from pairrules.geometry.copper_outlines import Drawn, drawn_copper, solid_parts
+from pairrules.geometry.ring_runs import RingRuns, Shapes, ring_runs
 
 
 class ForeignCopper:
-    """The copper of a board among which a leg looks for neighbours; each layer is made when first asked for."""
+    """The copper of a board among which a leg looks for neighbours; each layer is made ready when first asked for."""
 
-    def __init__(self, board: Board) -> None:
+    def __init__(self, board: Board, areas: AreaPolygons | None = None) -> None:
         self.board = board
-        self._layers: dict[int, LayerEdges] = {}
+        self._areas = AreaPolygons(board) if areas is None else areas
+        self._layers: dict[int, _Layer] = {}
 
-    def layer(self, layer: int) -> LayerEdges:
-        """The edges on one layer, of every net and of none."""
+    def near(self, layer: int, lines: Shapes, reach: Floats) -> tuple[Ints, Floats, Ints]:
+        """Edges of copper within reach of lines, of every net and of none.
+
+        Parameters: lines: (k,). reach: (k,) [mm].
+        Returns: the line (n,), the edge (n, 2, 2) [mm] with copper to its left, and its net (n,), for every pair of a
+        line and an edge within reach of it. Outlines of one net may overlap: an edge may lie within other copper.
+        """
         if layer not in self._layers:
-            self._layers[layer] = _layer_edges(self.board, layer)
-        return self._layers[layer]
+            self._layers[layer] = _layer(self.board, layer, self._areas)
+        of = self._layers[layer]
+        which, edge = of.areas.near(lines, reach)
+        near, shape = of.tree.query(lines, predicate="dwithin", distance=reach + of.widest)
+        shapes, place = np.unique(shape, return_inverse=True)
+        parts, row = solid_parts(of.drawn.outlines(shapes))
+        runs, run_shape = _edges(parts, row)
+        # Every edge of a shape with every line that the shape is near to.
+        order = np.argsort(run_shape, kind="stable")
+        first = np.searchsorted(run_shape[order], np.arange(len(shapes) + 1))
+        size = first[place + 1] - first[place]
+        nth = np.arange(size.sum()) - np.repeat(np.cumsum(size) - size, size)
+        drawn = order[np.repeat(first[place], size) + nth]
+        line = np.concatenate([which, np.repeat(near, size)])
+        edges = np.concatenate([of.areas.edges[edge], runs[drawn]])
+        net = np.concatenate([of.area_net[of.areas.ring[edge]], of.drawn.net[shapes[run_shape[drawn]]]])
+        within = shapely.dwithin(lines[line], shapely.linestrings(edges), reach[line])
+        return line[within], edges[within], net[within]
 
 
-def _layer_edges(board: Board, layer: int) -> LayerEdges:
-    outlines = copper_outlines(board, layer)
-    rings, polygon = shapely.get_rings(outlines.polygons, return_index=True)
-    # Copper to the left: round the outside counter-clockwise, round a hole clockwise.
+@dataclass(frozen=True, slots=True, eq=False)
+class _Layer:
+    """The edges of areas with the net of each ring, and what else is drawn, by its centre lines."""
+
+    areas: RingRuns
+    area_net: Ints
+    drawn: Drawn
+    tree: shapely.STRtree
+    widest: float
+
+
+def _layer(board: Board, layer: int, areas: AreaPolygons) -> _Layer:
+    rows = np.flatnonzero(areas.layer == layer)
+    parts, row = solid_parts(areas.take(rows))
+    rings, polygon = _rings(parts)
+    drawn = drawn_copper(board, layer)
+    return _Layer(
+        areas=ring_runs(rings),
+        area_net=areas.net[rows][row[polygon]],
+        drawn=drawn,
+        tree=shapely.STRtree(drawn.shapes),
+        widest=float(drawn.half.max(initial=0.0)),
+    )
+
+
+def _edges(polygons: Shapes, row: Ints) -> tuple[Floats, Ints]:
+    rings, polygon = _rings(polygons)
+    found = ring_runs(rings)
+    return found.edges, row[polygon[found.ring]]
+
+
+def _rings(polygons: Shapes) -> tuple[Shapes, Ints]:
+    """The rings of polygons with copper to the left of each: round the outside counter-clockwise, round a hole not."""
+    rings, polygon = shapely.get_rings(polygons, return_index=True)
     outside = np.diff(polygon, prepend=-1) > 0
-    rings = np.where(shapely.is_ccw(rings) == outside, rings, shapely.reverse(rings))
-    corners, ring = shapely.get_coordinates(rings, return_index=True)
-    whole = (ring[1:] == ring[:-1]) & (corners[1:] != corners[:-1]).any(axis=1)
-    edges = np.stack([corners[:-1][whole], corners[1:][whole]], axis=1)
-    net = outlines.net[polygon[ring[:-1][whole]]]
-    lines = np.asarray(shapely.linestrings(edges), dtype=np.object_)
-    return LayerEdges(edges=edges, net=net, tree=shapely.STRtree(lines))
+    return np.where(shapely.is_ccw(rings) == outside, rings, shapely.reverse(rings)), polygon

@@ -140,16 +140,14 @@ def _edges_near(
     """Pairs of curve and foreign edge within reach on one layer: row of the curve, edge (k, 2, 2), net."""
     which, edges, nets = [np.empty(0, np.int64)], [np.empty((0, 2, 2))], [np.empty(0, np.int64)]
     for one in np.unique(layer).tolist():
-        mine, here = np.flatnonzero(layer == one), copper.layer(one)
-        near, edge = here.tree.query(
-            centre_lines(curves.take(mine)), predicate="dwithin", distance=reach[mine] + 2 * FLATTENING_MM
-        )
-        foreign = ~np.isin(here.net[edge], own_nets)
-        order = np.lexsort((edge[foreign], near[foreign]))
-        near, edge = near[foreign][order], edge[foreign][order]
-        which.append(mine[near])
-        edges.append(here.edges[edge])
-        nets.append(here.net[edge])
+        mine = np.flatnonzero(layer == one)
+        near, edge, net = copper.near(one, centre_lines(curves.take(mine)), reach[mine] + 2 * FLATTENING_MM)
+        foreign = ~np.isin(net, own_nets)
+        near, edge, net = near[foreign], edge[foreign], net[foreign]
+        order = np.argsort(near, kind="stable")
+        which.append(mine[near[order]])
+        edges.append(edge[order])
+        nets.append(net[order])
     return np.concatenate(which), np.concatenate(edges), np.concatenate(nets)
 
 

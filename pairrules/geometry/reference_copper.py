@@ -9,7 +9,9 @@ import shapely
 
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
+from pairrules.geometry.area_polygons import AreaPolygons
 from pairrules.geometry.copper_outlines import copper_outlines
+from pairrules.geometry.ring_runs import RingRuns, Shapes, ring_runs
 
 NO_NET, UNKNOWN = -1, -2
 """In place of a net: no reference copper there; the layer there is not in the file."""
@@ -21,8 +23,9 @@ class ReferenceCopper:
     Areas with their holes, tracks, pads and vias of the nets all count. `reference`: indices into `Board.nets`.
     """
 
-    def __init__(self, board: Board, reference: tuple[int, ...]) -> None:
+    def __init__(self, board: Board, reference: tuple[int, ...], areas: AreaPolygons | None = None) -> None:
         self.board = board
+        self._areas = AreaPolygons(board) if areas is None else areas
         self.reference = tuple(sorted(set(reference)))
         self._layers: dict[int, LayerCopper] = {}
         held = np.zeros(len(board.copper), dtype=np.bool_)
@@ -36,7 +39,7 @@ class ReferenceCopper:
     def layer(self, layer: int) -> LayerCopper:
         """The reference copper of one layer."""
         if layer not in self._layers:
-            self._layers[layer] = _layer_copper(self.board, layer, self.reference)
+            self._layers[layer] = _layer_copper(self.board, layer, self.reference, self._areas)
         return self._layers[layer]
 
     def known(self, layer: int) -> bool:
@@ -46,30 +49,48 @@ class ReferenceCopper:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class LayerCopper:
-    """Reference copper of a layer: each net's union, and the straight edges (n, 2, 2) of the union of all."""
+    """Reference copper of a layer: each net's copper in parts that are apart, and the edges of the union of all."""
 
-    by_net: tuple[tuple[int, shapely.Geometry], ...]
-    edges: Floats
-    tree: shapely.STRtree
+    by_net: tuple[tuple[int, Shapes, shapely.STRtree], ...]
+    outline: RingRuns
+
+    @property
+    def edges(self) -> Floats:
+        """The edges (n, 2, 2) [mm] of the union."""
+        return self.outline.edges
+
+    @property
+    def tree(self) -> shapely.STRtree:
+        """The same edges to be searched, in runs."""
+        return self.outline.tree
 
     def net_at(self, at: Floats) -> Ints:
         """The lowest reference net with copper at each point, its edge included; `NO_NET` where there is none."""
         net = np.full(len(at), NO_NET, dtype=np.int64)
-        for index, union in reversed(self.by_net):
-            net[shapely.intersects_xy(union, at[:, 0], at[:, 1])] = index
+        for index, parts, tree in reversed(self.by_net):
+            # Which part's box a point lies in is soon found; whether it lies in the part is asked of the prepared part.
+            point, part = tree.query(shapely.points(at))
+            for one in np.unique(part).tolist():
+                asked = point[part == one]
+                net[asked[shapely.intersects_xy(parts[one], at[asked, 0], at[asked, 1])]] = index
         return net
 
 
-def _layer_copper(board: Board, layer: int, reference: tuple[int, ...]) -> LayerCopper:
-    outlines = copper_outlines(board, layer, nets=reference)
+def _layer_copper(board: Board, layer: int, reference: tuple[int, ...], areas: AreaPolygons) -> LayerCopper:
+    outlines = copper_outlines(board, layer, nets=reference, areas=areas)
     by_net = []
     for net in np.unique(outlines.net).tolist():
-        union = shapely.union_all(outlines.polygons[outlines.net == net])
-        shapely.prepare(union)
-        by_net.append((net, union))
-    rings = shapely.get_rings(shapely.get_parts(shapely.union_all([union for _, union in by_net])))
-    corners, ring = shapely.get_coordinates(rings, return_index=True)
-    same = ring[1:] == ring[:-1]
-    edges = np.stack([corners[:-1][same], corners[1:][same]], axis=1)
-    edges = edges[(edges[:, 0] != edges[:, 1]).any(axis=1)]
-    return LayerCopper(by_net=tuple(by_net), edges=edges, tree=shapely.STRtree(shapely.linestrings(edges)))
+        parts = _union(outlines.polygons[outlines.net == net])
+        shapely.prepare(parts)
+        by_net.append((net, parts, shapely.STRtree(parts)))
+    every = _union(np.concatenate([parts for _, parts, _ in by_net])) if by_net else np.empty(0, dtype=np.object_)
+    return LayerCopper(by_net=tuple(by_net), outline=ring_runs(shapely.get_rings(every)))
+
+
+def _union(polygons: Shapes) -> Shapes:
+    """The parts of the union. What lies inside other copper is left out first: vias in a plane, for the most part."""
+    _, inner = shapely.STRtree(polygons).query(polygons, predicate="contains_properly")
+    kept = np.ones(len(polygons), dtype=np.bool_)
+    kept[inner] = False
+    rest = polygons[kept]
+    return shapely.get_parts(shapely.disjoint_subset_union_all(rest)) if len(rest) > 1 else rest

@@ -13,7 +13,8 @@ from pairrules.geometry.copper_outlines import centre_lines
 from pairrules.geometry.curve_edges import crossings, nearest_to_edges
 from pairrules.geometry.curves import Curves, parts, points
 from pairrules.geometry.pair_geometry import TRACK, Pieces
-from pairrules.geometry.reference_copper import NO_NET, UNKNOWN, LayerCopper, ReferenceCopper
+from pairrules.geometry.reference_copper import NO_NET, UNKNOWN, ReferenceCopper
+from pairrules.geometry.ring_runs import RingRuns
 
 __all__ = ["NO_NET", "UNKNOWN", "Cover", "ReferenceCopper", "reference_cover"]
 
@@ -166,7 +167,7 @@ def _cut(copper: ReferenceCopper, curves: Curves, layer: Ints, length: Floats) -
         for one, chosen in _beside(copper, layer + step):
             mine = np.flatnonzero(chosen)
             beside = copper.layer(one)
-            which, edge = _near(beside, curves.take(mine), 0.0)
+            which, edge = _near(beside.outline, curves.take(mine), 0.0)
             for at in crossings(curves.take(mine[which]), beside.edges[edge]):
                 # NaN, where there is no crossing, fails both.
                 hit = (at * length[mine[which]] > _SAME_MM) & ((1 - at) * length[mine[which]] > _SAME_MM)
@@ -182,10 +183,9 @@ def _cut(copper: ReferenceCopper, curves: Curves, layer: Ints, length: Floats) -
     return rows[:-1][whole], ts[:-1][whole], ts[1:][whole]
 
 
-def _near(beside: LayerCopper, curves: Curves, distance: Floats | float) -> tuple[Ints, Ints]:
+def _near(edges: RingRuns, curves: Curves, distance: Floats | float) -> tuple[Ints, Ints]:
     """Pairs of curve and edge nearer than `distance` [mm]; a few more, never fewer."""
-    which, edge = beside.tree.query(centre_lines(curves), predicate="dwithin", distance=distance + 2 * FLATTENING_MM)
-    return which, edge
+    return edges.near(centre_lines(curves), distance + 2 * FLATTENING_MM)
 
 
 def _edge_distance(copper: ReferenceCopper, stretches: Curves, layer: Ints, net: Ints) -> tuple[Floats, Floats]:
@@ -195,12 +195,9 @@ def _edge_distance(copper: ReferenceCopper, stretches: Curves, layer: Ints, net:
         mine = np.flatnonzero(chosen & (net >= 0))
         if not len(mine):
             continue
-        beside, curves = copper.layer(one), stretches.take(mine)
-        (which, _), about = beside.tree.query_nearest(centre_lines(curves), all_matches=False, return_distance=True)
-        bound = np.empty(len(mine))
-        bound[which] = about
-        which, edge = _near(beside, curves, bound)
-        t, apart = nearest_to_edges(curves.take(which), beside.edges[edge])
+        edges, curves = copper.layer(one).outline, stretches.take(mine)
+        which, edge = _near(edges, curves, edges.nearest(centre_lines(curves)))
+        t, apart = nearest_to_edges(curves.take(which), edges.edges[edge])
         # The smallest of each stretch; of equal ones the nearest to its start.
         order = np.lexsort((t, apart, which))
         best = order[np.concatenate([[True], np.diff(which[order]) > 0])]

@@ -7,9 +7,10 @@ import shapely
 
 from pairrules.board.board import Board
 from pairrules.board.columns import Bools, Floats, Ints
-from pairrules.geometry.copper_outlines import Shapes, centre_lines
+from pairrules.geometry.copper_outlines import centre_lines
 from pairrules.geometry.curves import Curves
 from pairrules.geometry.pad_outlines import pad_outline
+from pairrules.geometry.ring_runs import Shapes
 
 
 def nearest_copper(
