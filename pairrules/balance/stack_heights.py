@@ -9,6 +9,11 @@ from pairrules.board.stackup import Layer, Stackup
 from pairrules.fields import cross_section
 
 
+THINNEST_MM, THICKEST_MM = 0.0002, 100.0
+"""Thicknesses a layer can have, twice the grid that sections are drawn on at least; another is a slip of the file, and
+as good as none. Common practice, no source: foils begin at 1.5 µm."""
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Mask:
     """Solder mask over an outermost copper layer. thickness [mm]."""
@@ -40,7 +45,11 @@ class Heights:
 def lacking(stackup: Stackup) -> tuple[str, ...]:
     """What a cross-section would need that the stack does not have, as "thickness of D1"; empty where nothing is."""
     inner = _between_outer_copper(stackup)
-    found = [f"thickness of {layer.name}" for layer in stackup.layers if layer.thickness_mm is None]
+    found = [
+        f"thickness of {layer.name}"
+        for layer in stackup.layers
+        if layer.thickness_mm is None or not THINNEST_MM <= layer.thickness_mm <= THICKEST_MM
+    ]
     found += [
         f"dielectric between {upper.name} and {lower.name}"
         for upper, lower in pairwise(inner)

@@ -114,6 +114,9 @@ def _quantity(node: nodes.Scalar, shape: Quantity, path: str, faults: Faults) ->
             f"{path}: {error}", "write a finite number", node
         )
         return None
+    if value != 0 and not _LEAST < abs(value) < _MOST:
+        faults.add(f"{path} is {node.text!r}", "write a value that a circuit can have", node)
+        return None
     if not shape.signed and value < 0:
         faults.add(f"{path} is {node.text!r}", "write a value that is not negative", node)
         return None
@@ -125,6 +128,9 @@ def _quantity(node: nodes.Scalar, shape: Quantity, path: str, faults: Faults) ->
         return None
     return value * shape.scale
 
+
+_LEAST, _MOST = 1e-24, 1e18
+"""Magnitudes of a quantity in its own unit; beyond them products and quotients of a few leave the range of numbers."""
 
 _PART = Quantity(dimension="share")
 _TIME = Quantity(dimension="time")
@@ -148,6 +154,9 @@ def _number(node: nodes.Scalar, shape: Number, path: str, faults: Faults) -> flo
         return None
     if shape.least is not None and value < shape.least:
         faults.add(f"{path} is {node.text!r}", f"write a number of at least {shape.least:g}", node)
+        return None
+    if shape.most is not None and value > shape.most:
+        faults.add(f"{path} is {node.text!r}", f"write a number of at most {shape.most:g}", node)
         return None
     return value
 

@@ -32,7 +32,8 @@ def _schema(shape: Shape) -> Schema:
         case Quantity():
             return _quantity(shape)
         case Number():
-            return {"type": "number"} | ({} if shape.least is None else {"minimum": shape.least})
+            bounds = {"minimum": shape.least, "maximum": shape.most}
+            return {"type": "number"} | {key: bound for key, bound in bounds.items() if bound is not None}
         case Text(words=()):
             # YAML takes an unquoted 5 or true for a number or a truth value; as the name of a net it is a text.
             return {"type": ["string", "number", "boolean"]}
@@ -42,8 +43,8 @@ def _schema(shape: Shape) -> Schema:
         case Flag():
             return {"type": "boolean"}
         case ListOf():
-            bounds = {"minItems": shape.least} | ({"maxItems": shape.most} if shape.most else {})
-            return {"type": "array", "items": _schema(shape.of), **bounds}
+            counts = {"minItems": shape.least} | ({"maxItems": shape.most} if shape.most else {})
+            return {"type": "array", "items": _schema(shape.of), **counts}
         case Table():
             return _table(shape)
         case Named():

@@ -22,8 +22,8 @@ _LAYER = Table(
         "name": Text(),
         "kind": Text(words=("copper", "dielectric")),
         "thickness": Quantity(dimension="length", positive=True),
-        "permittivity": Number(least=1.0),
-        "loss_tangent": Number(least=0.0),
+        "permittivity": Number(least=1.0, most=1e6),
+        "loss_tangent": Number(least=0.0, most=1.0),
     },
     required=("name", "kind"),
 )

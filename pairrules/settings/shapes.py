@@ -35,9 +35,10 @@ class Quantity:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Number:
-    """A bare number, for what has no dimension. `least`: the smallest it may be, None where any will do."""
+    """A bare number, for what has no dimension. `least`, `most`: the bounds it may reach, None where any will do."""
 
     least: float | None = None
+    most: float | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
