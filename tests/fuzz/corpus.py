@@ -56,13 +56,30 @@ stackup:
 """)
 
 
+WAIVERS: list[dict[str, Any]] = yaml.safe_load("""
+- rule: leg-length
+  pair: IN
+  reason: the serpentine is wanted
+  who: the designer
+  until: "2999-12-31"
+  fingerprint: "1:0123456789abcdef"
+- rule: link-rejection
+  pair: [IN_P, IN_N]
+  reason: measured on the first board
+  until: "2000-01-01"
+  fingerprint: "1:0123-4567-89ab"
+""")
+"""Waivers that mean the pair of the small boards, one of them expired."""
+
+
 @dataclass(frozen=True)
 class Input:
-    """One case: the board's bytes, the settings' bytes (`None` for the base set), and the report that is written."""
+    """One case: bytes of the board, the settings (`None`: the base set), the waivers (`None`: none), and the report."""
 
     board: bytes
     settings: bytes | None
     form: str
+    waivers: bytes | None = None
 
 
 def drawn(random: Random) -> Input:
@@ -70,8 +87,11 @@ def drawn(random: Random) -> Input:
     known, other = random.choice(BOARDS)().board, random.choice(BOARDS)().board
     form = random.choice(FORMATS)
     if random.random() < 0.1:
+        sound = json.dumps(known).encode()
+        if random.random() < 0.3:
+            return Input(sound, _settings(), form, mutated_yaml(WAIVERS, WAIVERS, random))
         settings = random.choice((SETTINGS, SETTINGS | STACKUP, STACKUP))
-        return Input(json.dumps(known).encode(), mutated_yaml(settings, SETTINGS, random), form)
+        return Input(sound, mutated_yaml(settings, SETTINGS, random), form)
     if random.random() < 0.4:
         data = mutated_json(known, other, random)
     else:

@@ -70,7 +70,9 @@ def packed(data: bytes, random: Random) -> bytes:
         out = io.BytesIO()
         method = random.choice((zipfile.ZIP_STORED, zipfile.ZIP_DEFLATED, zipfile.ZIP_BZIP2, zipfile.ZIP_LZMA))
         with zipfile.ZipFile(out, "w", method) as archive:
-            for name in random.sample(("../../b.xml", "/etc/b.json", "b\0.xml", "b.xml", "CON", "a/" * 90 + "b.cvg"), 2):
+            for name in random.sample(
+                ("../../b.xml", "/etc/b.json", "b\0.xml", "b.xml", "CON", "a/" * 90 + "b.cvg"), 2
+            ):
                 archive.writestr(zipfile.ZipInfo(name), data)
         whole = out.getvalue()
     return _rough(whole, random)
@@ -144,14 +146,22 @@ def _scale(places: list[Place], other: list[Place], random: Random) -> None:
     numbers = [(holder, key) for holder, key in places if type(holder[key]) in {int, float}]
     if numbers:
         holder, key = random.choice(numbers)
-        holder[key] = random.choice((holder[key] * random.choice(FACTORS), random.choice(NUMBERS)))
+        holder[key] = random.choice((_times(holder[key], random.choice(FACTORS)), random.choice(NUMBERS)))
 
 
 def _scale_many(places: list[Place], other: list[Place], random: Random) -> None:
     factor, share = random.choice(FACTORS), random.random()
     for holder, key in places:
         if type(holder[key]) in {int, float} and random.random() < share:
-            holder[key] = holder[key] * factor
+            holder[key] = _times(holder[key], factor)
+
+
+def _times(value: float, factor: float) -> float:
+    """The product, of an integer that no float holds the integer itself."""
+    try:
+        return value * factor
+    except OverflowError:
+        return -value
 
 
 def _like_another(places: list[Place], other: list[Place], random: Random) -> None:
@@ -245,7 +255,9 @@ def _rename_attribute(elements: list[Any], other: bytes, random: Random) -> None
     element = random.choice(_with_attributes(elements) or elements)
     if element.attrib:
         value = element.attrib.pop(random.choice(sorted(element.attrib)))
-        element.set(random.choice(sorted(random.choice(_with_attributes(elements) or [element]).attrib) or ["x"]), value)
+        element.set(
+            random.choice(sorted(random.choice(_with_attributes(elements) or [element]).attrib) or ["x"]), value
+        )
 
 
 def _set_attribute(elements: list[Any], other: bytes, random: Random) -> None:

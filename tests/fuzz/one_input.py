@@ -43,7 +43,9 @@ class Outcome:
     fault: str = ""
 
 
-def outcome(folder: Path, board: bytes, *, settings: bytes | None = None, form: str = "json") -> Outcome:
+def outcome(
+    folder: Path, board: bytes, *, settings: bytes | None = None, waivers: bytes | None = None, form: str = "json"
+) -> Outcome:
     """Check a board in a folder of its own and say what became of it.
 
     A fault is: an exception that reaches the top, a status other than 0 to 3, too much time or memory, a file other
@@ -57,6 +59,8 @@ def outcome(folder: Path, board: bytes, *, settings: bytes | None = None, form: 
     if settings is not None:
         (folder / "settings.yaml").write_bytes(settings)
         arguments += ["--settings", str(folder / "settings.yaml")]
+    if waivers is not None:
+        (folder / "pairrules-waivers.yaml").write_bytes(waivers)
     given = sorted(folder.rglob("*"))
     stderr, stdout = io.StringIO(), io.StringIO()
     peak = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss

@@ -75,7 +75,7 @@ class Run:
     def one(self, name: str, given: Input, number: int) -> Outcome:
         """One case, `name` for messages."""
         self.solver.real = number % self.solve_every == 0
-        found = outcome(self.folder, given.board, settings=given.settings, form=given.form)
+        found = outcome(self.folder, given.board, settings=given.settings, waivers=given.waivers, form=given.form)
         self.done += 1
         self.statuses[found.status] += 1
         self.slowest = max(self.slowest, (found.seconds, name))
@@ -86,8 +86,9 @@ class Run:
                 if self.keep is not None:
                     self.keep.mkdir(parents=True, exist_ok=True)
                     (self.keep / f"{name}.board").write_bytes(given.board)
-                    if given.settings is not None:
-                        (self.keep / f"{name}.yaml").write_bytes(given.settings)
+                    for what, data in (("settings", given.settings), ("waivers", given.waivers)):
+                        if data is not None:
+                            (self.keep / f"{name}.{what}.yaml").write_bytes(data)
             self.faults[kind] += 1
         return found
 
