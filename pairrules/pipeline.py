@@ -14,6 +14,7 @@ from pathlib import Path
 from pairrules import __version__
 from pairrules.balance.electrical import electrical
 from pairrules.balance.pair_electrical import PairElectrical
+from pairrules.balance.stack_heights import lacking
 from pairrules.board.board import Board
 from pairrules.board.given_stackup import with_stackup
 from pairrules.board.given_values import with_part_values
@@ -38,8 +39,10 @@ from pairrules.pairing.reference_nets import reference_nets
 from pairrules.readers.packing import MOST_BYTES
 from pairrules.readers.reader import read_board
 from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart, WaiverState
+from pairrules.settings.likely_set import DraftPair
 from pairrules.settings.pair_class import PairClass
 from pairrules.settings.read_settings import Settings, find_settings, read_settings
+from pairrules.settings.starter import Draft, starter
 from pairrules.settings.waivers import Waiver, read_waivers, waivers_path
 
 BESIDE_RULES = frozenset({"neighbour-tilt"})
@@ -64,7 +67,8 @@ def check(
 
     Parameters
     ----------
-    path: the board file. settings: the settings file; `None` takes the nearest `pairrules.yaml` upward from the board.
+    path: the board file. settings: the settings file; `None` takes the nearest `pairrules.yaml` upward from the board,
+        "" the shipped base set alone.
     pairs: which pairs, a pattern (`*`, `?`, `[…]`) over pair and net names.
     step: which board, where the file has several.
     drawing: whether the result carries what pictures and pages draw, which takes longer.
@@ -192,6 +196,51 @@ def find_pairs(path: str | Path, settings: str | Path | None = None, *, pairs: s
     return FoundPairs(board=opened.summary, pairs=tuple(found), unpaired=opened.unpaired)
 
 
+def pair_classes(
+    path: str | Path, settings: str | Path | None = None, *, pairs: str = "*", step: str = ""
+) -> tuple[Settings, tuple[tuple[FoundPair, PairClass | None], ...]]:
+    """The settings of a board, and every pair with the class it ended up in. Parameters and errors as of `check`."""
+    opened = _open(path, settings, pairs=pairs, step=step)
+    found = []
+    for link in opened.links:
+        klass = opened.settings.class_of(link.name, _net_names(opened.board, link), link.klass)
+        found.append((_found_pair(opened.board, link, None if klass is None else klass.name), klass))
+    return opened.settings, tuple(found)
+
+
+def draft_settings(path: str | Path, *, pairs: str = "*", step: str = "", progress: Progress | None = None) -> str:
+    """The text of a first settings file for a board, whatever settings lie beside it. Parameters and errors as `check`."""
+    opened = _open(path, "", pairs=pairs, step=step)
+    board, copper, store = opened.board, BoardCopper(opened.board, opened.reference), dict[CrossSection, SectionSolution]()
+    drafts = []
+    for done, link in enumerate(opened.links):
+        if progress is not None:
+            progress("measuring pairs", done, len(opened.links))
+        geometry = measure_link(board, link, reach_mm=None, reference=opened.reference, copper=copper)
+        figures = electrical(board, link, geometry, None, copper=copper, store=store)
+        found = _found_pair(board, link, None)
+        ends = (board.parts[part] for part in (link.source, link.load) if part >= 0)
+        drafts.append(
+            DraftPair(
+                name=found.name,
+                nets=_net_names(board, link),
+                declared=link.klass,
+                ends=tuple(" ".join((part.ref, part.value, part.package)).strip() for part in ends),
+                series=tuple(part.ref for part in found.series),
+                impedance_ohm=figures.impedance_diff_ohm,
+            )
+        )
+    draft = Draft(
+        file=Path(path).name,
+        pairs=tuple(drafts),
+        unpaired=opened.unpaired,
+        reference=tuple(board.nets[net] for net in opened.reference),
+        layers=tuple((layer.name, layer.kind) for layer in board.stackup.layers),
+        lacking=lacking(board.stackup),
+    )
+    return starter(draft, {name: rule.form for name, rule in all_rules().items()})
+
+
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class _Opened:
     """A board read and its links found."""
@@ -294,7 +343,9 @@ def _bytes(path: Path, name: str) -> bytes:
 
 
 def _settings_path(board: str | Path, settings: str | Path | None) -> Path | None:
-    return find_settings(Path(board)) if settings is None else Path(settings)
+    if settings is None:
+        return find_settings(Path(board))
+    return Path(settings) if str(settings) else None
 
 
 def _wanted(board: Board, link: Link, pattern: str) -> bool:
