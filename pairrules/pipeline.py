@@ -209,9 +209,10 @@ def pair_classes(
 
 
 def draft_settings(path: str | Path, *, pairs: str = "*", step: str = "", progress: Progress | None = None) -> str:
-    """The text of a first settings file for a board, whatever settings lie beside it. Parameters and errors as `check`."""
+    """A first settings file for a board as text, whatever settings lie beside it. Parameters and errors as of `check`."""
     opened = _open(path, "", pairs=pairs, step=step)
-    board, copper, store = opened.board, BoardCopper(opened.board, opened.reference), dict[CrossSection, SectionSolution]()
+    board = opened.board
+    copper, store = BoardCopper(board, opened.reference), dict[CrossSection, SectionSolution]()
     drafts = []
     for done, link in enumerate(opened.links):
         if progress is not None:
