@@ -17,14 +17,15 @@ import numpy as np
 from pairrules.fields.boundary import INTERFACE, Bools, Complexes, Floats, Ints, Pieces, Region
 
 _POWER = 3.0
-_OF_COPPER = 0.65  # β at copper corners in one dielectric
-_OF_EDGE = 0.27  # β at the edges of strips and planes
+_OF_COPPER = 0.75  # β at copper corners in one dielectric
+_OF_EDGE = 0.25  # β at the edges of strips and planes
 _OF_EDGE_BETWEEN = 0.3  # the same where dielectrics meet
-_OF_COPPER_BETWEEN = 0.36  # β at copper corners where dielectrics meet
+_OF_COPPER_BETWEEN = 0.38  # β at copper corners where dielectrics meet
 _OF_INTERFACE = 0.3  # β on an interface that ends at copper
-_OF_DIELECTRIC = 0.55  # β at corners where only dielectrics meet
+_OF_DIELECTRIC = 0.9  # β at corners where only dielectrics meet
+_TO_INTERFACE = 0.6  # times a corner's β: what it asks of other pieces that are interfaces
 _LEAST_SHARE = 0.45
-_OPEN = 1.4  # how much finer where no whole plane holds the field together
+_OPEN = 1.2  # how much finer where no whole plane holds the field together
 _STRAIGHT = 0.75  # corners that turn by less (radians) carry no singular charge worth grading: round outlines
 _SAMPLES = 24
 
@@ -63,6 +64,7 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     foreign[rows, :, at_end] = np.inf
     rate = 1.0 / np.sqrt(np.maximum(foreign.min(axis=2, initial=np.inf), 1e-30))
     # cells wanted in a step of the sampling: length over size, in a form that stays smooth down to the corner
+    rate[pieces.owner == INTERFACE] /= _TO_INTERFACE
     demand = rate * (length[:, None] * slope[None, :])
     ratio = _slope_ratio(s)
     for end, run, across in ((at_start, graded, ratio), (at_end, 1.0 - graded, ratio[::-1])):
