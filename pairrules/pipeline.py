@@ -209,7 +209,7 @@ def pair_classes(
 
 
 def draft_settings(path: str | Path, *, pairs: str = "*", step: str = "", progress: Progress | None = None) -> str:
-    """A first settings file for a board as text, whatever settings lie beside it. Parameters and errors as of `check`."""
+    """A first settings file for a board, whatever settings lie beside it. Parameters and errors as of `check`."""
     opened = _open(path, "", pairs=pairs, step=step)
     board = opened.board
     copper, store = BoardCopper(board, opened.reference), dict[CrossSection, SectionSolution]()
