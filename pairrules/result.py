@@ -109,6 +109,7 @@ class WaiverState:
         "undecided" (the rule could not judge).
     why: why it does not hold and what to do, "" where it does.
     reason, who, until: as the waiver says, `until` as YYYY-MM-DD. line: of the waiver file.
+    fingerprint: of the finding it was given for.
     """
 
     rule: str
@@ -119,6 +120,7 @@ class WaiverState:
     who: str
     until: str
     line: int = 0
+    fingerprint: str = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

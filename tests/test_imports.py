@@ -27,7 +27,7 @@ ROOMS = {
     "drawn": {"balance", "board", "checks", "geometry", "pairing", "settings"},
     "settings": {"board", "shipped"},
     "manual": {"board", "checks", "reports", "schemas", "settings", "shipped"},
-    "reports": {"board"},
+    "reports": {"board", "schemas"},
     "schemas": set(),
     "shipped": set(),
     "errors": set(),

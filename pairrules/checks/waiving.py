@@ -49,6 +49,7 @@ def state_of(waiver: Waiver, state: str, why: str, *, name: str = "") -> WaiverS
         who=waiver.who,
         until=waiver.until.isoformat(),
         line=waiver.line,
+        fingerprint=waiver.fingerprint,
     )
 
 
