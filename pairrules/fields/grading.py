@@ -26,6 +26,7 @@ _OF_DIELECTRIC = 0.9  # β at corners where only dielectrics meet
 _TO_INTERFACE = 0.6  # times a corner's β: what it asks of other pieces that are interfaces
 _LEAST_SHARE = 0.45
 _OPEN = 1.2  # how much finer where no whole plane holds the field together
+_UNIFORM = 1.35  # how much finer in one dielectric, where copper alone has cells and more is asked of it
 _STRAIGHT = 0.75  # corners that turn by less (radians) carry no singular charge worth grading: round outlines
 _SAMPLES = 24
 
@@ -79,6 +80,8 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     demand *= _share(pieces)[:, None]
     if region.bottom is None and region.top is None:
         demand *= _OPEN
+    if not np.any(pieces.owner == INTERFACE):
+        demand *= _UNIFORM
     if region.bottom is not None and region.top is not None:  # a longer cell would feel more images than are exact
         demand = np.maximum(demand, length[:, None] * slope / (region.top - region.bottom))
     step = 1.0 / _SAMPLES
