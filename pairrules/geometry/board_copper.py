@@ -9,6 +9,7 @@ from pairrules.geometry.area_polygons import AreaPolygons
 from pairrules.geometry.copper_index import CopperIndex, index_copper
 from pairrules.geometry.cross_cut import CrossCuts
 from pairrules.geometry.foreign_copper import ForeignCopper
+from pairrules.geometry.layer_index import LayerIndexes
 from pairrules.geometry.reference_copper import ReferenceCopper
 
 
@@ -30,6 +31,11 @@ class BoardCopper:
         return AreaPolygons(self.board)
 
     @cached_property
+    def layers(self) -> LayerIndexes:
+        """What lies near a place, by layer."""
+        return LayerIndexes(self.board, self.areas)
+
+    @cached_property
     def reference(self) -> ReferenceCopper:
         """Copper of the reference nets, by layer."""
         return ReferenceCopper(self.board, self.reference_nets, self.areas)
@@ -37,9 +43,9 @@ class BoardCopper:
     @cached_property
     def foreign(self) -> ForeignCopper:
         """Copper of all nets, among which neighbours are found."""
-        return ForeignCopper(self.board, self.areas)
+        return ForeignCopper(self.board, self.areas, self.layers)
 
     @cached_property
     def cuts(self) -> CrossCuts:
         """What a straight cut across the board meets."""
-        return CrossCuts(self.board, self.areas)
+        return CrossCuts(self.board, self.layers)

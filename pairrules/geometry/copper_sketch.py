@@ -239,7 +239,7 @@ def _around(copper: BoardCopper, route: LegRoute, leg: int, own: Bools, reach: f
     for one in np.unique(layer).tolist():
         here = layer == one
         groups = (~own & ~reference, ~own & reference)
-        near[0, here], near[1, here] = nearest_copper(board, one, at[here], reach, groups)
+        near[0, here], near[1, here] = nearest_copper(copper.layers.layer(one), at[here], reach, groups)
         for column, beside in ((2, one - 1), (3, one + 1)):
             near[column, here] = _cover(copper, beside, at[here], reach)
     phase = 1.3 * _J + 0.7 * leg

@@ -9,9 +9,7 @@ import shapely
 
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
-from pairrules.geometry.area_polygons import AreaPolygons
-from pairrules.geometry.area_tiles import tiles
-from pairrules.geometry.copper_outlines import Drawn, drawn_copper, solid_parts
+from pairrules.geometry.layer_index import LayerIndexes
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -29,12 +27,10 @@ class Met:
 
 
 class CrossCuts:
-    """Cuts through a board's copper; each layer is made ready when it is first cut."""
+    """Cuts through a board's copper. layers: of the board, where they are at hand."""
 
-    def __init__(self, board: Board, areas: AreaPolygons | None = None) -> None:
-        self._board = board
-        self._areas = AreaPolygons(board) if areas is None else areas
-        self._layers: dict[int, _Layer] = {}
+    def __init__(self, board: Board, layers: LayerIndexes | None = None) -> None:
+        self._layers = LayerIndexes(board) if layers is None else layers
 
     def across(self, layer: int, origin: Floats, along: Floats, low: Floats, high: Floats) -> Met:
         """Copper of `layer` that the cuts meet.
@@ -43,9 +39,7 @@ class CrossCuts:
         ----------
         origin: (n, 2) [mm]; along: (n, 2) unit vectors; low, high: (n,) [mm] where each cut begins and ends.
         """
-        if layer not in self._layers:
-            self._layers[layer] = _layer(self._board, layer, self._areas)
-        of = self._layers[layer]
+        of = self._layers.layer(layer)
         ends = np.stack([origin + along * low[:, None], origin + along * high[:, None]], axis=1)
         lines = np.empty(len(origin), dtype=np.object_)
         lines[:] = shapely.linestrings(ends)
@@ -64,31 +58,6 @@ class CrossCuts:
             for end in bounds
         ]
         return _merged(own, net[row], np.minimum(*places), np.maximum(*places))
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class _Layer:
-    """Areas in tiles with the net of each, and what else is drawn."""
-
-    areas: shapely.STRtree
-    area_net: Ints
-    drawn: Drawn
-    tree: shapely.STRtree
-    widest: float
-
-
-def _layer(board: Board, layer: int, areas: AreaPolygons) -> _Layer:
-    rows = np.flatnonzero(areas.layer == layer)
-    parts, row = solid_parts(areas.take(rows))
-    cut = [tiles(part) for part in parts]
-    drawn = drawn_copper(board, layer)
-    return _Layer(
-        areas=shapely.STRtree(np.concatenate(cut) if cut else parts),
-        area_net=np.repeat(areas.net[rows][row], [len(pieces) for pieces in cut]),
-        drawn=drawn,
-        tree=shapely.STRtree(drawn.shapes),
-        widest=float(drawn.half.max(initial=0.0)),
-    )
 
 
 def _merged(cut: Ints, net: Ints, low: Floats, high: Floats) -> Met:

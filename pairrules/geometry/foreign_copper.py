@@ -2,37 +2,37 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 import shapely
 
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
 from pairrules.geometry.area_polygons import AreaPolygons
-from pairrules.geometry.copper_outlines import Drawn, drawn_copper, solid_parts
+from pairrules.geometry.copper_outlines import solid_parts
+from pairrules.geometry.layer_index import LayerIndexes
 from pairrules.geometry.ring_runs import RingRuns, Shapes, ring_runs
 
 
 class ForeignCopper:
     """The copper of a board among which a leg looks for neighbours; each layer is made ready when first asked for."""
 
-    def __init__(self, board: Board, areas: AreaPolygons | None = None) -> None:
-        self.board = board
+    def __init__(self, board: Board, areas: AreaPolygons | None = None, layers: LayerIndexes | None = None) -> None:
         self._areas = AreaPolygons(board) if areas is None else areas
-        self._layers: dict[int, _Layer] = {}
+        self._layers = LayerIndexes(board, self._areas) if layers is None else layers
+        self._rings: dict[int, tuple[RingRuns, Ints]] = {}
 
     def near(self, layer: int, lines: Shapes, reach: Floats) -> tuple[Ints, Floats, Ints]:
         """Edges of copper within reach of lines, of every net and of none.
 
         Parameters: lines: (k,). reach: (k,) [mm].
         Returns: the line (n,), the edge (n, 2, 2) [mm] with copper to its left, and its net (n,), for every pair of a
-        line and an edge within reach of it. Outlines of one net may overlap: an edge may lie within other copper.
+        line and an edge within reach of it, and of a few further ones. Outlines of one net may overlap: an edge may lie
+        within other copper.
         """
-        if layer not in self._layers:
-            self._layers[layer] = _layer(self.board, layer, self._areas)
-        of = self._layers[layer]
-        which, edge = of.areas.near(lines, reach)
+        if layer not in self._rings:
+            self._rings[layer] = _area_edges(self._areas, layer)
+        (filled, filled_net), of = self._rings[layer], self._layers.layer(layer)
+        which, edge = filled.near(lines, reach)
         near, shape = of.tree.query(lines, predicate="dwithin", distance=reach + of.widest)
         shapes, place = np.unique(shape, return_inverse=True)
         parts, row = solid_parts(of.drawn.outlines(shapes))
@@ -44,35 +44,19 @@ class ForeignCopper:
         nth = np.arange(size.sum()) - np.repeat(np.cumsum(size) - size, size)
         drawn = order[np.repeat(first[place], size) + nth]
         line = np.concatenate([which, np.repeat(near, size)])
-        edges = np.concatenate([of.areas.edges[edge], runs[drawn]])
-        net = np.concatenate([of.area_net[of.areas.ring[edge]], of.drawn.net[shapes[run_shape[drawn]]]])
-        within = shapely.dwithin(lines[line], shapely.linestrings(edges), reach[line])
+        edges = np.concatenate([filled.edges[edge], runs[drawn]])
+        net = np.concatenate([filled_net[filled.ring[edge]], of.drawn.net[shapes[run_shape[drawn]]]])
+        box = shapely.bounds(lines) + np.column_stack([-reach, -reach, reach, reach])
+        within = (edges.max(axis=1) >= box[line, :2]).all(axis=1) & (edges.min(axis=1) <= box[line, 2:]).all(axis=1)
         return line[within], edges[within], net[within]
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class _Layer:
-    """The edges of areas with the net of each ring, and what else is drawn, by its centre lines."""
-
-    areas: RingRuns
-    area_net: Ints
-    drawn: Drawn
-    tree: shapely.STRtree
-    widest: float
-
-
-def _layer(board: Board, layer: int, areas: AreaPolygons) -> _Layer:
+def _area_edges(areas: AreaPolygons, layer: int) -> tuple[RingRuns, Ints]:
+    """The edges of a layer's areas, and the net of each ring."""
     rows = np.flatnonzero(areas.layer == layer)
     parts, row = solid_parts(areas.take(rows))
     rings, polygon = _rings(parts)
-    drawn = drawn_copper(board, layer)
-    return _Layer(
-        areas=ring_runs(rings),
-        area_net=areas.net[rows][row[polygon]],
-        drawn=drawn,
-        tree=shapely.STRtree(drawn.shapes),
-        widest=float(drawn.half.max(initial=0.0)),
-    )
+    return ring_runs(rings), areas.net[rows][row[polygon]]
 
 
 def _edges(polygons: Shapes, row: Ints) -> tuple[Floats, Ints]:

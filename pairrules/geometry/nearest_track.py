@@ -43,7 +43,7 @@ class NearestTrack:
         self._other = curves_of(other)
         self._half = own.width / 2
         self._other_half = other.width / 2
-        self._reach = reach
+        self.reach = reach
         self.length = own.length
         tracks = np.flatnonzero(other.kind == TRACK)
         first, second = _candidates(self._own, own.layer, self._other, other.layer, self._other_half, rows, tracks)
@@ -59,39 +59,37 @@ class NearestTrack:
     def at(self, rows: Ints, t: Floats) -> Nearest:
         """What is nearest to the points at parameter t (n,) of this leg's pieces `rows` (n,)."""
         count = self._offset[rows + 1] - self._offset[rows]
+        none = count == 0
         owner = np.repeat(np.arange(len(rows)), count)
         within = np.arange(len(owner)) - np.repeat(np.cumsum(count) - count, count)
         candidate = self._pairs[self._offset[rows][owner] + within]
-        own = self._own.take(rows)
-        at, heading = points(own, t), directions(own, t)
-        other = self._other.take(candidate)
-        foot, away = nearest(other, at[owner])
-        gap = away - self._half[rows][owner] - self._other_half[candidate]
-        turn = np.abs((directions(other, foot) - heading[owner] + np.pi / 2) % np.pi - np.pi / 2)
-        least = np.full(len(rows), np.inf)
-        np.minimum.at(least, owner, gap)
-        tied = gap <= least[owner] + _TIE_MM
-        # Of pieces equally near (both at a bend) the one that runs more nearly alongside counts.
-        rank = np.where(tied, np.round(turn, 9), np.inf)
-        best = np.lexsort((candidate, rank, owner))
-        start = np.cumsum(count) - count
-        chosen = np.where(count > 0, best[np.minimum(start, max(len(best) - 1, 0))] if len(best) else 0, -1)
-        none = count == 0
-        pick = np.where(none, 0, chosen)
         if not len(candidate):
-            empty = np.full(len(rows), np.nan)
-            return Nearest(
-                np.full(len(rows), -1),
-                np.zeros(len(rows), dtype=np.int64),
-                empty,
-                empty,
-                np.zeros(len(rows), dtype=bool),
-            )
-        feature = np.where(foot[pick] <= 0.0, 0, np.where(foot[pick] >= 1.0, 2, 1))
-        found_gap = np.where(none, np.nan, least)
-        angle = np.where(none, np.nan, turn[pick])
-        coupled = ~none & (found_gap <= self._reach) & (np.where(none, np.inf, turn[pick]) < COUPLED_TURN)
-        return Nearest(np.where(none, -1, candidate[pick]), np.where(none, 0, feature), found_gap, angle, coupled)
+            unknown = np.full(len(rows), np.nan)
+            nothing = np.zeros(len(rows), dtype=np.int64)
+            return Nearest(nothing - 1, nothing, unknown, unknown, np.zeros(len(rows), dtype=np.bool_))
+        own = self._own.take(rows)
+        foot, away = nearest(self._other.take(candidate), points(own, t)[owner])
+        gap = away - self._half[rows][owner] - self._other_half[candidate]
+        least = np.full(len(rows), np.nan)
+        least[~none] = np.minimum.reduceat(gap, (np.cumsum(count) - count)[~none])
+        tied = np.flatnonzero(gap <= least[owner] + _TIE_MM)
+        heading = directions(own, t)[owner[tied]]
+        turn = np.abs(
+            (directions(self._other.take(candidate[tied]), foot[tied]) - heading + np.pi / 2) % np.pi - np.pi / 2
+        )
+        # Of pieces equally near (both at a bend) the one that runs more nearly alongside counts, then the first.
+        begins = np.flatnonzero(np.r_[True, owner[tied][1:] != owner[tied][:-1]])
+        rank = np.round(turn, 9)
+        lowest = np.minimum.reduceat(rank, begins)
+        best = np.flatnonzero(rank == np.repeat(lowest, np.diff(np.append(begins, len(tied)))))
+        best = best[np.r_[True, owner[tied[best]][1:] != owner[tied[best]][:-1]]]
+        pick = tied[best]
+        other, feature = np.full(len(rows), -1), np.zeros(len(rows), dtype=np.int64)
+        angle = np.full(len(rows), np.nan)
+        other[~none], angle[~none] = candidate[pick], turn[best]
+        feature[~none] = np.where(foot[pick] <= 0.0, 0, np.where(foot[pick] >= 1.0, 2, 1))
+        coupled = (np.where(none, np.inf, least) <= self.reach) & (np.where(none, np.inf, angle) < COUPLED_TURN)
+        return Nearest(other, feature, least, angle, coupled)
 
 
 def curves_of(pieces: Pieces) -> Curves:

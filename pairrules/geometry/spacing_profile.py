@@ -2,7 +2,7 @@
 
 For every point of this leg's tracks: the nearest track of the other leg on the same layer, edge to edge, and how much
 the two directions differ. The profile is cut where the nearest piece, or the part of it that is nearest (its start, its
-inside, its end), changes, and where the legs cease to run beside each other. Cuts are bisected on the true distance,
+inside, its end), changes, and where the legs cease to run beside each other. Cuts are sought on the true distance,
 arcs included, until they no longer move; no cut is missed that lies between two foot points of the other leg's ends.
 """
 
@@ -24,6 +24,7 @@ REACH_GAPS = 4.0
 
 _STEP_MM = 0.1
 _CUT = 1e-10
+_PARTS = np.arange(1, 16) / 16
 _FLAT_MM = 1e-7
 _NOTHING_MM = 1e-9
 
@@ -32,21 +33,30 @@ def spacing_profiles(
     plus: Pieces, minus: Pieces, reach_mm: float | None
 ) -> tuple[SpacingProfile, SpacingProfile, float]:
     """The profile of each leg, and the reach [mm] both use: the given one, else four times plus's usual gap."""
+    own = _Searched(plus, minus)
     if reach_mm is None:
-        usual = usual_gap(_profile(plus, minus, math.inf, exact=False))
+        usual = usual_gap(own.profile(math.inf, exact=False))
         reach_mm = max(LEAST_REACH_MM, REACH_GAPS * usual) if usual is not None else LEAST_REACH_MM
-    return _profile(plus, minus, reach_mm), _profile(minus, plus, reach_mm), reach_mm
+    return own.profile(reach_mm), _Searched(minus, plus).profile(reach_mm), reach_mm
 
 
-def _profile(own: Pieces, other: Pieces, reach: float, *, exact: bool = True) -> SpacingProfile:
-    """The profile; not exact, its cuts lie at the nearest samples, which is enough to see which gap lasts longest."""
-    rows = np.flatnonzero(own.kind == TRACK)
-    short, origin, t0, t1 = _short_pieces(own, rows)
-    search = NearestTrack(short, other, np.arange(len(short)), reach)
-    piece, t = _samples(short, other, *search.pairs())
-    if exact:
-        piece, t = _with_cuts(search, piece, t)
-    return _stretches(own, origin, t0, t1, search, piece, t)
+class _Searched:
+    """One leg, made ready to be asked for the other."""
+
+    def __init__(self, own: Pieces, other: Pieces) -> None:
+        self._own = own
+        rows = np.flatnonzero(own.kind == TRACK)
+        self._short, self._origin, self._t0, self._t1 = _short_pieces(own, rows)
+        self._search = NearestTrack(self._short, other, np.arange(len(self._short)), math.inf)
+        self._samples = _samples(self._short, other, *self._search.pairs())
+
+    def profile(self, reach: float, *, exact: bool = True) -> SpacingProfile:
+        """The profile; not exact, its cuts lie at the nearest samples, enough to see which gap lasts longest."""
+        self._search.reach = reach
+        piece, t = self._samples
+        if exact:
+            piece, t = _with_cuts(self._search, piece, t)
+        return _stretches(self._own, self._origin, self._t0, self._t1, self._search, piece, t)
 
 
 def _short_pieces(own: Pieces, rows: Ints) -> tuple[Pieces, Ints, Floats, Floats]:
@@ -102,7 +112,7 @@ def _samples(own: Pieces, other: Pieces, pair_own: Ints, pair_other: Ints) -> tu
 
 
 def _with_cuts(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints, Floats]:
-    """Further points at every change of what is nearest, found by bisection to 1e-10 of the piece.
+    """Further points at every change of what is nearest, found by repeated division to 1e-10 of the piece.
 
     A change is bracketed by two points, one on each side, so that a stretch between brackets has one nearest feature.
     """
@@ -116,14 +126,16 @@ def _with_cuts(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints, Floa
             break
         low, high = left.copy(), right.copy()
         after = right_label.copy()
-        for _ in range(60):
-            if not ((high - low) > _CUT).any():
-                break
-            middle = (low + high) / 2
-            seen = search.at(row, middle).label()
-            same = seen == left_label
-            low, high = np.where(same, middle, low), np.where(same, high, middle)
-            after = np.where(same, after, seen)
+        every = np.arange(len(row))
+        while ((high - low) > _CUT).any():
+            # In many parts at once, since a question costs hardly more for many points than for one.
+            inner = low[:, None] + (high - low)[:, None] * _PARTS
+            seen = search.at(np.repeat(row, len(_PARTS)), inner.ravel()).label().reshape(inner.shape)
+            other = np.column_stack([seen != left_label[:, None], np.ones(len(row), dtype=np.bool_)])
+            first = np.argmax(other, axis=1)
+            ends = np.column_stack([low, inner, high])
+            after = np.column_stack([seen, after])[every, first]
+            low, high = ends[every, first], ends[every, first + 1]
         extra_piece += [row, row]
         extra_t += [low, high]
         more = (after != right_label) & (right - high > _CUT)
@@ -140,7 +152,8 @@ def _bent_cut_finer(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints,
     for _ in range(8):
         if not len(row):
             break
-        start, quarter, middle, end = (search.at(row, a + (b - a) * u).gap for u in (1e-9, 0.25, 0.5, 1 - 1e-9))
+        places = a + (b - a) * np.array([[1e-9], [0.25], [0.5], [1 - 1e-9]])
+        start, quarter, middle, end = search.at(np.tile(row, 4), places.ravel()).gap.reshape(4, -1)
         off = np.abs(quarter - (3 * start + 6 * middle - end) / 8) > _FLAT_MM
         row, a, b = row[off], a[off], b[off]
         half = (a + b) / 2
