@@ -87,7 +87,8 @@ def drawn_openings(
         if not reference.known(layer):
             unknown.append(layer)
             continue
-        held = shapely.union_all([shapely.intersection(shape, box) for _, shape in reference.layer(layer).by_net])
+        parts = [part for _, own, _ in reference.layer(layer).by_net for part in own]
+        held = shapely.union_all([shapely.intersection(part, box) for part in parts])
         shapes = plain_shapes(shapely.difference(box, held))
         if shapes:
             of = tuple(one for one in layers if abs(one - layer) == 1)
