@@ -31,6 +31,7 @@ ROOMS = {
     "schemas": set(),
     "shipped": set(),
     "errors": set(),
+    "comparison": {"board", "reports"},
     "drawing": set(),
     "result": set(),
 }

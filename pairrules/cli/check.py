@@ -4,15 +4,18 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import replace
+from datetime import date
 
 import click
 
 from pairrules import __version__
+from pairrules.cli.earlier import earlier_result
 from pairrules.cli.error_lines import error_lines
-from pairrules.cli.options import output_option, pair_option, settings_option, step_option
+from pairrules.cli.options import output_option, pair_option, settings_option, step_option, today_option
 from pairrules.cli.output import ToWrite, look, write, write_files
 from pairrules.cli.progress import ProgressLine
 from pairrules.cli.report_option import file_reports, report_option
+from pairrules.comparison.compare import with_baseline
 from pairrules.errors import BoardError, UserError
 from pairrules.manual.rule_page import explained
 from pairrules.pipeline import check
@@ -46,8 +49,14 @@ DEMO = ("tide-gauge-buoy.json", "pairrules.yaml")
     help="Exit with 1 only where something is flagged at or above this.",
 )
 @click.option("--explain", is_flag=True, help="Tell in the listing what each finding rests on and where that holds.")
+@click.option(
+    "--since",
+    metavar="OLD",
+    help="An earlier board, or its result in JSON: what stood there and is no worse is told, but not flagged.",
+)
 @pair_option
 @step_option
+@today_option
 @click.pass_context
 def command(
     ctx: click.Context,
@@ -60,8 +69,10 @@ def command(
     wanted: tuple[str, ...],
     severity: str,
     explain: bool,
+    since: str | None,
     pair: str,
     step: str,
+    today: date | None,
 ) -> None:
     """Judge the pairs of each BOARD (IPC-2581 XML or plain JSON) against the limits of their classes.
 
@@ -76,6 +87,8 @@ def command(
         raise click.UsageError("--explain belongs to the listing; leave it or --format out", ctx)
     if not boards:
         raise click.UsageError("no BOARD is given; name a file, or take --demo", ctx)
+    if since is not None and len(boards) > 1:
+        raise click.UsageError("--since takes one BOARD", ctx)
     report, status = reports_of("check")[form], 0
     also = file_reports(wanted, reports_of("check"), output, ctx)
     outcomes: list[Result | BoardError] = []
@@ -83,7 +96,10 @@ def command(
     for board in boards:
         try:
             with ProgressLine() as progress:
-                result = check(board, settings, pairs=pair, step=step, progress=progress)
+                result = check(board, settings, pairs=pair, step=step, today=today, progress=progress)
+            if since is not None:
+                old = earlier_result(since, settings, settings_of=board, step=step, today=today)
+                result = with_baseline(old, result)
         except UserError as error:
             status = max(status, error.exit_status)
             for line in error_lines(error):
@@ -126,4 +142,8 @@ def _told(report: Report, outcomes: Sequence[Result | BoardError], boards: int, 
 
 def _flagged(result: Result, severity: str) -> bool:
     wanted = SEVERITIES[: SEVERITIES.index(severity) + 1]
-    return any(finding.severity in wanted and not finding.waived for pair in result.pairs for finding in pair.findings)
+    return any(
+        finding.severity in wanted and not finding.waived and finding.baseline != "unchanged"
+        for pair in result.pairs
+        for finding in pair.findings
+    )

@@ -65,7 +65,7 @@ def command(
     found = _pair(result, pair)
     mark = _fingerprint(result, found, rule)
     target = waiver_file_of(board, settings)
-    new = Waiver(rule=rule, pair=(found.name,), reason=reason, who=who, until=until, fingerprint=mark)
+    new = Waiver(rule=rule, pair=(pair,), reason=reason, who=who, until=until, fingerprint=mark)
     changed = _write(target, new, found, rules=tuple(rules))
     what = f"{rule} of {safe(found.name)} is waived{'' if changed else ' as before'} until {until.isoformat()}"
     click.echo(f"{safe(str(target))}: {what}")

@@ -1,0 +1,1 @@
+"""What became of a board's pairs since an earlier result of it."""
