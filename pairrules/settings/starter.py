@@ -18,15 +18,15 @@ from pairrules.shipped import rules_folder
 _OTHER = "other-pairs"
 
 _TO_FILL = (
-    ("source", "what drives the pair, for example {kind: line-driver, resistance: <ohm>}"),
-    ("load", "what receives it, for example {kind: line-receiver, across: <ohm>}"),
-    ("frequencies", "[<Hz>, ...] at which its balance counts"),
+    ("source", "{kind: line-driver, resistance: <ohm>}", "what drives the pair"),
+    ("load", "{kind: line-receiver, across: <ohm>}", "what receives it"),
+    ("frequencies", "[<Hz>]", "at which its balance counts"),
 )
 _TO_CONSIDER = (
-    ("cable", "only where one lies between: {length: <m>, resistance: <ohm/m>, capacitance: <pF/m>, twisted: true}"),
-    ("rise_time", "<ns> of its edges; limits may then be a share of it"),
-    ("breakout", "<mm> at each end in which gap and running apart are excused"),
-    ("expects_pin_lengths", "[<part>] whose lengths inside the package count"),
+    ("cable", "{length: <m>, resistance: <ohm/m>, capacitance: <pF/m>, twisted: true}", "where one lies between"),
+    ("rise_time", "<ns>", "of its edges; limits may then be a share of it"),
+    ("breakout", "<mm>", "at each end in which gap and running apart are excused"),
+    ("expects_pin_lengths", "[<part>]", "whose lengths inside the package count"),
 )
 
 
@@ -181,7 +181,14 @@ def _classes(groups: Sequence[tuple[str, Likely, list[DraftPair]]], templates: M
                 patterns.append(pattern)
         if patterns:
             lines += ["", *_class(name, likely, pairs, patterns, templates.get(likely.set))]
-    return ["classes:", *lines[1:]] if lines else ["# No pair was found, so that no class is needed."]
+    if not lines:
+        return ["# No pair was found, so that no class is needed."]
+    return [
+        "# In any class, where it applies:",
+        *(f"#   {key}: {form}   # {said}" for key, form, said in _TO_CONSIDER),
+        "classes:",
+        *lines[1:],
+    ]
 
 
 def _class(
@@ -194,12 +201,11 @@ def _class(
     if not likely.set:
         lines.append(f"    # like: <one of {', '.join(shipped_sets())}>, and extend it above")
     lines += ["    match:", *(f"      - {_quoted(pattern)}" for pattern in patterns)]
-    open_keys = [(key, said) for key, said in _TO_FILL if template is None or not getattr(template, key)]
+    open_keys = [one for one in _TO_FILL if template is None or not getattr(template, one[0])]
     if open_keys:
         lines += ["    # To fill in, else the balance stays unknown:"]
-        lines += [f"    # {key}: {said}" for key, said in open_keys]
-    lines += ["    # To fill in where it applies:"]
-    return lines + [f"    # {key}: {said}" for key, said in _TO_CONSIDER]
+        lines += [f"    # {key}: {form}   # {said}" for key, form, said in open_keys]
+    return lines
 
 
 def _about(pair: DraftPair) -> str:

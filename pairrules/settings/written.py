@@ -5,6 +5,7 @@ from __future__ import annotations
 from pairrules.board.units import DIMENSIONS
 
 _PREFIXES = ((1e12, "T"), (1e9, "G"), (1e6, "M"), (1e3, "k"), (1.0, ""), (1e-3, "m"), (1e-6, "u"), (1e-9, "n"))
+_METRE = 1000.0
 _PLAIN = {"length", "area", "ratio", "angle", "field"}
 
 
@@ -25,6 +26,8 @@ def written(value: float, dimension: str) -> str:
         return f"{value:.6g}"
     if dimension == "angle":
         return f"{value:.6g} degrees"
+    if dimension == "length" and abs(value) >= _METRE:
+        return f"{value / _METRE:.6g} m"
     if dimension in _PLAIN:
         return f"{value:.6g} {unit}"
     if dimension == "time":

@@ -21,6 +21,8 @@ from pairrules.settings.written import written
         (0.0, "capacitance", "0 F"),
         (-30.0, "ratio", "-30 dB"),
         (100.0, "area", "100 mm2"),
+        (999.5, "length", "999.5 mm"),
+        (3000.0, "length", "3 m"),
         (2.0, "count", "2"),
         (0.999999, "resistance", "999.999 mohm"),
     ],
