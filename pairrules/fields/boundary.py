@@ -49,7 +49,7 @@ class Pieces:
 
     start, end: complex (k,). owner: place of the conductor, PLANE or INTERFACE (k,). left, right: relative permittivity
     on the left and right of the way from start to end; complex, ε(1 − i tan δ); NaN within copper. far: whether the end
-    stands for infinity, (k, 2).
+    stands for infinity, (k, 2). contacts: what touches at 0 V, two by two: places of conductors, PLANE.
     """
 
     start: Complexes
@@ -58,6 +58,7 @@ class Pieces:
     left: Complexes
     right: Complexes
     far: Bools
+    contacts: tuple[tuple[int, int], ...] = ()
 
 
 def pieces_of(region: Region) -> Pieces:
@@ -69,8 +70,9 @@ def pieces_of(region: Region) -> Pieces:
     """
     start, end, owner = _outlines(region)
     start, end, owner = _cut(start, end, owner, region)
-    start, end, owner = _without_doubles(start, end, owner, region)
-    return _with_dielectrics(start, end, owner, region)
+    contacts = _contacts(start, end, owner, region)
+    start, end, owner = _without_doubles(start, end, owner)
+    return _with_dielectrics(start, end, owner, region, contacts)
 
 
 def permittivity_at(region: Region, points: Complexes) -> Complexes:
@@ -200,24 +202,36 @@ def _refuse_contact(region: Region, one: int, other: int) -> None:
     grounded = [place == PLANE or conductors[place].role == "grounded" for place in (one, other)]
     if not all(grounded):
         names = [f"conductor {conductors[place].name!r}" if place >= 0 else "a plane" for place in (one, other)]
-        raise ValueError(f"{max(names)} and {min(names)} touch" if names[0] != names[1] else f"{names[0]} doubles")
+        raise ValueError(f"{max(names)} and {min(names)} touch")
 
 
-def _without_doubles(
-    start: Complexes, end: Complexes, owner: Ints, region: Region
-) -> tuple[Complexes, Complexes, Ints]:
+def _contacts(start: Complexes, end: Complexes, owner: Ints, region: Region) -> set[tuple[int, int]]:
+    """Which conductors and planes share a point of their outlines."""
+    copper = np.nonzero(owner != INTERFACE)[0]
+    points, whose = np.concatenate((start[copper], end[copper])), np.concatenate((owner[copper], owner[copper]))
+    near = np.abs(points[:, None] - points[None, :]) < 2 * _TOUCH
+    one, other = np.nonzero(near & (whose[:, None] < whose[None, :]))
+    found = set(zip(whose[one].tolist(), whose[other].tolist(), strict=True))
+    for bound in (region.bottom, region.top):
+        if bound is not None:
+            found |= {(PLANE, place) for place in whose[np.abs(points.imag - bound) < 2 * _TOUCH].tolist()}
+    for a, b in sorted(found):
+        _refuse_contact(region, a, b)
+    return found
+
+
+def _without_doubles(start: Complexes, end: Complexes, owner: Ints) -> tuple[Complexes, Complexes, Ints]:
     middle, half = (start + end) / 2, (end - start) / 2
     same = np.abs(middle[:, None] - middle[None, :]) < 2 * _TOUCH
     same &= np.minimum(np.abs(half[:, None] - half[None, :]), np.abs(half[:, None] + half[None, :])) < 2 * _TOUCH
     first = np.argmax(same, axis=1)  # copper stands before planes, planes before interfaces
     keep = first == np.arange(len(start))
-    for place in np.nonzero(~keep & (owner != INTERFACE))[0]:
-        if owner[place] != owner[first[place]]:
-            _refuse_contact(region, int(owner[first[place]]), int(owner[place]))
     return start[keep], end[keep], owner[keep]
 
 
-def _with_dielectrics(start: Complexes, end: Complexes, owner: Ints, region: Region) -> Pieces:
+def _with_dielectrics(
+    start: Complexes, end: Complexes, owner: Ints, region: Region, contacts: set[tuple[int, int]]
+) -> Pieces:
     way = end - start
     length = np.abs(way)
     middle = (start + end) / 2
@@ -239,6 +253,7 @@ def _with_dielectrics(start: Complexes, end: Complexes, owner: Ints, region: Reg
     for piece in np.nonzero((owner != INTERFACE) & ((within_left >= 0) | (within_right >= 0)))[0].tolist():
         for other in {int(within_left[piece]), int(within_right[piece])} - {-1, int(owner[piece])}:
             _refuse_contact(region, int(owner[piece]), other)
+            contacts.add((int(owner[piece]), other))
     solid = np.array([c.polygon is not None for c in region.section.conductors], dtype=np.bool_)
     is_solid = (owner >= 0) & solid[np.maximum(owner, 0)]
     buried = np.isnan(left) & np.isnan(right)
@@ -248,7 +263,13 @@ def _with_dielectrics(start: Complexes, end: Complexes, owner: Ints, region: Reg
     far = np.stack([(p.real <= edges[0]) | (p.real >= edges[1]) for p in (start, end)], axis=1)
     keep = ~drop
     return Pieces(
-        start=start[keep], end=end[keep], owner=owner[keep], left=left[keep], right=right[keep], far=far[keep]
+        start=start[keep],
+        end=end[keep],
+        owner=owner[keep],
+        left=left[keep],
+        right=right[keep],
+        far=far[keep],
+        contacts=tuple(sorted(contacts)),
     )
 
 

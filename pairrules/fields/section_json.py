@@ -118,6 +118,9 @@ def answer(section: CrossSection, *, name: str = "", solution: SectionSolution |
         lacking = "no plane and no grounded conductor lets common-mode current return"
         keys = ("pair.L_nH_per_m", "pair.er_even", "pair.er_modes", "impedance_common_ohm")
         why = dict.fromkeys(keys, lacking)
+    if solution.joined:
+        lacking = f"grounded copper that touches ({', '.join(solution.joined)}) has no bounded capacitance to itself"
+        why |= dict.fromkeys(("C_pF_per_m", "Cair_pF_per_m", "G_over_omega_pF_per_m"), lacking)
     found: dict[str, Any] = {
         "id": section.id,
         "conductors": [conductor.name for conductor in section.conductors],
@@ -277,6 +280,6 @@ def _named(section: CrossSection) -> str:
     return f"section {printable!r}" if section.id else ""
 
 
-def _rows(matrix: np.ndarray[Any, np.dtype[np.float64]], factor: float) -> list[list[float]]:
+def _rows(matrix: np.ndarray[Any, np.dtype[np.float64]], factor: float) -> list[list[float | None]]:
     rows: list[list[float]] = (matrix * factor).tolist()
-    return rows
+    return [[value if math.isfinite(value) else None for value in row] for row in rows]

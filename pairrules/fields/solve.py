@@ -58,6 +58,8 @@ class SectionSolution:
     G_per_omega: conductance over angular frequency [F/m] from the loss tangents (the negative imaginary part of the
     complex capacitance, to first order in them; taken as the same at all frequencies). pair: the legs, or `None` where
     the section has not two signals. unknowns: charges solved for. air: charges in air, region by region.
+    joined: names of grounded conductors that touch one another or a plane; capacitance between copper that touches has
+    no bound, so those entries are NaN (the legs' are not concerned).
     """
 
     section: CrossSection
@@ -67,6 +69,7 @@ class SectionSolution:
     pair: Pair | None
     unknowns: int
     air: tuple[AirCharge, ...]
+    joined: tuple[str, ...] = ()
 
 
 def solve_section(section: CrossSection, *, refine: float = 1.0) -> SectionSolution:
@@ -86,18 +89,24 @@ def solve_section(section: CrossSection, *, refine: float = 1.0) -> SectionSolut
     cair = np.zeros((count, count))
     unknowns = 0
     air = []
+    contacts: list[tuple[int, int]] = []
     for region in regions_of(section):
         found = _solve_region(region, refine)
         place = np.ix_(region.members, region.members)
         complex_c[place] = found.capacitance
         cair[place] = found.air_capacitance
         unknowns += found.unknowns
+        contacts += found.contacts
         air.append(_air_charge(region, found, count))
     mirror = mirrored_order(section)
     if mirror is not None:  # the law holds exactly; rounding in the mesh would blur it
         swap = np.ix_(mirror, mirror)
         complex_c, cair = (complex_c + complex_c[swap]) / 2, (cair + cair[swap]) / 2
     c, g = complex_c.real.copy(), -complex_c.imag
+    groups = _joined(contacts)
+    for group in groups:
+        among = np.ix_(sorted(group - {PLANE}), sorted(group - {PLANE}))
+        c[among] = cair[among] = g[among] = np.nan
     return SectionSolution(
         section=section,
         C=_frozen(c),
@@ -106,7 +115,17 @@ def solve_section(section: CrossSection, *, refine: float = 1.0) -> SectionSolut
         pair=pair_of(section, c, cair),
         unknowns=unknowns,
         air=tuple(air),
+        joined=tuple(section.conductors[place].name for place in sorted(set().union(*groups) - {PLANE})),
     )
+
+
+def _joined(contacts: list[tuple[int, int]]) -> list[set[int]]:
+    """Groups of what hangs together by contacts."""
+    groups: list[set[int]] = []
+    for pair in contacts:
+        touched = [group for group in groups if group & set(pair)]
+        groups = [group for group in groups if not group & set(pair)] + [set(pair).union(*touched)]
+    return groups
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -114,6 +133,7 @@ class _Found:
     capacitance: Complexes
     air_capacitance: Floats
     unknowns: int
+    contacts: tuple[tuple[int, int], ...]
     start: Complexes
     end: Complexes
     owner: Ints
@@ -121,7 +141,8 @@ class _Found:
 
 
 def _solve_region(region: Region, refine: float) -> _Found:
-    cells = cells_of(pieces_of(region), region, refine=refine)
+    pieces = pieces_of(region)
+    cells = cells_of(pieces, region, refine=refine)
     # copper first, then level interfaces, then others: blocks of rows alike are filled faster
     way = cells.end - cells.start
     order = np.argsort((cells.owner == INTERFACE) * (1 + (np.abs(way.imag) > 1e-9 * np.abs(way))), kind="stable")
@@ -154,6 +175,7 @@ def _solve_region(region: Region, refine: float) -> _Found:
         capacitance=(capacitance + capacitance.T) / 2,
         air_capacitance=(in_air_only + in_air_only.T) / 2,
         unknowns=len(owner) + int(open_below),
+        contacts=pieces.contacts,
         start=start[:copper],
         end=end[:copper],
         owner=owner[:copper],

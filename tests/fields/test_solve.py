@@ -245,6 +245,9 @@ def test_impedances_are_those_of_the_definitions() -> None:
     [
         ((bar("a", 0, 1, 1, 2), bar("b", 0.5, 1.5, 1.5, 2.5)), "conductor 'b' and conductor 'a' touch"),
         ((bar("a", 0, 1, 1, 2), bar("b", 1, 2, 1, 2)), "conductor 'b' and conductor 'a' touch"),
+        ((bar("a", 0, 1, 1, 2), bar("b", 1, 2, 2, 3)), "conductor 'b' and conductor 'a' touch"),
+        ((strip("a", 0, 1, 1), strip("b", 1, 1.5, 1)), "conductor 'b' and conductor 'a' touch"),
+        ((strip("a", 0, 1, 1), bar("b", 1, 2, 0.5, 2, "grounded")), "conductor 'b' and conductor 'a' touch"),
         ((strip("a", 0, 1, 1), strip("b", 0.5, 1.5, 1)), "conductor 'b' and conductor 'a' touch"),
         ((bar("a", 0, 3, 1, 3), bar("b", 1, 2, 1.5, 2.5)), "conductor 'b' and conductor 'a' touch"),
         ((bar("a", 0, 1, -1, 1),), "conductor 'a' reaches through an infinite plane"),
@@ -276,6 +279,10 @@ def test_grounded_copper_may_touch_planes_and_itself() -> None:
         conductors=(strip("plus", -2, -1, 1), strip("minus", -0.5, 0.5, 1), *walls), planes=(Plane(y=0.0),)
     )
     solved = solve_section(section)
+    assert solved.joined == ("wall", "lid")
+    assert np.all(np.isnan(solved.C[2:, 2:]))
+    assert np.all(np.isfinite(solved.C[:2]))
+    assert solved.pair is not None
     joined = Conductor(name="wall", role="grounded", polygon=((1, 0), (2, 0), (2, 1), (3, 1), (3, 2), (1, 2)))
     whole = solve_section(dataclasses.replace(section, conductors=(*section.conductors[:2], joined)))
     assert solved.C[:2, :2] == pytest.approx(whole.C[:2, :2], rel=1e-3)
