@@ -35,7 +35,7 @@ function chart({ title, width, height = 190, xLabel, yLabel, xFrom, xTo, log = f
   const left = 60;
   const tagged = [...series, ...bounds, ...(band ? [band] : [])].map((one) => (one.name || "").length);
   const right = small ? 8 : Math.max(60, 16 + 6.4 * Math.max(...tagged));
-  const top = 10;
+  const top = 24;
   const bottom = 38;
   const toX = log ? (x) => left + ((Math.log10(x) - Math.log10(xFrom)) / Math.max(Math.log10(xTo / xFrom), 1e-9)) * (width - left - right)
     : (x) => left + ((x - xFrom) / Math.max(xTo - xFrom, 1e-9)) * (width - left - right);
@@ -61,7 +61,7 @@ function chart({ title, width, height = 190, xLabel, yLabel, xFrom, xTo, log = f
     if (i % every === 0) svg.append(shape("text", { class: "tick-x", x: fixed(toX(x)), y: height - bottom + 16 }, log ? hertz(x) : figure(x)));
   });
   svg.append(shape("text", { class: "axis", x: left + (width - left - right) / 2, y: height - 4 }, xLabel),
-    shape("text", { class: "axis", transform: `translate(12 ${top + (height - top - bottom) / 2}) rotate(-90)` }, yLabel));
+    shape("text", { class: "axis axis-y", x: 8, y: 15 }, yLabel));
   if (beyond && beyond.from < xTo) {
     const x = Math.max(toX(Math.max(beyond.from, xFrom)), left);
     svg.append(shape("rect", { class: "beyond", x: fixed(x), y: top, width: fixed(width - right - x), height: height - top - bottom }),

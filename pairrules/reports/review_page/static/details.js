@@ -24,7 +24,7 @@ function detailParts(pair, detail, { still, width }) {
     overFrequency(detail, width, still),
     limitsOf(detail, still),
     figuresOf(detail),
-    restsOn(pair, detail),
+    restsOn(detail, still),
   ].filter(Boolean);
 }
 
@@ -303,9 +303,9 @@ function figuresOf(detail) {
     detail.figures.map(([label, value, unit]) => make("div", null, make("dt", null, label), make("dd", null, value === "?" ? "unknown" : `${value.replace("-", "−")}${unit ? ` ${unit}` : ""}`)))));
 }
 
-function restsOn(pair, detail) {
+function restsOn(detail, still) {
   const block = (title, texts) => (texts.length ? [make("h4", null, title), make("ul", null, texts.map((text) => make("li", null, text)))] : "");
   return make("section", { class: "rests" }, make("h3", null, "Model and assumptions"),
-    block("Models, set out under “What this rests on”", board.models), block("Assumed beside what is given", detail.assumed),
+    still ? "" : block("Models, set out under “What this rests on”", board.models), block("Assumed beside what is given", detail.assumed),
     block("Not known", detail.missing), block("Rules that could not judge", detail.unjudged.map(([rule, missing]) => `${rule}: ${missing}`)));
 }

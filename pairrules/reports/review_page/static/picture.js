@@ -5,7 +5,7 @@ class Picture {
   constructor({ label, extent, height, width = 0, told = () => {}, still = false }) {
     this.home = widened(extent, 0.04);
     this.view = [...this.home];
-    this.told = told;
+    this.told = () => {};
     // On paper nothing can be measured, as paper is laid out after it is drawn.
     this.size = still ? [width, height] : null;
     this.body = shape("g");
@@ -15,6 +15,7 @@ class Picture {
     this.element = make("div", { class: "frame" }, this.svg);
     if (!still) this.listen();
     this.show();
+    this.told = told;
   }
 
   listen() {
