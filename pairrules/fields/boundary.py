@@ -214,7 +214,10 @@ def _contacts(start: Complexes, end: Complexes, owner: Ints, region: Region) -> 
     found = set(zip(whose[one].tolist(), whose[other].tolist(), strict=True))
     for bound in (region.bottom, region.top):
         if bound is not None:
-            found |= {(PLANE, place) for place in whose[np.abs(points.imag - bound) < 2 * _TOUCH].tolist()}
+            for place in region.members:  # a piece that lies in the plane is gone already, so the conductor is asked
+                heights = np.array(region.section.conductors[place].y_range) / region.scale
+                if np.min(np.abs(heights - bound)) < 2 * _TOUCH:
+                    found.add((PLANE, place))
     for a, b in sorted(found):
         _refuse_contact(region, a, b)
     return found

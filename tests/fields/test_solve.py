@@ -273,6 +273,15 @@ def test_a_leg_must_not_touch_a_plane_that_ends() -> None:
     assert str(caught.value) == "conductor 'a' and a plane touch"
 
 
+def test_grounded_copper_that_lies_in_a_plane_is_the_plane() -> None:
+    bare = SECTIONS["strips"]
+    flat = dataclasses.replace(bare, conductors=(*bare.conductors, strip("flat", 0.0, 1.0, 0.0, "grounded")))
+    solved = solve_section(flat)
+    assert solved.joined == ("flat",)
+    assert np.isnan(solved.C[2, 2])
+    assert solved.C[:2, :2] == pytest.approx(solve_section(bare).C, rel=1e-9)
+
+
 def test_grounded_copper_may_touch_planes_and_itself() -> None:
     walls = (bar("wall", 1, 2, 0, 2, "grounded"), bar("lid", 1.5, 3, 1, 2, "grounded"))
     section = CrossSection(
