@@ -70,6 +70,7 @@ def table(board: str, files: Sequence[str], pairs: Sequence[Settled], look: Look
     ]
     for one in pairs:
         named = f"class {one.pair.klass}" if one.pair.klass is not None else "no class"
+        named += "" if one.class_place or one.pair.klass is None else ", which the settings do not have"
         place = f"  [{one.class_place}]" if one.class_place else ""
         lines += ["", *_wrapped(f"{one.pair.name}  ({named}){place}", look, "", "    ")]
         for value in one.values:

@@ -22,7 +22,9 @@ def settings_schema(forms: Mapping[str, RuleForm]) -> Schema:
     """
     return {
         "$schema": "https://json-schema.org/draft/2020-12/schema",
-        "title": "pairrules settings, version 1",
+        "$id": "urn:pairrules:schema:settings:1",
+        "title": "Settings, version 1",
+        "description": "What `pairrules.yaml` may say, or the file that --settings names. Quantities carry their units.",
         **_schema(settings_form(forms)),
     }
 

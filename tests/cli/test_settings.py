@@ -104,7 +104,7 @@ def test_new_settings_are_read_by_check_and_ignore_those_that_lie_there(
     own = tmp_path / "new.yaml"
     assert run(["settings", "--new", "--output", str(own), path]) == 0
     assert capsys.readouterr() == ("", "")
-    assert [pair.klass for pair in find_pairs(path, own).pairs] == ["other-pairs", "other-pairs"]
+    assert [pair.klass for pair in check(path, own).pairs] == ["other-pairs", "other-pairs"]
     text = own.read_text(encoding="utf-8")
     assert text.startswith("# First settings for buoy.json: 2 pairs in likely classes.\n")
 
@@ -120,8 +120,7 @@ def test_new_settings_of_the_demo_board(tmp_path: Path) -> None:
     own = tmp_path / "new.yaml"
     path = str(demo_folder() / "tide-gauge-buoy.json")
     assert run(["settings", "--new", "--pair", "[CU]*", "--output", str(own), path]) == 0
-    result = check(path, own, pairs="[CU]*")
-    assert [(pair.name, pair.klass) for pair in result.pairs] == [
+    assert [(pair.name, pair.klass) for pair in find_pairs(path, own, pairs="[CU]*").pairs] == [
         ("CAN", "can"),
         ("CONVERTER", "converter"),
         ("USB", "usb"),
@@ -137,3 +136,12 @@ def test_new_settings_of_the_consortiums_board(tmp_path: Path) -> None:
     classes = {pair.name: pair.klass for pair in find_pairs(REAL, own).pairs}
     assert len(classes) == 17 and set(classes.values()) == {"serial-lane-pairs"}
     assert "# stackup:\n" in own.read_text(encoding="utf-8")
+
+
+def test_a_class_that_only_the_board_file_knows(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    limits(tmp_path)
+    declared = [{"name": "IN", "plus": "IN_P", "minus": "IN_N", "class": "winch"}]
+    assert run(["settings", str(put(tmp_path, pairs=declared))]) == 0
+    out = capsys.readouterr().out
+    assert "\nIN  (class winch, which the settings do not have)\n  limits\n" in out
+    assert "\nOK  (no class)\n  limits\n" in out

@@ -7,11 +7,11 @@ import pytest
 
 from pairrules.checks.rule import all_rules
 from pairrules.result import SEVERITIES
-from pairrules.settings.limit import Limit, RuleForm
+from pairrules.settings.limit import Limit
 from pairrules.settings.read_settings import read_settings
 from pairrules.shipped import rules_folder
 
-FORMS = {name: RuleForm(quantities=rule.quantities, required=rule.required) for name, rule in all_rules().items()}
+FORMS = {name: rule.form for name, rule in all_rules().items()}
 SETS = sorted(file.stem for file in rules_folder().glob("*.yaml") if file.stem != "base")
 
 

@@ -7,14 +7,15 @@ import jsonschema
 import pytest
 import yaml
 
+from fixtures.write_settings_schema import text
 from pairrules.checks.rule import all_rules
 from pairrules.errors import SettingsError
-from pairrules.settings.limit import RuleForm
+from pairrules.schemas import schema_text
 from pairrules.settings.read_settings import read_settings
 from pairrules.settings.schema import settings_schema
 from pairrules.shipped import rules_folder
 
-FORMS = {name: RuleForm(quantities=rule.quantities, required=rule.required) for name, rule in all_rules().items()}
+FORMS = {name: rule.form for name, rule in all_rules().items()}
 SCHEMA = settings_schema(FORMS)
 
 GOOD = """
@@ -81,3 +82,7 @@ def test_reader_and_schema_refuse_the_same(text: str) -> None:
 @pytest.mark.parametrize("file", sorted(rules_folder().glob("*.yaml")), ids=lambda file: file.stem)
 def test_every_shipped_set_follows_the_schema(file: Path) -> None:
     assert valid(file.read_text(encoding="utf-8"))
+
+
+def test_the_shipped_file_is_the_schema_of_this_form() -> None:
+    assert schema_text("settings") == text(), "run python fixtures/write_settings_schema.py"
