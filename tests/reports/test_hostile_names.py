@@ -47,7 +47,7 @@ def evil(name: str) -> Result:
 @NAMES
 @pytest.mark.parametrize("report", sorted({*reports_of("check"), *reports_of("measure")}))
 def test_nothing_hidden_gets_into_any_report(report: str, name: str) -> None:
-    one = (reports_of("check") | reports_of("measure"))[report]
+    one = {**reports_of("check"), **reports_of("measure")}[report]
     text = one.render(evil(name), Look())
     texts = [text, one.join((text, text))]
     if one.unreadable is not None:
