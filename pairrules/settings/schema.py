@@ -24,7 +24,7 @@ def settings_schema(forms: Mapping[str, RuleForm]) -> Schema:
         "$schema": "https://json-schema.org/draft/2020-12/schema",
         "$id": "urn:pairrules:schema:settings:1",
         "title": "Settings, version 1",
-        "description": "What `pairrules.yaml` may say, or the file that --settings names. Quantities carry their units.",
+        "description": "What `pairrules.yaml` may say, or the file that --settings names. Quantities carry units.",
         **_schema(settings_form(forms)),
     }
 
