@@ -94,14 +94,20 @@ def read_waivers(path: Path, *, rules: Iterable[str], text: str | None = None) -
         text = waivers_text(path, faults)
     node = parse(text or "", faults)
     found: list[Waiver] = []
-    # A file that is empty, or all comments, is a table without entries to the parser.
-    if node is not None and not (isinstance(node, nodes.Mapping) and not node.entries):
+    if node is not None and not _says_nothing(node):
         entries: tuple[Entry, ...] = read_shape(node, WAIVERS_FORM, "waivers", faults) or ()
         known = sorted(rules)
         found = [waiver for entry in entries if (waiver := _waiver(entry, known, faults)) is not None]
         _refuse_twins(found, entries, faults)
     faults.raise_if_any()
     return tuple(found)
+
+
+def _says_nothing(node: nodes.Node) -> bool:
+    """A file that is empty, or all comments, is a table without entries to the parser, an empty document a text."""
+    if isinstance(node, nodes.Mapping):
+        return not node.entries
+    return isinstance(node, nodes.Scalar) and node.empty
 
 
 def waivers_text(path: Path, faults: Faults) -> str | None:
