@@ -3,11 +3,14 @@
 from __future__ import annotations
 
 import json
+import re
 from pathlib import Path
 from xml.etree import ElementTree as ET
 
 import pytest
 
+from fixtures.boards import serpentine_leg
+from fixtures.ipc2581_writer import to_ipc2581
 from pairrules.cli import run
 from tests.cli.boards import limits, put
 
@@ -124,3 +127,19 @@ def test_wrong_settings_leave_nothing_written(there: Path, capsys: pytest.Captur
     assert run(["check", "buoy.json", "--report", "junit=out.xml"]) == 2
     assert "pairrules: out.xml is not written, since not all boards could be judged" in capsys.readouterr().err
     assert left(there) == ["buoy.json", "pairrules.yaml"]
+
+
+def test_a_result_points_at_the_line_where_the_net_s_copper_stands(there: Path) -> None:
+    path = there / "buoy.xml"
+    path.write_bytes(to_ipc2581(serpentine_leg().board))
+    assert run(["check", "buoy.xml", "--report", "sarif=out.sarif"]) == 1
+    (one,) = json.loads((there / "out.sarif").read_text())["runs"][0]["results"]
+    lines = path.read_text().splitlines()
+    nets = []
+    for place in (one["locations"][0], one["relatedLocations"][0]):
+        line = place["physicalLocation"]["region"]["startLine"]
+        assert "<Features>" in lines[line - 1]
+        # The net is named by the set that the features stand in.
+        before = "\n".join(lines[:line])
+        nets.append(re.findall(r'<Set net="([^"]+)"', before)[-1])
+    assert nets == ["IN_P", "IN_N"]
