@@ -66,6 +66,8 @@ def _pair(pair: PairResult) -> dict[str, Any]:
         "findings": [_finding(finding) for finding in pair.findings],
         "unjudged": [{"rule": rule.rule, "missing": rule.missing} for rule in pair.unjudged],
         "missing": list(pair.missing),
+        "assumed": list(pair.assumed),
+        "quasi_static_hz": _number(pair.quasi_static_hz),
     }
 
 
