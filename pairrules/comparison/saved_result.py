@@ -100,6 +100,7 @@ def _pair(pair: _Table) -> PairResult:
             Unjudged(rule=one.take("rule", _text), missing=one.take("missing", _text))
             for one in pair.tables("unjudged", optional=True)
         ),
+        missing=pair.texts("missing", optional=True),
         ends_plus=pair.texts("ends_plus", optional=True),
         ends_minus=pair.texts("ends_minus", optional=True),
     )
@@ -125,6 +126,7 @@ def _finding(one: _Table) -> Finding:
             Place(layer=at.take("layer", _text), x_mm=at.take("x_mm", _number), y_mm=at.take("y_mm", _number))
             for at in one.tables("at")
         ),
+        source=one.take("source", _text, ""),
         waived=one.take("waived", _flag),
         fingerprint=one.take("fingerprint", _text),
     )

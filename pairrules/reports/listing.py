@@ -50,6 +50,9 @@ def render(result: Result, look: Look) -> str:
 def _summary(result: Result, look: Look) -> list[str]:
     board, summary = result.board, result.summary
     counts = [f"{summary[key]} {word}" for key, word in _SUMMARY if summary[key]]
+    stood = sum(pair.verdict == "flag" and _stood_before(pair) for pair in result.pairs)
+    if stood:
+        counts[0] += f" ({stood} as before)"
     count = summary["pairs"]
     pairs = "no pairs" if not count else f"{count} pair{'' if count == 1 else 's'}"
     about = " ".join(word for word in (safe(board.format), safe(board.revision)) if word)
@@ -57,11 +60,16 @@ def _summary(result: Result, look: Look) -> list[str]:
     return _wrap(f"{head} ({about}, units {safe(board.units)})", look, "", "  ")
 
 
+def _stood_before(pair: PairResult) -> bool:
+    """Whether every finding that stands did so in an earlier result and is no worse."""
+    return all(finding.baseline == "unchanged" for finding in pair.findings if not finding.waived)
+
+
 def _worst_first(pair: PairResult) -> tuple[bool, int, int, str]:
     """Pairs whose findings all stood before come last."""
     standing = [finding for finding in pair.findings if not finding.waived]
     worst = min(SEVERITIES.index(finding.severity) for finding in standing)
-    return all(finding.baseline == "unchanged" for finding in standing), worst, -len(standing), pair.name
+    return _stood_before(pair), worst, -len(standing), pair.name
 
 
 def _flagged(result: Result, pair: PairResult, look: Look) -> list[str]:
