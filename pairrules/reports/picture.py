@@ -22,7 +22,7 @@ from pairrules.result import PairResult, Result
 
 PLUS, MINUS = "#0072b2", "#d55e00"
 _BLACK, _GREY, _PALE = "#000000", "#8c8c8c", "#d9d9d9"
-_WIDTH, _MARGIN, _TALLEST, _LEAST_TALL = 1000, 20, 620, 120
+_WIDTH, _MARGIN, _TALLEST = 1000, 20, 620
 _LINE, _CHARACTERS, _CHARACTER = 17, 125, 7.8
 """A line's height, the characters on it, and the width of one, generously: what a viewer's font has is not known."""
 
@@ -70,7 +70,7 @@ class _Picture:
         self.pair, self.drawing, self.layers = pair, drawing, layers
         x0, y0, x1, y1 = drawing.window
         self.canvas = Canvas.fitted(
-            (x0, y0, x1, y1), left=_MARGIN, top=40, width=_WIDTH - 2 * _MARGIN, tallest=_TALLEST, least=_LEAST_TALL
+            (x0, y0, x1, y1), left=_MARGIN, top=40, width=_WIDTH - 2 * _MARGIN, tallest=_TALLEST
         )
         self.bottom = self.canvas.top + self.canvas.height
         # Several pictures may stand in one page, where an identifier counts for all of them.
@@ -98,7 +98,7 @@ class _Picture:
             + pattern("open0", 9, 45, hatch)
             + pattern("open1", 9, -45, hatch)
             + pattern("reference", 6, 0, dots)
-            + f'<clipPath id="{mark}-window"><rect x="{canvas.left}" y="{canvas.top}" '
+            + f'<clipPath id="{mark}-window"><rect x="{canvas.left:.2f}" y="{canvas.top}" '
             f'width="{canvas.width:.2f}" height="{canvas.height:.2f}"/></clipPath>\n</defs>\n'
         )
 
@@ -132,7 +132,7 @@ class _Picture:
         out += self._parts()
         out.append("</g>\n")
         out.append(
-            f'<rect x="{canvas.left}" y="{canvas.top}" width="{canvas.width:.2f}" height="{canvas.height:.2f}" '
+            f'<rect x="{canvas.left:.2f}" y="{canvas.top}" width="{canvas.width:.2f}" height="{canvas.height:.2f}" '
             f'fill="none" stroke="{_BLACK}"/>\n'
         )
         ways = [xy for piece in (*drawing.plus, *drawing.minus) for xy in self._samples(piece)]
@@ -267,9 +267,8 @@ def _caption(result: Result, pair: PairResult, top: float) -> tuple[str, int]:
         waived = " (waived)" if finding.waived else ""
         lines.append(f"{number}  {finding.severity}{waived} {finding.rule}: {finding.message}")
     lines += [f"undecided {one.rule}: {one.missing}" for one in pair.unjudged]
-    if pair.drawing is not None and pair.drawing.unknown_layers and result.drawing is not None:
-        names = ", ".join(result.drawing.layers[layer] for layer in pair.drawing.unknown_layers)
-        lines.append(f"not in the file, so its reference copper is unknown: {names}")
+    if pair.drawing is not None and pair.drawing.unknown_layers:
+        lines.append("not all copper next to the legs' layers is in the file: where the reference is open is not known")
     lines += [
         f"{PurePath(result.board.file).name}, SHA-256 {result.board.sha256[:16]}…, pairrules {result.version}",
         CAUTIONS,

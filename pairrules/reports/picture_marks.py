@@ -29,22 +29,12 @@ class Canvas:
 
     @classmethod
     def fitted(
-        cls,
-        window: tuple[float, float, float, float],
-        *,
-        left: float,
-        top: float,
-        width: float,
-        tallest: float,
-        least: float,
+        cls, window: tuple[float, float, float, float], *, left: float, top: float, width: float, tallest: float
     ) -> Canvas:
-        """The window as large as fits; a flat one is given more of the board above and below, up to `least`."""
-        x0, y0, x1, y1 = window
-        scale = min(width / max(x1 - x0, 1e-9), tallest / max(y1 - y0, 1e-9), _MOST_SCALE)
-        wide, tall = width / scale, max(y1 - y0, least / scale)
-        middle_x, middle_y = (x0 + x1) / 2, (y0 + y1) / 2
-        seen = (middle_x - wide / 2, middle_y - tall / 2, middle_x + wide / 2, middle_y + tall / 2)
-        return cls(seen, left, top, scale, wide * scale, tall * scale)
+        """The window as large as fits, in the middle of `width`. Beyond it no copper is known, so no more is shown."""
+        wide, tall = window[2] - window[0], window[3] - window[1]
+        scale = min(width / max(wide, 1e-9), tallest / max(tall, 1e-9), _MOST_SCALE)
+        return cls(window, left + (width - wide * scale) / 2, top, scale, wide * scale, tall * scale)
 
     def xy(self, at: Point) -> tuple[float, float]:
         """The place on the picture."""

@@ -65,7 +65,7 @@ def test_an_arc_bulges_to_its_own_side() -> None:
     assert len(halves) == 2
     # Counter-clockwise on the board, whose y points up, is against SVG's positive angle: sweep flag 0.
     assert {flag for _, flag, _, _ in halves} == {"0"}
-    canvas = Canvas.fitted(one.drawing.window, left=20, top=40, width=960, tallest=620, least=120)  # type: ignore[union-attr]
+    canvas = Canvas.fitted(one.drawing.window, left=20, top=40, width=960, tallest=620)  # type: ignore[union-attr]
     assert float(halves[0][0]) == pytest.approx(canvas.scale, abs=0.01)
     # The arc's middle lies right of and below its chord: (9 + sin 45°, 2 − cos 45°).
     assert (float(halves[0][2]), float(halves[0][3])) == pytest.approx(canvas.xy((9.70711, 1.29289)), abs=0.02)
@@ -83,16 +83,17 @@ def test_without_a_drawing_there_is_no_picture() -> None:
 def test_flat_tall_and_pointlike_windows_keep_their_proportions_and_stay_seen(
     window: tuple[float, float, float, float],
 ) -> None:
-    canvas = Canvas.fitted(window, left=20, top=40, width=960, tallest=620, least=120)
+    canvas = Canvas.fitted(window, left=20, top=40, width=960, tallest=620)
     for x, y in ((window[0], window[1]), (window[2], window[3])):
         seen_x, seen_y = canvas.xy((x, y))
-        assert 20 <= seen_x <= 980 and 40 - 1e-6 <= seen_y <= 40 + canvas.height + 1e-6
-    assert canvas.height >= 120 - 1e-6 and canvas.height <= 620 + 1e-6
+        assert 20 - 1e-6 <= seen_x <= 980 + 1e-6 and 40 - 1e-6 <= seen_y <= 40 + canvas.height + 1e-6
+    assert canvas.height <= 620 + 1e-6 and canvas.width <= 960 + 1e-6
+    assert canvas.height / canvas.scale == pytest.approx(window[3] - window[1])
 
 
 def test_the_scale_bar_is_as_long_as_it_says() -> None:
     for width in (0.7, 3.0, 24.0, 400.0):
-        canvas = Canvas.fitted((0.0, 0.0, width, width / 4), left=20, top=40, width=960, tallest=620, least=120)
+        canvas = Canvas.fitted((0.0, 0.0, width, width / 4), left=20, top=40, width=960, tallest=620)
         bar = scale_bar(canvas)
         left, right = re.findall(r"M([\d.]+) [\d.]+v8", bar)
         (length,) = re.findall(r">([\d.e-]+) mm<", bar)
@@ -101,7 +102,7 @@ def test_the_scale_bar_is_as_long_as_it_says() -> None:
 
 
 def test_findings_at_one_place_share_a_mark_and_marks_keep_apart() -> None:
-    canvas = Canvas.fitted((0.0, 0.0, 20.0, 10.0), left=20, top=40, width=960, tallest=620, least=120)
+    canvas = Canvas.fitted((0.0, 0.0, 20.0, 10.0), left=20, top=40, width=960, tallest=620)
     places = [(number, (5.0, 5.0)) for number in (1, 2, 2)] + [
         (number, (5.0 + number / 5, 5.0)) for number in (3, 4, 5)
     ]
