@@ -20,9 +20,10 @@ VERSION = 1
 """Rises whenever the same copper would get another fingerprint."""
 
 STEP_MM = 1e-4
-TOLERANCE = 4
+TOLERANCE = 24
 """Steps by which two numbers of a sketch may differ. Measured on the demo board: noise of 1e-6 mm on every point moves
-them by less than one step; moving any one corner of a track by 5 µm moves the most moved one by tens."""
+them by half a step at most, and so on in proportion; moving one corner of a track by 5 µm moves the most moved one by
+38 at least."""
 
 _TURN = 1 << 16
 _FORM = re.compile(rf"(?P<version>[0-9]+):(?P<whole>[0-9a-f]{{8}})-(?P<sketch>[0-9a-f]{{{4 * NUMBERS}}})")
