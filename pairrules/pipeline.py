@@ -5,7 +5,6 @@ from __future__ import annotations
 import hashlib
 import os
 import stat
-from collections.abc import Callable
 from dataclasses import dataclass
 from datetime import date
 from fnmatch import fnmatchcase
@@ -13,43 +12,32 @@ from pathlib import Path
 
 from pairrules import __version__
 from pairrules.balance.electrical import electrical
-from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.balance.stack_heights import lacking
 from pairrules.board.board import Board
 from pairrules.board.given_stackup import with_stackup
 from pairrules.board.given_values import with_part_values
-from pairrules.checks.electrical_figures import ps_per_mm
-from pairrules.checks.held_limits import held_limits
-from pairrules.checks.judge_pair import judge_pair, verdict
-from pairrules.checks.measures import balance_figures, geometric_measures, with_electrical
-from pairrules.checks.pin_lengths import pin_extra
-from pairrules.checks.rule import Subject, all_rules
+from pairrules.checks.rule import all_rules
 from pairrules.checks.rule_help import rule_infos
-from pairrules.checks.waiving import left_over, waive
-from pairrules.drawn.pair_drawing import board_drawing, pair_drawing
-from pairrules.drawn.window_copper import DrawnBoard
+from pairrules.checks.waiving import left_over
+from pairrules.drawn.pair_drawing import board_drawing
 from pairrules.errors import BoardError, SettingsError, UsageError
 from pairrules.fields.cross_section import CrossSection
 from pairrules.fields.solve import SectionSolution
 from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.measure import measure_link
 from pairrules.pairing.find_links import PairRequest, find_links
-from pairrules.pairing.link import Hop, Link
+from pairrules.pairing.link import Link
 from pairrules.pairing.reference_nets import reference_nets
 from pairrules.readers.packing import MOST_BYTES
 from pairrules.readers.reader import read_board
-from pairrules.result import BoardSummary, FoundPair, FoundPairs, PairResult, Result, SeriesPart, WaiverState
+from pairrules.result import BoardSummary, FoundPair, FoundPairs, Result, WaiverState
+from pairrules.running.pair_stage import PairStage, found_pair, net_names
+from pairrules.running.workers import Progress, judge_links
 from pairrules.settings.likely_set import DraftPair
 from pairrules.settings.pair_class import PairClass
 from pairrules.settings.read_settings import Settings, find_settings, read_settings
 from pairrules.settings.starter import Draft, starter
 from pairrules.settings.waivers import Waiver, read_waivers, waivers_path
-
-BESIDE_RULES = frozenset({"neighbour-tilt"})
-"""Rules that look at foreign copper beside the legs, which costs most to find and is left out unless one is asked."""
-
-Progress = Callable[[str, int, int], None]
-"""Told what is being done, how much of it is done, and how much there is."""
 
 
 def check(
@@ -61,6 +49,7 @@ def check(
     drawing: bool = False,
     today: date | None = None,
     settings_of: str | Path | None = None,
+    jobs: int = 1,
     progress: Progress | None = None,
 ) -> Result:
     """Read a board, measure its pairs, judge them.
@@ -74,6 +63,7 @@ def check(
     drawing: whether the result carries what pictures and pages draw, which takes longer.
     today: the day that decides which waivers have expired; `None` for the clock's.
     settings_of: the board whose settings and waivers hold, where it is not this one and `settings` is `None`.
+    jobs: how many processes measure pairs; the result is the same for any number.
     progress: called as the work goes on.
 
     Raises
@@ -82,88 +72,28 @@ def check(
     faults of a file at once. UsageError: no pair matches `pairs`.
     """
     opened = _open(path, settings, pairs=pairs, step=step, settings_of=settings_of)
-    rules, board = all_rules(), opened.board
-    waivers = read_waivers(_waiver_file(opened.settings, settings_of or path, settings), rules=rules)
+    waivers = read_waivers(_waiver_file(opened.settings, settings_of or path, settings), rules=all_rules())
+    stage = PairStage(
+        board=opened.board,
+        settings=opened.settings,
+        reference=opened.reference,
+        waivers=waivers,
+        day=today or date.today(),
+        drawing=drawing,
+    )
+    judged = judge_links(stage, opened.links, jobs=jobs, name=str(path), progress=progress)
     states: dict[Waiver, list[WaiverState]] = {waiver: [] for waiver in waivers}
-    day = today or date.today()
-    copper, store = BoardCopper(board, opened.reference), dict[CrossSection, SectionSolution]()
-    results, drawn = [], DrawnBoard(copper)
-    for done, link in enumerate(opened.links):
-        if progress is not None:
-            progress("measuring pairs", done, len(opened.links))
-        klass = opened.settings.class_of(link.name, _net_names(board, link), link.klass)
-        reach = None if klass is None else klass.reach_mm
-        limits = opened.settings.limits_for(klass)
-        beside = bool(limits.keys() & BESIDE_RULES)
-        geometry = measure_link(board, link, reach_mm=reach, reference=opened.reference, copper=copper, beside=beside)
-        figures = electrical(board, link, geometry, klass, copper=copper, store=store)
-        measures = with_electrical(geometric_measures(geometry), figures)
-        pins = pin_extra(
-            board,
-            link,
-            geometry,
-            lengths=opened.settings.pin_lengths_for(klass),
-            expected=() if klass is None else klass.expects_pin_lengths,
-            slowness=ps_per_mm(figures),
-        )
-        breakout = 0.0 if klass is None else klass.breakout_mm or 0.0
-        subject = Subject(
-            board=board,
-            link=link,
-            geometry=geometry,
-            measures=measures,
-            breakout_mm=breakout,
-            electrical=figures,
-            klass=klass,
-            reference=opened.reference,
-            pins=pins,
-        )
-        judgement = judge_pair(subject, limits, rules, copper)
-        nets = [_nets(board, hops) for hops in (link.hops_plus, link.hops_minus)]
-        own = [waiver for waiver in waivers if waiver.means(link.name, *nets)]
-        judgement, became = waive(judgement, own, day, name=link.name)
-        for waiver, state in zip(own, became, strict=True):
-            states[waiver].append(state)
-        balance = balance_figures(figures, () if klass is None else klass.frequencies)
-        found = _found_pair(board, link, None if klass is None else klass.name)
-        notes = (*_notes(link, None if klass is None else klass.name, bool(limits)), *filter(None, (pins.missing,)))
-        results.append(
-            PairResult(
-                name=found.name,
-                plus=found.plus,
-                minus=found.minus,
-                klass=found.klass,
-                found_by=found.found_by,
-                nets_plus=found.nets_plus,
-                nets_minus=found.nets_minus,
-                source=found.source,
-                load=found.load,
-                series=found.series,
-                routed=geometry.routed,
-                verdict=verdict(judgement, geometry.routed),
-                measures=measures,
-                balance=balance,
-                findings=judgement.findings,
-                unjudged=judgement.unjudged,
-                missing=tuple(dict.fromkeys((*link.missing, *geometry.missing, *_unknown(figures, klass), *notes))),
-                assumed=figures.assumed,
-                quasi_static_hz=figures.quasi_static_hz,
-                limits=held_limits(limits, rules, judgement, measures, balance),
-                line_plus=_line(board, link.plus, link.hops_plus),
-                line_minus=_line(board, link.minus, link.hops_minus),
-                ends_plus=_ends(board, link.hops_plus),
-                ends_minus=_ends(board, link.hops_minus),
-                drawing=pair_drawing(subject, judgement.findings, limits, rules, drawn=drawn) if drawing else None,
-            )
-        )
+    for one in judged:
+        for place, state in one.waivers:
+            states[waivers[place]].append(state)
     return Result(
         version=__version__,
         board=opened.summary,
-        pairs=tuple(results),
+        pairs=tuple(one.pair for one in judged),
         unpaired=opened.unpaired,
         settings=tuple(Path(name).name for name in opened.settings.files),
-        rules=rule_infos(rules),
-        drawing=board_drawing(board) if drawing else None,
+        rules=rule_infos(all_rules()),
+        drawing=board_drawing(opened.board) if drawing else None,
         waivers=tuple(
             state
             for waiver, found in states.items()
@@ -191,8 +121,8 @@ def find_pairs(path: str | Path, settings: str | Path | None = None, *, pairs: s
     opened = _open(path, settings, pairs=pairs, step=step)
     found = []
     for link in opened.links:
-        klass = opened.settings.class_of(link.name, _net_names(opened.board, link), link.klass)
-        found.append(_found_pair(opened.board, link, None if klass is None else klass.name))
+        klass = opened.settings.class_of(link.name, net_names(opened.board, link), link.klass)
+        found.append(found_pair(opened.board, link, None if klass is None else klass.name))
     return FoundPairs(board=opened.summary, pairs=tuple(found), unpaired=opened.unpaired)
 
 
@@ -203,8 +133,8 @@ def pair_classes(
     opened = _open(path, settings, pairs=pairs, step=step)
     found = []
     for link in opened.links:
-        klass = opened.settings.class_of(link.name, _net_names(opened.board, link), link.klass)
-        found.append((_found_pair(opened.board, link, None if klass is None else klass.name), klass))
+        klass = opened.settings.class_of(link.name, net_names(opened.board, link), link.klass)
+        found.append((found_pair(opened.board, link, None if klass is None else klass.name), klass))
     return opened.settings, tuple(found)
 
 
@@ -219,12 +149,12 @@ def draft_settings(path: str | Path, *, pairs: str = "*", step: str = "", progre
             progress("measuring pairs", done, len(opened.links))
         geometry = measure_link(board, link, reach_mm=None, reference=opened.reference, copper=copper)
         figures = electrical(board, link, geometry, None, copper=copper, store=store)
-        found = _found_pair(board, link, None)
+        found = found_pair(board, link, None)
         ends = (board.parts[part] for part in (link.source, link.load) if part >= 0)
         drafts.append(
             DraftPair(
                 name=found.name,
-                nets=_net_names(board, link),
+                nets=net_names(board, link),
                 declared=link.klass,
                 ends=tuple(" ".join((part.ref, part.value, part.package)).strip() for part in ends),
                 series=tuple(part.ref for part in found.series),
@@ -284,25 +214,6 @@ def _open(
     )
 
 
-def _unknown(figures: PairElectrical, klass: PairClass | None) -> tuple[str, ...]:
-    """Why electrical figures are unknown: always for the sections, for the rest only where the class asks for it."""
-    wanted = {"sections"}
-    if klass is not None and (klass.frequencies or klass.mask):
-        wanted.add("balance")
-    if klass is not None and klass.pickup is not None:
-        wanted |= {"pickup", "electric"} if klass.pickup.flux_density_t is not None else {"electric"}
-    return tuple(why for group, why in figures.missing.items() if group in wanted)
-
-
-def _notes(link: Link, klass: str | None, limited: bool) -> tuple[str, ...]:
-    notes = []
-    if link.klass and link.klass != klass:
-        notes.append(f"the file puts the pair in class {link.klass}, which the settings do not have")
-    if not limited:
-        notes.append("no limit holds for the pair; give it a class with limits in the settings")
-    return tuple(notes)
-
-
 def _stacked(board: Board, settings: Settings) -> Board:
     if settings.stackup is None:
         return board
@@ -351,51 +262,4 @@ def _settings_path(board: str | Path, settings: str | Path | None) -> Path | Non
 
 def _wanted(board: Board, link: Link, pattern: str) -> bool:
     # A name with brackets in it is found by itself, though as a pattern it stands for another.
-    return any(name == pattern or fnmatchcase(name, pattern) for name in (link.name, *_net_names(board, link)))
-
-
-def _nets(board: Board, hops: tuple[Hop, ...]) -> tuple[str, ...]:
-    return tuple(board.nets[hop.net] for hop in hops)
-
-
-def _ends(board: Board, hops: tuple[Hop, ...]) -> tuple[str, ...]:
-    """The pins at which a leg begins and ends."""
-    rows = {row for hop in hops[:1] for row in hop.start} | {row for hop in hops[-1:] for row in hop.end}
-    pads = board.pads
-    return tuple(sorted({f"{board.parts[pads.part[row]].ref}.{pads.pin[row]}" for row in rows if pads.part[row] >= 0}))
-
-
-def _net_names(board: Board, link: Link) -> tuple[str, ...]:
-    hops = (*link.hops_plus, *link.hops_minus)
-    return tuple(dict.fromkeys(board.nets[net] for net in (link.plus, link.minus, *(hop.net for hop in hops))))
-
-
-def _line(board: Board, net: int, hops: tuple[Hop, ...]) -> int:
-    """Line of the file where a leg's copper first stands: that of the net that names it, else of its first that has."""
-    return next((board.net_lines[one] for one in (net, *(hop.net for hop in hops)) if board.net_lines[one]), 0)
-
-
-def _found_pair(board: Board, link: Link, klass: str | None) -> FoundPair:
-    return FoundPair(
-        name=link.name,
-        plus=board.nets[link.plus],
-        minus=board.nets[link.minus],
-        klass=klass or link.klass or None,
-        found_by=link.found_by,
-        nets_plus=tuple(board.nets[hop.net] for hop in link.hops_plus),
-        nets_minus=tuple(board.nets[hop.net] for hop in link.hops_minus),
-        source=board.parts[link.source].ref if link.source >= 0 else "",
-        load=board.parts[link.load].ref if link.load >= 0 else "",
-        series=tuple(part for step in link.series for part in _series(board, step.plus, step.minus)),
-        missing=link.missing,
-    )
-
-
-def _series(board: Board, plus: int, minus: int) -> tuple[SeriesPart, ...]:
-    if plus == minus:
-        return () if plus < 0 else (SeriesPart(ref=board.parts[plus].ref, value=board.parts[plus].value, leg="both"),)
-    return tuple(
-        SeriesPart(ref=board.parts[part].ref, value=board.parts[part].value, leg=leg)
-        for part, leg in ((plus, "plus"), (minus, "minus"))
-        if part >= 0
-    )
+    return any(name == pattern or fnmatchcase(name, pattern) for name in (link.name, *net_names(board, link)))

@@ -35,9 +35,9 @@ ROOMS = {
     "drawing": set(),
     "result": set(),
 }
-"""Each room and those below it. `cli`, `pipeline` and the package itself sit on top and may import everything."""
+"""Each room and those below it. `cli`, `pipeline`, `running` and the package itself sit on top and may import everything."""
 
-TOP = {"cli", "pipeline", "__init__", "__main__"}
+TOP = {"cli", "pipeline", "running", "__init__", "__main__"}
 
 ONLY = {("reports", "board"): {"pairrules.board.coordinates", "pairrules.board.units"}}
 """Reports write coordinates in the file's units, but never see a board."""

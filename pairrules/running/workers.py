@@ -1,0 +1,100 @@
+"""Work in several processes: pairs of one board, or boards; the same results in the same order for any number."""
+
+from __future__ import annotations
+
+import multiprocessing
+import signal
+import sys
+from collections.abc import Callable, Iterable, Iterator, Sequence
+from concurrent.futures import ProcessPoolExecutor
+from concurrent.futures.process import BrokenProcessPool
+from typing import TypeVar
+
+from pairrules.errors import BoardError
+from pairrules.pairing.link import Link
+from pairrules.running.pair_stage import Judged, PairStage
+
+Progress = Callable[[str, int, int], None]
+"""Told what is being done, how much of it is done, and how much there is."""
+
+Given = TypeVar("Given")
+Made = TypeVar("Made")
+
+_MOST_LINKS = 16
+_SHARES = 4
+"""Links go to the workers in so many shares each, `_MOST_LINKS` at most in one, lest one be left with the long ones."""
+
+
+def judge_links(
+    stage: PairStage, links: Sequence[Link], *, jobs: int = 1, name: str = "", progress: Progress | None = None
+) -> list[Judged]:
+    """Every link judged, in order.
+
+    Parameters: jobs: how many processes. name: of the board, for messages. progress: called as the work goes on.
+    Raises: BoardError where a worker process ended before its work was done.
+    """
+    found: list[Judged] = []
+    size = max(1, min(_MOST_LINKS, -(-len(links) // (jobs * _SHARES))))
+    shares = [links[i : i + size] for i in range(0, len(links), size)]
+    if jobs == 1 or len(shares) < 2:
+        for done, link in enumerate(links):
+            if progress is not None:
+                progress("measuring pairs", done, len(links))
+            found.append(stage.judge(link))
+        return found
+    try:
+        for judged in in_processes(_judge_share, shares, jobs=min(jobs, len(shares)), start=_take_stage, given=stage):
+            found += judged
+            if progress is not None:
+                progress("measuring pairs", len(found), len(links))
+    except BrokenProcessPool:
+        raise BoardError(
+            "a worker process ended before its pairs were measured",
+            file=name,
+            remedy="free memory or take fewer --jobs, then run again",
+        ) from None
+    return found
+
+
+def in_processes(
+    work: Callable[[Given], Made],
+    items: Iterable[Given],
+    *,
+    jobs: int,
+    start: Callable[..., None] | None = None,
+    given: object = None,
+) -> Iterator[Made]:
+    """What `work` makes of each item, in order, from `jobs` processes.
+
+    Parameters: start: called once in each process, with `given`.
+    Raises: BrokenProcessPool where a process was ended from outside; what `work` raises.
+    """
+    pool = ProcessPoolExecutor(jobs, mp_context=_context(), initializer=_begin, initargs=(start, given))
+    try:
+        yield from pool.map(work, items)
+    finally:
+        pool.shutdown(cancel_futures=True)
+
+
+def _context() -> multiprocessing.context.BaseContext:
+    """Forked where that is safe, so that workers share the board that has been read."""
+    return multiprocessing.get_context("fork" if sys.platform == "linux" else "spawn")
+
+
+def _begin(start: Callable[..., None] | None, given: object) -> None:
+    # The parent alone answers an interrupt from the keyboard, which reaches all of them.
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
+    if start is not None:
+        start(given)
+
+
+_STAGE: list[PairStage] = []
+"""The stage of this worker process."""
+
+
+def _take_stage(stage: PairStage) -> None:
+    _STAGE[:] = [stage]
+
+
+def _judge_share(links: Sequence[Link]) -> list[Judged]:
+    return [_STAGE[0].judge(link) for link in links]
