@@ -58,7 +58,7 @@ def test_a_class_of_the_file_that_the_settings_do_not_have(tmp_path: Path) -> No
     limits(tmp_path)
     declared = [{"name": "IN", "plus": "IN_P", "minus": "IN_N", "class": "sensor"}]
     first = next(pair for pair in check(put(tmp_path, pairs=declared)).pairs if pair.name == "IN")
-    assert first.klass is None
+    assert first.klass == "sensor"
     assert first.missing[-1] == "the file puts the pair in class sensor, which the settings do not have"
 
 
