@@ -224,6 +224,8 @@ def _contacts(start: Complexes, end: Complexes, owner: Ints, region: Region) -> 
 
 
 def _without_doubles(start: Complexes, end: Complexes, owner: Ints) -> tuple[Complexes, Complexes, Ints]:
+    if not len(start):
+        return start, end, owner
     middle, half = (start + end) / 2, (end - start) / 2
     same = np.abs(middle[:, None] - middle[None, :]) < 2 * _TOUCH
     same &= np.minimum(np.abs(half[:, None] - half[None, :]), np.abs(half[:, None] + half[None, :])) < 2 * _TOUCH

@@ -21,7 +21,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pairrules.fields.boundary import INTERFACE, PLANE, Complexes, Floats, Ints, Region, pieces_of
+from pairrules.fields.boundary import INTERFACE, PLANE, Complexes, Floats, Ints, Pieces, Region, pieces_of
 from pairrules.fields.cross_section import CrossSection
 from pairrules.fields.grading import cells_of
 from pairrules.fields.kernels import Surroundings, interaction
@@ -142,6 +142,8 @@ class _Found:
 
 def _solve_region(region: Region, refine: float) -> _Found:
     pieces = pieces_of(region)
+    if not np.any(pieces.owner != INTERFACE):
+        return _nothing(len(region.members), pieces)
     cells = cells_of(pieces, region, refine=refine)
     # copper first, then level interfaces, then others: blocks of rows alike are filled faster
     way = cells.end - cells.start
@@ -180,6 +182,21 @@ def _solve_region(region: Region, refine: float) -> _Found:
         end=end[:copper],
         owner=owner[:copper],
         air_charge=factor * in_air,
+    )
+
+
+def _nothing(members: int, pieces: Pieces) -> _Found:
+    """A region whose copper all lies in its bounding planes."""
+    none = np.zeros(0, dtype=np.complex128)
+    return _Found(
+        capacitance=np.zeros((members, members), dtype=np.complex128),
+        air_capacitance=np.zeros((members, members)),
+        unknowns=0,
+        contacts=pieces.contacts,
+        start=none,
+        end=none,
+        owner=np.zeros(0, dtype=np.int64),
+        air_charge=np.zeros((0, members)),
     )
 
 

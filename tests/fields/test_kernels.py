@@ -13,8 +13,8 @@ from pairrules.fields.kernels import Surroundings, interaction
 Complexes = npt.NDArray[np.complex128]
 Floats = npt.NDArray[np.float64]
 
-STARTS = np.array([0.3 + 0.4j, 0.4 + 0.4j, 0.9 + 0.3j, 1.2 + 0.75j, -0.5 + 0.1j, 0.1 + 0.9j])
-ENDS = np.array([0.4 + 0.4j, 0.6 + 0.4j, 0.9 + 0.5j, 1.0 + 0.70j, 0.2 + 0.1j, 0.1 + 0.95j])
+STARTS = np.array([-1.6 + 0.5j, 0.3 + 0.4j, 0.4 + 0.4j, 0.9 + 0.3j, 1.2 + 0.75j, -0.5 + 0.1j, 0.1 + 0.9j])
+ENDS = np.array([-0.6 + 0.5j, 0.4 + 0.4j, 0.6 + 0.4j, 0.9 + 0.5j, 1.0 + 0.70j, 0.2 + 0.1j, 0.1 + 0.95j])
 PLANES = [
     pytest.param(Surroundings(grounded=False), id="open"),
     pytest.param(Surroundings(grounded=True), id="one plane"),
