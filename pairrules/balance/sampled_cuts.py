@@ -8,7 +8,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from pairrules.balance.drawn_section import NEAR_HEIGHTS, PLANE_HEIGHTS, Leg, Span
+from pairrules.balance.drawn_section import GRID_MM, NEAR_HEIGHTS, PLANE_HEIGHTS, Leg, Span
 from pairrules.balance.leg_stretches import Stretch, track_before
 from pairrules.balance.stack_heights import Heights
 from pairrules.board.columns import Floats, Ints
@@ -22,6 +22,9 @@ STEP_MM = 1.0
 
 PLANE_WIDTH_MM = 1.0
 """Copper of other nets on another layer counts as a plane where the cut meets this much of it, else as nothing."""
+
+SLIVER_MM = 2 * GRID_MM
+"""Copper narrower than this, which a cut near a corner leaves, carries no field worth the name."""
 
 _GAP_STEP = 0.05
 """Where the gap changes along the way, sections differ by this share of it."""
@@ -284,7 +287,7 @@ def _beside_spans(
     found: list[tuple[Span, int]] = []
     outer: dict[str, tuple[float, Span, int]] = {}
     for net, low, high in _of(met, place):
-        if net in own:
+        if net in own or high - low < SLIVER_MM:
             continue
         if high <= left:
             side, gap = "left", left - high
