@@ -64,7 +64,11 @@ def draw(
     ]
     copper = [
         *(_conductor(leg.name, "signal", leg.span, low, high) for leg in legs),
-        *(_conductor(f"beside {i + 1}", "grounded", span, low, high) for i, span in enumerate(beside)),
+        # Slivers below the grid, which a cut near a corner leaves, carry no field worth the name.
+        *(
+            _conductor(f"beside {i + 1}", "grounded", span, low, high)
+            for i, span in enumerate(span for span in beside if _grid(span[0]) < _grid(span[1]))
+        ),
     ]
     layers = [_rounded(slab) for slab in heights.slabs]
     patches: list[Patch] = []
@@ -85,7 +89,8 @@ def draw(
 
 
 def _conductor(name: str, role: Role, span: Span, low: float, high: float) -> Conductor:
-    x0, x1 = _grid(span[0]), _grid(span[1])
+    x0 = _grid(span[0])
+    x1 = max(_grid(span[1]), x0 + GRID_MM)
     if _grid(high) <= _grid(low):
         return Conductor(name=name, role=role, strip=(x0, x1, _grid(low)))
     return Conductor(name=name, role=role, polygon=_box((x0, x1), low, high))

@@ -11,6 +11,9 @@ from pairrules.board.arcs import flatten, sweep
 from pairrules.board.columns import Floats
 from pairrules.readers.json_tree import Document, Members, Path
 
+THINNEST_MM = 0.0001
+"""Least width of a track: a tenth of a micrometre cannot be etched. Common practice, no source."""
+
 FARTHEST_MM = 10_000.0
 """Greatest coordinate or size: beyond ten metres the units must be wrong. Common practice, no source."""
 
@@ -49,6 +52,13 @@ class Ruler:
             return size
         raise self.document.fault(path, value, f"give a number {'not below' if zero else 'above'} zero")
 
+    def width(self, value: object, path: Path) -> float:
+        """The width of a track [mm], `THINNEST_MM` at least."""
+        width = self.size(value, path)
+        if width < THINNEST_MM:
+            raise self.document.fault(path, value, f"give at least {THINNEST_MM} mm; the file's unit is {self.unit}")
+        return width
+
     def point(self, value: object, path: Path) -> Point:
         """A place [mm]."""
         # The type test comes first and is exact: a board holds hundreds of thousands of points.
@@ -79,11 +89,15 @@ class Ruler:
                 piece = self._arc(here, entry, (path, number))
                 if piece[0] != piece[2]:
                     pieces.append(piece)
+                else:
+                    self.document.note("turns about its own start and is left out", (path, number))
                 here = piece[1]
             else:
                 there = self.point(entry, (path, number))
                 if there != here:
                     pieces.append((here, there, _STRAIGHT, 0.0))
+                elif not closed or number < len(value) - 1:
+                    self.document.note("repeats the point before it and is left out", (path, number))
                 here = there
         if closed and here != first:
             pieces.append((here, first, _STRAIGHT, 0.0))

@@ -35,7 +35,7 @@ def read_stackup(board: Members, ruler: Ruler) -> Stackup:
                 kind=members.choice("kind", LAYER_KINDS),
                 thickness_mm=ruler.length(members, "thickness"),
                 permittivity=members.number("permittivity", least=1.0, most=1e6, remedy="give a number of 1 or more"),
-                loss_tangent=members.number("loss_tangent", least=0.0, most=1.0, remedy="give a number from 0 to 1"),
+                loss_tangent=members.number("loss_tangent", least=0.0, most=0.9, remedy="give a number from 0 to 0.9"),
             )
         )
     stackup = Stackup(layers=tuple(layers))

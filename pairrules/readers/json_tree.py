@@ -34,11 +34,25 @@ class Document:
     file: its name for messages.
     unknown: members that nobody asked for, by path without numbers.
     cleaned: how many texts held characters that cannot be printed, which were taken out.
+    notes: what was mended, with how often and where first.
     """
 
     file: str
     unknown: Counter[str] = field(default_factory=Counter)
     cleaned: int = 0
+    notes: dict[str, tuple[int, Path]] = field(default_factory=dict)
+
+    def note(self, what: str, path: Path) -> None:
+        """Something at `path` was mended; `what` goes on from the path."""
+        count, first = self.notes.get(what, (0, path))
+        self.notes[what] = (count + 1, first)
+
+    def noted(self) -> list[str]:
+        """What was mended, a sentence a kind."""
+        return [
+            f"{written(path)} {what}" + ("" if count == 1 else f", and so do {count - 1} more")
+            for what, (count, path) in self.notes.items()
+        ]
 
     def fault(self, path: Path, value: object, remedy: str) -> BoardError:
         """The error that the value at `path` is wrong."""

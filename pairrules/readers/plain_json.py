@@ -13,6 +13,7 @@ import numpy as np
 
 from pairrules.board.areas import Area
 from pairrules.board.board import Board, DeclaredPair
+from pairrules.board.crossing_rings import crossing_rings
 from pairrules.board.pads import Pads, PadShape, Part
 from pairrules.board.tracks import Tracks
 from pairrules.board.units import LENGTH_MM
@@ -222,7 +223,7 @@ class _Reading:
             members = self.document.members(entry, path, _TRACK, "net, layer, width and points")
             net.append(self._net(members.get("net"), (path, "net")))
             layer.append(self._layer(members, "layer"))
-            width.append(self.ruler.size(members.need("width", "give the track's width"), (path, "width")))
+            width.append(self.ruler.width(members.need("width", "give the track's width"), (path, "width")))
             before = len(pieces)
             pieces += self.ruler.pieces(members.need("points", "give two points or more"), (path, "points"))
             counts.append(len(pieces) - before)
@@ -265,12 +266,16 @@ class _Reading:
 
     def _areas(self) -> list[Area]:
         areas: list[Area] = []
+        paths: list[Path] = []
         for path, entry in self.tree.entries("areas", "areas"):
             members = self.document.members(entry, path, _AREA, "net, layer and outline")
             net, layer = self._net(members.get("net"), (path, "net")), self._layer(members, "layer")
             outline = self.ruler.ring(members.need("outline", "give three points or more"), (path, "outline"))
+            paths.append((path, "outline"))
             holes = tuple(self.ruler.ring(hole, place) for place, hole in members.entries("holes", "outlines"))
             areas.append(Area(net=net, layer=layer, outline=outline, holes=holes))
+        for place, _, _ in crossing_rings([area.outline for area in areas]):
+            self.document.note("crosses or touches itself and is read by its lines", paths[place])
         return areas
 
     def _kinds(self) -> dict[str, str]:
@@ -314,6 +319,7 @@ class _Reading:
         if len(kinds) > _KINDS_TOLD:
             rest = len(kinds) - _KINDS_TOLD
             self.missing.append(f"members of {rest} more names are not understood and were left out")
+        self.missing += self.document.noted()
         if self.document.cleaned:
             texts = "text" if self.document.cleaned == 1 else "texts"
             self.missing.append(f"unprintable characters were taken out of {self.document.cleaned} {texts}")

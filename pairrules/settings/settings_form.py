@@ -23,7 +23,7 @@ _LAYER = Table(
         "kind": Text(words=("copper", "dielectric")),
         "thickness": Quantity(dimension="length", positive=True),
         "permittivity": Number(least=1.0, most=1e6),
-        "loss_tangent": Number(least=0.0, most=1.0),
+        "loss_tangent": Number(least=0.0, most=0.9),
     },
     required=("name", "kind"),
 )

@@ -30,6 +30,7 @@ WORDS = (
     "a" * 5000, "<![CDATA[", "&amp;", "*", "?[", "U1", "J1", "C", "A", "B", "top", "ground", "power", "signal",
 )  # fmt: skip
 _CHUNK = 64
+_STRANGE = (b"\0", b"\xff\xfe", b"]]>", b"<!DOCTYPE x>", b"&x;", b"{", b"[" * 2000)
 
 
 def mutated_json(tree: Tree, other: Tree, random: Random) -> bytes:
@@ -335,5 +336,5 @@ def _rough(data: bytes, random: Random) -> bytes:
         data[:here] + data[here:there] * 2 + data[there:],
         data[:here] + bytes([data[here] ^ (1 << random.randrange(8))]) + data[here + 1 :],
         data[:here] + random.randbytes(random.randrange(1, 9)) + data[here:],
-        data[:here] + random.choice((b"\0", b"\xff\xfe", b"]]>", b"<!DOCTYPE x>", b"&x;", b"{", b"[" * 2000)) + data[here:],
+        data[:here] + random.choice(_STRANGE) + data[here:],
     ))  # fmt: skip

@@ -22,9 +22,9 @@ for _threads in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS"):
     os.environ.setdefault(_threads, "1")
 sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
 
-from pairrules import pipeline
-from tests.fuzz.corpus import Input, drawn
-from tests.fuzz.one_input import Outcome, outcome
+from pairrules import pipeline  # noqa: E402  the paths and threads come first
+from tests.fuzz.corpus import Input, drawn  # noqa: E402
+from tests.fuzz.one_input import Outcome, outcome  # noqa: E402
 
 _MOST_KEPT = 20_000
 
@@ -101,7 +101,10 @@ class Run:
 
 
 class Sections(dict[Any, Any]):
-    """Field solutions kept over boards; where not `real`, one of a section with like conductors stands for a new one."""
+    """Field solutions kept over boards; where not `real`, one of a section with like conductors stands for a new one.
+
+    Settings that were read before are kept too: they take a quarter of a small board's time.
+    """
 
     def __init__(self) -> None:
         super().__init__()
@@ -113,6 +116,17 @@ class Sections(dict[Any, Any]):
             return solve(*arguments, **{**named, "store": self})
 
         pipeline.electrical = electrical
+        read, settings = pipeline.read_settings, dict[bytes, Any]()
+
+        def read_settings(path: Path | None, **named: Any) -> Any:
+            key = b"" if path is None else path.read_bytes()
+            if key not in settings:
+                if len(settings) > _MOST_KEPT // 100:
+                    settings.clear()
+                settings[key] = read(path, **named)
+            return settings[key]
+
+        pipeline.read_settings = read_settings
 
     def get(self, section: Any, default: Any = None) -> Any:
         found = super().get(section, default)

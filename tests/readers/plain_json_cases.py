@@ -106,7 +106,7 @@ BAD = [
     Bad("permittivity", ("stackup", 1, "permittivity"), 0.5,
         "stackup[1].permittivity is 0.5; give a number of 1 or more"),
     Bad("loss tangent", ("stackup", 1, "loss_tangent"), -0.1,
-        "stackup[1].loss_tangent is -0.1; give a number from 0 to 1"),
+        "stackup[1].loss_tangent is -0.1; give a number from 0 to 0.9"),
     Bad("part no object", ("parts", 1), "MP1", 'parts[1] is "MP1"; give {...} with ref and pins'),
     Bad("part twice", ("parts", 1, "ref"), "U1", 'parts[1].ref is "U1"; choose another; another part has this ref',
         schema=False),

@@ -2,14 +2,18 @@
 
 from __future__ import annotations
 
+import math
+
 import numpy as np
 
 from pairrules.board import Area, Board, Pads, PadShape, Tracks, Vias
 from pairrules.board.columns import Floats
+from pairrules.board.crossing_rings import crossing_rings
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581 import mirrors, polarity
 from pairrules.readers.ipc2581.completeness import complete
 from pairrules.readers.ipc2581.copper import Copper, FillRow
+from pairrules.readers.ipc2581.elements import FARTHEST_MM
 from pairrules.readers.ipc2581.file_content import FileContent, Step
 from pairrules.readers.ipc2581.layers import build_stackup
 from pairrules.readers.ipc2581.nets import declared_pairs, name_unnamed
@@ -19,6 +23,7 @@ from pairrules.readers.ipc2581.primitives import signed_area
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Plane
 
+_FARTHEST_MM = FARTHEST_MM * math.sqrt(2)
 LEAST_MM2 = 1e-9
 """An area below this, a square of 30 nanometres, is none."""
 
@@ -26,12 +31,12 @@ LEAST_MM2 = 1e-9
 def assemble(content: FileContent, wanted: str) -> Board:
     """The board. Raises: BoardError, without the file's name, where there is no board copper or no single board."""
     step = choose_step(content, wanted)
-    remarks = Remarks({**content.remarks.counts})
+    remarks = Remarks({**content.remarks.counts}, {**content.remarks.lines})
     stackup = build_stackup(content.table, remarks)
     names = stackup.copper
     whole = complete(content, step, names, remarks)
     for sentence, count in step.remarks.counts.items():
-        remarks.count(sentence, count)
+        remarks.count(sentence, count, line=step.remarks.lines.get(sentence, 0))
     copper = step.copper
     name_unnamed(copper, step.nets)
     mirrors.settle(copper, step.parts, remarks)
@@ -43,6 +48,7 @@ def assemble(content: FileContent, wanted: str) -> Board:
     nets = _net_names(step, copper, pads, vias)
     net_index = {net: i for i, net in enumerate(nets)}
     layer_index = {name: i for i, name in enumerate(names)}
+    _within_ten_metres(copper, step)
     parts = part_list(step.parts, content.values, [pad.row.ref for pad in pads if pad.row.ref], content.table)
     return Board(
         name=step.name,
@@ -63,6 +69,22 @@ def assemble(content: FileContent, wanted: str) -> Board:
         missing=remarks.sentences(),
         complete=whole,
     )
+
+
+def _within_ten_metres(copper: Copper, step: Step) -> None:
+    """Refuse what lies or reaches beyond any board after all placements and scales.
+
+    Each number of the file was within ten metres; placed one upon another, they need not be.
+    """
+    reach = [abs(z) + row.width for row in copper.tracks for z in (row.start, row.end, row.centre or 0j)]
+    reach += [float(np.abs(row.fill.outline).max()) for row in copper.areas if len(row.fill.outline)]
+    reach += [abs(row.at) + max(row.outline.size if row.outline else (0.0,)) for row in copper.pads]
+    reach += [abs(row.at) for row in copper.holes]
+    if any(not length <= _FARTHEST_MM for length in reach):
+        raise BoardError(
+            f'step "{step.name}" draws copper more than ten metres away',
+            remedy="correct its placements and scales or export the file again",
+        )
 
 
 def choose_step(content: FileContent, wanted: str) -> Step:
@@ -154,7 +176,7 @@ def _vias(vias: list[JoinedVia], nets: dict[str, int]) -> Vias:
 
 
 def _areas(rows: list[FillRow], nets: dict[str, int], layers: dict[str, int], remarks: Remarks) -> tuple[Area, ...]:
-    areas = []
+    areas: list[Area] = []
     for row in rows:
         if len(row.fill.outline) < 3 or abs(signed_area(row.fill.outline)) < LEAST_MM2:
             remarks.count("{n} area{s} without extent {are} left out")
@@ -162,5 +184,14 @@ def _areas(rows: list[FillRow], nets: dict[str, int], layers: dict[str, int], re
         holes = tuple(_points(hole) for hole in row.fill.holes if len(hole) > 2)
         areas.append(
             Area(net=nets.get(row.net, -1), layer=layers[row.layer], outline=_points(row.fill.outline), holes=holes)
+        )
+    crossing = crossing_rings([area.outline for area in areas])
+    if crossing:
+        place, x, y = crossing[0]
+        name = next(name for name, index in layers.items() if index == areas[place].layer)
+        where = f"on {name} at ({x:.3f}, {y:.3f}) mm"
+        remarks.count(
+            f"{{n}} outline{{s}} that cross or touch themselves {{are}} read by their lines, the first {where}",
+            len(crossing),
         )
     return tuple(areas)

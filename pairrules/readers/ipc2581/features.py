@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 from pairrules.readers.ipc2581.corners import corners
 from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, sweep
-from pairrules.readers.ipc2581.elements import child, children, length, local, size, truth, word, wrong
+from pairrules.readers.ipc2581.elements import child, children, length, line, local, size, truth, word, wrong
 from pairrules.readers.ipc2581.primitives import Primitive, hollow, outer_pad, polygon_pad, primitive
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import IDENTITY, Plane, Transform, xform
@@ -18,8 +18,14 @@ if TYPE_CHECKING:
 MOST_ITEMS = 20_000
 """Items one user shape may draw; a shape that names others over and over would fill the memory."""
 
+THINNEST_MM = 0.0001
+"""A line below a tenth of a micrometre is none: exporters write nothing, or next to it, where they know no width."""
+
 ROUGH_ARC_MM = 0.01
-"""An arc whose two ends differ by more in their distance from its centre is remarked upon."""
+"""An arc whose two ends differ by more in their distance from its centre is mended, and remarked upon."""
+
+MOST_OFF = 0.1
+"""Share of the radius by which they may differ; beyond it nobody can say which of the three points is wrong."""
 
 STYLES = {"LineDesc", "LineDescRef", "FillDesc", "FillDescRef", "Color", "ColorRef", "ColorTerm", "Xform"}
 PRIMITIVES = {"StandardPrimitiveRef", "UserPrimitiveRef"}
@@ -167,10 +173,10 @@ class Shapes:
     def _filled(self, element: Element, shape: Primitive, factor: float, default: Line | None) -> Primitive:
         filling = self.filling(element)
         if filling == "HOLLOW":
-            line = self.line(element, factor, default)
-            if line is None or line.width == 0:
+            style = self.line(element, factor, default)
+            if style is None or style.width == 0:
                 self.remarks.count("{n} hollow shape{s} without line width {are} no copper and {are} left out")
-            return hollow(shape, 0.0 if line is None else line.width)
+            return hollow(shape, 0.0 if style is None else style.width)
         if filling == "VOID":
             return Primitive(tuple(replace(item, erase=True) for item in shape.items), None)
         if filling in {"HATCH", "MESH"}:
@@ -184,7 +190,7 @@ class Shapes:
         corners = self.outline(outline, factor)
         cutouts = [self.outline(inner, factor) for name, inner in children(element) if name == "Cutout"]
         if len(corners) < 3:
-            self.remarks.count("{n} outline{s} of fewer than three corners {are} left out")
+            self.remarks.count("{n} outline{s} of fewer than three corners {are} left out", line=line(element))
             return Primitive((), None)
         fill = Fill(corners, tuple(cutout for cutout in cutouts if len(cutout) > 2))
         return Primitive((fill,), polygon_pad(corners))
@@ -213,9 +219,9 @@ class Shapes:
     # -- lines --------------------------------------------------------------------------------------------------------
 
     def _strokes(self, element: Element, tag: str, factor: float, default: Line | None) -> tuple[Item, ...]:
-        line = self.line(element, factor, default)
-        if line is None or line.width == 0:
-            self.remarks.count("{n} line{s} on copper without a width {are} left out")
+        style = self.line(element, factor, default)
+        if style is None or style.width < THINNEST_MM:
+            self.remarks.count("{n} line{s} on copper without a width {are} left out", line=line(element))
             return ()
         if tag == "Outline":
             polygon = child(element, "Polygon")
@@ -233,7 +239,7 @@ class Shapes:
             points, centres, sweeps = [start, end], [centre], [angle]
         if len(points) < 2:
             return ()
-        return (Stroke(tuple(points), tuple(centres), tuple(sweeps), line.width, line.erase),)
+        return (Stroke(tuple(points), tuple(centres), tuple(sweeps), style.width, style.erase),)
 
     def _steps(self, element: Element, factor: float) -> tuple[list[complex], list[complex | None], list[float]]:
         """The corners of a polyline or polygon: first `PolyBegin`, then straight and round steps."""
@@ -265,7 +271,22 @@ class Shapes:
         centre = complex(length(element, "centerX", factor), length(element, "centerY", factor))
         radius, other = abs(start - centre), abs(end - centre)
         if abs(radius - other) > ROUGH_ARC_MM:
-            self.remarks.count("{n} arc{s} with ends at unequal distances from the centre {are} kept as written")
+            if abs(radius - other) > MOST_OFF * max(radius, other):
+                apart = f"{radius:.4g} mm from its start and {other:.4g} mm from its end"
+                wrong(element, f"{local(element)} has its centre {apart}")
+            self.remarks.count(
+                "{n} arc{s} with ends at unequal distances from the centre {are} drawn about the nearest one that fits",
+                line=line(element),
+            )
+            centre = _fitting(start, end, centre)
         if radius == 0.0 or other == 0.0:
             return None, 0.0
         return centre, sweep(start, end, centre, clockwise=truth(element, "clockwise", default=True))
+
+
+def _fitting(start: complex, end: complex, centre: complex) -> complex:
+    """The point nearest to an arc's centre that is as far from its start as from its end."""
+    chord = end - start
+    away = centre - (start + end) / 2
+    along = (away * chord.conjugate()).real / abs(chord) ** 2
+    return centre - along * chord

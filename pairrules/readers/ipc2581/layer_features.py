@@ -93,7 +93,7 @@ class SetReader:
             for shape in drawn:
                 items = placed(shape.items, by)
                 dropped = self.copper.draw(erasing(items) if erase else items, layer, net)
-                self.remarks.count("{n} line piece{s} without length {are} left out", dropped)
+                self.remarks.count("{n} line piece{s} without length {are} left out", dropped, line=line(element))
                 if self.copper.size > MOST_PIECES:
                     wrong(element, f"the board draws more than {MOST_PIECES} pieces")
 

@@ -18,7 +18,7 @@ COPPER = {"CONDUCTOR", "SIGNAL", "PLANE", "MIXED", "CONDFILM", "CONDFOIL"}
 DRILLED = {"DRILL", "ROUT"}
 _COATED = {"SOLDERMASK", "COATINGNONCOND"}
 
-_POSSIBLE = {"permittivity": (1.0, 1e6), "loss_tangent": (0.0, 1.0), "thickness_mm": (1e-6, 100.0)}
+_POSSIBLE = {"permittivity": (1.0, 1e6), "loss_tangent": (0.0, 0.9), "thickness_mm": (1e-6, 100.0)}
 """Figures a material can have; beyond them the file is wrong. Nothing polarises less than vacuum, a nanometre is less
 than any layer, ten centimetres more than any board (common practice, no source)."""
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 
+import numpy as np
 import pytest
 
 from fixtures.ipc2581_writer import to_ipc2581
@@ -175,12 +176,12 @@ def test_the_reader_is_chosen_by_content() -> None:
             feature("<UserSpecial><Blob/></UserSpecial>"),
             "1 element Blob in user shapes was not understood and is left out",
         ),
-        (feature(line((0, 0), (1, 0), width=0)), "1 line on copper without a width is left out"),
+        (feature(line((0, 0), (1, 0), width=0)), "1 line on copper without a width is left out (on line 8)"),
         (
             feature('<Polyline><PolyBegin x="0" y="0"/><PolyStepSegment x="1" y="0"/></Polyline>'),
-            "1 line on copper without a width is left out",
+            "1 line on copper without a width is left out (on line 8)",
         ),
-        (feature(line((0, 0), (0, 0), (1, 0))), "1 line piece without length is left out"),
+        (feature(line((0, 0), (0, 0), (1, 0))), "1 line piece without length is left out (on line 8)"),
         (
             feature('<StandardPrimitiveRef id="gone"/>'),
             "1 shape named by features is not in the file's dictionaries and is left out",
@@ -191,21 +192,41 @@ def test_the_reader_is_chosen_by_content() -> None:
         ),
         (
             feature('<Contour><Polygon><PolyBegin x="0" y="0"/><PolyStepSegment x="1" y="0"/></Polygon></Contour>'),
-            "1 outline of fewer than three corners is left out",
+            "1 outline of fewer than three corners is left out (on line 8)",
         ),
         (feature('<Circle diameter="0"/>'), "1 area without extent is left out"),
         (feature('<Hexagon length="1"/>'), "1 hexagon or octagon is read with the length from corner to corner"),
-        (
-            feature(
-                '<Arc startX="1" startY="0" endX="0" endY="2" centerX="0" centerY="0" clockwise="false">'
-                '<LineDesc lineEnd="ROUND" lineWidth="0.1"/></Arc>'
-            ),
-            "1 arc with ends at unequal distances from the centre is kept as written",
-        ),
     ],
 )
 def test_what_is_left_out_is_said(sets: str, said: str) -> None:
     assert said in read(document(TRACK + sets)).missing
+
+
+def arc(end_y: float) -> str:
+    return feature(
+        f'<Arc startX="1" startY="0" endX="0" endY="{end_y}" centerX="0" centerY="0" clockwise="false">'
+        '<LineDesc lineEnd="ROUND" lineWidth="0.1"/></Arc>'
+    )
+
+
+def test_an_arc_that_does_not_quite_fit_its_ends_is_mended_by_the_nearest_centre_and_said() -> None:
+    """The centre moves along the chord's direction onto the chord's bisector: for ends (1, 0) and (0, 1.04)."""
+    board = read(document(arc(1.04)))
+    assert (
+        "1 arc with ends at unequal distances from the centre is drawn about the nearest one that fits (on line 8)"
+        in (board.missing)
+    )
+    (centre,) = board.tracks.centre
+    near, far = np.hypot(*(centre - (1, 0))), np.hypot(*(centre - (0, 1.04)))
+    assert near == pytest.approx(far, rel=1e-12)
+    along = (1.04**2 - 1) / 2 / np.hypot(1, 1.04)
+    assert np.hypot(*centre) == pytest.approx(along, rel=1e-9)
+
+
+def test_an_arc_that_fits_nowhere_near_is_refused() -> None:
+    assert refused(document(arc(2))) == (
+        f"board.xml: line 8: Arc has its centre 1 mm from its start and 2 mm from its end; {MEND}"
+    )
 
 
 def test_what_is_not_copper_is_not_spoken_of() -> None:
