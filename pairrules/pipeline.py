@@ -35,8 +35,9 @@ from pairrules.running.pair_stage import PairStage, found_pair, net_names
 from pairrules.running.workers import Progress, judge_links
 from pairrules.settings.likely_set import DraftPair
 from pairrules.settings.pair_class import PairClass
-from pairrules.settings.read_settings import Settings, find_settings, read_settings
+from pairrules.settings.read_settings import Settings, find_settings, read_settings, settings_looked_for
 from pairrules.settings.starter import Draft, starter
+from pairrules.settings.waivers import FILE_NAME as WAIVERS_NAME
 from pairrules.settings.waivers import Waiver, read_waivers, waivers_path
 
 
@@ -105,6 +106,18 @@ def check(
 def waiver_file_of(path: str | Path, settings: str | Path | None = None) -> Path:
     """Where a board's waivers stand or, where there are none yet, belong. Parameters and errors as of `check`."""
     return _waiver_file(_settings(path, settings), path, settings)
+
+
+def files_asked_for(path: str | Path, settings: str | Path | None = None) -> tuple[Path, ...]:
+    """The settings and waiver files that a check of a board reads, and those it looks for where there are none.
+
+    Errors as of `check`. Shipped rule sets are left out.
+    """
+    chosen = _settings(path, settings)
+    looked_for = settings_looked_for(Path(path)) if settings is None else ()
+    own = [Path(name) for name in chosen.files if Path(name).is_file()]
+    near = [folder / WAIVERS_NAME for folder in (*(file.parent for file in own), Path(path).parent)]
+    return tuple(dict.fromkeys((*looked_for, *own, _waiver_file(chosen, path, settings), *near)))
 
 
 def _settings(path: str | Path, settings: str | Path | None) -> Settings:

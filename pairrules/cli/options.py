@@ -35,3 +35,16 @@ today_option = click.option(
     callback=as_date,
     help="The day on which waivers must still hold; else the clock's.",
 )
+jobs_option = click.option(
+    "--jobs",
+    type=click.IntRange(min=1),
+    default=1,
+    metavar="N",
+    help="Work in so many processes; the result is the same for any number.",
+)
+cache_option = click.option(
+    "--cache/--no-cache",
+    "cached",
+    default=True,
+    help="Whether to answer from results kept of earlier runs, and keep this one; see `pairrules cache`.",
+)

@@ -23,7 +23,7 @@ from pairrules.settings.settings_form import settings_form
 from pairrules.settings.shapes import Table
 from pairrules.shipped import rules_folder
 
-__all__ = ["BASE", "FILE_NAME", "Settings", "find_settings", "read_settings"]
+__all__ = ["BASE", "FILE_NAME", "Settings", "find_settings", "read_settings", "settings_looked_for"]
 
 FILE_NAME = "pairrules.yaml"
 """The name `find_settings` looks for."""
@@ -34,12 +34,19 @@ _DEFAULT_SEVERITY = "review"
 
 def find_settings(board_path: Path) -> Path | None:
     """The `pairrules.yaml` nearest to a board: in its folder, or the nearest folder above that has one."""
+    last = settings_looked_for(board_path)[-1]
+    return last if last.is_file() else None
+
+
+def settings_looked_for(board_path: Path) -> tuple[Path, ...]:
+    """The places where `find_settings` looks, in order, up to the one that holds the file."""
     start = board_path.resolve()
+    places = []
     for folder in (start, *start.parents):
-        candidate = folder / FILE_NAME
-        if candidate.is_file():
-            return candidate
-    return None
+        places.append(folder / FILE_NAME)
+        if places[-1].is_file():
+            break
+    return tuple(places)
 
 
 def read_settings(path: Path | None, *, forms: Mapping[str, RuleForm], text: str | None = None) -> Settings:
