@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from datetime import date
 
 import click
 
-from pairrules.cli.options import pair_option, settings_option, step_option
+from pairrules.cli.options import pair_option, settings_option, step_option, today_option
 from pairrules.cli.output import write
 from pairrules.cli.progress import ProgressLine
 from pairrules.pipeline import check
@@ -23,9 +24,18 @@ DEMO = ("tide-gauge-buoy.json", "pairrules.yaml")
 @click.option("-o", "--output", metavar="FILE", required=True, help="Write the page there; all or nothing.")
 @pair_option
 @step_option
+@today_option
 @click.pass_context
 def command(
-    ctx: click.Context, *, board: str | None, demo: bool, settings: str | None, output: str, pair: str, step: str
+    ctx: click.Context,
+    *,
+    board: str | None,
+    demo: bool,
+    settings: str | None,
+    output: str,
+    pair: str,
+    step: str,
+    today: date | None,
 ) -> None:
     """Write a page on BOARD that opens from disk: the board, its flagged pairs, and a decision for each finding.
 
@@ -39,7 +49,7 @@ def command(
     if board is None:
         raise click.UsageError("no BOARD is given; name a file, or take --demo", ctx)
     with ProgressLine() as progress:
-        result = check(board, settings, pairs=pair, step=step, progress=progress, drawing=True)
+        result = check(board, settings, pairs=pair, step=step, drawing=True, today=today, progress=progress)
     if demo:
         # Where the package is installed says nothing about the demo board.
         result = replace(result, board=replace(result.board, file=DEMO[0]))

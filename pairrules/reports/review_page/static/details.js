@@ -42,12 +42,14 @@ function heading(pair, detail, still) {
     make("p", { class: "verdict-line" }, sign(pair.sign), ` ${VERDICT_WORDS[pair.verdict]}${pair.worst && pair.verdict === "flag" ? `, ${pair.worst}` : ""}`,
       make("span", null, ` · class ${pair.class || "none"}`), make("span", null, ` · routed: ${pair.routed}`)),
     make("dl", { class: "facts" },
-      make("dt", null, sample("leg-sample plus"), " plus"), make("dd", null, detail.nets.plus.join(", then ") || pair.plus),
-      make("dt", null, sample("leg-sample minus"), " minus"), make("dd", null, detail.nets.minus.join(", then ") || pair.minus),
-      make("dt", null, "from, to"), make("dd", null, `${source || "unknown"} to ${load || "unknown"}`),
-      series ? [make("dt", null, "in series"), make("dd", null, series)] : "",
-      make("dt", null, "found by"), make("dd", null, detail.foundBy + (lines ? `; ${lines}` : ""))));
+      fact([sample("leg-sample plus"), " plus"], detail.nets.plus.join(", then ") || pair.plus),
+      fact([sample("leg-sample minus"), " minus"], detail.nets.minus.join(", then ") || pair.minus),
+      fact("from, to", `${source || "unknown"} to ${load || "unknown"}`),
+      series ? fact("in series", series) : "",
+      fact("found by", detail.foundBy + (lines ? `; ${lines}` : ""))));
 }
+
+function fact(title, text) { return make("div", null, make("dt", null, title), make("dd", null, text)); }
 
 // The picture.
 
