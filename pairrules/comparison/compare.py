@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 
 from pairrules.comparison.findings_matched import FindingChange, findings_matched
 from pairrules.comparison.pairs_matched import Matched, matched
-from pairrules.comparison.rounding import step
+from pairrules.comparison.rounding import WITHIN_REACH, step
 from pairrules.result import BoardSummary, Measures, PairResult, Result
 
 _SMALL_IS_GOOD = frozenset(
@@ -186,7 +186,8 @@ def _notes(old: PairResult, new: PairResult) -> Iterator[tuple[str, str]]:
 def _figures(old: PairResult, new: PairResult) -> Iterator[FigureChange]:
     for figure in Measures.__dataclass_fields__:
         before, now = getattr(old.measures, figure), getattr(new.measures, figure)
-        change = _figure_change(before, now, _UNITS.get(figure.rpartition("_")[2], ""), small=figure in _SMALL_IS_GOOD)
+        unit = "mm within reach" if figure in WITHIN_REACH else _UNITS.get(figure.rpartition("_")[2], "")
+        change = _figure_change(before, now, unit, small=figure in _SMALL_IS_GOOD)
         if change:
             yield FigureChange(figure=figure, frequency_hz=None, change=change, old=before, new=now)
     rows = {point.frequency_hz: point for point in old.balance}

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Hashable, Sequence
 from dataclasses import dataclass
 
-from pairrules.comparison.rounding import step
+from pairrules.comparison.rounding import WITHIN_REACH, step
 from pairrules.result import SEVERITIES, Finding
 
 
@@ -51,7 +51,8 @@ def _change(old: Finding | None, new: Finding) -> FindingChange:
         return FindingChange(change="same" if old.waived else "waived", old=old, new=new)
     if old.waived:
         return FindingChange(change="appeared", old=old, new=new, why="was waived before")
-    more = step(_value(old), _value(new), new.unit) * (-1 if _side(new) == "least" else 1)
+    unit = "mm within reach" if new.rule in WITHIN_REACH else new.unit
+    more = step(_value(old), _value(new), unit) * (-1 if _side(new) == "least" else 1)
     rank = SEVERITIES.index(old.severity) - SEVERITIES.index(new.severity)
     if more > 0:
         return FindingChange(change="worse", old=old, new=new)

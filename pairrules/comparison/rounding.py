@@ -5,6 +5,7 @@ from __future__ import annotations
 _LEAST: dict[str, tuple[float, float]] = {
     # Unit: absolute, relative. Geometry is exact but for the grid of a file; what is solved is good to about a percent.
     "mm": (0.001, 0.0),
+    "mm within reach": (0.01, 0.0),
     "mm2": (0.01, 0.001),
     "mm²": (0.01, 0.001),
     "dB": (0.01, 0.0),
@@ -16,6 +17,9 @@ _LEAST: dict[str, tuple[float, float]] = {
     "1": (0.0, 0.0),
 }
 _ELSE = (0.0, 0.01)
+
+WITHIN_REACH = frozenset({"coupled_mm", "apart_mm", "apart-run"})
+"""Figures and rules in mm that end where a bent distance passes the reach: they change by the square root of noise."""
 
 FARTHEST_DB = 140.0
 """Ratios beyond this count as this: no instrument tells them apart (common practice, no source), and the sum of tiny

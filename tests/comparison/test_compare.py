@@ -47,6 +47,13 @@ def test_findings_are_held_worst_to_worst() -> None:
     ]
 
 
+def test_a_run_apart_ends_where_reach_does_and_is_known_less_well() -> None:
+    for rule, change in (("apart-run", "same"), ("stub-length", "worse")):
+        assert changes([finding(rule=rule, measured=2.0)], [finding(rule=rule, measured=2.009)]) == [change]
+    assert changes([finding(rule="apart-run", measured=2.0)], [finding(rule="apart-run", measured=2.011)]) == ["worse"]
+    assert compare(result(with_figures(apart_mm=2.0)), result(with_figures(apart_mm=2.009))).summary["same"] == 1
+
+
 def test_too_little_is_worse_the_less_it_is() -> None:
     old = finding(rule="link-rejection", measured=70.0, limit=80.0, unit="dB")
     assert changes([old], [finding(rule="link-rejection", measured=69.0, limit=80.0, unit="dB")]) == ["worse"]
@@ -78,7 +85,7 @@ def ends(name: str, number: int) -> PairResult:
 
 
 def told(old: list[PairResult], new: list[PairResult]) -> list[tuple[str | None, str | None, str]]:
-    return [(m.old and m.old.name, m.new and m.new.name, m.by) for m in matched(old, new)]
+    return [(m.old.name if m.old else None, m.new.name if m.new else None, m.by) for m in matched(old, new)]
 
 
 def test_pairs_are_the_same_by_their_nets_whatever_they_are_called() -> None:
