@@ -14,7 +14,7 @@ Span = tuple[float, float]
 GRID_MM = 0.0001
 """Dimensions are rounded to this, so that the same section is solved once."""
 
-PLANE_HEIGHTS = 8.0
+PLANE_HEIGHTS = 6.5
 """A plane's edge farther from the legs than this many heights counts as nowhere."""
 
 NEAR_HEIGHTS = 4.0

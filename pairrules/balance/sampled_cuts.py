@@ -31,7 +31,7 @@ _GAP_STEP = 0.05
 
 _EDGE_STEP = 0.1
 _LEAST_MM = 1e-6
-_MOST_PLANES = 2
+WHOLE: tuple[Span, ...] = ((-math.inf, math.inf),)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -212,11 +212,12 @@ def with_copper(
                 met = _met(board_cuts, k, [cuts[i] for i in open_rows], reach)
                 still = []
                 for place, i in enumerate(open_rows):
-                    spans = _plane_spans(met, place, _window(cuts[i], reach), height, own, reference)
+                    copper = _plane_copper(met, place, own, reference)
+                    nearer = any((p - layer) * side > 0 for p, _ in planes[i])
+                    spans = _plane_behind(copper, cuts[i], height) if nearer else _plane_spans(copper, cuts[i], height)
                     if spans:
                         planes[i].append((k, spans))
-                    whole = spans == ((-math.inf, math.inf),)
-                    if not whole and sum((k - layer) * (p - layer) > 0 for p, _ in planes[i]) < _MOST_PLANES:
+                    if not nearer and spans != WHOLE:
                         still.append(i)
                 open_rows, k = still, k + side
         near = NEAR_HEIGHTS * _nearest_height(heights, layer)
@@ -253,29 +254,59 @@ def _of(met: Met, place: int) -> Iterable[tuple[int, float, float]]:
         yield int(met.net[i]), float(met.low[i]), float(met.high[i])
 
 
-def _plane_spans(
-    met: Met, place: int, window: Span, height: float, own: frozenset[int], reference: frozenset[int]
-) -> tuple[Span, ...]:
-    """Copper at 0 V on a layer, slots and edges on a grid of a tenth of the height; whole where it fills the window."""
-    spans = sorted(
+def _plane_copper(met: Met, place: int, own: frozenset[int], reference: frozenset[int]) -> list[list[float]]:
+    """Stretches of copper at 0 V of one cut, in order; what touches is one."""
+    merged: list[list[float]] = []
+    for low, high in sorted(
         (low, high)
         for net, low, high in _of(met, place)
         if net in reference or (net >= 0 and net not in own and high - low >= PLANE_WIDTH_MM)
-    )
-    step = _EDGE_STEP * height
-    merged: list[list[float]] = []
-    for low, high in spans:
-        if merged and low - merged[-1][1] < step:
+    ):
+        if merged and low <= merged[-1][1]:
             merged[-1][1] = max(merged[-1][1], high)
         else:
             merged.append([low, high])
+    return merged
+
+
+def _plane_spans(copper: list[list[float]], cut: Cut, height: float) -> tuple[Span, ...]:
+    """The nearest plane: its copper with the slots and edges that the legs can feel, on a grid.
+
+    A leg's image current spreads over a few heights. A slot counts if it begins within three heights of the legs and is
+    wider than a quarter of its distance to them, an edge if it lies within six heights; where all copper is farther
+    than three heights there is no plane.
+    """
+    left, right = min(leg.span[0] for leg in cut.legs), max(leg.span[1] for leg in cut.legs)
+    kept: list[list[float]] = []
+    for low, high in copper:
+        if kept:
+            gap = kept[-1][1], low
+            away = max(left - gap[1], gap[0] - right, 0.0)
+            if away > 3 * height or gap[1] - gap[0] < 0.25 * (height + away):
+                kept[-1][1] = high
+                continue
+        kept.append([low, high])
     drawn: list[Span] = []
-    for low, high in merged:
-        a = -math.inf if low <= window[0] + step else round(low / step) * step
-        b = math.inf if high >= window[1] - step else round(high / step) * step
+    for low, high in kept:
+        if high < left - 3 * height or low > right + 3 * height:
+            continue
+        a = -math.inf if low < left - 6 * height else _on_grid(low, left, right, height)
+        b = math.inf if high > right + 6 * height else _on_grid(high, left, right, height)
         if b > a and (not drawn or a > drawn[-1][1]):
             drawn.append((a, b))
     return tuple(drawn)
+
+
+def _plane_behind(copper: list[list[float]], cut: Cut, height: float) -> tuple[Span, ...]:
+    """A plane behind slots of a nearer one: whole if it has copper within its own height of the legs, else none."""
+    left, right = min(leg.span[0] for leg in cut.legs) - height, max(leg.span[1] for leg in cut.legs) + height
+    return WHOLE if any(low < right and high > left for low, high in copper) else ()
+
+
+def _on_grid(x: float, left: float, right: float, height: float) -> float:
+    away = max(left - x, x - right, 0.0)
+    step = _EDGE_STEP * height * (1.0 if away < height else 3.0)
+    return round(x / step) * step
 
 
 def _beside_spans(
