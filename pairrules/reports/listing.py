@@ -30,7 +30,7 @@ def render(result: Result, look: Look) -> str:
     undecided = [pair for pair in result.pairs if pair.verdict == "undecided"]
     if undecided:
         lines += ["", f"Undecided ({len(undecided)})"]
-        lines += [line for pair in undecided for line in _undecided(pair, look)]
+        lines += [line for pairs in _alike(undecided) for line in _undecided(pairs, look)]
     for word, title in (("waived", "Waived"), ("pass", "Passed")):
         names = [pair.name for pair in result.pairs if pair.verdict == word]
         if names:
@@ -117,9 +117,17 @@ def _rests_on(pair: PairResult, explained: tuple[Explained, ...]) -> list[str]:
     return texts
 
 
-def _undecided(pair: PairResult, look: Look) -> list[str]:
-    lines = _wrap(safe(pair.name), look, "  ", "    ")
-    for text, rules in _reasons(pair).items():
+def _alike(pairs: list[PairResult]) -> list[list[PairResult]]:
+    """Pairs that are undecided for the same reasons together, in the order in which the first of each stands."""
+    groups: dict[str, list[PairResult]] = {}
+    for pair in pairs:
+        groups.setdefault(repr(_reasons(pair)), []).append(pair)
+    return list(groups.values())
+
+
+def _undecided(pairs: list[PairResult], look: Look) -> list[str]:
+    lines = _wrap(", ".join(safe(pair.name) for pair in pairs), look, "  ", "  ")
+    for text, rules in _reasons(pairs[0]).items():
         lines += _wrap(text + (f" ({', '.join(rules)})" if rules else ""), look, "    ", "      ")
     return lines
 

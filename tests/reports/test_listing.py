@@ -49,6 +49,18 @@ def test_the_whole_listing() -> None:
     )
 
 
+def test_pairs_undecided_for_the_same_reasons_stand_together() -> None:
+    other = pair("OTHER", verdict="undecided", routed="partial", missing=("plus has no copper in the file",))
+    got = REPORT.render(result(undecided("LOST"), other, undecided("GONE")), PLAIN)
+    assert (
+        "Undecided (3)\n"
+        "  LOST, GONE\n"
+        "    minus cannot be followed from end to end (gap-band, leg-length)\n"
+        "  OTHER\n"
+        "    plus has no copper in the file\n"
+    ) in got
+
+
 def test_worst_first() -> None:
     note, review, blocker = (finding(severity=severity) for severity in ("note", "review", "blocker"))
     got = REPORT.render(
