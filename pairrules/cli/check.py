@@ -9,16 +9,21 @@ from datetime import date
 import click
 
 from pairrules import __version__
-from pairrules.cli.earlier import earlier_result
+from pairrules.cli.boards import Asked, boards_of, judged
+from pairrules.cli.boards_table import boards_table
 from pairrules.cli.error_lines import error_lines
-from pairrules.cli.options import output_option, pair_option, settings_option, step_option, today_option
+from pairrules.cli.options import (
+    cache_option,
+    jobs_option,
+    output_option,
+    pair_option,
+    settings_option,
+    step_option,
+    today_option,
+)
 from pairrules.cli.output import ToWrite, look, write, write_files
-from pairrules.cli.progress import ProgressLine
 from pairrules.cli.report_option import file_reports, report_option
-from pairrules.comparison.compare import with_baseline
-from pairrules.errors import BoardError, UserError
-from pairrules.manual.rule_page import explained
-from pairrules.pipeline import check
+from pairrules.errors import BoardError, UsageError, UserError
 from pairrules.reports.report import Look, Report, reports_of
 from pairrules.reports.safe_text import safe
 from pairrules.result import SEVERITIES, Result
@@ -57,6 +62,9 @@ DEMO = ("tide-gauge-buoy.json", "pairrules.yaml")
 @pair_option
 @step_option
 @today_option
+@click.option("--skip-foreign", is_flag=True, help="Pass over files that are no boards at all, by what is in them.")
+@jobs_option
+@cache_option
 @click.pass_context
 def command(
     ctx: click.Context,
@@ -73,8 +81,13 @@ def command(
     pair: str,
     step: str,
     today: date | None,
+    skip_foreign: bool,
+    jobs: int,
+    cached: bool,
 ) -> None:
     """Judge the pairs of each BOARD (IPC-2581 XML or plain JSON) against the limits of their classes.
+
+    A folder or a pattern as BOARD means all boards in it; a table of them then ends the listing.
 
     Exit status: 0 nothing flagged, 1 something flagged, 2 wrong usage or settings, 3 a board could not be read.
     """
@@ -87,44 +100,70 @@ def command(
         raise click.UsageError("--explain belongs to the listing; leave it or --format out", ctx)
     if not boards:
         raise click.UsageError("no BOARD is given; name a file, or take --demo", ctx)
-    if since is not None and len(boards) > 1:
+    files = boards_of(boards)
+    if since is not None and len(files) > 1:
         raise click.UsageError("--since takes one BOARD", ctx)
     report, status = reports_of("check")[form], 0
     also = file_reports(wanted, reports_of("check"), output, ctx)
+    asked = [
+        Asked(
+            path=path,
+            found=found or skip_foreign,
+            settings=settings,
+            pair=pair,
+            step=step,
+            today=today,
+            since=since,
+            cached=cached,
+        )
+        for path, found in files
+    ]
     outcomes: list[Result | BoardError] = []
+    rows: list[tuple[str, Result | None, bool]] = []
     said: set[str] = set()
-    for board in boards:
-        try:
-            with ProgressLine() as progress:
-                result = check(board, settings, pairs=pair, step=step, today=today, progress=progress)
-            if since is not None:
-                old = earlier_result(since, settings, settings_of=board, step=step, today=today)
-                result = with_baseline(old, result)
-        except UserError as error:
-            status = max(status, error.exit_status)
-            for line in error_lines(error):
+    for one, outcome in zip(asked, judged(asked, jobs=jobs), strict=True):
+        if isinstance(outcome, UserError):
+            status = max(status, outcome.exit_status)
+            for line in error_lines(outcome):
                 if line not in said:
                     click.echo(line, err=True)
                 said.add(line)
-            if isinstance(error, BoardError):
-                outcomes.append(error)
-            continue
-        status = max(status, int(_flagged(result, severity)))
-        # Where the package is installed says nothing about the demo board.
-        outcomes.append(replace(result, board=replace(result.board, file=DEMO[0])) if demo else result)
-    seen = replace(look(output), explained=explained()) if explain else look(output)
-    text, whole = _told(report, outcomes, len(boards), seen)
-    files = [] if output is None or not whole else [ToWrite(text, output)]
-    for one in also:
-        told, complete = _told(one.report, outcomes, len(boards), Look())
+            rows.append((one.path, None, False))
+            if isinstance(outcome, BoardError):
+                outcomes.append(outcome)
+        elif outcome is not None:
+            flagged = _flagged(outcome, severity)
+            status = max(status, int(flagged))
+            rows.append((one.path, outcome, flagged))
+            # Where the package is installed says nothing about the demo board.
+            outcomes.append(replace(outcome, board=replace(outcome.board, file=DEMO[0])) if demo else outcome)
+    if not rows:
+        if skip_foreign:
+            ctx.exit(0)
+        raise UsageError("none of the files is a board", file=boards[0], remedy="name a board, or the folder it is in")
+    seen = _explaining(look(output)) if explain else look(output)
+    text, whole = _told(report, outcomes, len(rows), seen)
+    if form == "listing" and len(rows) > 1:
+        text = "\n".join(filter(None, (text, boards_table(rows))))
+    to_write = [] if output is None or not whole else [ToWrite(text, output)]
+    for also_one in also:
+        told, complete = _told(also_one.report, outcomes, len(rows), Look())
         if complete:
-            files.append(ToWrite(told, one.file, f"--report {one.report.name}"))
+            to_write.append(ToWrite(told, also_one.file, f"--report {also_one.report.name}"))
         else:
-            click.echo(f"pairrules: {safe(one.file)} is not written, since not all boards could be judged", err=True)
-    write_files(files)
+            click.echo(
+                f"pairrules: {safe(also_one.file)} is not written, since not all boards could be judged", err=True
+            )
+    write_files(to_write)
     if output is None:
         write(text, None)
     ctx.exit(status)
+
+
+def _explaining(seen: Look) -> Look:
+    from pairrules.manual.rule_page import explained
+
+    return replace(seen, explained=explained())
 
 
 def _told(report: Report, outcomes: Sequence[Result | BoardError], boards: int, seen: Look) -> tuple[str, bool]:

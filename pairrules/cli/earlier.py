@@ -9,8 +9,8 @@ from pathlib import Path
 
 from pairrules.cli.progress import ProgressLine
 from pairrules.comparison.saved_result import is_result, read_result
-from pairrules.pipeline import check
 from pairrules.result import Result
+from pairrules.running.kept_check import kept_check, kept_results
 
 
 def is_saved(path: str) -> bool:
@@ -26,6 +26,8 @@ def earlier_result(
     pair: str = "*",
     step: str = "",
     today: date | None = None,
+    jobs: int = 1,
+    cached: bool = False,
 ) -> Result:
     """The result in a file of JSON, or of judging the board in it; only pairs that match `pair`.
 
@@ -41,7 +43,17 @@ def earlier_result(
         )
         return replace(saved, pairs=tuple(kept))
     with ProgressLine() as progress:
-        return check(path, settings, pairs=pair, step=step, today=today, settings_of=settings_of, progress=progress)
+        return kept_check(
+            path,
+            settings,
+            pairs=pair,
+            step=step,
+            today=today,
+            settings_of=settings_of,
+            jobs=jobs,
+            progress=progress,
+            kept=kept_results() if cached else None,
+        )
 
 
 def _bytes(path: str) -> bytes:

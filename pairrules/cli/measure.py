@@ -6,11 +6,19 @@ from datetime import date
 
 import click
 
-from pairrules.cli.options import output_option, pair_option, settings_option, step_option, today_option
+from pairrules.cli.options import (
+    cache_option,
+    jobs_option,
+    output_option,
+    pair_option,
+    settings_option,
+    step_option,
+    today_option,
+)
 from pairrules.cli.output import look, write
 from pairrules.cli.progress import ProgressLine
-from pairrules.pipeline import check
 from pairrules.reports.report import reports_of
+from pairrules.running.kept_check import kept_check, kept_results
 
 
 @click.command(name="measure")
@@ -28,10 +36,30 @@ from pairrules.reports.report import reports_of
 @pair_option
 @step_option
 @today_option
+@jobs_option
+@cache_option
 def command(
-    *, board: str, settings: str | None, form: str, output: str | None, pair: str, step: str, today: date | None
+    *,
+    board: str,
+    settings: str | None,
+    form: str,
+    output: str | None,
+    pair: str,
+    step: str,
+    today: date | None,
+    jobs: int,
+    cached: bool,
 ) -> None:
     """Print all figures of the pairs of BOARD. Exit status 0 whatever they are, 2 and 3 as `check`."""
     with ProgressLine() as progress:
-        result = check(board, settings, pairs=pair, step=step, today=today, progress=progress)
+        result = kept_check(
+            board,
+            settings,
+            pairs=pair,
+            step=step,
+            today=today,
+            jobs=jobs,
+            progress=progress,
+            kept=kept_results() if cached else None,
+        )
     write(reports_of("measure")[form].render(result, look(output)), output)

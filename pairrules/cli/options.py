@@ -6,13 +6,13 @@ from datetime import date
 
 import click
 
-from pairrules.settings.waivers import as_day
-
 
 def as_date(ctx: click.Context, param: click.Parameter, value: str | None) -> date | None:
     """A day written YYYY-MM-DD, for an option."""
     if value is None:
         return None
+    from pairrules.settings.waivers import as_day
+
     day = as_day(value)
     if day is None:
         raise click.BadParameter(f"{value!r} is no day; write it as 2031-05-17", ctx, param)

@@ -18,7 +18,7 @@ def to_plain(value: Any) -> Any:
     if isinstance(value, tuple):
         return [to_plain(one) for one in value]
     kind: Any = type(value)
-    if dataclasses.is_dataclass(kind):
+    if hasattr(kind, "__dataclass_fields__"):
         return [to_plain(getattr(value, field.name)) for field in _fields(kind)]
     if isinstance(value, SupportsFloat) and hasattr(value, "item"):
         return value.item()  # a number of a numerical library
@@ -35,7 +35,7 @@ def from_plain(kind: type[Record], plain: Any) -> Record:
 
 
 def _made(kind: Any, plain: Any) -> Any:
-    if dataclasses.is_dataclass(kind):
+    if hasattr(kind, "__dataclass_fields__"):
         fields = _fields(kind)
         if not isinstance(plain, list) or len(plain) != len(fields):
             raise ValueError("a record has other fields")
