@@ -55,7 +55,7 @@ def outcome(
     folder.mkdir(parents=True)
     path, out = folder / "board", folder / "out"
     path.write_bytes(board)
-    arguments = ["check", str(path), "--format", form, "--output", str(out)]
+    arguments = ["check", str(path), "--no-cache", "--format", form, "--output", str(out)]
     if settings is not None:
         (folder / "settings.yaml").write_bytes(settings)
         arguments += ["--settings", str(folder / "settings.yaml")]
@@ -186,8 +186,16 @@ class _Watch:
         elif event == "open":
             path, mode, flags = arguments
             writes = bool(flags & _WRITING) if isinstance(flags, int) else mode is not None and mode != "r"
-            if writes and isinstance(path, str) and not path.startswith(cls.folder):
-                cls.touched[0].append(path)
+            if writes and cls._outside(path):
+                cls.touched[0].append(str(path))
         elif event in _MOVING:
-            outside = [one for one in arguments if isinstance(one, str) and not one.startswith(cls.folder)]
-            cls.touched[0].extend(outside)
+            cls.touched[0].extend(str(one) for one in arguments if cls._outside(one))
+
+    @classmethod
+    def _outside(cls, path: object) -> bool:
+        """Whether it is a path outside the case's folder; compiled modules are the interpreter's own affair."""
+        if not isinstance(path, str | os.PathLike):
+            return False
+        text = os.fspath(path)
+        inside = isinstance(text, str) and (text == cls.folder or text.startswith(f"{cls.folder}{os.sep}"))
+        return not inside and "__pycache__" not in str(text)

@@ -23,6 +23,7 @@ for _threads in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS"):
 sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
 
 from pairrules import pipeline  # noqa: E402  the paths and threads come first
+from pairrules.running import pair_stage  # noqa: E402
 from tests.fuzz.corpus import Input, drawn  # noqa: E402
 from tests.fuzz.one_input import Outcome, outcome  # noqa: E402
 
@@ -110,12 +111,12 @@ class Sections(dict[Any, Any]):
         super().__init__()
         self.real = True
         self.likes: dict[tuple[str, ...], Any] = {}
-        solve = pipeline.electrical
+        solve = pair_stage.electrical
 
         def electrical(*arguments: Any, **named: Any) -> Any:
             return solve(*arguments, **{**named, "store": self})
 
-        pipeline.electrical = electrical
+        pair_stage.electrical = electrical
         read, settings = pipeline.read_settings, dict[bytes, Any]()
 
         def read_settings(path: Path | None, **named: Any) -> Any:
