@@ -14,7 +14,7 @@ from pairrules.drawing import DrawnShape, Point, Ring
 DIGITS = 4
 """Decimals of drawn coordinates [mm]: a tenth of a micrometre is far below what a picture shows."""
 
-_SMOOTH_MM = 0.002
+_SMOOTH_MM = 0.005
 """Corners of flattened round copper are thinned out to this; no picture shows less."""
 _LEAST_MM2 = 1e-6
 

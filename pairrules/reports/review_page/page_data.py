@@ -5,12 +5,14 @@ Names keep their own text where a waiver has to match it (`key`); what is shown 
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
+from dataclasses import replace
 from typing import Any
 
 from pairrules.board.coordinates import coordinates, decimals, unit_name
 from pairrules.board.units import LENGTH_MM
-from pairrules.drawing import DrawnPiece
+from pairrules.drawing import DrawnPiece, RunningDifference, SpacingStretch
 from pairrules.reports.figures import FIGURES, value
 from pairrules.reports.review_page.paths import micrometres, ring_path, route_paths, shapes_path
 from pairrules.reports.safe_text import safe
@@ -18,6 +20,9 @@ from pairrules.result import SEVERITIES, Finding, HeldLimit, PairResult, Place, 
 from pairrules.schemas.glossary import MODELS
 
 Plain = dict[str, Any]
+
+_SAME_MM = 0.0005
+"""Half a micrometre, the rounding of the page's drawing units."""
 
 _VERDICTS = ("flag", "undecided", "waived", "pass")
 
@@ -211,31 +216,17 @@ def _drawing(pair: PairResult) -> Plain | None:
                 "pads": [
                     [safe(pad.pin), net(pad.net), pad.leg, pad.layer, *micrometres(pad.at), shapes_path(pad.shapes)]
                     for pad in part.pads
+                    # Others are seen in the copper, and a great connector has hundreds of them.
+                    if pad.leg
                 ],
             }
             for part in drawing.parts
         ],
         "places": [[place.number, place.layer, *micrometres(place.at)] for place in drawing.places],
-        "spacing": [
-            [
-                [
-                    _short(one.from_mm, 4),
-                    _short(one.to_mm, 4),
-                    _short(one.gap_from_mm, 4),
-                    _short(one.gap_mid_mm, 4),
-                    _short(one.gap_to_mm, 4),
-                    int(one.coupled),
-                    one.layer,
-                    *micrometres(one.start),
-                    *micrometres(one.end),
-                ]
-                for one in side
-            ]
-            for side in (drawing.spacing_plus, drawing.spacing_minus)
-        ],
+        "spacing": _spacing(drawing.spacing_plus),
         "difference": [
-            [_short(one.along_mm, 4), _short(one.difference_mm, 4), one.layer, *micrometres(one.at)]
-            for one in drawing.difference
+            [_short(one.along_mm, 3), _short(one.difference_mm, 4), one.layer, *micrometres(one.at)]
+            for one in _bends(drawing.difference)
         ],
         "impedance": [
             [
@@ -276,6 +267,65 @@ def _drawing(pair: PairResult) -> Plain | None:
     }
     record["nets"] = list(nets)
     return record
+
+
+def _spacing(stretches: Sequence[SpacingStretch]) -> list[list[Any]]:
+    """Stretches in order; those of one gap that go straight on are joined, as most of a profile is."""
+    joined: list[SpacingStretch] = []
+    for one in stretches:
+        last = joined[-1] if joined else None
+        if last is not None and _goes_on(last, one):
+            joined[-1] = replace(last, to_mm=one.to_mm, end=one.end, gap_to_mm=one.gap_to_mm)
+        else:
+            joined.append(one)
+    return [
+        [
+            _short(one.from_mm, 3),
+            _short(one.to_mm, 3),
+            _short(one.gap_from_mm, 4),
+            _short(one.gap_mid_mm, 4),
+            _short(one.gap_to_mm, 4),
+            int(one.coupled),
+            one.layer,
+            *micrometres(one.end),
+            # Only where it is not the end of the one before.
+            *(micrometres(one.start) if i == 0 or joined[i - 1].end != one.start else ()),
+        ]
+        for i, one in enumerate(joined)
+    ]
+
+
+def _goes_on(last: SpacingStretch, one: SpacingStretch) -> bool:
+    if last.coupled != one.coupled or last.layer != one.layer or last.end != one.start:
+        return False
+    gaps = (last.gap_from_mm, last.gap_mid_mm, last.gap_to_mm, one.gap_from_mm, one.gap_mid_mm, one.gap_to_mm)
+    if one.coupled:
+        # Where the legs are not side by side no gap is drawn, so that it need not be one.
+        known = [gap for gap in gaps if gap is not None]
+        if len(known) < len(gaps) or max(known) - min(known) > _SAME_MM:
+            return False
+    (ax, ay), (bx, by), (cx, cy) = last.start, one.start, one.end
+    aside = abs((bx - ax) * (cy - ay) - (by - ay) * (cx - ax))
+    return aside <= _SAME_MM * math.hypot(cx - ax, cy - ay)
+
+
+def _bends(points: Sequence[RunningDifference]) -> list[RunningDifference]:
+    """The points without those that lie straight between the ones before and after, on the board and in the curve."""
+    found = list(points[:1])
+    for i in range(1, len(points) - 1):
+        before, here, after = found[-1], points[i], points[i + 1]
+        span = after.along_mm - before.along_mm
+        share = (here.along_mm - before.along_mm) / span if span > 0 else math.inf
+        between = (
+            (before.difference_mm, here.difference_mm, after.difference_mm),
+            (before.at[0], here.at[0], after.at[0]),
+            (before.at[1], here.at[1], after.at[1]),
+        )
+        # A quarter of what is shown, so that what is left out in a row does not add up to something that is.
+        straight = share <= 1 and all(abs(a + share * (b - a) - x) <= _SAME_MM / 4 for a, x, b in between)
+        if not straight or not before.layer == here.layer == after.layer:
+            found.append(here)
+    return [*found, *points[-1:]] if len(points) > 1 else found
 
 
 def _ends(pieces: Sequence[DrawnPiece]) -> list[list[int]]:

@@ -10,6 +10,12 @@ from pairrules.drawing import DrawnPiece, DrawnShape, Point
 
 Micrometres = tuple[int, int]
 
+_CORNERS = 8
+"""A regular outline of fewer corners than this may well be meant with them."""
+_UNEVEN = 2.0
+"""Thinned out corners leave chords up to so many times those of a regular outline."""
+_SAME_MM = 0.001
+
 
 def micrometres(at: Point) -> Micrometres:
     """A place of the board [mm] in the page's drawing units, whose y runs downward as SVG's does."""
@@ -22,7 +28,10 @@ def shapes_path(shapes: Iterable[DrawnShape]) -> str:
 
 
 def ring_path(ring: Sequence[Point]) -> str:
-    """A closed outline; "" where less than a triangle is left after rounding."""
+    """A closed outline; a circle where it was flattened from one; "" where rounding leaves less than a triangle."""
+    round_one = _circle(ring)
+    if round_one:
+        return round_one
     points = [micrometres(at) for at in ring]
     kept = [at for i, at in enumerate(points) if at != points[i - 1]]
     if len(set(kept)) < 3:
@@ -51,6 +60,24 @@ def route_paths(pieces: Iterable[DrawnPiece]) -> list[tuple[int, float, str]]:
             found.append((*style, f"M{_pair(start)}{step}"))
         last = end
     return found
+
+
+def _circle(ring: Sequence[Point]) -> str:
+    """A circle where all corners lie on one and leave no gap on it greater than a flattened circle has; else ""."""
+    if len(ring) < _CORNERS:
+        return ""
+    xs, ys = [x for x, _ in ring], [y for _, y in ring]
+    centre = ((min(xs) + max(xs)) / 2, (min(ys) + max(ys)) / 2)
+    radii = [math.dist(corner, centre) for corner in ring]
+    radius = max(radii)
+    if radius - min(radii) > _SAME_MM:
+        return ""
+    longest = 2 * radius * math.sin(math.pi / _CORNERS * _UNEVEN)
+    if any(math.dist(ring[i - 1], corner) > longest for i, corner in enumerate(ring)):
+        return ""
+    size = round(radius * 1000)
+    x, y = micrometres(centre)
+    return f"M{x - size} {y}a{size} {size} 0 1 0 {2 * size} 0a{size} {size} 0 1 0 {-2 * size} 0z"
 
 
 def _line(start: Micrometres, end: Micrometres) -> str:

@@ -129,16 +129,31 @@ function spacingPoints(stretches) {
 function stretchAt(stretches, x, from, to) { return stretches.find((one) => x >= one[from] - 1e-6 && x <= one[to] + 1e-6); }
 
 function placeAt(drawing, x) {
-  const one = stretchAt(drawing.spacing[0], x, 0, 1);
+  const one = stretchAt(drawing.spacing, x, 0, 1);
   if (!one) return null;
   const t = one[1] > one[0] ? (x - one[0]) / (one[1] - one[0]) : 0;
   const gap = one[5] && one[2] !== null ? (t < 0.5 ? one[2] + (one[3] - one[2]) * 2 * t : one[3] + (one[4] - one[3]) * (2 * t - 1)) : null;
   return { x: one[7] + (one[9] - one[7]) * t, y: one[8] + (one[10] - one[8]) * t, layer: one[6], gap };
 }
 
+// The running difference where the place on plus lies: its points are bends of a line on the board as well as of the curve.
+function differenceAt(points, place) {
+  let best = null;
+  for (let i = 1; i < points.length; i += 1) {
+    const [a, b] = [points[i - 1], points[i]];
+    if (a[2] !== place.layer || b[2] !== place.layer) continue;
+    const [dx, dy] = [b[3] - a[3], b[4] - a[4]];
+    const t = Math.min(Math.max(((place.x - a[3]) * dx + (place.y - a[4]) * dy) / Math.max(dx * dx + dy * dy, 1e-9), 0), 1);
+    const far = Math.hypot(a[3] + t * dx - place.x, a[4] + t * dy - place.y);
+    if (!best || far < best.far) best = { far, along: a[0] + t * (b[0] - a[0]), difference: a[1] + t * (b[1] - a[1]) };
+  }
+  // Farther off than this the legs face each other nowhere near.
+  return best && best.far < 500 ? best : null;
+}
+
 function curvesAlong(drawing, width, onPoint, height) {
   const found = [];
-  const stretches = drawing.spacing[0];
+  const stretches = drawing.spacing;
   const xTo = stretches.length ? stretches[stretches.length - 1][1] : Math.max(0, ...drawing.impedance.map((one) => one[3]));
   const limits = (figureName) => drawing.limits.filter((limit) => limit.figure === figureName);
   const gaps = spacingPoints(stretches);

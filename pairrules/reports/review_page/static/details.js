@@ -132,7 +132,7 @@ function pairPicture(pair, drawing, { still, width }) {
     make("span", null, make("span", { class: "key reference", "aria-hidden": "true" }), " reference copper"),
     drawing.openings.length ? make("span", null, make("span", { class: "key opening", "aria-hidden": "true" }), " opening in it") : "",
     pins.length ? make("span", null, "letters: places of the findings below") : "",
-    drawing.unknown.length ? make("span", null, `not in the file: ${drawing.unknown.map((layer) => board.layers[layer]).join(", ")}`) : "");
+    drawing.unknown.length ? make("span", null, "reference copper beside the legs is not known on every layer") : "");
   view.whole = make("div", { class: "pair-picture" }, choice, view.element, legend);
   if (still) view.tell();
   return view;
@@ -238,16 +238,13 @@ function alongRoute(pair, detail, shown, width) {
   const go = (x) => {
     const place = placeAt(drawing, x);
     const section = stretchAt(drawing.impedance.filter((one) => one[0] === "both"), x, 2, 3);
-    const nearest = place && drawing.difference.reduce((best, one) => {
-      const far = Math.hypot(one[3] - place.x, one[4] - place.y);
-      return one[2] === place.layer && (!best || far < best.far) ? { far, one } : best;
-    }, null);
-    charts.forEach((one) => one.cursor(one.dataset.kind === "difference" ? (nearest ? nearest.one[0] : NaN) : x));
+    const running = place && differenceAt(drawing.difference, place);
+    charts.forEach((one) => one.cursor(one.dataset.kind === "difference" ? (running ? running.along : NaN) : x));
     shown.picture.mark(place);
     const parts = [`at ${figure(x, 2)} mm`];
     if (place) parts.push(`${board.layers[place.layer]} ${coordinates(place.x, place.y)}`, place.gap === null ? "the other leg is not beside it" : `gap ${figure(place.gap)} mm`);
     if (section && section[6] !== null) parts.push(`${figure(section[6], 1)} ohm`);
-    if (nearest) parts.push(`difference ${figure(nearest.one[1])} mm`);
+    if (running) parts.push(`difference ${figure(running.difference)} mm`);
     said.textContent = parts.join(", ");
   };
   const onPoint = shown.still ? null : (x) => { slider.value = x; go(x); };
@@ -255,7 +252,7 @@ function alongRoute(pair, detail, shown, width) {
   charts.forEach((one) => { one.dataset.kind = one.textContent.startsWith("Running") ? "difference" : "place"; });
   const missing = drawing.missing.length ? make("ul", { class: "small" }, drawing.missing.map((text) => make("li", null, text))) : "";
   if (!charts.length) return make("section", { class: "along" }, make("h3", null, "Along the route"), make("p", null, "Nothing can be drawn along the route."), missing);
-  const stretches = drawing.spacing[0];
+  const stretches = drawing.spacing;
   const length = stretches.length ? stretches[stretches.length - 1][1] : 0;
   if (!shown.still && length) {
     slider = make("input", { type: "range", min: 0, max: length, step: length / 500, value: 0, id: "along", oninput: (event) => go(Number(event.target.value)) });
@@ -294,8 +291,9 @@ function limitsOf(detail, still) {
     return make("li", null,
       make("span", { class: "limit-name" }, sign(kinds[one.outcome] || one.severity), ` ${one.rule}`, make("span", { class: "outcome" }, ` ${OUTCOMES[one.outcome]}`)),
       make("span", null, one.says || "no number"),
-      make("span", null, compared ? `${amount(one.measured, one.unit)} against ${amount(one.limit, one.unit)}` : one.outcome === "undecided" ? one.missing : "no single figure"),
+      make("span", null, compared ? `${amount(one.measured, one.unit)} against ${amount(one.limit, one.unit)}` : one.outcome === "undecided" ? "" : "no single figure"),
       make("span", { class: "limit-margin" }, compared ? `${one.outcome === "kept" ? "to spare" : "beyond"} ${amount(off, one.unit)}` : ""),
+      one.missing ? make("span", { class: "limit-source" }, one.missing) : "",
       make("span", { class: "small limit-source" }, one.source ? `from: ${one.source}` : "no source given"));
   })), named.length ? make("p", { class: "small" }, `Kept as well: ${named.join("; ")}`) : "");
 }

@@ -18,7 +18,19 @@ for (const pair of pairs) {
 
 function byId(id) { return document.getElementById(id); }
 
-function details(pair) { return JSON.parse(byId(`pair-${pair.index}`).textContent); }
+// Rows of the spacing become [from, to, three gaps, coupled, layer, start x, start y, end x, end y].
+function details(pair) {
+  const found = JSON.parse(byId(`pair-${pair.index}`).textContent);
+  let end = [];
+  if (found.drawing) {
+    found.drawing.spacing = found.drawing.spacing.map((row) => {
+      const start = row.length > 9 ? row.slice(9) : end;
+      end = row.slice(7, 9);
+      return [...row.slice(0, 7), ...start, ...end];
+    });
+  }
+  return found;
+}
 
 function furnish(element, attributes, children) {
   for (const [name, value] of Object.entries(attributes || {})) {

@@ -41,7 +41,7 @@ function item(pair) {
   const groups = standingByRule(pair);
   const decided = groups.filter((group) => kept.decisions[group.key]).length;
   const rules = groups.map((group) => group.rule).join(", ");
-  const said = pair.verdict === "flag" ? rules : VERDICT_WORDS[pair.verdict];
+  const said = [rules, pair.class ? `class ${pair.class}` : "no class"].filter(Boolean).join(" · ");
   return make("li", null, make("button", {
     type: "button", id: `item-${pair.index}`, class: "item", "aria-current": pair === chosen ? "true" : null,
     tabindex: pair === (listed.includes(chosen) ? chosen : listed[0]) ? "0" : "-1",
@@ -51,7 +51,7 @@ function item(pair) {
   sign(pair.sign),
   make("span", { class: "item-name" }, pair.name, " ", make("span", { class: "item-word" }, pair.worst || VERDICT_WORDS[pair.verdict])),
   make("span", { class: "item-decided" }, groups.length ? `${decided}/${groups.length} decided` : ""),
-  make("span", { class: "item-rules" }, said, pair.class ? ` · ${pair.class}` : "")));
+  make("span", { class: "item-rules" }, said)));
 }
 
 function choosePair(pair, { scroll = false, focus = false, keepAddress = false } = {}) {
