@@ -15,6 +15,7 @@ import pytest
 from pairrules.errors import UsageError
 from pairrules.fields.section_json import answer, answers, read_sections
 from pairrules.fields.solve import solve_section
+from tests.fields.closeness import near
 from tests.fields.sections import contract_example, microstrip, strip
 
 EXAMPLE: dict[str, Any] = {
@@ -70,7 +71,7 @@ def test_a_polygon_may_be_closed_or_open_and_go_round_either_way() -> None:
     closed = read_sections(json.dumps(changed("conductors.0.polygon", [*corners, corners[0]])), "a")[0]
     assert closed == contract_example()
     backward = read_sections(json.dumps(changed("conductors.0.polygon", corners[::-1])), "a")[0]
-    assert pytest.approx(solve_section(closed).C, rel=1e-9) == solve_section(backward).C
+    assert near(solve_section(closed).C, 1e-9) == solve_section(backward).C
 
 
 def test_stretches_of_a_plane_in_any_order() -> None:

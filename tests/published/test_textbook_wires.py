@@ -17,6 +17,7 @@ import pytest
 from pairrules.fields.cross_section import Conductor, CrossSection, Plane, Role
 from pairrules.fields.loss import resistance, skin_integrals
 from pairrules.fields.solve import EPSILON_0, solve_section
+from tests.fields.closeness import near
 from tests.fields.sections import INF
 
 SIDES = 96
@@ -33,7 +34,7 @@ def wire(name: str, x: float, y: float, radius: float, role: Role = "signal") ->
 def test_wire_over_a_plane(ratio: float) -> None:
     section = CrossSection(conductors=(wire("a", 0.0, ratio, 1.0),), planes=(Plane(y=0.0),))
     exact = 2 * math.pi * EPSILON_0 / math.acosh(ratio)
-    assert solve_section(section).C[0, 0] == pytest.approx(exact, rel=2e-4)
+    assert solve_section(section).C[0, 0] == near(exact, 2e-4)
 
 
 def test_wire_over_a_plane_of_cells() -> None:
@@ -41,7 +42,7 @@ def test_wire_over_a_plane_of_cells() -> None:
     section = CrossSection(
         conductors=(wire("a", 0.0, 2.5, 1.0),), planes=(Plane(y=0.0, intervals=((-INF, 0.3), (0.3, INF))),)
     )
-    assert solve_section(section).C[0, 0] == pytest.approx(2 * math.pi * EPSILON_0 / math.acosh(2.5), rel=5e-4)
+    assert solve_section(section).C[0, 0] == near(2 * math.pi * EPSILON_0 / math.acosh(2.5), 5e-4)
 
 
 @pytest.mark.parametrize("distance", [2.4, 5.0])
@@ -51,7 +52,7 @@ def test_two_wires(distance: float) -> None:
     pair = solve_section(section).pair
     assert pair is not None
     exact = math.pi * EPSILON_0 / math.acosh(distance / 2)
-    assert pair.C[0, 0] == pytest.approx(exact, rel=2e-4)
+    assert pair.C[0, 0] == near(exact, 2e-4)
     assert pair.impedance_diff_ohm == pytest.approx(119.9169832 * math.acosh(distance / 2), rel=2e-4)
 
 
@@ -71,12 +72,12 @@ def test_skin_resistance_over_a_plane(ratio: float) -> None:
     )
     integrals = skin_integrals(solve_section(section))
     root = math.sqrt(ratio**2 - 1)
-    assert integrals.legs[0, 0] * 2 * math.pi * radius == pytest.approx(ratio / root, rel=2e-3)
-    assert integrals.grounded[0, 0] * 2 * math.pi * radius == pytest.approx(1 / root, rel=2e-3)
+    assert integrals.legs[0, 0] * 2 * math.pi * radius == near(ratio / root, 2e-3)
+    assert integrals.grounded[0, 0] * 2 * math.pi * radius == near(1 / root, 2e-3)
     hertz = 1e9
     surface = math.sqrt(math.pi * hertz * 4e-7 * math.pi * 17.241e-9)
     expected = surface / (2 * math.pi * radius) * (ratio + 1) / root
-    assert resistance(integrals, [hertz], with_return=True)[0, 0, 0] == pytest.approx(expected, rel=2e-3)
+    assert resistance(integrals, [hertz], with_return=True)[0, 0, 0] == near(expected, 2e-3)
 
 
 def test_skin_resistance_of_a_plane_of_cells_is_that_of_an_infinite_one() -> None:
@@ -84,4 +85,4 @@ def test_skin_resistance_of_a_plane_of_cells_is_that_of_an_infinite_one() -> Non
     whole = skin_integrals(solve_section(CrossSection(conductors=wires, planes=(Plane(y=0.0),))))
     cut = Plane(y=0.0, intervals=((-INF, 0.3), (0.3, INF)))
     cells = skin_integrals(solve_section(CrossSection(conductors=wires, planes=(cut,)), refine=3.0))
-    assert cells.grounded == pytest.approx(whole.grounded, rel=0.01)
+    assert cells.grounded == near(whole.grounded, 0.01)
