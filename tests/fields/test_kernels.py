@@ -113,8 +113,8 @@ def test_the_potential_vanishes_on_planes() -> None:
 
 def test_potentials_are_symmetric() -> None:
     rng = np.random.default_rng(5)
-    centre = rng.uniform(0, 1, 300) + 1j * rng.uniform(0.05, 0.95, 300)
-    way = rng.uniform(0.001, 0.05, 300) * np.exp(1j * rng.choice([0.0, np.pi / 2, 0.3], 300))
+    centre: Complexes = (rng.uniform(0, 1, 300) + 1j * rng.uniform(0.05, 0.95, 300)).astype(np.complex128)
+    way = (rng.uniform(0.001, 0.05, 300) * np.exp(1j * rng.choice([0.0, np.pi / 2, 0.3], 300))).astype(np.complex128)
     for around in (Surroundings(grounded=False), Surroundings(grounded=True), Surroundings(grounded=True, height=1.0)):
         potential, _ = interaction(centre, way, 300, np.arange(0), around)
         assert np.max(np.abs(potential - potential.T)) < 1e-9
