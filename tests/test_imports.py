@@ -35,7 +35,7 @@ ROOMS = {
     "drawing": set(),
     "result": set(),
 }
-"""Each room and those below it. `cli`, `pipeline`, `running` and the package itself sit on top and may import everything."""
+"""Each room and those below it. `cli`, `pipeline`, `running` and the package itself sit on top and import everything."""
 
 TOP = {"cli", "pipeline", "running", "__init__", "__main__"}
 
@@ -143,3 +143,16 @@ def test_importing_the_package_loads_nothing_heavy_and_offers_check() -> None:
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True, cwd=PACKAGE.parent)
     names = {name.strip("'[] ").split(".")[0] for name in done.stdout.split(",")}
     assert names & (HEAVY | {"click"}) == set()
+
+
+def test_a_check_answered_from_what_is_kept_loads_nothing_heavy(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    for name in ("XDG_CACHE_HOME", "LOCALAPPDATA", "HOME"):
+        monkeypatch.setenv(name, str(tmp_path))
+    demo = str(PACKAGE.parent / "fixtures" / "demo" / "tide-gauge-buoy.json")
+    arguments = ("check", demo, "--pair", "LINK_CLOCK", "--output", str(tmp_path / "out.txt"))
+    assert loaded(*arguments) & HEAVY >= {"numpy", "shapely"}
+    first = (tmp_path / "out.txt").read_bytes()
+    assert loaded(*arguments) & HEAVY == set()
+    assert (tmp_path / "out.txt").read_bytes() == first

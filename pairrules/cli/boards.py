@@ -11,8 +11,10 @@ from pathlib import Path
 from pairrules.cli.progress import ProgressLine
 from pairrules.errors import BoardError, UserError
 from pairrules.result import Result
-from pairrules.running.foreign import ENDINGS, is_foreign
 from pairrules.running.kept_check import kept_check, kept_results
+
+ENDINGS = (".xml", ".cvg", ".json", ".xml.gz", ".cvg.gz", ".json.gz", ".zip")
+"""What board files are called; files of other names are not looked into where a folder is named."""
 
 _SIGNS = frozenset("*?[")
 
@@ -96,8 +98,11 @@ def _hidden(path: Path, folder: str) -> bool:
 
 
 def _judge(asked: Asked, *, jobs: int = 1, progress: ProgressLine | None = None) -> Result | UserError | None:
-    if asked.found and is_foreign(asked.path):
-        return None
+    if asked.found:
+        from pairrules.running.foreign import is_foreign
+
+        if is_foreign(asked.path):
+            return None
     try:
         result = kept_check(
             asked.path,

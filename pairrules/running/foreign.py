@@ -8,9 +8,7 @@ import zipfile
 import zlib
 from pathlib import Path
 
-ENDINGS = (".xml", ".cvg", ".json", ".xml.gz", ".cvg.gz", ".json.gz", ".zip")
-"""What board files are called; files of other names are not looked into where a folder is named."""
-
+_ENDINGS = (".xml", ".cvg", ".json")
 _HEAD = 1 << 20
 _COMMENT = re.compile(r"<!--.*?(?:-->|\Z)|<\?.*?(?:\?>|\Z)", re.DOTALL)
 _ROOT = re.compile(r"<([^\s<>/!?]+)")
@@ -41,7 +39,7 @@ def is_foreign(path: str) -> bool:
 def _foreign_archive(data: bytes) -> bool:
     with zipfile.ZipFile(io.BytesIO(data)) as archive:
         for member in archive.infolist()[:1000]:
-            if member.filename.lower().endswith(ENDINGS):
+            if member.filename.lower().endswith(_ENDINGS):
                 with archive.open(member) as stream:
                     if _is_board(stream.read(_HEAD)):
                         return False

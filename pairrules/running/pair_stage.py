@@ -122,7 +122,7 @@ class PairStage:
             load=found.load,
             series=found.series,
             routed=geometry.routed,
-            verdict=verdict(judgement, geometry.routed),
+            verdict=verdict(judgement, geometry.routed, ends_known=link.ends_known),
             measures=measures,
             balance=balance,
             findings=judgement.findings,
