@@ -32,6 +32,7 @@ return performance.now() - begun;
 def main() -> None:
     parser = argparse.ArgumentParser(description="time the review page")
     parser.add_argument("--pairs", type=int, default=400)
+    parser.add_argument("--jobs", type=int, default=1)
     parser.add_argument("--keep", type=Path, help="keep the page there")
     chosen = parser.parse_args()
     with tempfile.TemporaryDirectory() as name:
@@ -39,7 +40,7 @@ def main() -> None:
         board, page = folder / "board.xml", chosen.keep or folder / "review.html"
         write_board(board, pairs=chosen.pairs)
         begun = time.perf_counter()
-        result = check(board, drawing=True)
+        result = check(board, drawing=True, jobs=chosen.jobs)
         checked = time.perf_counter()
         text = render(result)
         rendered = time.perf_counter()

@@ -12,7 +12,7 @@ from jinja2 import DictLoader, Environment, StrictUndefined
 from markupsafe import Markup
 
 from pairrules.reports.cautions import CAUTIONS
-from pairrules.reports.review_page.page_data import board_record, in_order, pair_record
+from pairrules.reports.review_page.page_data import board_record, in_order, limit_texts, pair_record
 from pairrules.reports.safe_text import safe
 from pairrules.result import Result
 from pairrules.schemas.glossary import MODELS
@@ -37,6 +37,7 @@ def render(result: Result) -> str:
     parts = [(folder / "static" / f"{name}.js").read_text(encoding="utf-8") for name in SCRIPTS]
     script = '"use strict";\n(() => {\n' + "\n".join(parts) + "})();\n"
     pairs = in_order(result)
+    limits = limit_texts(pairs)
     return environment.get_template("page.html").render(
         result=result,
         board=result.board,
@@ -49,8 +50,8 @@ def render(result: Result) -> str:
         script=Markup(script),
         style_hash=_digest(style),
         script_hash=_digest(script),
-        board_json=as_json(board_record(result, pairs)),
-        pairs_json=[as_json(pair_record(pair)) for pair in pairs],
+        board_json=as_json(board_record(result, pairs, limits)),
+        pairs_json=[as_json(pair_record(pair, limits)) for pair in pairs],
     )
 
 

@@ -5,15 +5,14 @@ Names keep their own text where a waiver has to match it (`key`); what is shown 
 
 from __future__ import annotations
 
-import math
 from collections.abc import Sequence
-from dataclasses import replace
 from typing import Any
 
 from pairrules.board.coordinates import coordinates, decimals, unit_name
 from pairrules.board.units import LENGTH_MM
-from pairrules.drawing import DrawnPiece, RunningDifference, SpacingStretch
+from pairrules.drawing import DrawnPiece
 from pairrules.reports.figures import FIGURES, value
+from pairrules.reports.review_page.along_rows import difference_rows, short, spacing_rows
 from pairrules.reports.review_page.paths import micrometres, ring_path, route_paths, shapes_path
 from pairrules.reports.safe_text import safe
 from pairrules.result import SEVERITIES, Finding, HeldLimit, PairResult, Place, Result
@@ -21,8 +20,8 @@ from pairrules.schemas.glossary import MODELS
 
 Plain = dict[str, Any]
 
-_SAME_MM = 0.0005
-"""Half a micrometre, the rounding of the page's drawing units."""
+LimitText = tuple[str, str, str, str, str]
+"""What a limit says: rule, severity, its quantities in words, unit, source."""
 
 _VERDICTS = ("flag", "undecided", "waived", "pass")
 
@@ -32,8 +31,11 @@ def in_order(result: Result) -> tuple[PairResult, ...]:
     return tuple(sorted(result.pairs, key=_rank))
 
 
-def board_record(result: Result, pairs: Sequence[PairResult]) -> Plain:
-    """What the page needs at once: the board, its edge, and every pair's findings and lines."""
+def board_record(result: Result, pairs: Sequence[PairResult], limits: Sequence[LimitText]) -> Plain:
+    """What the page needs at once: the board, its edge, and every pair's findings and lines.
+
+    `limits`: all of `limit_texts`.
+    """
     board, drawing = result.board, result.drawing
     unit = unit_name(board.units)
     used = {rule.rule for pair in pairs for rule in pair.limits}
@@ -56,6 +58,8 @@ def board_record(result: Result, pairs: Sequence[PairResult]) -> Plain:
             for rule in result.rules
             if rule.name in used
         ],
+        "figures": [[figure.label, figure.unit] for figure in FIGURES],
+        "limits": [list(limit) for limit in limits],
         "models": [safe(model.brief) for model in MODELS.values()],
         "waivers": [
             {
@@ -73,18 +77,35 @@ def board_record(result: Result, pairs: Sequence[PairResult]) -> Plain:
     }
 
 
-def pair_record(pair: PairResult) -> Plain:
-    """The details of one pair: figures, limits, what they rest on, its drawing and curves."""
+def limit_texts(pairs: Sequence[PairResult]) -> list[LimitText]:
+    """What the limits of all pairs say, each once: most pairs share theirs."""
+    return sorted({_text(limit) for pair in pairs for limit in pair.limits})
+
+
+def pair_record(pair: PairResult, limits: Sequence[LimitText]) -> Plain:
+    """The details of one pair: figures, limits, what they rest on, its drawing and curves.
+
+    `limits`: all of `limit_texts`.
+    """
     return {
         "foundBy": safe(pair.found_by),
         "nets": {"plus": [safe(net) for net in pair.nets_plus], "minus": [safe(net) for net in pair.nets_minus]},
         "ends": [safe(pair.source), safe(pair.load)],
         "series": [[safe(part.ref), safe(part.value), part.leg] for part in pair.series],
         "lines": [pair.line_plus, pair.line_minus],
-        "figures": [[figure.label, value(pair.measures, figure), figure.unit] for figure in FIGURES],
-        "limits": [_limit(limit) for limit in pair.limits],
+        "figures": [value(pair.measures, figure) for figure in FIGURES],
+        "limits": [
+            [
+                limits.index(_text(limit)),
+                limit.outcome,
+                short(limit.measured, 4),
+                short(limit.limit, 4),
+                safe(limit.missing),
+            ]
+            for limit in pair.limits
+        ],
         "balance": [
-            {key: _short(getattr(point, key), 2) for key in type(point).__dataclass_fields__} for point in pair.balance
+            {key: short(getattr(point, key), 2) for key in type(point).__dataclass_fields__} for point in pair.balance
         ],
         "unjudged": [[rule.rule, safe(rule.missing)] for rule in pair.unjudged],
         "missing": [safe(text) for text in pair.missing],
@@ -143,8 +164,8 @@ def _finding(result: Result, finding: Finding) -> Plain:
         "severity": finding.severity,
         "waived": finding.waived,
         "print": finding.fingerprint,
-        "measured": _short(finding.measured, 4),
-        "limit": _short(finding.limit, 4),
+        "measured": short(finding.measured, 4),
+        "limit": short(finding.limit, 4),
         "unit": finding.unit,
         "message": safe(finding.message),
         "advice": safe(finding.advice),
@@ -162,18 +183,8 @@ def _place(result: Result, place: Place) -> list[Any]:
     ]
 
 
-def _limit(limit: HeldLimit) -> Plain:
-    return {
-        "rule": limit.rule,
-        "severity": limit.severity,
-        "says": limit.says,
-        "outcome": limit.outcome,
-        "measured": _short(limit.measured, 4),
-        "limit": _short(limit.limit, 4),
-        "unit": limit.unit,
-        "missing": safe(limit.missing),
-        "source": safe(limit.source),
-    }
+def _text(limit: HeldLimit) -> LimitText:
+    return limit.rule, limit.severity, limit.says, limit.unit, safe(limit.source)
 
 
 def _drawing(pair: PairResult) -> Plain | None:
@@ -223,22 +234,19 @@ def _drawing(pair: PairResult) -> Plain | None:
             for part in drawing.parts
         ],
         "places": [[place.number, place.layer, *micrometres(place.at)] for place in drawing.places],
-        "spacing": _spacing(drawing.spacing_plus),
-        "difference": [
-            [_short(one.along_mm, 3), _short(one.difference_mm, 4), one.layer, *micrometres(one.at)]
-            for one in _bends(drawing.difference)
-        ],
+        "spacing": spacing_rows(drawing.spacing_plus),
+        "difference": difference_rows(drawing.difference),
         "impedance": [
             [
                 one.leg,
                 one.layer,
-                _short(one.plus_from_mm, 4),
-                _short(one.plus_to_mm, 4),
-                _short(one.minus_from_mm, 4),
-                _short(one.minus_to_mm, 4),
-                _short(one.diff_ohm, 3),
-                _short(one.common_ohm, 3),
-                _short(one.capacitance_tilt, 6),
+                short(one.plus_from_mm, 4),
+                short(one.plus_to_mm, 4),
+                short(one.minus_from_mm, 4),
+                short(one.minus_to_mm, 4),
+                short(one.diff_ohm, 3),
+                short(one.common_ohm, 3),
+                short(one.capacitance_tilt, 6),
                 *micrometres(one.start),
                 *micrometres(one.end),
             ]
@@ -248,7 +256,7 @@ def _drawing(pair: PairResult) -> Plain | None:
         if drawing.conversion is None
         else {
             "frequency": list(drawing.conversion.frequency_hz),
-            "curves": {curve.figure: [_short(v, 2) for v in curve.values] for curve in drawing.conversion.curves},
+            "curves": {curve.figure: [short(v, 2) for v in curve.values] for curve in drawing.conversion.curves},
             "upTo": drawing.conversion.quasi_static_hz,
         },
         "limits": [
@@ -256,8 +264,8 @@ def _drawing(pair: PairResult) -> Plain | None:
                 "rule": limit.rule,
                 "severity": limit.severity,
                 "figure": limit.figure,
-                "least": _short(limit.least, 4),
-                "most": _short(limit.most, 4),
+                "least": short(limit.least, 4),
+                "most": short(limit.most, 4),
                 "over": [list(point) for point in limit.over],
                 "side": limit.side,
             }
@@ -267,65 +275,6 @@ def _drawing(pair: PairResult) -> Plain | None:
     }
     record["nets"] = list(nets)
     return record
-
-
-def _spacing(stretches: Sequence[SpacingStretch]) -> list[list[Any]]:
-    """Stretches in order; those of one gap that go straight on are joined, as most of a profile is."""
-    joined: list[SpacingStretch] = []
-    for one in stretches:
-        last = joined[-1] if joined else None
-        if last is not None and _goes_on(last, one):
-            joined[-1] = replace(last, to_mm=one.to_mm, end=one.end, gap_to_mm=one.gap_to_mm)
-        else:
-            joined.append(one)
-    return [
-        [
-            _short(one.from_mm, 3),
-            _short(one.to_mm, 3),
-            _short(one.gap_from_mm, 4),
-            _short(one.gap_mid_mm, 4),
-            _short(one.gap_to_mm, 4),
-            int(one.coupled),
-            one.layer,
-            *micrometres(one.end),
-            # Only where it is not the end of the one before.
-            *(micrometres(one.start) if i == 0 or joined[i - 1].end != one.start else ()),
-        ]
-        for i, one in enumerate(joined)
-    ]
-
-
-def _goes_on(last: SpacingStretch, one: SpacingStretch) -> bool:
-    if last.coupled != one.coupled or last.layer != one.layer or last.end != one.start:
-        return False
-    gaps = (last.gap_from_mm, last.gap_mid_mm, last.gap_to_mm, one.gap_from_mm, one.gap_mid_mm, one.gap_to_mm)
-    if one.coupled:
-        # Where the legs are not side by side no gap is drawn, so that it need not be one.
-        known = [gap for gap in gaps if gap is not None]
-        if len(known) < len(gaps) or max(known) - min(known) > _SAME_MM:
-            return False
-    (ax, ay), (bx, by), (cx, cy) = last.start, one.start, one.end
-    aside = abs((bx - ax) * (cy - ay) - (by - ay) * (cx - ax))
-    return aside <= _SAME_MM * math.hypot(cx - ax, cy - ay)
-
-
-def _bends(points: Sequence[RunningDifference]) -> list[RunningDifference]:
-    """The points without those that lie straight between the ones before and after, on the board and in the curve."""
-    found = list(points[:1])
-    for i in range(1, len(points) - 1):
-        before, here, after = found[-1], points[i], points[i + 1]
-        span = after.along_mm - before.along_mm
-        share = (here.along_mm - before.along_mm) / span if span > 0 else math.inf
-        between = (
-            (before.difference_mm, here.difference_mm, after.difference_mm),
-            (before.at[0], here.at[0], after.at[0]),
-            (before.at[1], here.at[1], after.at[1]),
-        )
-        # A quarter of what is shown, so that what is left out in a row does not add up to something that is.
-        straight = share <= 1 and all(abs(a + share * (b - a) - x) <= _SAME_MM / 4 for a, x, b in between)
-        if not straight or not before.layer == here.layer == after.layer:
-            found.append(here)
-    return [*found, *points[-1:]] if len(points) > 1 else found
 
 
 def _ends(pieces: Sequence[DrawnPiece]) -> list[list[int]]:
@@ -347,11 +296,3 @@ def _box(extent: tuple[float, float, float, float] | None) -> list[int] | None:
     left, top = micrometres((x_min, y_max))
     right, bottom = micrometres((x_max, y_min))
     return [left, top, max(right - left, 1), max(bottom - top, 1)]
-
-
-def _short(number: float | None, digits: int) -> float | int | None:
-    """Rounded for the page, whole numbers without a point; −0 is 0."""
-    if number is None:
-        return None
-    rounded = round(float(number), digits) + 0.0
-    return int(rounded) if rounded.is_integer() else rounded

@@ -95,3 +95,23 @@ def test_more_than_half_a_turn_is_drawn_in_two_about_its_middle(sweep: float) ->
     (arc,) = route_paths([piece((1, 0), end, (0, 0), sweep)])
     middle = (round(1000 * math.cos(sweep / 2)), -round(1000 * math.sin(sweep / 2)))
     assert stops(arc[2]) == [(1000, 0), middle, (round(1000 * end[0]), -round(1000 * end[1]))]
+
+
+def round_ring(radius: float, corners: int, stretched: float = 1.0) -> tuple[Point, ...]:
+    turns = [2 * math.pi * k / corners for k in range(corners)]
+    return tuple((3 + radius * math.cos(turn), 4 + stretched * radius * math.sin(turn)) for turn in turns)
+
+
+def test_a_flattened_circle_is_a_circle() -> None:
+    assert ring_path(round_ring(0.3, 64)) == "M2700 -4000a300 300 0 1 0 600 0a300 300 0 1 0 -600 0z"
+    assert ring_path(round_ring(0.3, 16)).count("a") == 2
+
+
+@pytest.mark.parametrize(
+    "ring",
+    [round_ring(0.3, 6), round_ring(0.3, 64, stretched=1.02), round_ring(0.3, 64)[:40], SQUARE],
+    ids=["hexagon", "ellipse", "segment", "square"],
+)
+def test_what_is_no_circle_keeps_its_corners(ring: tuple[Point, ...]) -> None:
+    path = ring_path(ring)
+    assert "a" not in path and len(stops(path)) == len(ring)

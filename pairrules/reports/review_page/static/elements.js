@@ -18,9 +18,14 @@ for (const pair of pairs) {
 
 function byId(id) { return document.getElementById(id); }
 
-// Rows of the spacing become [from, to, three gaps, coupled, layer, start x, start y, end x, end y].
+// What all pairs share stands once, with the board. Rows of the spacing become [from, to, three gaps, coupled, layer, start x, start y, end x, end y].
 function details(pair) {
   const found = JSON.parse(byId(`pair-${pair.index}`).textContent);
+  found.figures = found.figures.map((value, i) => [board.figures[i][0], value, board.figures[i][1]]);
+  found.limits = found.limits.map(([index, outcome, measured, limit, missing]) => {
+    const [rule, severity, says, unit, source] = board.limits[index];
+    return { rule, severity, says, unit, source, outcome, measured, limit, missing };
+  });
   let end = [];
   if (found.drawing) {
     found.drawing.spacing = found.drawing.spacing.map((row) => {
