@@ -35,7 +35,7 @@ ROOMS = {
     "drawing": set(),
     "result": set(),
 }
-"""Each room and those below it. `cli`, `pipeline`, `running` and the package itself sit on top and import everything."""
+"""Each room and those below it. `cli`, `pipeline`, `running` and the package sit on top and may import everything."""
 
 TOP = {"cli", "pipeline", "running", "__init__", "__main__"}
 

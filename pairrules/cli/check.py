@@ -101,7 +101,7 @@ def command(
     if not boards:
         raise click.UsageError("no BOARD is given; name a file, or take --demo", ctx)
     files = boards_of(boards)
-    if since is not None and len(files) > 1:
+    if since is not None and max(len(boards), len(files)) > 1:
         raise click.UsageError("--since takes one BOARD", ctx)
     report, status = reports_of("check")[form], 0
     also = file_reports(wanted, reports_of("check"), output, ctx)

@@ -75,6 +75,7 @@ def test_a_folder_without_boards(tmp_path: Path, capsys: pytest.CaptureFixture[s
     assert capsys.readouterr().err == said
     (tmp_path / "page.xml").unlink()
     assert run(["check", str(tmp_path)]) == 3
+    assert capsys.readouterr().err == f"pairrules: {tmp_path}: this is a folder; name the board file in it\n"
 
 
 def test_the_commands_cache_and_no_cache(

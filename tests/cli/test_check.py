@@ -120,7 +120,6 @@ def test_boards_that_cannot_be_read(tmp_path: Path, capsys: pytest.CaptureFixtur
     empty = tmp_path / "empty.json"
     empty.write_bytes(b"")
     for path, said in (
-        (tmp_path, "this is a folder; name the board file in it"),
         (tmp_path / "lost.json", "there is no such file; check the path"),
         (empty, "the file is empty; export the board again"),
     ):
