@@ -12,6 +12,7 @@ from pathlib import Path
 
 from pairrules import __version__
 from pairrules.balance.electrical import electrical
+from pairrules.balance.section_store import Store
 from pairrules.balance.stack_heights import lacking
 from pairrules.board.board import Board
 from pairrules.board.given_stackup import with_stackup
@@ -21,8 +22,6 @@ from pairrules.checks.rule_help import rule_infos
 from pairrules.checks.waiving import left_over
 from pairrules.drawn.pair_drawing import board_drawing
 from pairrules.errors import BoardError, SettingsError, UsageError
-from pairrules.fields.cross_section import CrossSection
-from pairrules.fields.solve import SectionSolution
 from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.measure import measure_link
 from pairrules.pairing.find_links import PairRequest, find_links
@@ -155,7 +154,8 @@ def draft_settings(path: str | Path, *, pairs: str = "*", step: str = "", progre
     """A first settings file for a board, whatever settings lie beside it. Parameters and errors as of `check`."""
     opened = _open(path, "", pairs=pairs, step=step)
     board = opened.board
-    copper, store = BoardCopper(board, opened.reference), dict[CrossSection, SectionSolution]()
+    copper = BoardCopper(board, opened.reference)
+    store: Store = {}
     drafts = []
     for done, link in enumerate(opened.links):
         if progress is not None:

@@ -42,12 +42,21 @@ def solve(link: Sequence[Element], frequencies: npt.ArrayLike) -> Response:
     Returns: arrays (…, F); not finite where a line attenuates beyond the range of numbers (about 3000 dB), or where a
     capacitor in series is asked about at 0 Hz.
     """
-    omega = 2 * np.pi * np.atleast_1d(np.asarray(frequencies, dtype=np.float64))
+    omega = _omega(frequencies)
+    with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+        return _response([element.chain(omega) for element in link], omega)
+
+
+def _omega(frequencies: npt.ArrayLike) -> npt.NDArray[np.float64]:
+    return 2 * np.pi * np.atleast_1d(np.asarray(frequencies, dtype=np.float64))
+
+
+def _response(chains: Sequence[Complexes], omega: npt.NDArray[np.float64]) -> Response:
     state: Complexes = np.zeros((*omega.shape, 4, 2), dtype=np.complex128)
     state[..., :2, :] = np.eye(2)
     with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
-        for element in reversed(link):
-            state = element.chain(omega) @ state
+        for chain in reversed(chains):
+            state = chain @ state
         dd, dc, cd, cc = state[..., 0, 0], state[..., 0, 1], state[..., 1, 0], state[..., 1, 1]
         determinant = dd * cc - dc * cd
         return Response(conversion=-dc / determinant, gain=cc / determinant)
@@ -59,10 +68,14 @@ def by_cause(link: Sequence[Element], frequencies: npt.ArrayLike) -> Mapping[str
     Only causes that the link has elements of are there. While all are small they add up, with phase, to the whole.
     """
     present = {element.cause for element in link}
-    equal = [element.symmetrised() for element in link]
+    omega = _omega(frequencies)
+    with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+        given = [element.chain(omega) for element in link]
+        equal = [element.symmetrised().chain(omega) for element in link]
     return {
-        cause: solve(
-            [given if given.cause == cause else alike for given, alike in zip(link, equal, strict=True)], frequencies
+        cause: _response(
+            [own if element.cause == cause else alike for element, own, alike in zip(link, given, equal, strict=True)],
+            omega,
         ).conversion
         for cause in CAUSES
         if cause in present

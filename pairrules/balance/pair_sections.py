@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 
@@ -11,34 +11,20 @@ from pairrules.balance.drawn_section import draw
 from pairrules.balance.leg_stretches import stretches
 from pairrules.balance.pair_electrical import PairSection
 from pairrules.balance.sampled_cuts import Cut, cuts_of, with_copper
-from pairrules.balance.section_store import Store, solved
+from pairrules.balance.section_store import SectionMatrices, Store, solved
 from pairrules.balance.stack_heights import Heights
 from pairrules.board.columns import Floats
 from pairrules.fields.cross_section import CrossSection
-from pairrules.fields.loss import COPPER_OHM_M, SkinIntegrals, skin_integrals
-from pairrules.fields.solve import SectionSolution
+from pairrules.fields.loss import COPPER_OHM_M
 from pairrules.geometry.cross_cut import CrossCuts
 from pairrules.geometry.pair_geometry import LegRoute, PairGeometry
 
-SPEED_OF_LIGHT = 299792458.0
 _BORROWED_SHARE = 0.05
 """Up to this share of the route may take over the section beside it where its own cannot be solved."""
 
 
 class UnsolvableError(Exception):
     """A pair's sections cannot be solved; the sentence says why."""
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class _Matrices:
-    C: Floats
-    L: Floats
-    loss: Floats
-    diff: float | None
-    common: float | None
-    delay: float
-    skin: SkinIntegrals | None
-    coupling: tuple[tuple[float, ...], ...]
 
 
 def pair_sections(
@@ -67,8 +53,8 @@ def pair_sections(
         raise UnsolvableError("a leg is not routed from end to end")
     cuts = cuts_of(plus.pieces, minus.pieces, profile, stretches(plus.pieces, minus.pieces, profile), _breaks(geometry))
     cuts = with_copper(cuts, heights, board_cuts, own, reference)
-    drawn = [draw(heights, cut.layer, cut.legs, cut.beside, dict(cut.planes)) for cut in cuts]
-    found: list[_Matrices | str] = [_solved(section, store) for section in drawn]
+    drawn = _drawn(cuts, heights)
+    found: list[SectionMatrices | str] = [solved(section, store) for section in drawn]
     _borrow(cuts, found, plus, minus, layers)
     return _joined(cuts, drawn, found, heights)
 
@@ -80,56 +66,16 @@ def _breaks(geometry: PairGeometry) -> tuple[Floats, Floats]:
     )
 
 
-def _solved(section: CrossSection, store: Store) -> _Matrices | str:
-    try:
-        solution = solved(section, store)
-    except ValueError as error:
-        return str(error)
-    return _of_pair(solution) if solution.pair is not None else _of_one(solution)
-
-
-def _of_pair(solution: SectionSolution) -> _Matrices | str:
-    pair = solution.pair
-    if pair is None or pair.L is None or pair.impedance_common_ohm is None:
-        return "no copper that could be its reference lies above or below it"
-    signals = solution.section.signals
-    loss = solution.G_per_omega[np.ix_(signals, signals)]
-    delay = math.sqrt(pair.er_odd) / SPEED_OF_LIGHT
-    return _Matrices(
-        C=pair.C,
-        L=pair.L,
-        loss=loss,
-        diff=pair.impedance_diff_ohm,
-        common=pair.impedance_common_ohm,
-        delay=delay,
-        skin=skin_integrals(solution),
-        coupling=_coupling(solution),
-    )
-
-
-def _of_one(solution: SectionSolution) -> _Matrices | str:
-    leg = solution.section.signals[0]
-    C, air = float(solution.C[leg, leg]), float(solution.Cair[leg, leg])
-    if not air > 1e-13:
-        return "no copper that could be its reference lies above or below it"
-    L = 1.0 / (SPEED_OF_LIGHT**2 * air)
-    loss = solution.G_per_omega[leg : leg + 1, leg : leg + 1]
-    return _Matrices(
-        C=np.array([[C]]),
-        L=np.array([[L]]),
-        loss=loss,
-        diff=None,
-        common=None,
-        delay=math.sqrt(L * C),
-        skin=None,
-        coupling=_coupling(solution),
-    )
-
-
-def _coupling(solution: SectionSolution) -> tuple[tuple[float, ...], ...]:
-    signals = solution.section.signals
-    others = [i for i in range(len(solution.section.conductors)) if i not in signals]
-    return tuple(tuple(-float(solution.C[i, leg]) for leg in signals) for i in others)
+def _drawn(cuts: list[Cut], heights: Heights) -> list[CrossSection]:
+    """The section of each cut; cuts that met the same are drawn once."""
+    known: dict[object, CrossSection] = {}
+    found = []
+    for cut in cuts:
+        key = (cut.layer, cut.legs, cut.beside, cut.planes)
+        if key not in known:
+            known[key] = draw(heights, cut.layer, cut.legs, cut.beside, dict(cut.planes))
+        found.append(known[key])
+    return found
 
 
 def _length(cut: Cut) -> float:
@@ -137,7 +83,7 @@ def _length(cut: Cut) -> float:
 
 
 def _borrow(
-    cuts: list[Cut], found: list[_Matrices | str], plus: LegRoute, minus: LegRoute, layers: tuple[str, ...]
+    cuts: list[Cut], found: list[SectionMatrices | str], plus: LegRoute, minus: LegRoute, layers: tuple[str, ...]
 ) -> None:
     """Cuts that cannot be solved take over the nearest solved one of their leg, where they are a small share."""
     lost = [i for i, matrices in enumerate(found) if isinstance(matrices, str)]
@@ -156,7 +102,7 @@ def _borrow(
 
 
 def _joined(
-    cuts: list[Cut], drawn: list[CrossSection], found: list[_Matrices | str], heights: Heights
+    cuts: list[Cut], drawn: list[CrossSection], found: list[SectionMatrices | str], heights: Heights
 ) -> tuple[PairSection, ...]:
     """Neighbouring cuts with the same solved matrices as one section."""
     sections: list[PairSection] = []
@@ -183,7 +129,7 @@ def _meets(before: PairSection, cut: Cut) -> bool:
     return abs(before.plus_mm[1] - cut.plus[0]) < 1e-5 and abs(before.minus_mm[1] - cut.minus[0]) < 1e-5
 
 
-def _section(cut: Cut, matrices: _Matrices, heights: Heights) -> PairSection:
+def _section(cut: Cut, matrices: SectionMatrices, heights: Heights) -> PairSection:
     low, high = heights.copper[cut.layer]
     width = {leg.name: leg.width for leg in cut.legs}
     gap = math.nan

@@ -8,6 +8,7 @@ from functools import cached_property
 
 from pairrules.balance.electrical import electrical
 from pairrules.balance.pair_electrical import PairElectrical
+from pairrules.balance.section_store import Store
 from pairrules.board.board import Board
 from pairrules.checks.electrical_figures import ps_per_mm
 from pairrules.checks.held_limits import held_limits
@@ -18,8 +19,6 @@ from pairrules.checks.rule import Subject, all_rules
 from pairrules.checks.waiving import waive
 from pairrules.drawn.pair_drawing import pair_drawing
 from pairrules.drawn.window_copper import DrawnBoard
-from pairrules.fields.cross_section import CrossSection
-from pairrules.fields.solve import SectionSolution
 from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.measure import measure_link
 from pairrules.pairing.link import Hop, Link
@@ -56,7 +55,7 @@ class PairStage:
     waivers: tuple[Waiver, ...]
     day: date
     drawing: bool = False
-    store: dict[CrossSection, SectionSolution] = field(default_factory=dict)
+    store: Store = field(default_factory=dict)
 
     @cached_property
     def copper(self) -> BoardCopper:
