@@ -63,6 +63,8 @@ class Link:
     source, load: index into `Board.parts` of the end parts, −1 where unknown.
     hung: parts hanging on it.
     missing: what was not found, one sentence each (an end without a part, a leg with fewer series parts).
+    ends_known: whether both legs are known to run from a part to a part, the declared ones where the file declares
+        them; where not, pads stand in for the ends, and the copper between them may not be all of the pair.
     """
 
     name: str
@@ -77,3 +79,4 @@ class Link:
     load: int
     hung: tuple[HungPart, ...] = ()
     missing: tuple[str, ...] = ()
+    ends_known: bool = True

@@ -53,9 +53,11 @@ def link_of(
         ends = Ends(first=ends.last, last=ends.first, flip=False, missing=ends.missing)
     missing = [*ends.missing, *_end_sentences(site, ends), *_step_sentences(site, chain)]
     hops: list[tuple[Hop, ...]] = []
+    open_ends = list(ends.missing)
     for leg in (0, 1):
         legs, sentences = _hops(site, chain, ends, leg)
         hops.append(legs)
+        open_ends += sentences
         missing.extend(sentences)
     name = lead.name or lead.shared
     link = Link(
@@ -71,6 +73,7 @@ def link_of(
         load=ends.last.part,
         hung=hung_parts(site, chain, ends, reference),
         missing=tuple(missing),
+        ends_known=not open_ends,
     )
     swallowed = tuple(
         f"the listed pair {pair.name or pair.shared} is the same link as {name} and is reported as one with it"
