@@ -7,7 +7,7 @@ from datetime import date
 
 import click
 
-from pairrules.cli.options import pair_option, settings_option, step_option, today_option
+from pairrules.cli.options import jobs_option, pair_option, settings_option, step_option, today_option
 from pairrules.cli.output import write
 from pairrules.cli.progress import ProgressLine
 from pairrules.pipeline import check
@@ -25,6 +25,7 @@ DEMO = ("tide-gauge-buoy.json", "pairrules.yaml")
 @pair_option
 @step_option
 @today_option
+@jobs_option
 @click.pass_context
 def command(
     ctx: click.Context,
@@ -36,6 +37,7 @@ def command(
     pair: str,
     step: str,
     today: date | None,
+    jobs: int,
 ) -> None:
     """Write a page on BOARD that opens from disk: the board, its flagged pairs, and a decision for each finding.
 
@@ -49,7 +51,7 @@ def command(
     if board is None:
         raise click.UsageError("no BOARD is given; name a file, or take --demo", ctx)
     with ProgressLine() as progress:
-        result = check(board, settings, pairs=pair, step=step, drawing=True, today=today, progress=progress)
+        result = check(board, settings, pairs=pair, step=step, drawing=True, today=today, jobs=jobs, progress=progress)
     if demo:
         # Where the package is installed says nothing about the demo board.
         result = replace(result, board=replace(result.board, file=DEMO[0]))

@@ -357,6 +357,15 @@ BEYOND = (
 )
 
 
+OUTSIDE_CHART = (
+    "return [...document.querySelectorAll('.chart text')].filter((one) => {"
+    " const own = one.getBoundingClientRect(), all = one.closest('svg').getBoundingClientRect();"
+    " return own.left < all.left - 1 || own.right > all.right + 1"
+    "  || own.top < all.top - 1 || own.bottom > all.bottom + 1;"
+    "}).map((one) => one.textContent)"
+)
+
+
 @pytest.mark.parametrize("width", [360, 1280])
 def test_nothing_is_cut_off_on_the_screen(page: Page, width: int) -> None:
     page.open(width, 800)
@@ -367,6 +376,7 @@ def test_nothing_is_cut_off_on_the_screen(page: Page, width: int) -> None:
             page.run("arguments[0].click()", choice)
         assert page.run("return document.documentElement.scrollWidth") <= width
         assert page.run(BEYOND) == []
+        assert page.run(OUTSIDE_CHART) == []
 
 
 def test_nothing_is_cut_off_on_paper_and_every_listed_pair_is_there(page: Page) -> None:
@@ -376,6 +386,7 @@ def test_nothing_is_cut_off_on_paper_and_every_listed_pair_is_there(page: Page) 
     page.media("print")
     assert page.run("return document.documentElement.scrollWidth") <= 703
     assert page.run(BEYOND) == []
+    assert page.run(OUTSIDE_CHART) == []
     assert len(page.all("#paper .paper-pair")) == 3
     assert not page.find("#filter").is_displayed() and not page.find("#detail").is_displayed()
     page.media()

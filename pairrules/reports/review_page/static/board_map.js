@@ -18,13 +18,15 @@ function drawMap() {
     const group = shape("g", { class: `map-pair ${pair.verdict} ${pair.worst}`, id: `map-${pair.index}`, onclick: () => choosePair(pair, { scroll: true }) },
       shape("title", null, `${pair.name}: ${pair.verdict === "flag" ? pair.worst : VERDICT_WORDS[pair.verdict]}`));
     for (const [layer, path] of pair.copper || []) group.append(shape("path", { class: "map-copper", d: path, "data-layer": layer, "fill-rule": "evenodd" }));
-    pair.lines.forEach((line, leg) => {
-      for (const [layer, width, path] of line) {
-        group.append(shape("path", { class: "map-wide", d: path, "stroke-width": width || 1, "data-layer": layer }),
-          shape("path", { class: `map-line leg-${leg}`, d: path, "data-layer": layer }),
-          shape("path", { class: "map-grip", d: path, "data-layer": layer }));
+    // One path for all of a layer, as a great board has hundreds of pairs in thousands of pieces.
+    for (const layer of pair.layers) {
+      const own = pair.lines.flat().filter((piece) => piece[0] === layer);
+      for (const width of new Set(own.map((piece) => piece[1]))) {
+        group.append(shape("path", { class: "map-wide", d: own.filter((piece) => piece[1] === width).map((piece) => piece[2]).join(""), "stroke-width": width || 1, "data-layer": layer }));
       }
-    });
+      const whole = own.map((piece) => piece[2]).join("");
+      group.append(shape("path", { class: "map-line", d: whole, "data-layer": layer }), shape("path", { class: "map-grip", d: whole, "data-layer": layer }));
+    }
     map.body.append(group);
   }
   // As tall as the board's shape asks for; style set here is not markup and passes the page's policy.

@@ -56,11 +56,13 @@ function chart({ title, width, height = 190, xLabel, yLabel, xFrom, xTo, log = f
   }
   const xTicks = log ? decades(xFrom, xTo) : ticks(xFrom, xTo, small ? 4 : 8);
   const every = Math.max(Math.ceil((xTicks.length * 58) / (width - left - right)), 1);
+  // Where there is no room for tags a label near the right edge ends there.
+  const anchor = (x) => (toX(x) > width - 30 ? "end" : "middle");
   xTicks.forEach((x, i) => {
     svg.append(shape("path", { class: "grid", d: `M${fixed(toX(x))} ${top}V${height - bottom + 4}` }));
-    if (i % every === 0) svg.append(shape("text", { class: "tick-x", x: fixed(toX(x)), y: height - bottom + 16 }, log ? hertz(x) : figure(x)));
+    if (i % every === 0) svg.append(shape("text", { class: "tick-x", "text-anchor": anchor(x), x: fixed(Math.min(toX(x), width - 3)), y: height - bottom + 16 }, log ? hertz(x) : figure(x)));
   });
-  svg.append(shape("text", { class: "axis", x: left + (width - left - right) / 2, y: height - 4 }, xLabel),
+  svg.append(shape("text", { class: "axis", "text-anchor": "middle", x: small ? width / 2 : left + (width - left - right) / 2, y: height - 4 }, xLabel),
     shape("text", { class: "axis axis-y", x: 8, y: 15 }, yLabel));
   if (beyond && beyond.from < xTo) {
     const x = Math.max(toX(Math.max(beyond.from, xFrom)), left);
