@@ -61,15 +61,14 @@ def judge_pair(
     )
 
 
-def verdict(judgement: Judgement, routed: str, *, ends_known: bool = True) -> str:
+def verdict(judgement: Judgement, routed: str, *, whole: bool = True) -> str:
     """What the judgement adds up to.
 
-    "flag" where an unwaived finding stands; else "undecided" where a rule could not judge, none did, a leg is broken, or
-    it is not known whether what was judged is the whole pair; else "waived" where findings stand that are all waived;
-    else "pass".
+    "flag" where an unwaived finding stands; else "undecided" where a rule could not judge, none did, a leg is broken,
+    or what was judged may not be the whole pair; else "waived" where findings stand that are all waived; else "pass".
     """
     if any(not finding.waived for finding in judgement.findings):
         return "flag"
-    if judgement.unjudged or not judgement.judged or routed != "complete" or not ends_known:
+    if judgement.unjudged or not judgement.judged or routed != "complete" or not whole:
         return "undecided"
     return "waived" if judgement.findings else "pass"

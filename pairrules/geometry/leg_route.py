@@ -15,6 +15,7 @@ import numpy as np
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats
 from pairrules.geometry.copper_index import CopperIndex
+from pairrules.geometry.crowding import CrowdedError
 from pairrules.geometry.net_graph import NetGraph, net_graph
 from pairrules.geometry.pair_geometry import BARREL, SERIES, TRACK, LegRoute, Pieces, Stub, ViaUse
 from pairrules.pairing.link import Hop
@@ -25,12 +26,16 @@ _UNKNOWN_BARREL_MM = 1e-6
 
 @dataclass(frozen=True, slots=True)
 class Break:
-    """Where a leg breaks off: layer (−1 where nothing was found), x, y [mm], and why in words."""
+    """Where a leg breaks off: layer (−1 where nothing was found), x, y [mm], and why in words.
+
+    crowded: it was not followed, since its copper is too much; `why` goes on from the leg's name.
+    """
 
     layer: int
     x_mm: float
     y_mm: float
     why: str
+    crowded: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,7 +62,10 @@ def leg_route(board: Board, index: CopperIndex, hops: tuple[Hop, ...]) -> LegRou
     breaks: list[Break] = []
     last: tuple[tuple[float, float], int] | None = None
     for hop in hops:
-        graph = net_graph(board, index, hop.net)
+        try:
+            graph = net_graph(board, index, hop.net)
+        except CrowdedError as error:
+            return (Break(-1, math.nan, math.nan, str(error), crowded=True),)
         path = _shortest(graph, hop)
         if isinstance(path, Break):
             breaks.append(path)

@@ -11,6 +11,7 @@ from pairrules.geometry.gap_figures import coupled_length, gap_figures
 from pairrules.geometry.leg_route import Break, leg_route
 from pairrules.geometry.loop_area import loop_area
 from pairrules.geometry.neighbours import NeighbourProfile, neighbours
+from pairrules.geometry.outlined_copper import area_joins, course, unseen
 from pairrules.geometry.pair_geometry import LegRoute, PairGeometry
 from pairrules.geometry.reference_cover import reference_cover
 from pairrules.geometry.spacing_profile import spacing_profiles
@@ -19,6 +20,8 @@ from pairrules.pairing.link import Hop, Link
 LONGEST_LEG_MM = 50_000.0
 """Time and memory grow with the length of track; no pair is longer than the board, and none of those than ten metres.
 Common practice, no source."""
+
+_LEGS = ("plus", "minus")
 
 LEAST_BESIDE_MM = 1.0
 """Foreign copper is looked for within the pair's reach, and this far at least."""
@@ -46,12 +49,20 @@ def measure_link(
     index = copper.index
     plus = leg_route(board, index, link.hops_plus)
     minus = leg_route(board, index, link.hops_minus)
-    if not isinstance(plus, LegRoute) or not isinstance(minus, LegRoute):
-        return _broken(board, index, link, plus, minus)
-    beyond = [_beyond(name, leg) for name, leg in (("plus", plus), ("minus", minus)) if _beyond(name, leg)]
+    beyond = [why for name, leg in (("plus", plus), ("minus", minus)) if (why := _beyond(name, leg))]
     if beyond:
         return PairGeometry(routed="partial", plus=None, minus=None, missing=(*link.missing, *beyond))
-    missing = list(link.missing)
+    if not isinstance(plus, LegRoute) or not isinstance(minus, LegRoute):
+        return _broken(board, index, link, plus, minus)
+    hops = (link.hops_plus, link.hops_minus)
+    through = [area_joins(board, copper.areas, leg, own) for leg, own in zip((plus, minus), hops, strict=True)]
+    lost = [
+        why for name, leg, one in zip(_LEGS, (plus, minus), through, strict=True) if (why := course(name, leg, one))
+    ]
+    if lost:
+        return PairGeometry(routed="partial", plus=None, minus=None, missing=(*link.missing, *lost))
+    hidden = unseen(through[0].length_mm, through[1].length_mm)
+    missing = [*link.missing, *filter(None, (hidden,))]
     if not plus.barrels_known or not minus.barrels_known:
         missing.append("the stackup's thicknesses are unknown, so the barrels of its vias are left out of the lengths")
     profile_plus, profile_minus, reach = spacing_profiles(plus.pieces, minus.pieces, reach_mm)
@@ -81,11 +92,14 @@ def measure_link(
         neighbours_plus=_beside(copper, link, plus, reach) if beside else None,
         neighbours_minus=_beside(copper, link, minus, reach) if beside else None,
         missing=tuple(missing),
+        unseen=hidden,
     )
 
 
-def _beyond(name: str, leg: LegRoute) -> str:
-    """Why a leg that is routed cannot be measured all the same; "" where it can."""
+def _beyond(name: str, leg: LegRoute | tuple[Break, ...]) -> str:
+    """Why a leg cannot be measured though it need not be broken; "" where it can, or breaks off."""
+    if not isinstance(leg, LegRoute):
+        return next((f"{name} {gap.why}" for gap in leg if gap.crowded), "")
     if not len(leg.pieces):
         return f"{name} has no length: the pads at its two ends lie at one place"
     if leg.track_mm > LONGEST_LEG_MM:

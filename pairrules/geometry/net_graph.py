@@ -23,6 +23,7 @@ from shapely.geometry.base import BaseGeometry
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
 from pairrules.geometry.copper_index import CopperIndex
+from pairrules.geometry.crowding import MOST_JOINED, CrowdedError, refuse_crowds
 from pairrules.geometry.curves import Curves, chords, lengths, nearest, parts, points
 from pairrules.geometry.pad_outlines import pad_outline
 from pairrules.geometry.pair_geometry import BARREL, JOIN, TRACK
@@ -86,7 +87,8 @@ class _Parts:
 
 
 def net_graph(board: Board, index: CopperIndex, net: int) -> NetGraph:
-    """The graph of `net`."""
+    """The graph of `net`. Raises: CrowdedError where its copper is too much or too crowded to be followed."""
+    refuse_crowds(board, index, net)
     return _Builder(board, index, net).graph()
 
 
@@ -370,6 +372,8 @@ class _Builder:
                 at = shapely.get_coordinates(shapely.shortest_line(lines[edge], copper))[:1]
                 t, _ = nearest(self._curves.take(np.array([edge])), at)
                 touching[part] = [self._split(int(edge), float(t[0]))]
+        if len(touching) > MOST_JOINED:
+            raise CrowdedError(f"has an area that joins more than {MOST_JOINED} pieces of its copper")
         # Where tracks simply stop in the copper, their ends are what it joins, so that drawn line is not cut short.
         loose = self._loose_ends()
         touching = {part: [node for node in nodes if node in loose] or nodes for part, nodes in touching.items()}

@@ -170,6 +170,7 @@ class PairGeometry:
         each leg on its own layer. `None` unless both legs are complete.
     broken: places where a leg breaks off, as (leg, layer, x_mm, y_mm).
     missing: why a figure is unknown, one sentence each.
+    unseen: why what was measured is not all there is of the pair, so that it cannot be called good; "" where it is.
     """
 
     routed: str
@@ -192,3 +193,4 @@ class PairGeometry:
     neighbours_minus: NeighbourProfile | None = None
     broken: tuple[tuple[str, int, float, float], ...] = ()
     missing: tuple[str, ...] = ()
+    unseen: str = ""

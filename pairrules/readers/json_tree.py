@@ -16,6 +16,9 @@ from pairrules.errors import BoardError
 Path = tuple[Any, "str | int"] | None
 """Where a value stands: the path of what holds it and its key there; `None` is the file. Only messages render it."""
 
+LONGEST_TEXT = 4000
+"""Characters of the longest name or value; longer ones are no name. Common practice, no source."""
+
 _SHOWN = 60
 
 
@@ -70,6 +73,8 @@ class Document:
         """A text that is not empty, without characters that cannot be printed."""
         if type(value) is not str:
             raise self.fault(path, value, remedy)
+        if len(value) > LONGEST_TEXT:
+            raise self.misfit(path, f"has {len(value)} characters", f"write at most {LONGEST_TEXT}")
         plain = value
         if not value.isprintable():
             plain = printable(value)

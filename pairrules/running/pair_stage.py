@@ -121,7 +121,7 @@ class PairStage:
             load=found.load,
             series=found.series,
             routed=geometry.routed,
-            verdict=verdict(judgement, geometry.routed, ends_known=link.ends_known),
+            verdict=verdict(judgement, geometry.routed, whole=link.ends_known and not geometry.unseen),
             measures=measures,
             balance=balance,
             findings=judgement.findings,

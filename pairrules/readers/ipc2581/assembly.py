@@ -40,7 +40,7 @@ def assemble(content: FileContent, wanted: str) -> Board:
     copper = step.copper
     name_unnamed(copper, step.nets)
     mirrors.settle(copper, step.parts, remarks)
-    place_pins(copper, step.parts, step.nets, content.table)
+    place_pins(copper, step.parts, step.nets, content.table, content.most_pieces)
     negatives = polarity.negative_layers(copper, content.table.copper, remarks)
     polarity.invert(copper, negatives, step.profile, remarks)
     polarity.erase(copper, remarks)

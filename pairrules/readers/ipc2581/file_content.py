@@ -15,7 +15,7 @@ from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.copper import Copper
 from pairrules.readers.ipc2581.elements import child, clean, local, units, word, wrong
 from pairrules.readers.ipc2581.features import Shapes
-from pairrules.readers.ipc2581.layer_features import SetReader, net_name
+from pairrules.readers.ipc2581.layer_features import MOST_PIECES, SetReader, most_pieces, net_name
 from pairrules.readers.ipc2581.layers import LayerTable, read_layer, read_spec, read_stackup
 from pairrules.readers.ipc2581.nets import Nets, note_partner, read_logical_net, read_phy_net
 from pairrules.readers.ipc2581.parts import Parts, read_bom_item, read_component, read_package
@@ -85,6 +85,7 @@ class FileContent:
     table: LayerTable = field(default_factory=LayerTable)
     values: dict[str, str] = field(default_factory=dict)
     steps: dict[str, Step] = field(default_factory=dict)
+    most_pieces: int = MOST_PIECES
     shapes: Shapes = field(init=False)
 
     def __post_init__(self) -> None:
@@ -95,7 +96,7 @@ def read_content(data: bytes) -> FileContent:
     """Read the file. Raises: BoardError, without the file's name, where it is malformed or says what cannot be."""
     from lxml import etree
 
-    walk = _Walk(FileContent())
+    walk = _Walk(FileContent(most_pieces=most_pieces(len(data))))
     # The root is among them whatever it is called, to be judged before anything else.
     names = {*walk.records, *walk.openings, *_DICTIONARIES, *_OUTLINES, *_LEFT_OUT, _root_name(data)}
     parser = etree.XMLPullParser(
@@ -319,7 +320,9 @@ class _Walk:
         self.step = Step(name)
         self.content.steps[name] = self.step
         self.content.shapes.remarks = self.step.remarks
-        self.sets = SetReader(self.step.copper, self.content.shapes, self.content.table, self.step.remarks, factor)
+        content, step = self.content, self.step
+        most = content.most_pieces
+        self.sets = SetReader(step.copper, content.shapes, content.table, step.remarks, factor, most)
 
     def _repeat(self, element: Element) -> None:
         if self.step is not None:

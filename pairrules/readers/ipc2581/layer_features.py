@@ -19,7 +19,18 @@ if TYPE_CHECKING:
 
 FIDUCIALS = {"BadBoardMark", "GlobalFiducial", "GoodPanelMark", "LocalFiducial", "Fiducial"}
 MOST_PIECES = 5_000_000
-"""Pieces of copper one board may draw; a small file that repeats a shape without end would fill the memory."""
+_FEW_PIECES = 200_000
+_BYTES_A_PIECE = 4
+
+
+def most_pieces(size: int) -> int:
+    """Pieces of copper and pins that a file of `size` bytes may come to.
+
+    Each takes dozens of bytes where it is written out; shapes that are named and repeated take fewer, but not next to
+    nothing: a small file that repeats a shape without end would fill the memory.
+    """
+    return min(MOST_PIECES, max(_FEW_PIECES, size // _BYTES_A_PIECE))
+
 
 _SILENT = {*STYLES, "SpecRef", "LineDescGroup", "ColorGroup"}
 
@@ -32,13 +43,14 @@ def net_name(element: Element, name: str = "net", default: str = "") -> str:
 
 @dataclass(slots=True)
 class SetReader:
-    """Reads the sets of one step. factor: millimetres in the header's unit."""
+    """Reads the sets of one step. factor: millimetres in the header's unit. most_pieces: that the step may draw."""
 
     copper: Copper
     shapes: Shapes
     table: LayerTable
     remarks: Remarks
     factor: float
+    most_pieces: int = MOST_PIECES
 
     def read(self, element: Element, layer_name: str, route_net: str) -> None:
         """A `Set` on a layer. route_net: net of the `Route` around it (revision A), "" where none."""
@@ -94,8 +106,8 @@ class SetReader:
                 items = placed(shape.items, by)
                 dropped = self.copper.draw(erasing(items) if erase else items, layer, net)
                 self.remarks.count("{n} line piece{s} without length {are} left out", dropped, line=line(element))
-                if self.copper.size > MOST_PIECES:
-                    wrong(element, f"the board draws more than {MOST_PIECES} pieces")
+                if self.copper.size > self.most_pieces:
+                    wrong(element, f"the board draws more than {self.most_pieces} pieces")
 
     # -- pads ---------------------------------------------------------------------------------------------------------
 

@@ -15,9 +15,6 @@ from pairrules.readers.ipc2581.remarks import Remarks
 
 ALL_LAYERS = -1
 
-MOST_PINS = 5_000_000
-"""Pins one board may have; many parts of one huge package would keep a small file busy without end."""
-
 
 @dataclass(frozen=True, slots=True)
 class JoinedPad:
@@ -41,8 +38,11 @@ class JoinedVia:
     net: str
 
 
-def place_pins(copper: Copper, parts: Parts, nets: Nets, table: LayerTable) -> None:
-    """Give pins to pads that name none, and pads to pins that have none, by package and placement of their part."""
+def place_pins(copper: Copper, parts: Parts, nets: Nets, table: LayerTable, most: int) -> None:
+    """Give pins to pads that name none, and pads to pins that have none, by package and placement of their part.
+
+    most: pins the board may have; many parts of one huge package would keep a small file busy without end.
+    """
     known = {(pad.ref, pad.pin) for pad in copper.pads if pad.pin}
     loose: Places[PadRow] = Places()
     asked = 0
@@ -51,8 +51,8 @@ def place_pins(copper: Copper, parts: Parts, nets: Nets, table: LayerTable) -> N
             loose.put(pad.at, pad)
     for component in parts.components.values():
         asked += len(parts.packages.get(component.package, {}))
-        if asked > MOST_PINS:
-            raise BoardError(f"the parts have more than {MOST_PINS} pins", remedy="export the file again")
+        if asked > most:
+            raise BoardError(f"the parts have more than {most} pins", remedy="export the file again")
         for pin, package_pin in parts.packages.get(component.package, {}).items():
             if (component.ref, pin) in known:
                 continue

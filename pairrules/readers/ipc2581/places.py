@@ -5,8 +5,13 @@ from __future__ import annotations
 import math
 from typing import Generic, TypeVar
 
+from pairrules.errors import BoardError
+
 NEAR_MM = 0.005
 """Centres this near are one place: exporters round to a micrometre or to a hundred-thousandth of an inch."""
+
+MOST_AT_ONE_PLACE = 2000
+"""A pad stack has a pad a layer; thousands at one place would each be held against each."""
 
 _CELL_MM = 0.02
 
@@ -22,7 +27,13 @@ class Places(Generic[Thing]):
     def put(self, at: complex, thing: Thing) -> None:
         """Store a thing."""
         key = (math.floor(at.real / _CELL_MM), math.floor(at.imag / _CELL_MM))
-        self._cells.setdefault(key, []).append((at, thing))
+        cell = self._cells.setdefault(key, [])
+        cell.append((at, thing))
+        if len(cell) > MOST_AT_ONE_PLACE:
+            raise BoardError(
+                f"more than {MOST_AT_ONE_PLACE} pads or holes lie at ({at.real:.3f}, {at.imag:.3f}) mm",
+                remedy="export the file again",
+            )
 
     def near(self, at: complex, within: float = NEAR_MM) -> list[Thing]:
         """The things within a distance [mm] of a place, at most a cell wide."""

@@ -7,16 +7,21 @@ the standard.
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from typing import Any
 
 import shapely
 from shapely.strtree import STRtree
 
+from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.copper import Copper, Erasure, FillRow, HoleRow
 from pairrules.readers.ipc2581.drawing import Fill, Item, fills
 from pairrules.readers.ipc2581.layers import FileLayer
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Plane
+
+MOST_CUTS = 300_000
+"""Cuts on one layer: a plane has ten thousands of clearances, each of which cuts it once."""
 
 SLIVER_MM2 = 1e-9
 """Areas below this are rounding of the cutting."""
@@ -112,13 +117,30 @@ def erase(copper: Copper, remarks: Remarks) -> None:
     copper.erasures = []
 
 
+@dataclass(slots=True)
+class _Cuts:
+    """How often something was cut so far; a small file of negative features all upon one another is refused."""
+
+    made: int = 0
+
+    def later(self, tree: STRtree, erasures: list[Erasure], region: Any, order: int) -> list[int]:
+        """The erasures that come after a feature and meet it. Raises: BoardError where there are too many."""
+        touched = tree.query(region, predicate="intersects").tolist()
+        self.made += len(touched)
+        if self.made > MOST_CUTS:
+            raise BoardError(
+                f"negative features cut copper more than {MOST_CUTS} times", remedy="export the file again"
+            )
+        return sorted(i for i in touched if erasures[i].order > order)
+
+
 def _erase_layer(copper: Copper, layer: str, remarks: Remarks) -> None:
     erasures = [row for row in copper.erasures if row.layer == layer]
     regions = [row.item.region() for row in erasures]
-    tree = STRtree(regions)
+    tree, cuts = STRtree(regions), _Cuts()
     kept: list[FillRow] = []
     for row in copper.areas:
-        later = _later(tree, erasures, row.fill.region(), row.order) if row.layer == layer else []
+        later = cuts.later(tree, erasures, row.fill.region(), row.order) if row.layer == layer else []
         if not later:
             kept.append(row)
             continue
@@ -135,7 +157,7 @@ def _erase_layer(copper: Copper, layer: str, remarks: Remarks) -> None:
         if row.layer == layer and row.shape is not None
     ]
     for key, order, region, held in pieces:
-        later = _later(tree, erasures, region, order)
+        later = cuts.later(tree, erasures, region, order)
         cut = shapely.union_all([regions[i] for i in later])
         if not later or region.intersection(cut).area <= SLIVER_MM2:
             continue
@@ -148,8 +170,3 @@ def _erase_layer(copper: Copper, layer: str, remarks: Remarks) -> None:
     remarks.count(f"{{n}} track{{s}} or pad{{s}} on {layer} {{are}} wholly removed by negative features", len(gone))
     copper.tracks = [row for row in copper.tracks if id(row) not in gone]
     copper.pads = [row for row in copper.pads if id(row) not in gone]
-
-
-def _later(tree: STRtree, erasures: list[Erasure], region: Any, order: int) -> list[int]:
-    touched = tree.query(region, predicate="intersects").tolist()
-    return sorted(i for i in touched if erasures[i].order > order)
