@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 import numpy.typing as npt
@@ -17,6 +17,8 @@ COUPLED_TURN = math.radians(30.0)
 """Legs turned less than this to each other run side by side."""
 
 _TIE_MM = 1e-7
+_GUESSES = 10
+_EQUAL_MM = 1e-12
 _SEARCH_MM = 0.001
 
 
@@ -51,6 +53,15 @@ class NearestTrack:
         self._pairs = second[order]
         self._offset = np.searchsorted(first[order], np.arange(len(own) + 1))
         self._pair_own = first[order]
+
+    def straight(self, rows: Ints, label: Ints) -> npt.NDArray[np.bool_]:
+        """Whether the gap runs straight near points on pieces `rows` (n,): between the insides of straight pieces."""
+        other, feature = label // 8, label % 8 // 2
+        return (other >= 0) & (feature == 1) & (self._own.sweep[rows] == 0.0) & (self._other.sweep[other] == 0.0)
+
+    def within_reach(self, found: Nearest) -> Nearest:
+        """What was found, judged by the reach that holds now."""
+        return replace(found, coupled=(found.gap <= self.reach) & (found.angle < COUPLED_TURN))
 
     def pairs(self) -> tuple[Ints, Ints]:
         """All candidate pairs: row of this leg, row of the other."""
@@ -90,6 +101,50 @@ class NearestTrack:
         feature[~none] = np.where(foot[pick] <= 0.0, 0, np.where(foot[pick] >= 1.0, 2, 1))
         coupled = (np.where(none, np.inf, least) <= self.reach) & (np.where(none, np.inf, angle) < COUPLED_TURN)
         return Nearest(other, feature, least, angle, coupled)
+
+    def at_each(self, rows: Ints, *places: Floats) -> list[Nearest]:
+        """The same for several parameters on each piece, asked at once."""
+        found = self.at(np.tile(rows, len(places)), np.concatenate(places))
+        columns = [
+            np.split(column, len(places))
+            for column in (found.other, found.feature, found.gap, found.angle, found.coupled)
+        ]
+        return [Nearest(*one) for one in zip(*columns, strict=True)]
+
+    def equal(self, rows: Ints, left: Floats, right: Floats, one: Ints, two: Ints) -> tuple[Ints, Floats]:
+        """Places between two parameters where pieces `one` and `two` of the other leg change places as the nearest.
+
+        Or, where they are the same, where it passes the reach. Guesses: another piece may be nearer there.
+
+        Source: false position with the Illinois change (Dowell and Jarratt, BIT 11, 1971), from memory.
+        """
+        same = one == two
+        # Where there is no track of the other leg, nothing is guessed.
+        known = np.flatnonzero((one >= 0) & (two >= 0) & (~same | np.isfinite(self.reach)))
+        # The one that runs more nearly alongside counts as long as both are as good as equally near.
+        known, more = np.tile(known, 2), np.repeat([-_TIE_MM, _TIE_MM], len(known))
+        rows, one, two, same = rows[known], one[known], two[known], same[known]
+        a, b, own, more = left[known], right[known], self._own.take(rows), np.where(same, 0.0, more)
+
+        both = self._other.take(np.concatenate([one, two]))
+        half = self._other_half[one] + more + np.where(same, self.reach + self._half[rows], -self._other_half[two])
+
+        def apart(t: Floats) -> Floats:
+            far = nearest(both, np.tile(points(own, t), (2, 1)))[1].reshape(2, -1)
+            return far[0] - half - np.where(same, 0.0, far[1])
+
+        at_a, at_b = apart(a), apart(b)
+        crosses = at_a * at_b < 0
+        for _ in range(_GUESSES):
+            if (np.abs(at_b[crosses]) < _EQUAL_MM).all():
+                break
+            steep = at_b - at_a
+            t = np.where(steep == 0.0, (a + b) / 2, b - at_b * (b - a) / np.where(steep == 0.0, 1.0, steep))
+            at_t = apart(t)
+            turned = at_t * at_b < 0
+            a, at_a = np.where(turned, b, a), np.where(turned, at_b, at_a / 2)
+            b, at_b = t, at_t
+        return rows[crosses], b[crosses]
 
 
 def curves_of(pieces: Pieces) -> Curves:

@@ -13,7 +13,7 @@ import math
 import numpy as np
 
 from pairrules.board.columns import Floats, Ints
-from pairrules.geometry.curves import directions, nearest, parts, points
+from pairrules.geometry.curves import Curves, directions, nearest, parts, points
 from pairrules.geometry.gap_figures import usual_gap
 from pairrules.geometry.nearest_track import Nearest, NearestTrack, curves_of
 from pairrules.geometry.pair_geometry import TRACK, Pieces, SpacingProfile
@@ -24,6 +24,7 @@ REACH_GAPS = 4.0
 
 _STEP_MM = 0.1
 _CUT = 1e-10
+_GUESSES = 3
 _PARTS = np.arange(1, 16) / 16
 _FLAT_MM = 1e-7
 _NOTHING_MM = 1e-9
@@ -49,13 +50,17 @@ class _Searched:
         self._short, self._origin, self._t0, self._t1 = _short_pieces(own, rows)
         self._search = NearestTrack(self._short, other, np.arange(len(self._short)), math.inf)
         self._samples = _samples(self._short, other, *self._search.pairs())
+        self._found = self._search.at(*self._samples)
 
     def profile(self, reach: float, *, exact: bool = True) -> SpacingProfile:
         """The profile; not exact, its cuts lie at the nearest samples, enough to see which gap lasts longest."""
         self._search.reach = reach
         piece, t = self._samples
+        label = self._search.within_reach(self._found).label()
         if exact:
-            piece, t = _with_cuts(self._search, piece, t)
+            piece, t = _with_cuts(self._search, piece, t, label)
+        else:
+            piece, t, _ = _thinned(self._search, piece, t, label)
         return _stretches(self._own, self._origin, self._t0, self._t1, self._search, piece, t)
 
 
@@ -97,12 +102,12 @@ def _samples(own: Pieces, other: Pieces, pair_own: Ints, pair_other: Ints) -> tu
         all_t.append(foot)
         heading = directions(facing, np.full(len(pair_own), t_end))
         along = np.column_stack([np.cos(heading), np.sin(heading)])
-        chord = mine.end - mine.start
-        slope = np.einsum("ij,ij->i", chord, along)
-        crossing = np.einsum("ij,ij->i", end - mine.start, along) / np.where(np.abs(slope) > 1e-12, slope, np.inf)
-        use = (crossing > 0) & (crossing < 1) & (mine.sweep == 0.0)
-        all_rows.append(pair_own[use])
-        all_t.append(crossing[use])
+        for crossing in _abreast(mine, end, along):
+            use = (crossing > -_CUT) & (crossing < 1 + _CUT)
+            # What is nearest changes just there: a point on either side, so that it need not be sought.
+            for nudge in (-_CUT / 3, 0.0, _CUT / 3):
+                all_rows.append(pair_own[use])
+                all_t.append(np.clip(crossing[use] + nudge, 0.0, 1.0))
     piece, t = np.concatenate(all_rows), np.concatenate(all_t)
     order = np.lexsort((t, piece))
     piece, t = piece[order], t[order]
@@ -111,14 +116,39 @@ def _samples(own: Pieces, other: Pieces, pair_own: Ints, pair_other: Ints) -> tu
     return piece[keep], t[keep]
 
 
-def _with_cuts(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints, Floats]:
+def _abreast(curves: Curves, end: Floats, along: Floats) -> tuple[Floats, ...]:
+    """Parameters at which each piece passes the line through `end` (k, 2) square to `along` (k, 2); NaN where not."""
+    offset = np.einsum("ij,ij->i", end - curves.start, along)
+    slope = np.einsum("ij,ij->i", curves.end - curves.start, along)
+    arc = curves.sweep != 0.0
+    line = np.where(arc | (np.abs(slope) <= 1e-12), np.nan, offset / np.where(slope == 0.0, np.nan, slope))
+    if not arc.any():
+        return (line,)
+    radial = curves.start - curves.centre
+    share = np.einsum("ij,ij->i", end - curves.centre, along) / np.where(arc, np.hypot(*radial.T), np.nan)
+    half = np.arccos(np.where(np.abs(share) <= 1, share, np.nan))
+    first = np.arctan2(along[:, 1], along[:, 0]) - np.arctan2(radial[:, 1], radial[:, 0])
+    full = np.where(arc, curves.sweep, np.nan)
+    turned = [((first + side * half) * np.sign(full)) % (2 * np.pi) / np.abs(full) for side in (1.0, -1.0)]
+    return line, turned[0], turned[1]
+
+
+def _thinned(search: NearestTrack, piece: Ints, t: Floats, label: Ints) -> tuple[Ints, Floats, Ints]:
+    """The points without those in the midst of a straight course of the gap: nothing changes there."""
+    kept = np.ones(len(t), dtype=np.bool_)
+    same = (piece[1:] == piece[:-1]) & (label[1:] == label[:-1])
+    kept[1:-1] = ~(same[1:] & same[:-1] & search.straight(piece[1:-1], label[1:-1]))
+    return piece[kept], t[kept], label[kept]
+
+
+def _with_cuts(search: NearestTrack, piece: Ints, t: Floats, label: Ints) -> tuple[Ints, Floats]:
     """Further points at every change of what is nearest, found by repeated division to 1e-10 of the piece.
 
     A change is bracketed by two points, one on each side, so that a stretch between brackets has one nearest feature.
     """
+    piece, t, label = _thinned(search, *_with_guesses(search, piece, t, label))
     extra_piece, extra_t = [piece], [t]
-    label = search.at(piece, t).label()
-    change = np.flatnonzero((piece[1:] == piece[:-1]) & (label[1:] != label[:-1]))
+    change = np.flatnonzero((piece[1:] == piece[:-1]) & (label[1:] != label[:-1]) & (t[1:] - t[:-1] > _CUT))
     row, left, right = piece[change], t[change], t[change + 1]
     left_label, right_label = label[change], label[change + 1]
     for _ in range(24):
@@ -145,10 +175,28 @@ def _with_cuts(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints, Floa
     return _bent_cut_finer(search, all_piece[order], all_t[order])
 
 
+def _with_guesses(search: NearestTrack, piece: Ints, t: Floats, label: Ints) -> tuple[Ints, Floats, Ints]:
+    """Further points to both sides of where the nearest piece is likely to change, so that few have to be sought."""
+    for _ in range(_GUESSES):
+        change = np.flatnonzero((piece[1:] == piece[:-1]) & (label[1:] != label[:-1]) & (t[1:] - t[:-1] > _CUT))
+        row, left, right = piece[change], t[change], t[change + 1]
+        rows, guesses = search.equal(row, left, right, label[change] // 8, label[change + 1] // 8)
+        if not len(rows):
+            break
+        rows, guesses = np.tile(rows, 2), np.clip(np.concatenate([guesses - _CUT / 3, guesses + _CUT / 3]), 0.0, 1.0)
+        found = search.at(rows, guesses).label()
+        piece, t, label = np.concatenate([piece, rows]), np.concatenate([t, guesses]), np.concatenate([label, found])
+        order = np.lexsort((t, piece))
+        piece, t, label = piece[order], t[order], label[order]
+    return piece, t, label
+
+
 def _bent_cut_finer(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints, Floats]:
     """Stretches halved until a parabola through three points gives the gap within `_FLAT_MM`."""
     row, a, b = _spans(search, piece, t)
     extra: list[tuple[Ints, Floats]] = [(piece, t)]
+    bent = ~search.straight(row, search.at(row, (a + b) / 2).label())
+    row, a, b = row[bent], a[bent], b[bent]
     for _ in range(8):
         if not len(row):
             break
@@ -175,7 +223,7 @@ def _stretches(
 ) -> SpacingProfile:
     row, a, b = _spans(search, piece, t)
     inward = np.minimum(1e-10, (b - a) / 4)
-    start, middle, end = search.at(row, a + inward), search.at(row, (a + b) / 2), search.at(row, b - inward)
+    start, middle, end = search.at_each(row, a + inward, (a + b) / 2, b - inward)
     before = np.cumsum(np.where(own.kind == TRACK, own.length, 0.0)) - np.where(own.kind == TRACK, own.length, 0.0)
     t_from, t_to = t0[row] + (t1 - t0)[row] * a, t0[row] + (t1 - t0)[row] * b
     of = origin[row]
