@@ -88,12 +88,16 @@ def test_as_a_table(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     assert run(["settings", "--pair", "IN", path]) == 0
     out = capsys.readouterr().out
     assert all(len(line) <= 80 or str(tmp_path) in line for line in out.splitlines())
-    said = " ".join(out.split())
-    assert f"IN (class sensor) [{own} line 6]" in said
-    assert f"rise_time: 1 ns [{house} line 9]" in said
-    assert f"leg-length: most 0.5 mm; blocker from {house} line 3; a book [{own} line 3]" in said
-    assert f"via-match: off [{own} line 12]" in said
-    assert "OK" not in said.split("IN (class")[1]
+    # Where a line is broken depends on how long the path is; a path too long for a line is broken itself.
+    said = "".join(out.split())
+    for text in (
+        f"IN (class sensor) [{own} line 6]",
+        f"rise_time: 1 ns [{house} line 9]",
+        f"leg-length: most 0.5 mm; blocker from {house} line 3; a book [{own} line 3]",
+        f"via-match: off [{own} line 12]",
+    ):
+        assert text.replace(" ", "") in said
+    assert "OK" not in said.split("IN(class")[1]
 
 
 def test_new_settings_are_read_by_check_and_ignore_those_that_lie_there(
