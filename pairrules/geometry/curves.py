@@ -127,10 +127,12 @@ def _nearest_on_arc(arcs: Curves, at: Floats) -> tuple[Floats, Floats]:
     turn = np.where(turn < 0.0, turn + 2 * np.pi, turn)
     full = np.abs(arcs.sweep)
     inside = np.clip(turn / full, 0.0, 1.0)
-    choices = np.stack([np.where(turn <= full, inside, 0.0), np.zeros(len(arcs)), np.ones(len(arcs))])
-    away = np.stack([np.hypot(*(points(arcs, t) - at).T) for t in choices])
+    within = turn <= full
+    to_start, to_end = np.hypot(*(at - arcs.start).T), np.hypot(*(at - arcs.end).T)
     # On the arc itself the distance to the circle is exact where the difference of points would lose digits.
-    away[0] = np.where(turn <= full, np.abs(np.hypot(offset[:, 0], offset[:, 1]) - _radius(arcs)), away[0])
-    best = np.argmin(away, axis=0)
-    every = np.arange(len(arcs))
-    return choices[best, every], away[best, every]
+    best, t = to_start, np.zeros(len(arcs))
+    ahead = to_end < best
+    best, t = np.where(ahead, to_end, best), np.where(ahead, 1.0, t)
+    across = np.abs(np.hypot(offset[:, 0], offset[:, 1]) - _radius(arcs))
+    ahead = within & (across <= best)
+    return np.where(ahead, inside, t), np.where(ahead, across, best)

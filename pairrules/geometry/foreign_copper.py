@@ -21,10 +21,10 @@ class ForeignCopper:
         self._layers = LayerIndexes(board, self._areas) if layers is None else layers
         self._rings: dict[int, tuple[RingRuns, Ints]] = {}
 
-    def near(self, layer: int, lines: Shapes, reach: Floats) -> tuple[Ints, Floats, Ints]:
+    def near(self, layer: int, lines: Shapes, reach: Floats, own: tuple[int, ...] = ()) -> tuple[Ints, Floats, Ints]:
         """Edges of copper within reach of lines, of every net and of none.
 
-        Parameters: lines: (k,). reach: (k,) [mm].
+        Parameters: lines: (k,). reach: (k,) [mm]. own: nets left out.
         Returns: the line (n,), the edge (n, 2, 2) [mm] with copper to its left, and its net (n,), for every pair of a
         line and an edge within reach of it, and of a few further ones. Outlines of one net may overlap: an edge may lie
         within other copper.
@@ -34,6 +34,8 @@ class ForeignCopper:
         (filled, filled_net), of = self._rings[layer], self._layers.layer(layer)
         which, edge = filled.near(lines, reach)
         near, shape = of.tree.query(lines, predicate="dwithin", distance=reach + of.widest)
+        foreign = ~np.isin(of.drawn.net[shape], own)
+        near, shape = near[foreign], shape[foreign]
         shapes, place = np.unique(shape, return_inverse=True)
         parts, row = solid_parts(of.drawn.outlines(shapes))
         runs, run_shape = _edges(parts, row)
@@ -47,7 +49,10 @@ class ForeignCopper:
         edges = np.concatenate([filled.edges[edge], runs[drawn]])
         net = np.concatenate([filled_net[filled.ring[edge]], of.drawn.net[shapes[run_shape[drawn]]]])
         box = shapely.bounds(lines) + np.column_stack([-reach, -reach, reach, reach])
-        within = (edges.max(axis=1) >= box[line, :2]).all(axis=1) & (edges.min(axis=1) <= box[line, 2:]).all(axis=1)
+        # Column by column, since reducing over two values a row costs more than all the rest.
+        (x0, y0), (x1, y1), (left, low, right, high) = edges[:, 0].T, edges[:, 1].T, box[line].T
+        within = (np.maximum(x0, x1) >= left) & (np.minimum(x0, x1) <= right)
+        within &= (np.maximum(y0, y1) >= low) & (np.minimum(y0, y1) <= high) & ~np.isin(net, own)
         return line[within], edges[within], net[within]
 
 

@@ -141,9 +141,8 @@ def _edges_near(
     which, edges, nets = [np.empty(0, np.int64)], [np.empty((0, 2, 2))], [np.empty(0, np.int64)]
     for one in np.unique(layer).tolist():
         mine = np.flatnonzero(layer == one)
-        near, edge, net = copper.near(one, centre_lines(curves.take(mine)), reach[mine] + 2 * FLATTENING_MM)
-        foreign = ~np.isin(net, own_nets)
-        near, edge, net = near[foreign], edge[foreign], net[foreign]
+        lines = centre_lines(curves.take(mine))
+        near, edge, net = copper.near(one, lines, reach[mine] + 2 * FLATTENING_MM, own_nets)
         order = np.argsort(near, kind="stable")
         which.append(mine[near[order]])
         edges.append(edge[order])
