@@ -9,6 +9,7 @@ import numpy as np
 
 from pairrules.balance.board_parts import hung_elements, series_element, value_of
 from pairrules.balance.cable import cable_elements
+from pairrules.balance.levers import is_via
 from pairrules.balance.load_models import LoadModel, load_model
 from pairrules.balance.networks import DifferenceInput, Element, Line, Series, Shunt, via
 from pairrules.balance.pair_electrical import PairSection
@@ -255,7 +256,7 @@ def _spreads(klass: PairClass, elements: list[Element]) -> tuple[Spread, ...]:
 def part_spreads(board: Board, link: Link, elements: tuple[Element, ...]) -> tuple[Spread, ...]:
     """Spreads of series parts whose tolerance is written on them; series elements stand in the order of the steps."""
     found: list[Spread] = []
-    rows = [i for i, e in enumerate(elements) if isinstance(e, Series) and e.cause == "trace" and not _is_via(e)]
+    rows = [i for i, e in enumerate(elements) if isinstance(e, Series) and e.cause == "trace" and not is_via(e)]
     for row, step in zip(rows, link.series, strict=False):
         for leg, part in enumerate((step.plus, step.minus)):
             if part < 0 or step.plus == step.minus:
@@ -265,11 +266,6 @@ def part_spreads(board: Board, link: Link, elements: tuple[Element, ...]) -> tup
             if value.tolerance and name:
                 found.append(Spread(element=row, field=name, at=(leg,), share=value.tolerance))
     return tuple(found)
-
-
-def _is_via(element: Series) -> bool:
-    bare = not np.any(np.asarray(element.resistance)) and np.all(np.isinf(np.asarray(element.capacitance)))
-    return bool(bare and np.any(np.asarray(element.inductance)))
 
 
 def _source_ohm(source: tuple[Element, ...]) -> tuple[float, float]:

@@ -44,14 +44,15 @@ def solve(link: Sequence[Element], frequencies: npt.ArrayLike) -> Response:
     """
     omega = _omega(frequencies)
     with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
-        return _response([element.chain(omega) for element in link], omega)
+        return response([element.chain(omega) for element in link], omega)
 
 
 def _omega(frequencies: npt.ArrayLike) -> npt.NDArray[np.float64]:
     return 2 * np.pi * np.atleast_1d(np.asarray(frequencies, dtype=np.float64))
 
 
-def _response(chains: Sequence[Complexes], omega: npt.NDArray[np.float64]) -> Response:
+def response(chains: Sequence[Complexes], omega: npt.NDArray[np.float64]) -> Response:
+    """As `solve`, of elements that are chain matrices (…, F, 4, 4) already; omega (F,) [rad/s]."""
     state: Complexes = np.zeros((*omega.shape, 4, 2), dtype=np.complex128)
     state[..., :2, :] = np.eye(2)
     with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
@@ -73,7 +74,7 @@ def by_cause(link: Sequence[Element], frequencies: npt.ArrayLike) -> Mapping[str
         given = [element.chain(omega) for element in link]
         equal = [element.symmetrised().chain(omega) for element in link]
     return {
-        cause: _response(
+        cause: response(
             [own if element.cause == cause else alike for element, own, alike in zip(link, given, equal, strict=True)],
             omega,
         ).conversion

@@ -20,10 +20,10 @@ from pairrules.balance.pair_electrical import BalanceAt, PairElectrical, PairSec
 from pairrules.balance.pair_sections import UnsolvableError, pair_sections
 from pairrules.balance.pickup import edge_pickup, magnetic_pickup
 from pairrules.balance.section_store import Store
+from pairrules.balance.solved_link import SolvedLink
 from pairrules.balance.stack_heights import Heights, heights_of, lacking
 from pairrules.balance.tolerance import tolerated
 from pairrules.board.board import Board
-from pairrules.board.columns import Floats
 from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.loop_area import vector_area
 from pairrules.geometry.pair_geometry import BARREL, JOIN, LegRoute, PairGeometry
@@ -82,7 +82,7 @@ class _Stage:
             sections: tuple[PairSection, ...] = ()
         else:
             sections = self._sections(heights)
-        balance, source_ohm = self._balance(sections, plus, minus)
+        balance, source_ohm, solved = self._balance(sections, plus, minus)
         area = self._area(heights, plus, minus)
         electric, aggressor = self._electric(sections, source_ohm)
         limit = None if heights is None else _quasi_static(heights, sections)
@@ -111,6 +111,7 @@ class _Stage:
             terminations=terminations(board, link, self._reference, plus, minus),
             bias=bias_paths(board, link, load_resistance=resistive),
             changes=tuple(changes),
+            link=solved,
             quasi_static_hz=limit,
             assumed=tuple(dict.fromkeys(self._assumed)),
             missing=dict(sorted(self._missing.items())),
@@ -148,7 +149,7 @@ class _Stage:
 
     def _balance(
         self, sections: tuple[PairSection, ...], plus: LegRoute, minus: LegRoute
-    ) -> tuple[tuple[BalanceAt, ...], tuple[float, float] | None]:
+    ) -> tuple[tuple[BalanceAt, ...], tuple[float, float] | None, SolvedLink | None]:
         klass = self._klass
         if klass is None or not (klass.frequencies or klass.mask):
             self._missing[_BALANCE] = (
@@ -156,21 +157,23 @@ class _Stage:
                 if klass is None
                 else f"no frequencies are given: add frequencies to class {klass.name} in the settings"
             )
-            return (), None
+            return (), None, None
         if _SECTIONS in self._missing:
             self._missing[_BALANCE] = self._missing[_SECTIONS]
-            return (), None
+            return (), None, None
         at = np.array(sorted({*klass.frequencies, *(f for f, _ in klass.mask)}), dtype=np.float64)
         try:
             link = board_link(self._board, self._link, klass, sections, (plus, minus), at, reference=self._reference)
         except NoModelError as error:
             self._missing[_BALANCE] = str(error)
-            return (), None
+            return (), None, None
         self._assumed += link.assumed
-        return self._points(link, at), link.source_ohm
+        solved = SolvedLink(elements=link.elements, frequencies_hz=at, own_rejection_db=link.load.own_rejection(at))
+        return self._points(link, solved), link.source_ohm, solved
 
-    def _points(self, link: BoardLink, at: Floats) -> tuple[BalanceAt, ...]:
-        points = balance_points(link.elements, at, link.load.own_rejection(at))
+    def _points(self, link: BoardLink, solved: SolvedLink) -> tuple[BalanceAt, ...]:
+        at = solved.frequencies_hz
+        points = balance_points(link.elements, at, solved.own_rejection_db)
         spreads = (*link.spreads, *part_spreads(self._board, self._link, link.elements))
         spread = tolerated(link.elements, spreads, at) if spreads else None
         admittance = load_admittance(link, at)

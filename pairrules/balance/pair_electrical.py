@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
+from pairrules.balance.solved_link import SolvedLink
 from pairrules.board.columns import Floats
 from pairrules.fields.loss import SkinIntegrals
 
@@ -172,6 +173,7 @@ class PairElectrical:
     magnetic_v: differential voltage from the class's field; electric_v: the greatest from its swinging neighbours, and
         `aggressor` the net it comes from. area_mm2: vector loop area (x, y, z).
     series, hung, terminations, bias, changes: parts and layer changes, for rules.
+    link: what the balance was solved from; `None` where there is no balance.
     quasi_static_hz: up to where the cross-sections' quasi-static fields hold.
     assumed: what the figures rest on beside what is given, one sentence each.
     missing: figure group ("sections", "balance", "pickup" by a field, "electric" pickup) to why it is unknown.
@@ -196,6 +198,7 @@ class PairElectrical:
     terminations: tuple[Termination, ...] = ()
     bias: tuple[BiasPath, ...] = ()
     changes: tuple[LayerChange, ...] = ()
+    link: SolvedLink | None = None
     quasi_static_hz: float | None = None
     assumed: tuple[str, ...] = ()
     missing: Mapping[str, str] = field(default_factory=dict)
