@@ -20,8 +20,10 @@ from pairrules.readers.ipc2581.layers import FileLayer
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Plane
 
-MOST_CUTS = 300_000
+MOST_CUTS = 200_000
 """Cuts on one layer: a plane has ten thousands of clearances, each of which cuts it once."""
+
+_FEW_CUTS = 10
 
 SLIVER_MM2 = 1e-9
 """Areas below this are rounding of the cutting."""
@@ -123,10 +125,14 @@ class _Cuts:
 
     made: int = 0
 
-    def later(self, tree: STRtree, erasures: list[Erasure], region: Any, order: int) -> list[int]:
-        """The erasures that come after a feature and meet it. Raises: BoardError where there are too many."""
+    def later(self, tree: STRtree, erasures: list[Erasure], region: Any, order: int, *, weight: int = 1) -> list[int]:
+        """The erasures that come after a feature and meet it. Raises: BoardError where there are too many.
+
+        weight: of each beyond the first few. A plane has thousands of clearances; a track or pad that meets more than
+        a few is strange.
+        """
         touched = tree.query(region, predicate="intersects").tolist()
-        self.made += len(touched)
+        self.made += weight * max(0, len(touched) - _FEW_CUTS)
         if self.made > MOST_CUTS:
             raise BoardError(
                 f"negative features cut copper more than {MOST_CUTS} times", remedy="export the file again"
@@ -156,8 +162,9 @@ def _erase_layer(copper: Copper, layer: str, remarks: Remarks) -> None:
         for row in copper.pads
         if row.layer == layer and row.shape is not None
     ]
-    for key, order, region, held in pieces:
-        later = cuts.later(tree, erasures, region, order)
+    # All are counted before any is cut, which takes a thousand times as long.
+    met = [cuts.later(tree, erasures, region, order, weight=20) for _, order, region, _ in pieces]
+    for (key, _, region, held), later in zip(pieces, met, strict=True):
         cut = shapely.union_all([regions[i] for i in later])
         if not later or region.intersection(cut).area <= SLIVER_MM2:
             continue

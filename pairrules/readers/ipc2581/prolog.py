@@ -12,6 +12,7 @@ _MARKS = ((codecs.BOM_UTF8, "utf-8"), (codecs.BOM_UTF16_LE, "utf-16-le"), (codec
 _SKIPPED = re.compile(r"\s+|<\?.*?\?>|<!--.*?-->", re.DOTALL)
 _ROOT = re.compile(r"<([^\s<>/!?]+)")
 _DOCTYPE = re.compile(r"<!DOCTYPE", re.IGNORECASE)
+_DOCTYPE_ROOT = re.compile(r"<!DOCTYPE\s+([^\s<>\[/!?]+)", re.IGNORECASE)
 
 
 def head(data: bytes) -> str:
@@ -29,7 +30,9 @@ def head(data: bytes) -> str:
 
 def root_name(data: bytes) -> str:
     """The root element's name without prefix, "" where none is found."""
-    found = _ROOT.match(*_after_prolog(head(data)))
+    text, place = _after_prolog(head(data))
+    # A DOCTYPE names the root too: such a file is recognised, so that it can be refused for what it is.
+    found = _DOCTYPE_ROOT.match(text, place) or _ROOT.match(text, place)
     return "" if found is None else found[1].rpartition(":")[2]
 
 
