@@ -101,10 +101,14 @@ def sampled_gaps(plus: Segments, minus: Segments) -> Gaps:
         share = (np.arange(len(row)) - np.repeat(np.cumsum(count) - count, count) + 0.5) / count[row]
         at = own[row, :2] + (own[row, 2:4] - own[row, :2]) * share[:, None]
         tree = shapely.STRtree(shapely.linestrings(other[:, :4].reshape(-1, 2, 2)))
-        (_, near), away = tree.query_nearest(shapely.points(at), return_distance=True, all_matches=False)
-        gaps.append(away - own[row, 4] / 2 - other[near, 4] / 2)
+        # All that are equally near, as both pieces at a bend are: the one that is turned least counts.
+        (point, near), away = tree.query_nearest(shapely.points(at), return_distance=True, all_matches=True)
         heading = [np.arctan2(s[:, 3] - s[:, 1], s[:, 2] - s[:, 0]) for s in (own, other)]
-        turns.append(np.abs((heading[0][row] - heading[1][near] + np.pi / 2) % np.pi - np.pi / 2))
+        turn = np.abs((heading[0][row][point] - heading[1][near] + np.pi / 2) % np.pi - np.pi / 2)
+        order = np.lexsort((turn, point))
+        first = order[np.r_[True, np.diff(point[order]) > 0]]
+        gaps.append(away[first] - own[row[point[first]], 4] / 2 - other[near[first], 4] / 2)
+        turns.append(turn[first])
     gap, turn = np.concatenate(gaps), np.concatenate(turns)
     beside = turn < TURN
     steps, counts = np.unique(np.round(gap[beside], 3), return_counts=True)
