@@ -25,6 +25,7 @@ from pairrules.balance.stack_heights import Heights, heights_of, lacking
 from pairrules.balance.tolerance import tolerated
 from pairrules.board.board import Board
 from pairrules.geometry.board_copper import BoardCopper
+from pairrules.geometry.hatched_copper import hatched_beside
 from pairrules.geometry.loop_area import vector_area
 from pairrules.geometry.pair_geometry import BARREL, JOIN, LegRoute, PairGeometry
 from pairrules.pairing.link import Link
@@ -47,7 +48,8 @@ def electrical(
     """
     plus, minus = geometry.plus, geometry.minus
     if plus is None or minus is None or geometry.profile_plus is None:
-        why = "a leg is not routed from end to end"
+        known = geometry.missing if geometry.plus is None and not geometry.broken else ()
+        why = known[-1] if known else "a leg is not routed from end to end"
         return PairElectrical(missing=dict.fromkeys((_SECTIONS, _BALANCE, _PICKUP), why))
     stage = _Stage(board, link, geometry, klass, copper, store)
     return stage.run(plus, minus)
@@ -129,6 +131,9 @@ class _Stage:
     def _sections(self, heights: Heights) -> tuple[PairSection, ...]:
         if not self._reference:
             self._missing[_SECTIONS] = "no net is known as reference: name it under reference_nets: in the settings"
+            return ()
+        if hatched := hatched_beside(self._board, self._copper.areas, self._geometry):
+            self._missing[_SECTIONS] = f"copper on {hatched} next to the legs is hatched, and how is not known"
             return ()
         own = frozenset(hop.net for hop in (*self._link.hops_plus, *self._link.hops_minus))
         try:

@@ -163,7 +163,7 @@ def _together(trial: _Trial, levers: Sequence[Lever]) -> tuple[Mend, ...]:
 
 
 def _signs(levers: Sequence[Lever]) -> list[tuple[int, ...]]:
-    """Which leg has more, for each lever: every combination of up to `_SIGNED` levers, else all one way or the other."""
+    """Which leg has more, by lever: every combination of up to `_SIGNED` levers, else all one way or the other."""
     either = [(1, -1) if lever.acts == DIFFERENCE else (1,) for lever in levers]
     if len(levers) > _SIGNED:
         return [tuple(signs[0] for signs in either), tuple(signs[-1] for signs in either)]

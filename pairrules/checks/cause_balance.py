@@ -5,14 +5,16 @@ from __future__ import annotations
 from collections.abc import Callable
 
 from pairrules.balance.pair_electrical import BalanceAt, PairElectrical
+from pairrules.balance.remedies import CONVERSION
+from pairrules.checks.balance_advice import Advice, solved_advice
 from pairrules.checks.electrical_figures import figures, hertz, wanted_points
 from pairrules.checks.rule import Subject, Undecided
 from pairrules.checks.wording import TOLERANCE, amounts
-from pairrules.result import Finding, Place
+from pairrules.result import Finding
 from pairrules.settings.limit import Limit
 
-Advise = Callable[[Subject, PairElectrical, float], tuple[str, tuple[Place, ...]]]
-"""From the pair and the [dB] that are lacking to an advice, and the places it speaks of."""
+Advise = Callable[[Subject, PairElectrical, float], Advice]
+"""From the pair and the [dB] that are lacking to an advice where the link is not at hand to be solved again."""
 
 
 def judge_cause(
@@ -33,7 +35,10 @@ def judge_cause(
     if known:
         below, worst = min(known, key=lambda found: found[0])
         if below < least - TOLERANCE:
-            return (_finding(subject, limit, electrical, cause, below, worst, advise),)
+            asked = {one.frequency_hz: least for _, one in known}
+            solved = solved_advice(subject, electrical, asked, figure=CONVERSION, cause=cause)
+            advice = solved or advise(subject, electrical, least - below)
+            return (_finding(limit, cause, below, worst, advice),)
     if len(known) == len(points) or (none and not known):
         return ()
     lost = next(one for one in points if conversion_db(one, cause) is None)
@@ -60,18 +65,10 @@ def greatest_cause(point: BalanceAt) -> tuple[str, float] | None:
 CAUSES = ("source", "trace", "cable", "load")
 
 
-def _finding(
-    subject: Subject,
-    limit: Limit,
-    electrical: PairElectrical,
-    cause: str,
-    below: float,
-    worst: BalanceAt,
-    advise: Advise,
-) -> Finding:
+def _finding(limit: Limit, cause: str, below: float, worst: BalanceAt, advice: Advice) -> Finding:
     least = limit.quantities["least"]
     measured, required = amounts(below, least, "dB")
-    advice, at = advise(subject, electrical, least - below)
+    said, at = advice
     return Finding(
         rule=limit.rule,
         severity=limit.severity,
@@ -80,7 +77,7 @@ def _finding(
         unit="dB",
         message=f"what the {cause} converts lies {measured} below the common mode at {hertz(worst.frequency_hz)}; "
         f"{required} are required",
-        advice=advice,
+        advice=said,
         at=at,
         source=limit.source,
     )

@@ -16,7 +16,8 @@ Source
     from the signal and its disturbance, not from a standard.
 
 What to do
-    Mend the greatest cause first: halving any other changes little.
+    Mend the greatest cause first: halving any other changes little. The value that would do is found by solving the
+    link again with it changed, whichever leg has more.
 
 Example
     5 V of common mode on a bridge of 20 mV full scale, 80 dB: 0.5 mV, 2.5 % of full scale; with least 100 dB flagged.
@@ -25,11 +26,13 @@ Example
 from __future__ import annotations
 
 from pairrules.balance.pair_electrical import BalanceAt
+from pairrules.balance.remedies import REJECTION
+from pairrules.checks.balance_advice import Advice, solved_advice
 from pairrules.checks.cause_balance import greatest_cause
 from pairrules.checks.electrical_figures import figures, hertz, lacking, wanted_points
 from pairrules.checks.rule import Rule, Subject, Undecided
 from pairrules.checks.wording import TOLERANCE, amounts
-from pairrules.result import Finding
+from pairrules.result import Finding, Place
 from pairrules.settings.limit import Limit
 
 _MEND = {
@@ -53,21 +56,26 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     if known:
         rejection, worst = min(known, key=lambda found: found[0])
         if rejection < least - TOLERANCE:
-            return (_finding(limit, rejection, worst),)
+            asked = {one.frequency_hz: least for _, one in known}
+            return (_finding(limit, rejection, worst, solved_advice(subject, electrical, asked, figure=REJECTION)),)
     if len(known) == len(points):
         return ()
     lost = next(one for one in points if one.rejection_db is None)
     return lacking(electrical, "balance", f"the rejection at {hertz(lost.frequency_hz)} is not known")
 
 
-def _finding(limit: Limit, rejection: float, worst: BalanceAt) -> Finding:
+def _finding(limit: Limit, rejection: float, worst: BalanceAt, solved: Advice | None) -> Finding:
     least = limit.quantities["least"]
     measured, required = amounts(rejection, least, "dB")
     spread = ""
     if worst.worst_db is not None and worst.total_db is not None and worst.worst_db > worst.total_db + TOLERANCE:
         spread = f"; tolerances may raise the conversion by {worst.worst_db - worst.total_db:.1f} dB more"
     cause = greatest_cause(worst)
-    if cause is None:
+    at: tuple[Place, ...] = ()
+    if solved is not None:
+        said, at = solved
+        advice = f"the {cause[0]} converts most ({cause[1]:.1f} dB); {said}" if cause else said
+    elif cause is None:
         advice = "find out which of source, tracks, cable and load is unbalanced: none of their shares is known"
     elif worst.conversion_loss_db is not None and worst.conversion_loss_db >= least:
         advice = "take a receiver of higher rejection: the link before it would do"
@@ -82,6 +90,7 @@ def _finding(limit: Limit, rejection: float, worst: BalanceAt) -> Finding:
         unit="dB",
         message=f"the link rejects {measured} at {hertz(worst.frequency_hz)}; {required} are required{spread}",
         advice=advice,
+        at=at,
         source=limit.source,
     )
 

@@ -30,11 +30,13 @@ import math
 from pairrules.balance.conversion import FLOOR_DB
 from pairrules.balance.load_models import rejection_at
 from pairrules.balance.pair_electrical import BalanceAt
+from pairrules.balance.remedies import LOSS
+from pairrules.checks.balance_advice import solved_advice
 from pairrules.checks.cause_balance import greatest_cause
 from pairrules.checks.electrical_figures import figures, hertz, lacking, most_tilted
 from pairrules.checks.rule import Rule, Subject, Undecided
 from pairrules.checks.wording import TOLERANCE, amounts, spot
-from pairrules.result import Finding
+from pairrules.result import Finding, Place
 from pairrules.settings.limit import Limit
 
 _EDGE = 1e-9
@@ -53,7 +55,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     if not electrical.balance:
         return lacking(electrical, "balance", "the balance of the link is not known")
     lost, worst = None, None
-    judged = 0
+    required_db: dict[float, float] = {}
     for point in electrical.balance:
         asked = [] if flat is None else [flat]
         at = point.frequency_hz
@@ -61,11 +63,12 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             asked.append(float(rejection_at(mask, at)[0]))
         if not asked:
             continue
-        judged += 1
         loss = _loss(point)
         if loss is None:
             lost = lost or point
-        elif worst is None or loss - max(asked) < worst[0]:
+            continue
+        required_db[at] = max(asked)
+        if worst is None or loss - max(asked) < worst[0]:
             worst = (loss - max(asked), max(asked), point)
     if worst is not None and worst[0] < -TOLERANCE:
         _, required, point = worst
@@ -73,11 +76,16 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         # A mask between its points is no whole figure; two decimals show it well enough.
         measured, allowed = amounts(loss, round(required, 2), "dB")
         where = most_tilted(subject, electrical)
+        places: tuple[Place, ...] = () if where is None else (where,)
         cause = greatest_cause(point)
         advice = "make the legs alike in length, width, surroundings and parts"
         if cause is not None and cause[0] != "trace":
             advice = f"begin with the {cause[0]}, which converts most ({cause[1]:.1f} dB), then {advice}"
-        if where is not None:
+        solved = solved_advice(subject, electrical, required_db, figure=LOSS)
+        if solved is not None:
+            said, places = solved
+            advice = f"the {cause[0]} converts most ({cause[1]:.1f} dB); {said}" if cause else said
+        elif where is not None:
             advice += f"; their capacitances differ most from {spot(subject.board, where)} on"
         return (
             Finding(
@@ -89,11 +97,11 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
                 message=f"conversion lies {measured} below the signal at {hertz(point.frequency_hz)}; "
                 f"{allowed} are required",
                 advice=advice,
-                at=() if where is None else (where,),
+                at=places,
                 source=limit.source,
             ),
         )
-    if not judged:
+    if not required_db and lost is None:
         return Undecided(missing="the balance is known at no frequency within the mask of the pair's class")
     if lost is not None:
         return lacking(electrical, "balance", f"the conversion loss at {hertz(lost.frequency_hz)} is not known")
