@@ -19,12 +19,14 @@ class Area:
     ----------
     net: index into `Board.nets`, −1 for none. layer: index into `Board.copper`.
     outline: (n, 2) [mm], not closed. holes: each (m, 2) [mm], not closed.
+    hatched: within it copper is drawn as a mesh, of which no more is known; for reference cover it counts as whole.
     """
 
     net: int
     layer: int
     outline: Floats
     holes: tuple[Floats, ...] = ()
+    hatched: bool = False
 
     def __post_init__(self) -> None:
         object.__setattr__(self, "outline", _ring(self.outline))

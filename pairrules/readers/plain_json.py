@@ -275,7 +275,7 @@ class _Reading:
             holes = tuple(self.ruler.ring(hole, place) for place, hole in members.entries("holes", "outlines"))
             areas.append(Area(net=net, layer=layer, outline=outline, holes=holes))
         for place, _, _ in crossing_rings([area.outline for area in areas]):
-            self.document.note("crosses or touches itself and is read by its lines", paths[place])
+            self.document.note("crosses or touches itself and is read by what its lines enclose", paths[place])
         return areas
 
     def _kinds(self) -> dict[str, str]:

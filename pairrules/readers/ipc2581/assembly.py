@@ -178,12 +178,20 @@ def _vias(vias: list[JoinedVia], nets: dict[str, int]) -> Vias:
 def _areas(rows: list[FillRow], nets: dict[str, int], layers: dict[str, int], remarks: Remarks) -> tuple[Area, ...]:
     areas: list[Area] = []
     for row in rows:
-        if len(row.fill.outline) < 3 or abs(signed_area(row.fill.outline)) < LEAST_MM2:
+        # Loops of a line that crosses itself may cancel in the signed area, and enclose copper all the same.
+        flat = len(row.fill.outline) < 3 or abs(signed_area(row.fill.outline)) < LEAST_MM2
+        if flat and (len(row.fill.outline) < 3 or row.fill.region().area < LEAST_MM2):
             remarks.count("{n} area{s} without extent {are} left out")
             continue
         holes = tuple(_points(hole) for hole in row.fill.holes if len(hole) > 2)
         areas.append(
-            Area(net=nets.get(row.net, -1), layer=layers[row.layer], outline=_points(row.fill.outline), holes=holes)
+            Area(
+                net=nets.get(row.net, -1),
+                layer=layers[row.layer],
+                outline=_points(row.fill.outline),
+                holes=holes,
+                hatched=row.fill.hatched,
+            )
         )
     crossing = crossing_rings([area.outline for area in areas])
     if crossing:
@@ -191,7 +199,7 @@ def _areas(rows: list[FillRow], nets: dict[str, int], layers: dict[str, int], re
         name = next(name for name, index in layers.items() if index == areas[place].layer)
         where = f"on {name} at ({x:.3f}, {y:.3f}) mm"
         remarks.count(
-            f"{{n}} outline{{s}} that cross or touch themselves {{are}} read by their lines, the first {where}",
+            f"{{n}} outline{{s}} whose lines cross or touch {{are}} read by what they enclose, the first {where}",
             len(crossing),
         )
     return tuple(areas)

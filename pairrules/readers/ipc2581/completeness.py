@@ -31,6 +31,7 @@ def complete(content: FileContent, step: Step, names: tuple[str, ...], remarks: 
         if name and name not in content.table.layers:
             remarks.count(f"the list of contents names layer {name}, which is not in the file")
     absent = _declared_but_bare(step, names, remarks) or absent
+    absent = bool(step.copper.undeclared) or absent  # what kind of layer it was drawn on, nobody knows
     if "ASSEMBLY" in content.modes:
         remarks.count("the file was written for assembly, which may leave inner copper layers out")
     return not absent

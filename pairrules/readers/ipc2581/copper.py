@@ -125,6 +125,7 @@ class Copper:
     holes: list[HoleRow] = field(default_factory=list)
     stacks: dict[str, StackDefinition] = field(default_factory=dict)
     drawn_layers: set[str] = field(default_factory=set)
+    undeclared: set[str] = field(default_factory=set)
     net_lines: dict[str, int] = field(default_factory=dict)
     order: int = 0
 

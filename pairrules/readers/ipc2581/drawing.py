@@ -61,20 +61,24 @@ class Stroke:
 
 @dataclass(frozen=True, slots=True)
 class Fill:
-    """An outline with holes, arcs flattened. erase: it removes copper drawn before it."""
+    """An outline with holes, arcs flattened. erase: it removes copper drawn before it. hatched: it is not solid."""
 
     outline: Plane
     holes: tuple[Plane, ...] = ()
     erase: bool = False
+    hatched: bool = False
 
     def placed(self, by: Transform) -> Fill:
         """The fill after a placement."""
-        return Fill(by(self.outline), tuple(by(hole) for hole in self.holes), self.erase)
+        return Fill(by(self.outline), tuple(by(hole) for hole in self.holes), self.erase, self.hatched)
 
     def region(self) -> Any:
-        """The covered area as a valid shapely geometry."""
+        """The covered area as a valid shapely geometry; holes take copper away wherever they lie."""
         drawn = Polygon(_pairs(self.outline), [_pairs(hole) for hole in self.holes])
-        return drawn if drawn.is_valid else shapely.make_valid(drawn)
+        if drawn.is_valid:
+            return drawn
+        holes = shapely.union_all([shapely.make_valid(Polygon(_pairs(hole))) for hole in self.holes])
+        return shapely.make_valid(Polygon(_pairs(self.outline))).difference(holes)
 
 
 Item = Stroke | Fill

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Container
 from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING
 
@@ -49,10 +50,25 @@ class Shapes:
     standard: dict[str, Primitive] = field(default_factory=dict)
     user: dict[str, Primitive] = field(default_factory=dict)
     user_pads: dict[str, Primitive] = field(default_factory=dict)
+    absent: set[tuple[str, str]] = field(default_factory=set)
     outlines: dict[Element, Plane] = field(default_factory=dict)
     """Corners of outlines whose own elements are dropped already, of the record that is being read."""
 
     # -- dictionaries -------------------------------------------------------------------------------------------------
+
+    def know(self, other: Shapes) -> None:
+        """Take over what another reading of the same file found in its dictionaries."""
+        self.lines, self.fillings = dict(other.lines), dict(other.fillings)
+        self.standard, self.user = dict(other.standard), dict(other.user)
+
+    def asked_too_early(self) -> bool:
+        """Whether a name was asked for before it stood in a dictionary."""
+        held: dict[str, Container[str]] = {
+            "LineDescRef": self.lines,
+            "StandardPrimitiveRef": self.standard,
+            "UserPrimitiveRef": self.user,
+        }
+        return any(name in held[tag] for tag, name in self.absent)
 
     def entry(self, element: Element, factor: float) -> None:
         """Take in one `Entry…` of a dictionary. factor: millimetres in the dictionary's unit."""
@@ -83,6 +99,7 @@ class Shapes:
             if tag == "LineDescRef":
                 found = self.lines.get(word(inner, "id"))
                 if found is None:
+                    self.absent.add((tag, word(inner, "id")))
                     self.remarks.count("{n} line style{s} named by features {are} not in the file's dictionary")
                 return found
             if tag == "LineDesc":
@@ -137,9 +154,9 @@ class Shapes:
     def _bare_shape(self, element: Element, factor: float, default: Line | None) -> Primitive | None:
         tag = local(element)
         if tag in PRIMITIVES:
-            held = self.standard if tag == "StandardPrimitiveRef" else self.user
-            found = held.get(word(element, "id"))
+            found = (self.standard if tag == "StandardPrimitiveRef" else self.user).get(word(element, "id"))
             if found is None:
+                self.absent.add((tag, word(element, "id")))
                 self.remarks.count(
                     "{n} shape{s} named by features {are} not in the file's dictionaries and {are} left out"
                 )
@@ -180,7 +197,12 @@ class Shapes:
         if filling == "VOID":
             return Primitive(tuple(replace(item, erase=True) for item in shape.items), None)
         if filling in {"HATCH", "MESH"}:
-            self.remarks.count("{n} hatched shape{s} {are} read as solid copper")
+            self.remarks.count(
+                "{n} hatched shape{s} {are} read as solid copper, beside which no impedance is known",
+                line=line(element),
+            )
+            items = tuple(replace(item, hatched=True) if isinstance(item, Fill) else item for item in shape.items)
+            return replace(shape, items=items)
         return shape
 
     def _contour(self, element: Element, tag: str, factor: float) -> Primitive:

@@ -91,12 +91,29 @@ class FileContent:
     def __post_init__(self) -> None:
         self.shapes = Shapes(self.remarks)
 
+    def asked_too_early(self) -> bool:
+        """Whether something was left out for want of what stands later in the file."""
+        wanted = {name for step in self.steps.values() for name in step.copper.undeclared}
+        return bool(wanted & self.table.layers.keys()) or self.shapes.asked_too_early()
+
 
 def read_content(data: bytes) -> FileContent:
-    """Read the file. Raises: BoardError, without the file's name, where it is malformed or says what cannot be."""
+    """Read the file. Raises: BoardError, without the file's name, where it is malformed or says what cannot be.
+
+    A file that names layers, line styles or shapes before it says what they are is read once more, with them known.
+    """
+    content = _read_once(data, FileContent(most_pieces=most_pieces(len(data))))
+    if not content.asked_too_early():
+        return content
+    again = FileContent(most_pieces=content.most_pieces, table=LayerTable(layers=dict(content.table.layers)))
+    again.shapes.know(content.shapes)
+    return _read_once(data, again)
+
+
+def _read_once(data: bytes, content: FileContent) -> FileContent:
     from lxml import etree
 
-    walk = _Walk(FileContent(most_pieces=most_pieces(len(data))))
+    walk = _Walk(content)
     # The root is among them whatever it is called, to be judged before anything else.
     names = {*walk.records, *walk.openings, *_DICTIONARIES, *_OUTLINES, *_LEFT_OUT, _root_name(data)}
     parser = etree.XMLPullParser(

@@ -56,6 +56,7 @@ class SetReader:
         """A `Set` on a layer. route_net: net of the `Route` around it (revision A), "" where none."""
         layer = self.table.layers.get(layer_name)
         if layer is None:
+            self.copper.undeclared.add(layer_name)
             self.remarks.count(
                 f"{{n}} set{{s}} on layer {layer_name}, which the file does not declare, {{are}} left out"
             )

@@ -88,10 +88,16 @@ def join(copper: Copper, names: tuple[str, ...], remarks: Remarks) -> tuple[list
     joined: list[tuple[int, JoinedPad]] = []
     vias: list[tuple[int, JoinedVia]] = []
     seen: set[tuple[float, float, int, int, str]] = set()
+    drilled = _drilled_out(copper.holes, index)
+    shortened = 0
     for hole in copper.holes:
         if hole.plating == "NONPLATED":
             continue
-        first, last = _span(hole, index, len(names))
+        whole = _span(hole, index, len(names))
+        first, last = _what_remains(whole, drilled.near(hole.at))
+        shortened += (first, last) != whole
+        if first > last:
+            continue
         key = (round(hole.at.real, 3), round(hole.at.imag, 3), first, last, hole.net)
         if key in seen:
             continue
@@ -112,6 +118,7 @@ def join(copper: Copper, names: tuple[str, ...], remarks: Remarks) -> tuple[list
         bare = [pad for pad in here if not pad.pin]
         taken |= {id(pad) for pad in bare}
         vias.append((hole.order, _via(hole, bare, copper, (first, last), drill)))
+    remarks.count("{n} plated hole{s} {are} shortened by back-drilling", shortened)
     left = [pad for pad in copper.pads if id(pad) not in taken]
     joined += [(pad.order, JoinedPad(pad, index[pad.layer], math.nan)) for pad in left if not pad.via]
     vias += _vias_without_holes(
@@ -120,6 +127,30 @@ def join(copper: Copper, names: tuple[str, ...], remarks: Remarks) -> tuple[list
     joined.sort(key=lambda row: row[0])
     vias.sort(key=lambda row: row[0])
     return [pad for _, pad in joined], [via for _, via in vias]
+
+
+def _drilled_out(holes: list[HoleRow], index: dict[str, int]) -> Places[tuple[int, int]]:
+    """Where holes without plating go through some of the layers only: drilled after plating, they take the barrel away.
+
+    From memory of the standard and of the trade: back-drilling is a drill layer of its own whose span ends inside.
+    """
+    found: Places[tuple[int, int]] = Places()
+    for hole in holes:
+        ends = [index[name] for name in hole.span if name in index]
+        if hole.plating == "NONPLATED" and len(ends) == 2 and abs(ends[0] - ends[1]) < len(index) - 1:
+            found.put(hole.at, (min(ends), max(ends)))
+    return found
+
+
+def _what_remains(span: tuple[int, int], drilled: list[tuple[int, int]]) -> tuple[int, int]:
+    """First and last layer that a barrel still joins; the last before the first where nothing remains."""
+    first, last = span
+    for low, high in drilled:
+        if low <= first:
+            first = max(first, high + 1)
+        elif high >= last:
+            last = min(last, low - 1)
+    return first, last
 
 
 def _same_net(pad: PadRow, hole: HoleRow) -> bool:

@@ -7,7 +7,7 @@ the standard.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import shapely
@@ -151,7 +151,11 @@ def _erase_layer(copper: Copper, layer: str, remarks: Remarks) -> None:
             kept.append(row)
             continue
         left = row.fill.region().difference(shapely.union_all([regions[i] for i in later]))
-        kept += [FillRow(piece, layer, row.net, row.order) for piece in fills(left) if piece.region().area > SLIVER_MM2]
+        kept += [
+            FillRow(replace(piece, hatched=row.fill.hatched), layer, row.net, row.order)
+            for piece in fills(left)
+            if piece.region().area > SLIVER_MM2
+        ]
     copper.areas = kept
     gone: set[int] = set()
     pieces: list[tuple[int, int, Any, bool]] = [
