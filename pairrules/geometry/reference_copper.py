@@ -10,6 +10,7 @@ import shapely
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
 from pairrules.geometry.area_polygons import AreaPolygons
+from pairrules.geometry.area_tiles import tiles
 from pairrules.geometry.copper_outlines import copper_outlines
 from pairrules.geometry.ring_runs import RingRuns, Shapes, ring_runs
 
@@ -49,7 +50,7 @@ class ReferenceCopper:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class LayerCopper:
-    """Reference copper of a layer: each net's copper in parts that are apart, and the edges of the union of all."""
+    """Reference copper of a layer: each net's copper in tiles, and the edges of the union of all."""
 
     by_net: tuple[tuple[int, Shapes, shapely.STRtree], ...]
     outline: RingRuns
@@ -68,22 +69,19 @@ class LayerCopper:
         """The lowest reference net with copper at each point, its edge included; `NO_NET` where there is none."""
         net = np.full(len(at), NO_NET, dtype=np.int64)
         for index, parts, tree in reversed(self.by_net):
-            # Which part's box a point lies in is soon found; whether it lies in the part is asked of the prepared part.
             point, part = tree.query(shapely.points(at))
-            for one in np.unique(part).tolist():
-                asked = point[part == one]
-                net[asked[shapely.intersects_xy(parts[one], at[asked, 0], at[asked, 1])]] = index
+            net[point[shapely.intersects_xy(parts[part], at[point, 0], at[point, 1])]] = index
         return net
 
 
 def _layer_copper(board: Board, layer: int, reference: tuple[int, ...], areas: AreaPolygons) -> LayerCopper:
     outlines = copper_outlines(board, layer, nets=reference, areas=areas)
-    by_net = []
+    by_net, unions = [], [np.empty(0, dtype=np.object_)]
     for net in np.unique(outlines.net).tolist():
-        parts = _union(outlines.polygons[outlines.net == net])
-        shapely.prepare(parts)
-        by_net.append((net, parts, shapely.STRtree(parts)))
-    every = _union(np.concatenate([parts for _, parts, _ in by_net])) if by_net else np.empty(0, dtype=np.object_)
+        unions.append(_union(outlines.polygons[outlines.net == net]))
+        pieces = np.concatenate([tiles(part) for part in unions[-1]])
+        by_net.append((net, pieces, shapely.STRtree(pieces)))
+    every = _union(np.concatenate(unions)) if len(unions) > 2 else unions[-1]
     return LayerCopper(by_net=tuple(by_net), outline=ring_runs(shapely.get_rings(every)))
 
 

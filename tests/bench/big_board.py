@@ -105,11 +105,12 @@ def _ends(kind: str, x: float, y: float, *, leaves: bool) -> tuple[Point, Point]
 def _centre(drawn: random.Random, x0: float, x1: float, y: float) -> list[Point]:
     """Straight, or with a jog sideways at 45 degrees."""
     first, last = x0 + 1.0, x1 - 1.0
-    if last - first < 5.5:
+    tail = 3.6 if x1 > WIDE - 2.0 else 1.2  # a detour needs its straight
+    if last - first < tail + 3.6:
         return [(first, y), (last, y)]
     out = round(drawn.uniform(0.3, 0.9) * drawn.choice((-1, 1)), 3)
     begin = round(first + drawn.uniform(0.6, 1.2), 3)
-    end = round(last - 3.6, 3)
+    end = round(last - tail, 3)
     step = abs(out)
     return [(first, y), (begin, y), (begin + step, y + out), (end - step, y + out), (end, y), (last, y)]
 
