@@ -35,6 +35,21 @@ class Leg:
         return self.centre - self.width / 2, self.centre + self.width / 2
 
 
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Drawing:
+    """What a section was drawn from, so that it can be drawn again with something changed; as of `draw`."""
+
+    heights: Heights
+    layer: int
+    legs: tuple[Leg, ...]
+    beside: tuple[Span, ...]
+    planes: tuple[tuple[int, tuple[Span, ...]], ...]
+
+    def section(self) -> CrossSection:
+        """The section."""
+        return draw(self.heights, self.layer, self.legs, self.beside, dict(self.planes))
+
+
 def draw(
     heights: Heights,
     layer: int,

@@ -8,7 +8,7 @@ import numpy as np
 
 from pairrules.balance.pair_electrical import LayerChange
 from pairrules.board.board import Board
-from pairrules.geometry.pair_geometry import BARREL, TRACK, LegRoute
+from pairrules.geometry.pair_geometry import BARREL, TRACK, LegRoute, Pieces
 from pairrules.geometry.reference_cover import Cover
 
 
@@ -27,7 +27,7 @@ def layer_changes(
         before, after = tracks[tracks < row], tracks[tracks > row]
         if not len(before) or not len(after):
             continue
-        left, right = _layers(cover, int(before[-1])), _layers(cover, int(after[0]))
+        left, right = _layers(pieces, cover, before[::-1].tolist()), _layers(pieces, cover, after.tolist())
         if not left or not right or left & right:
             continue
         found.append(
@@ -45,14 +45,22 @@ def layer_changes(
     return tuple(found)
 
 
-def _layers(cover: Cover, piece: int) -> set[int]:
-    """Copper layers with reference copper along the longest stretch of a piece."""
-    rows = np.flatnonzero(cover.piece == piece)
-    if not len(rows):
-        return set()
-    row = rows[int(np.argmax((cover.s_to - cover.s_from)[rows]))]
-    layer = int(cover.layer[row])
-    return {k for k, net in ((layer - 1, cover.above[row]), (layer + 1, cover.below[row])) if net >= 0}
+def _layers(pieces: Pieces, cover: Cover, away: list[int]) -> set[int]:
+    """Copper layers with reference copper along the longest such stretch of the piece nearest to a via that has one.
+
+    Parameters: away: tracks of the leg, the nearest first. Those on another layer than the first do not count.
+
+    A piece that ends within the via's own antipad has no reference copper and says nothing of what lies beyond.
+    """
+    for piece in away:
+        if pieces.layer[piece] != pieces.layer[away[0]]:
+            break
+        rows = np.flatnonzero((cover.piece == piece) & ((cover.above >= 0) | (cover.below >= 0)))
+        if len(rows):
+            row = rows[int(np.argmax((cover.s_to - cover.s_from)[rows]))]
+            layer = int(cover.layer[row])
+            return {k for k, net in ((layer - 1, cover.above[row]), (layer + 1, cover.below[row])) if net >= 0}
+    return set()
 
 
 def _nearest(

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
+from pairrules.balance.drawn_section import Drawing
 from pairrules.balance.solved_link import SolvedLink
 from pairrules.board.columns import Floats
 from pairrules.fields.loss import SkinIntegrals
@@ -28,6 +29,7 @@ class PairSection:
     delay: of the odd mode, or of the leg alone [s/m].
     planes: copper layers whose copper bounds the section. neighbours: nets of copper beside it on its own layer, −1 for
         none. coupling: of each neighbour to each leg of the section [F/m].
+    drawing: what its cross-section was drawn from.
     """
 
     leg: str
@@ -52,6 +54,7 @@ class PairSection:
     planes: tuple[int, ...]
     neighbours: tuple[int, ...]
     coupling: tuple[tuple[float, ...], ...] = ()
+    drawing: Drawing | None = None
 
     @property
     def widths_mm(self) -> tuple[float, ...]:

@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
-from pairrules.balance.drawn_section import draw
+from pairrules.balance.drawn_section import Drawing, draw
 from pairrules.balance.leg_stretches import stretches
 from pairrules.balance.pair_electrical import PairSection
 from pairrules.balance.sampled_cuts import Cut, cuts_of, with_copper
@@ -159,4 +159,5 @@ def _section(cut: Cut, matrices: SectionMatrices, heights: Heights) -> PairSecti
         planes=tuple(k for k, _ in cut.planes),
         neighbours=cut.beside_nets,
         coupling=matrices.coupling,
+        drawing=Drawing(heights=heights, layer=cut.layer, legs=cut.legs, beside=cut.beside, planes=cut.planes),
     )
