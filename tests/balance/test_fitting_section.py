@@ -5,7 +5,7 @@ from __future__ import annotations
 import json
 import re
 from pathlib import Path
-from typing import Any
+from typing import Any, cast
 
 import pytest
 
@@ -42,9 +42,9 @@ def test_the_named_values_come_nearest_to_what_is_wanted(aim: float) -> None:
                 impedance(drawing(gap=1.0)) or 0
             )
             continue
-        exact = impedance(drawing(**{name: found.value_mm}))
+        exact = impedance(drawing(**cast("Any", {name: found.value_mm})))
         assert exact is not None and exact == pytest.approx(found.impedance_ohm, abs=1e-6)
-        around = [impedance(drawing(**{name: found.value_mm + sign * STEP_MM})) for sign in (-1, 1)]
+        around = [impedance(drawing(**cast("Any", {name: found.value_mm + sign * STEP_MM}))) for sign in (-1, 1)]
         assert all(other is not None and abs(exact - aim) <= abs(other - aim) for other in around)
 
 
