@@ -59,7 +59,11 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class _Near:
-    """A stretch near an edge: its track length, its least distance [mm], where that is, and the layer of the copper."""
+    """A stretch that comes near an edge somewhere.
+
+    Parameters: length_mm: of its track, which may reach far beyond the place. distance: its least [mm]; where: there.
+    copper: layer of the reference copper.
+    """
 
     leg: str
     length_mm: float
@@ -100,7 +104,9 @@ def _near(subject: Subject, name: str, cover: Cover, least: float) -> tuple[list
 def _finding(subject: Subject, limit: Limit, near: list[_Near]) -> Finding:
     worst, least = near[0], limit.quantities["least"]
     measured, required = amounts(worst.distance, least, "mm")
-    more = f", and {len(near) - 1} more stretches" if len(near) > 2 else ", and one more stretch" if near[1:] else ""
+    more = (
+        f", and on {len(near) - 1} more stretches" if len(near) > 2 else ", and on one more stretch" if near[1:] else ""
+    )
     return Finding(
         rule=limit.rule,
         severity=limit.severity,
@@ -108,7 +114,7 @@ def _finding(subject: Subject, limit: Limit, near: list[_Near]) -> Finding:
         limit=least,
         unit="mm",
         message=f"{worst.leg} comes within {measured} of the edge of its reference copper on {worst.copper}, "
-        f"on a stretch of {worst.length_mm:.2f} mm{more}; {required} is required",
+        f"somewhere on {worst.length_mm:.2f} mm of track{more}; {required} is required",
         advice=f"move the pair inward or let the copper on {worst.copper} reach farther at "
         f"{spot(subject.board, worst.where)}",
         at=tuple(one.where for one in near),

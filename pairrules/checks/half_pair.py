@@ -23,11 +23,8 @@ Example
 
 from __future__ import annotations
 
-import numpy as np
-
-from pairrules.checks.routed_legs import unrouted
+from pairrules.checks.routed_legs import has_copper, unrouted
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.pairing.link import Hop
 from pairrules.result import Finding
 from pairrules.settings.limit import Limit
 
@@ -37,7 +34,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     geometry, link, board = subject.geometry, subject.link, subject.board
     if geometry.plus is not None and geometry.minus is not None:
         return ()
-    copper = {"plus": _has_copper(subject, link.hops_plus), "minus": _has_copper(subject, link.hops_minus)}
+    copper = {"plus": has_copper(subject, link.hops_plus), "minus": has_copper(subject, link.hops_minus)}
     if all(copper.values()):
         return ()
     if not any(copper.values()):
@@ -60,13 +57,6 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             source=limit.source,
         ),
     )
-
-
-def _has_copper(subject: Subject, hops: tuple[Hop, ...]) -> bool:
-    board, nets = subject.board, [hop.net for hop in hops]
-    if np.isin(board.tracks.net, nets).any() or np.isin(board.vias.net, nets).any():
-        return True
-    return any(area.net in nets for area in board.areas)
 
 
 RULE = Rule(

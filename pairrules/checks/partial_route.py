@@ -8,7 +8,8 @@ Why it matters
 
 Formula
     none: a leg with copper that does not lead from end to end is flagged; undecided where the file is known to lack
-    copper layers, or where an end of the link is not known.
+    copper layers, or where an end of the link is not known. A leg without any copper is left to `half-pair`, and
+    undecided here.
 
 Source
     Common practice, no source.
@@ -22,7 +23,7 @@ Example
 
 from __future__ import annotations
 
-from pairrules.checks.routed_legs import unrouted
+from pairrules.checks.routed_legs import has_copper, unrouted
 from pairrules.checks.rule import Rule, Subject, Undecided
 from pairrules.checks.wording import place, spot
 from pairrules.result import Finding
@@ -45,11 +46,17 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     if not board.complete:
         lacking = next((text for text in board.missing if "layer" in text), "copper layers are missing from the file")
         return Undecided(missing=f"a leg breaks off, perhaps only in the file: {lacking.rstrip('.')}")
-    broken = " and ".join(name for name, leg in (("plus", geometry.plus), ("minus", geometry.minus)) if leg is None)
-    at = tuple(place(board, layer, x, y) for _, layer, x, y in geometry.broken)
-    spots = "; ".join(
-        f"{leg} at {spot(board, where)}" for (leg, *_), where in zip(geometry.broken[:4], at[:4], strict=True)
-    )
+    # A leg without any copper is no broken one: `half-pair` tells of it.
+    broken = [
+        leg
+        for leg, route in (("plus", geometry.plus), ("minus", geometry.minus))
+        if route is None and has_copper(subject, hops[leg])
+    ]
+    if not broken:
+        return unrouted(subject)
+    gaps = [gap for gap in geometry.broken if gap[0] in broken]
+    at = tuple(place(board, layer, x, y) for _, layer, x, y in gaps)
+    spots = "; ".join(f"{leg} at {spot(board, where)}" for (leg, *_), where in zip(gaps[:4], at[:4], strict=True))
     return (
         Finding(
             rule=limit.rule,
@@ -57,10 +64,12 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             measured=None,
             limit=None,
             unit="",
-            message=f"{broken} is not routed from end to end"
-            if " and " not in broken
-            else "neither leg is routed from end to end",
-            advice=f"close the copper where it breaks off: {spots}" if spots else f"close the copper of {broken}",
+            message="neither leg is routed from end to end"
+            if len(broken) == 2
+            else f"{broken[0]} is not routed from end to end",
+            advice=f"close the copper where it breaks off: {spots}"
+            if spots
+            else f"close the copper of {' and '.join(broken)}",
             at=at,
             source=limit.source,
         ),

@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+import numpy as np
+
 from pairrules.checks.rule import Subject, Undecided
 from pairrules.geometry.pair_geometry import LegRoute
+from pairrules.pairing.link import Hop
 
 
 def legs(subject: Subject) -> tuple[tuple[str, LegRoute], ...]:
@@ -32,3 +35,11 @@ def unrouted(subject: Subject) -> Undecided:
     if broken:
         return Undecided(missing=f"{' and '.join(broken)} cannot be followed from end to end")
     return Undecided(missing="the spacing of the legs is not known")
+
+
+def has_copper(subject: Subject, hops: tuple[Hop, ...]) -> bool:
+    """Whether a leg has any track, via or filled copper on its nets; its pads alone are none."""
+    board, nets = subject.board, [hop.net for hop in hops]
+    if np.isin(board.tracks.net, nets).any() or np.isin(board.vias.net, nets).any():
+        return True
+    return any(area.net in nets for area in board.areas)
