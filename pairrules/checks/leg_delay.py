@@ -26,11 +26,14 @@ Example
 
 from __future__ import annotations
 
-from pairrules.balance.pair_electrical import PairElectrical, PairSection
+import numpy as np
+
+from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.checks.electrical_figures import PS_PER_MM, figures, lacking, ps_per_mm
 from pairrules.checks.rule import Rule, Subject, Undecided
+from pairrules.checks.steepest_stretch import MOST, steepest_stretch
 from pairrules.checks.wording import TOLERANCE, amounts, place, spot
-from pairrules.result import Finding
+from pairrules.result import Finding, Place
 from pairrules.settings.limit import Limit
 
 
@@ -54,10 +57,12 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     slowness = ps_per_mm(electrical, (earlier,))
     if slowness:
         advice += f", about {abs(mismatch) / slowness:.2f} mm more track"
-    where = _greatest_share(electrical, mismatch)
-    at = () if where is None else (place(subject.board, where.layer, *where.start),)
-    if at:
-        advice += f", best near {spot(subject.board, at[0])} where most of the difference arises"
+    at: tuple[Place, ...] = ()
+    found_at = _where(subject, electrical, mismatch)
+    if found_at is not None:
+        grown, at = found_at
+        first, last = (spot(subject.board, one) for one in at)
+        advice += f", between {first} and {last}: {min(grown, abs(mismatch)):.2f} ps of the difference arises there"
     return (
         Finding(
             rule=limit.rule,
@@ -73,17 +78,21 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     )
 
 
-def _lengths(section: PairSection) -> tuple[float, float]:
-    return section.plus_mm[1] - section.plus_mm[0], section.minus_mm[1] - section.minus_mm[0]
-
-
-def _greatest_share(electrical: PairElectrical, mismatch: float) -> PairSection | None:
-    """The section that makes at least half of the mismatch [ps]; `None` where no single one does."""
-    for section in electrical.sections:
-        plus, minus = _lengths(section)
-        if (plus - minus) * section.delay * PS_PER_MM / mismatch >= 1 / 2:
-            return section
-    return None
+def _where(subject: Subject, electrical: PairElectrical, mismatch: float) -> tuple[float, tuple[Place, Place]] | None:
+    """How much of the difference arises on the shortest stretch that makes most of it [ps], and where that lies."""
+    sections = electrical.sections
+    lengths = np.array([[last - first for first, last in (one.plus_mm, one.minus_mm)] for one in sections])
+    if not len(lengths):
+        return None
+    delay = np.array([one.delay for one in sections]) * PS_PER_MM
+    along = np.concatenate([[0.0], np.cumsum(lengths.max(axis=1))])
+    running = np.sign(mismatch) * np.concatenate([[0.0], np.cumsum((lengths[:, 0] - lengths[:, 1]) * delay)])
+    stretch = steepest_stretch(along, running, MOST * abs(mismatch))
+    if stretch is None:
+        return None
+    first, last = sections[stretch[0]], sections[stretch[1] - 1]
+    ends = place(subject.board, first.layer, *first.start), place(subject.board, last.layer, *last.end)
+    return float(running[stretch[1]] - running[stretch[0]]), ends
 
 
 RULE = Rule(

@@ -35,6 +35,7 @@ import numpy as np
 from pairrules.board.columns import Floats, Ints
 from pairrules.checks.routed_legs import both_legs
 from pairrules.checks.rule import Rule, Subject, Undecided
+from pairrules.checks.steepest_stretch import MOST, steepest_stretch
 from pairrules.checks.wording import TOLERANCE, amounts, place, spot
 from pairrules.geometry.pair_geometry import LegRoute, Pieces
 from pairrules.result import Finding, Place
@@ -59,12 +60,16 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         return ()
     longer, shorter = ("plus", "minus") if mismatch > 0 else ("minus", "plus")
     measured, allowed = amounts(abs(mismatch), most, "mm")
-    where, share = _greatest_step(subject, plus, minus, np.sign(mismatch))
     advice = f"add {measured} to {shorter}"
-    if where is not None and share >= abs(mismatch) / 2:
-        advice += f", best at {spot(subject.board, where)} where most of the difference arises"
-    else:
-        advice += f", or take detours out of {longer}: no single place makes half of the difference"
+    at: tuple[Place, ...] = ()
+    found_at = _where(subject, plus, minus, mismatch)
+    if found_at is not None:
+        grown, at = found_at
+        first, last = (spot(subject.board, one) for one in at)
+        advice += (
+            f", or take it out of {longer}, between {first} and {last}: {min(grown, abs(mismatch)):.2f} mm of the "
+            "difference arises there"
+        )
     return (
         Finding(
             rule=limit.rule,
@@ -74,7 +79,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
             unit="mm",
             message=f"{longer} is {measured} longer than {shorter}{subject.pins.told('mm')}; {allowed} is allowed",
             advice=advice,
-            at=() if where is None else (where,),
+            at=at,
             source=limit.source,
         ),
     )
@@ -88,29 +93,31 @@ def _unknown_barrels(subject: Subject, leg: LegRoute) -> Counter[tuple[int, int]
     return Counter(span for span in spans if np.isnan(subject.board.stackup.barrel_mm(*span)))
 
 
-def _greatest_step(subject: Subject, plus: LegRoute, minus: LegRoute, sign: float) -> tuple[Place | None, float]:
-    """Where the running difference of the legs' lengths grows most, and by how much [mm].
+def _where(
+    subject: Subject, plus: LegRoute, minus: LegRoute, mismatch: float
+) -> tuple[float, tuple[Place, Place]] | None:
+    """How much of the difference arises on the shortest stretch that makes most of it [mm], and where that lies.
 
-    The legs are compared at each stretch where they run side by side: the middle of the stretch on plus against the
+    The legs are compared at both ends of each stretch where they run side by side: the point on plus against the
     nearest point on minus, each measured from its own source end.
     """
     profile = subject.geometry.profile_plus
     if profile is None or not profile.coupled.any():
-        return None, 0.0
-    rows = np.flatnonzero(profile.coupled)
-    middle = (profile.start[rows] + profile.end[rows]) / 2
-    along_plus = _length_to(plus.pieces, profile.piece[rows], middle)
-    along_minus = _length_to(minus.pieces, profile.other[rows], middle)
-    total = plus.length_mm - minus.length_mm
-    running = np.concatenate([[0.0], along_plus - along_minus, [total]])
-    steps = sign * np.diff(running)
-    step = int(np.argmax(steps))
-    # Step i lies before coupled stretch i; the last one lies after the last stretch.
-    if step < len(rows):
-        row, xy = rows[step], profile.start[rows[step]]
-    else:
-        row, xy = rows[-1], profile.end[rows[-1]]
-    return place(subject.board, int(profile.layer[row]), xy[0], xy[1]), float(steps[step])
+        return None
+    rows = np.repeat(np.flatnonzero(profile.coupled), 2)
+    points = profile.start[rows].copy()
+    points[1::2] = profile.end[rows[1::2]]
+    along = _length_to(plus.pieces, profile.piece[rows], points)
+    running = along - _length_to(minus.pieces, profile.other[rows], points)
+    along = np.concatenate([[0.0], np.maximum.accumulate(along), [plus.length_mm]])
+    running = np.sign(mismatch) * np.concatenate([[0.0], running, [plus.length_mm - minus.length_mm]])
+    stretch = steepest_stretch(along, running, MOST * abs(mismatch))
+    if stretch is None:
+        return None
+    points = np.vstack([plus.pieces.start[:1], points, plus.pieces.end[-1:]])
+    layers = profile.layer[rows][[0, *range(len(rows)), -1]]
+    first, last = (place(subject.board, int(layers[one]), *points[one]) for one in stretch)
+    return float(running[stretch[1]] - running[stretch[0]]), (first, last)
 
 
 def _length_to(pieces: Pieces, row: Ints, points: Floats) -> Floats:

@@ -289,8 +289,9 @@ def test_the_task_list_names_pair_layer_place_and_what_to_do(page: Page, downloa
         "",
         "1. USB (USB_DP and USB_DM): leg-length",
         "   found: plus is 1.80 mm longer than minus; 0.50 mm is allowed",
-        "   where: TOP (60.45, 24.825) mm",
-        "   to do: add 1.80 mm to minus, or take detours out of plus: no single place makes half of the difference",
+        "   where: TOP (64.45, 25.125) mm; TOP (60.45, 24.825) mm",
+        "   to do: add 1.80 mm to minus, or take it out of plus, between TOP (64.45, 25.125) mm and "
+        "TOP (60.45, 24.825) mm: 1.50 mm of the difference arises there",
         "   remark: before the next run",
         "",
         "To ask",
