@@ -20,6 +20,7 @@ Progress = Callable[[str, int, int], None]
 Given = TypeVar("Given")
 Made = TypeVar("Made")
 
+_FIRST, _MANY = 4, 64
 _MOST_LINKS = 16
 _SHARES = 4
 """Links go to the workers in so many shares each, `_MOST_LINKS` at most in one, lest one be left with the long ones."""
@@ -34,19 +35,24 @@ def judge_links(
     Raises: BoardError where a worker process ended before its work was done.
     """
     found: list[Judged] = []
+    every = len(links)
+    if jobs > 1 and len(links) > _MANY:
+        # What they need of the board's copper is then at hand when the workers fork, once for all.
+        found += [stage.judge(link) for link in links[:_FIRST]]
+        links = links[_FIRST:]
     size = max(1, min(_MOST_LINKS, -(-len(links) // (jobs * _SHARES))))
     shares = [links[i : i + size] for i in range(0, len(links), size)]
     if jobs == 1 or len(shares) < 2:
         for done, link in enumerate(links):
             if progress is not None:
-                progress("measuring pairs", done, len(links))
+                progress("measuring pairs", done, every)
             found.append(stage.judge(link))
         return found
     try:
         for judged in in_processes(_judge_share, shares, jobs=min(jobs, len(shares)), start=_take_stage, given=stage):
             found += judged
             if progress is not None:
-                progress("measuring pairs", len(found), len(links))
+                progress("measuring pairs", len(found), every)
     except BrokenProcessPool:
         raise BoardError(
             "a worker process ended before its pairs were measured",
