@@ -6,6 +6,7 @@ settings, 3 a board could not be read.
 
 from __future__ import annotations
 
+import errno
 import importlib
 import os
 import re
@@ -17,12 +18,15 @@ from pathlib import Path
 import click
 
 from pairrules import __version__
-from pairrules.cli.error_lines import error_lines
+from pairrules.cli.error_lines import error_lines, say
 from pairrules.errors import UserError
 
 INTERRUPTED = 130
 BROKEN_PIPE = 141
 """128 plus the number of the signal, as POSIX shells report them."""
+
+_FULL = {errno.ENOSPC, errno.EDQUOT, errno.EFBIG, errno.EIO}
+"""The medium takes no more, or fails."""
 
 _OPENING = re.compile(r'"""`pairrules (?P<name>[a-z-]+)`: (?P<does>.+?)"*$')
 """How the first line of a command's file reads: its name, and the line that `--help` shows."""
@@ -85,35 +89,41 @@ def run(arguments: Sequence[str] | None = None) -> int:
     except click.exceptions.Exit as end:
         return _ended(end.exit_code)
     except click.exceptions.NoArgsIsHelpError as error:
-        click.echo(error.format_message(), err=True)
+        say(error.format_message())
         return 2
     except click.ClickException as error:
-        click.echo(_usage_line(error), err=True)
+        say(_usage_line(error))
         return 2
     except UserError as error:
         for line in error_lines(error):
-            click.echo(line, err=True)
+            say(line)
         return error.exit_status
     except (click.Abort, KeyboardInterrupt):
-        click.echo("pairrules: interrupted, nothing more is written", err=True)
+        say("pairrules: interrupted, nothing more is written")
         return INTERRUPTED
-    except BrokenPipeError:
-        return _reader_gone()
+    except OSError as error:
+        return _not_printed(error)
     return 0
 
 
 def _ended(status: int) -> int:
     try:
         sys.stdout.flush()
-    except BrokenPipeError:
-        return _reader_gone()
+    except OSError as error:
+        return _not_printed(error)
     return status
 
 
-def _reader_gone() -> int:
-    """Without this the interpreter would complain when it flushes at exit."""
+def _not_printed(error: OSError) -> int:
+    """The status where stdout's reader has gone, or its medium is full. Raises: any other error, which is ours."""
+    if not isinstance(error, BrokenPipeError) and error.errno not in _FULL:
+        raise error
+    # Else the interpreter would complain when it flushes at exit.
     os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-    return BROKEN_PIPE
+    if isinstance(error, BrokenPipeError):
+        return BROKEN_PIPE
+    say(f"pairrules: the output cannot be written ({(error.strerror or 'unknown reason').lower()}); make room for it")
+    return 2
 
 
 def main() -> None:

@@ -11,7 +11,7 @@ import click
 from pairrules import __version__
 from pairrules.cli.boards import Asked, boards_of, judged
 from pairrules.cli.boards_table import boards_table
-from pairrules.cli.error_lines import error_lines
+from pairrules.cli.error_lines import error_lines, say
 from pairrules.cli.options import (
     cache_option,
     jobs_option,
@@ -126,7 +126,7 @@ def command(
             status = max(status, outcome.exit_status)
             for line in error_lines(outcome):
                 if line not in said:
-                    click.echo(line, err=True)
+                    say(line)
                 said.add(line)
             rows.append((one.path, None, False))
             if isinstance(outcome, BoardError):
@@ -151,9 +151,7 @@ def command(
         if complete:
             to_write.append(ToWrite(told, also_one.file, f"--report {also_one.report.name}"))
         else:
-            click.echo(
-                f"pairrules: {safe(also_one.file)} is not written, since not all boards could be judged", err=True
-            )
+            say(f"pairrules: {safe(also_one.file)} is not written, since not all boards could be judged")
     write_files(to_write)
     if output is None:
         write(text, None)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import stat
 import sys
 import tempfile
 from collections.abc import Sequence
@@ -31,6 +32,7 @@ def write(text: str, output: str | None) -> None:
     """
     if output is None:
         click.echo(text, nl=False)
+        sys.stdout.flush()
     else:
         write_files((ToWrite(text, output),))
 
@@ -38,17 +40,21 @@ def write(text: str, output: str | None) -> None:
 def write_files(files: Sequence[ToWrite]) -> None:
     """Write several files. Only when the texts of all are on the disk do they take the places of the old ones.
 
-    Raises: UsageError where one cannot be written; then none is changed, but where the medium fails between two
+    What a link leads to is written, not put in the link's place; devices and pipes are written into.
+    Raises: UsageError where one cannot be written; then no file is changed, but where the medium fails between two
     renames.
     """
     staged: list[tuple[Path, ToWrite]] = []
     try:
+        direct = [one for one in files if _is_device(one.file)]
         for one in files:
-            temporary = _stage(one)
-            staged.append((temporary, one))
+            if one not in direct:
+                staged.append((_stage(one), one))  # noqa: PERF401  where one fails, those before it are known
+        for one in direct:
+            _write_into(one)
         for temporary, one in staged:
             try:
-                temporary.replace(one.file)
+                temporary.replace(_target(one))
             except OSError as error:
                 raise _unwritable(one, error) from error
     finally:
@@ -56,9 +62,32 @@ def write_files(files: Sequence[ToWrite]) -> None:
             temporary.unlink(missing_ok=True)
 
 
+def _is_device(file: str) -> bool:
+    """Whether it is there and neither file nor folder: a rename would put a file in the place of the device."""
+    try:
+        mode = Path(file).stat().st_mode
+    except (OSError, ValueError):
+        return False
+    return not stat.S_ISREG(mode) and not stat.S_ISDIR(mode)
+
+
+def _write_into(one: ToWrite) -> None:
+    try:
+        with Path(one.file).open("w", encoding="utf-8", newline="\n") as device:
+            device.write(one.text)
+    except BrokenPipeError:
+        raise
+    except OSError as error:
+        raise _unwritable(one, error) from error
+
+
+def _target(one: ToWrite) -> Path:
+    return Path(os.path.realpath(one.file))
+
+
 def _stage(one: ToWrite) -> Path:
     """The text in a file beside its target, of the target's mode."""
-    target = Path(one.file)
+    target = _target(one)
     if target.is_dir():
         raise UsageError(f"{one.option} names a folder", file=one.file, remedy="name a file in it")
     try:
