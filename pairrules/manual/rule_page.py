@@ -13,6 +13,7 @@ from pairrules.board.units import example
 from pairrules.checks.rule import Rule, all_rules
 from pairrules.checks.rule_help import rule_infos
 from pairrules.manual.page import Code, Page, Paragraph, Section, Terms
+from pairrules.manual.rule_findings import rule_findings
 from pairrules.manual.shipped_limits import ShippedLimit, shipped_limits
 from pairrules.reports.report import Explained
 from pairrules.result import SEVERITIES
@@ -20,7 +21,7 @@ from pairrules.schemas.glossary import MODELS, Model, glossary
 from pairrules.settings.class_values import limit_amounts, limit_in_words
 from pairrules.settings.limit import TIMES
 
-_HEADINGS = {"Example": "An example of a finding", "Source": "Where formula and limits come from"}
+_HEADINGS = {"Example": "An example in numbers", "Source": "Where formula and limits come from"}
 _NONE = Paragraph(text="No shipped set holds a limit for it: it judges where a class of yours does.")
 
 
@@ -55,6 +56,7 @@ def rule_page(name: str) -> Page:
         sections=(
             Section(heading="", blocks=(Paragraph(text=_opening(name)),)),
             *parts,
+            Section(heading="A finding of it", blocks=_found(name)),
             Section(heading="What it rests on", blocks=(_models(name),)),
             Section(heading="Limits that ship", blocks=_shipped(name, rule)),
             Section(heading="How to tune it", blocks=_tuning(name, rule)),
@@ -79,6 +81,19 @@ def _models(name: str) -> Terms:
         for model in models_of(name)
     )
     return Terms(rows=tuple(rows))
+
+
+def _found(name: str) -> tuple[Paragraph, Terms]:
+    """What the rule tells of the pair that has its fault on the board of seeded faults."""
+    finding = rule_findings()[name]
+    said = (
+        f"Made by running the rule on pair {finding.pair} of an invented board, a tide gauge and weather buoy with one "
+        "fault a pair."
+    )
+    rows = [(finding.severity, (finding.found,))]
+    rows += [("at", ("; ".join(finding.at),))] if finding.at else []
+    rows.append(("to do", (finding.advice,)))
+    return Paragraph(text=said), Terms(rows=tuple(rows))
 
 
 def _shipped(name: str, rule: Rule) -> tuple[Terms | Paragraph, ...]:
