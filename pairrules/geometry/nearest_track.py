@@ -57,7 +57,8 @@ class NearestTrack:
     def straight(self, rows: Ints, label: Ints) -> npt.NDArray[np.bool_]:
         """Whether the gap runs straight near points on pieces `rows` (n,): between the insides of straight pieces."""
         other, feature = label // 8, label % 8 // 2
-        return (other >= 0) & (feature == 1) & (self._own.sweep[rows] == 0.0) & (self._other.sweep[other] == 0.0)
+        inside: npt.NDArray[np.bool_] = (other >= 0) & (feature == 1)
+        return inside & (self._own.sweep[rows] == 0.0) & (self._other.sweep[other] == 0.0)
 
     def within_reach(self, found: Nearest) -> Nearest:
         """What was found, judged by the reach that holds now."""
@@ -131,7 +132,8 @@ class NearestTrack:
 
         def apart(t: Floats) -> Floats:
             far = nearest(both, np.tile(points(own, t), (2, 1)))[1].reshape(2, -1)
-            return far[0] - half - np.where(same, 0.0, far[1])
+            more_by: Floats = far[0] - half - np.where(same, 0.0, far[1])
+            return more_by
 
         at_a, at_b = apart(a), apart(b)
         crosses = at_a * at_b < 0
