@@ -57,8 +57,9 @@ class NearestTrack:
     def straight(self, rows: Ints, label: Ints) -> npt.NDArray[np.bool_]:
         """Whether the gap runs straight near points on pieces `rows` (n,): between the insides of straight pieces."""
         other, feature = label // 8, label % 8 // 2
-        inside: npt.NDArray[np.bool_] = (other >= 0) & (feature == 1)
-        return inside & (self._own.sweep[rows] == 0.0) & (self._other.sweep[other] == 0.0)
+        flat = (self._own.sweep[rows] == 0.0) & (self._other.sweep[other] == 0.0)
+        inside: npt.NDArray[np.bool_] = (other >= 0) & (feature == 1) & flat
+        return inside
 
     def within_reach(self, found: Nearest) -> Nearest:
         """What was found, judged by the reach that holds now."""
