@@ -99,7 +99,7 @@ def drawn(random: Random) -> Input:
         data = mutated_xml(written(known, revision), written(other, revision), random)
     if random.random() < 0.03:
         data = packed(data, random)
-    return Input(data, random.choice((None, None, _settings())), form)
+    return Input(data, random.choice((None, None, None, None, _settings())), form)
 
 
 def written(board: dict[str, Any], revision: str) -> bytes:

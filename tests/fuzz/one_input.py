@@ -7,7 +7,6 @@ import io
 import json
 import os
 import resource
-import shutil
 import signal
 import sys
 import time
@@ -51,8 +50,9 @@ def outcome(
     A fault is: an exception that reaches the top, a status other than 0 to 3, too much time or memory, a file other
     than the output, a program or a connection opened, an output beside an error, a figure that is not finite.
     """
-    shutil.rmtree(folder, ignore_errors=True)
-    folder.mkdir(parents=True)
+    folder.mkdir(parents=True, exist_ok=True)
+    for left_over in folder.iterdir():
+        left_over.unlink()
     path, out = folder / "board", folder / "out"
     path.write_bytes(board)
     arguments = ["check", str(path), "--no-cache", "--format", form, "--output", str(out)]
