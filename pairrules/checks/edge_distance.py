@@ -31,7 +31,7 @@ import numpy as np
 from pairrules.board.columns import Bools
 from pairrules.checks.routed_legs import both_legs, unrouted
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.checks.wording import TOLERANCE, amounts, layer_name, place, spot
+from pairrules.checks.wording import TIE_DIGITS, TOLERANCE, amounts, layer_name, place, spot
 from pairrules.geometry.reference_cover import UNKNOWN, Cover
 from pairrules.result import Finding, Place
 from pairrules.settings.limit import Limit
@@ -53,7 +53,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         near += found
         missing = missing or cover.missing or unsure
     if near:
-        return (_finding(subject, limit, sorted(near, key=lambda one: one.distance)),)
+        return (_finding(subject, limit, sorted(near, key=lambda one: round(one.distance, TIE_DIGITS))),)
     return Undecided(missing=missing.rstrip(".")) if missing else ()
 
 

@@ -32,7 +32,7 @@ from pairrules.checks.leg_line import LegLine, leg_line
 from pairrules.checks.one_sided import OneSided, one_sided
 from pairrules.checks.routed_legs import both_legs, unrouted
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.checks.wording import TOLERANCE, amounts, place, spot
+from pairrules.checks.wording import TIE_DIGITS, TOLERANCE, amounts, place, spot
 from pairrules.geometry.measure import LEAST_BESIDE_MM
 from pairrules.result import Finding, Place
 from pairrules.settings.limit import Limit
@@ -79,7 +79,7 @@ def _judge_gap(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecide
         found += [(one, name, own) for one in stretches if one.length_mm > excused + TOLERANCE]
     if not found:
         return ()
-    found.sort(key=lambda one: -one[0].length_mm)
+    found.sort(key=lambda one: -round(one[0].length_mm, TIE_DIGITS))
     return (_gap_finding(subject, limit, found),)
 
 

@@ -8,7 +8,7 @@ import numpy as np
 
 from pairrules.board.columns import Bools, Floats, Ints
 from pairrules.checks.leg_line import LegLine
-from pairrules.checks.wording import TOLERANCE
+from pairrules.checks.wording import TIE_DIGITS, TOLERANCE
 from pairrules.geometry.neighbours import NeighbourProfile
 from pairrules.geometry.pair_geometry import SpacingProfile
 
@@ -101,4 +101,4 @@ def _joined(begin: Floats, end: Floats, gap: Floats, net: Ints, tilted: Bools) -
                 net=max(lengths, key=lambda one: (lengths[one], -one)),
             )
         )
-    return tuple(sorted(found, key=lambda one: (-one.length_mm, one.s_from)))
+    return tuple(sorted(found, key=lambda one: (-round(one.length_mm, TIE_DIGITS), one.s_from)))

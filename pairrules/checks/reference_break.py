@@ -30,7 +30,7 @@ import numpy as np
 from pairrules.checks.leg_line import leg_line
 from pairrules.checks.routed_legs import both_legs, unrouted
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.checks.wording import TOLERANCE, amounts, place, spot
+from pairrules.checks.wording import TIE_DIGITS, TOLERANCE, amounts, place, spot
 from pairrules.geometry.pair_geometry import LegRoute
 from pairrules.geometry.reference_cover import UNKNOWN, Cover
 from pairrules.result import Finding, Place
@@ -52,7 +52,8 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     bare = [_bare(subject, name, cover) for name, cover in zip(_LEGS, covers, strict=True)]
     most = limit.quantities["most"]
     longer = sorted(
-        (one for leg in bare for one in leg if one.length_mm > most + TOLERANCE), key=lambda b: -b.length_mm
+        (one for leg in bare for one in leg if one.length_mm > most + TOLERANCE),
+        key=lambda b: -round(b.length_mm, TIE_DIGITS),
     )
     findings = []
     if longer:

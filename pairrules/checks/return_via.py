@@ -30,7 +30,7 @@ from pairrules.balance.pair_electrical import LayerChange
 from pairrules.checks.electrical_figures import figures, lacking
 from pairrules.checks.routed_legs import both_legs
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.checks.wording import TOLERANCE, amounts, layer_name, place, spot
+from pairrules.checks.wording import TIE_DIGITS, TOLERANCE, amounts, layer_name, place, spot
 from pairrules.result import Finding
 from pairrules.settings.limit import Limit
 
@@ -53,7 +53,7 @@ def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
         if any(math.isnan(one.return_mm) for one in electrical.changes):
             return Undecided(missing="the reference copper beside a layer change is not known")
         return ()
-    return (_finding(subject, limit, sorted(far, key=lambda one: -one.return_mm)),)
+    return (_finding(subject, limit, sorted(far, key=lambda one: -round(one.return_mm, TIE_DIGITS))),)
 
 
 def _finding(subject: Subject, limit: Limit, far: list[LayerChange]) -> Finding:

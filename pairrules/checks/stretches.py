@@ -13,7 +13,7 @@ import numpy as np
 
 from pairrules.board.board import Board
 from pairrules.board.columns import Bools, Floats
-from pairrules.checks.wording import TOLERANCE, place
+from pairrules.checks.wording import TIE_DIGITS, TOLERANCE, place
 from pairrules.geometry.pair_geometry import SpacingProfile
 from pairrules.result import Place
 
@@ -140,7 +140,7 @@ def _merged(
             )
         )
     found = [stretch for stretch in found if stretch.length_mm > TOLERANCE]
-    return tuple(sorted(found, key=lambda stretch: (-stretch.length_mm, stretch.s_from)))
+    return tuple(sorted(found, key=lambda stretch: (-round(stretch.length_mm, TIE_DIGITS), stretch.s_from)))
 
 
 def _along(profile: SpacingProfile, row: int, share: float) -> tuple[float, float]:

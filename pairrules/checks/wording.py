@@ -9,6 +9,10 @@ from pairrules.result import Place
 TOLERANCE = 1e-6
 """A limit met exactly is met: differences below a nanometre (or 1 µm²/1000) are rounding of sums, not copper."""
 
+TIE_DIGITS = 6
+"""Decimals of a length [mm] by which the worst place is chosen: of places that rounding alone tells apart the first
+along the pair is told, wherever the board lies and whatever its units."""
+
 _FEWEST, _MOST = 2, 6
 
 
