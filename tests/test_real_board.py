@@ -6,6 +6,7 @@ The file was written for assembly: 2 of 18 copper layers, no stackup. It stands 
 from __future__ import annotations
 
 import gzip
+import json
 import random
 import re
 from dataclasses import fields
@@ -15,11 +16,13 @@ from pathlib import Path
 import pytest
 from lxml import etree
 
+from pairrules.cli import run
 from pairrules.pipeline import check
 from pairrules.result import Measures, PairResult, Result
 
 BOARD = Path(__file__).resolve().parents[1] / ".." / "shared" / "boards" / "case-10-assembly.xml"
 NAMESPACE = "{http://webstds.ipc.org/2581}"
+MOST_MM = 0.55
 LENGTHS = {"x", "y", "lineWidth", "diameter", "plusTol", "minusTol", "width", "height", "standoff", "value"}
 
 pytestmark = pytest.mark.skipif(not BOARD.exists(), reason="the consortium's board is not beside the checkout")
@@ -157,3 +160,67 @@ def test_the_same_board_written_otherwise_has_the_same_figures(result: Result, t
             assert (before is None) == (after is None), field.name
             if before is not None:
                 assert after == pytest.approx(before, abs=1e-6), (found.name, field.name)
+
+
+@pytest.fixture(scope="module")
+def lanes(tmp_path_factory: pytest.TempPathFactory) -> tuple[Path, Result]:
+    """The board under settings of its own: a class for the sending lanes, nothing for the others."""
+    settings = tmp_path_factory.mktemp("lanes") / "pairrules.yaml"
+    settings.write_text(
+        "extends: []\n"
+        "classes:\n"
+        "  lane:\n"
+        '    match: ["LN*_PAD_TX"]\n'
+        "    limits:\n"
+        f"      leg-length: {{most: {MOST_MM} mm, severity: review, source: skew budget of the lane}}\n"
+        "      half-pair: {severity: review, source: common practice}\n",
+        encoding="utf-8",
+    )
+    return settings, check(BOARD, settings)
+
+
+def test_the_lanes_flagged_are_those_whose_drawn_polylines_differ_by_more_than_the_limit(
+    lanes: tuple[Path, Result],
+) -> None:
+    drawn, over = polyline_lengths_mm(), set()
+    for found in lanes[1].pairs:
+        if not found.name.endswith("_TX"):
+            assert (found.findings, found.limits) == ((), ())
+            continue
+        measures = found.measures
+        assert measures.stub_plus_mm is not None and measures.stub_minus_mm is not None
+        # Branches and stray ends are drawn, but are no part of the route.
+        plus = sum(drawn[net] for net in found.nets_plus) - measures.stub_plus_mm
+        minus = sum(drawn[net] for net in found.nets_minus) - measures.stub_minus_mm
+        assert abs(abs(plus - minus) - MOST_MM) > 0.01
+        if abs(plus - minus) > MOST_MM:
+            over.add(found.name)
+            (finding,) = found.findings
+            assert finding.rule == "leg-length"
+            assert finding.measured == pytest.approx(abs(plus - minus), abs=5e-4)
+    flagged = {found.name for found in lanes[1].pairs if found.findings}
+    assert flagged == over
+    assert 0 < len(over) < 8
+
+
+def test_no_rule_fires_without_a_limit_that_the_user_can_find(
+    result: Result, lanes: tuple[Path, Result], capsys: pytest.CaptureFixture[str]
+) -> None:
+    settings, judged = lanes
+    assert run(["settings", "--settings", str(settings), "--format", "json", str(BOARD)]) == 0
+    told = {
+        pair["name"]: {one["rule"]: one for one in pair["limits"]}
+        for pair in json.loads(capsys.readouterr().out)["pairs"]
+    }
+    assert told.keys() == {found.name for found in judged.pairs}
+    for found in judged.pairs:
+        assert told[found.name].keys() == {held.rule for held in found.limits}
+        for finding in found.findings:
+            limit = told[found.name][finding.rule]
+            assert finding.source == limit["source"] == "skew budget of the lane"
+            # Line 6 is the limit's, in the file that was given.
+            assert limit["place"] == f"{settings} line 6"
+    for found in result.pairs:
+        held = {one.rule: one for one in found.limits}
+        for finding in found.findings:
+            assert finding.source and finding.source.startswith(held[finding.rule].source)

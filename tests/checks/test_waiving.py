@@ -93,3 +93,32 @@ def test_states(waiver: Waiver, judgement: Judgement, today: date, state: str, w
 def test_one_of_no_pair_is_gone() -> None:
     (told,) = left_over([replace(WAIVER, pair=("A_P", "A_N"))])
     assert (told.pair, told.state, told.why) == ("A_P and A_N", "gone", "no pair has this name, or a net of this name")
+
+
+def test_of_two_waivers_for_one_finding_one_that_holds_is_enough_and_each_is_told() -> None:
+    by_net = replace(WAIVER, pair=("IN_P",), until=date(2030, 1, 1), line=9)
+    for waivers in ((WAIVER, by_net), (by_net, WAIVER)):
+        found, told = waive(judged(LONG), waivers, DAY, name="IN")
+        assert [finding.waived for finding in found.findings] == [True]
+        assert {one.line: (one.state, one.why) for one in told} == {
+            3: ("held", ""),
+            9: ("expired", "it held until 2030-01-01; mend the finding or waive it again"),
+        }
+
+
+def test_two_waivers_that_both_hold_are_both_told_as_held() -> None:
+    found, told = waive(judged(LONG), [WAIVER, replace(WAIVER, pair=("IN_P", "IN_N"), line=9)], DAY, name="IN")
+    assert [finding.waived for finding in found.findings] == [True]
+    assert [(one.line, one.state) for one in told] == [(3, "held"), (9, "held")]
+
+
+def test_two_waivers_neither_of_which_holds_waive_nothing() -> None:
+    late, other = replace(WAIVER, until=date(2030, 1, 1)), replace(WAIVER, pair=("IN_P",), fingerprint=OTHER, line=9)
+    found, told = waive(judged(LONG), [late, other], DAY, name="IN")
+    assert not any(finding.waived for finding in found.findings)
+    assert [one.state for one in told] == ["expired", "changed"]
+
+
+def test_one_that_is_both_past_its_day_and_of_other_copper_is_told_as_expired() -> None:
+    _, (told,) = waive(judged(LONG), [replace(WAIVER, fingerprint=OTHER)], date(2031, 5, 18))
+    assert (told.state, told.why) == ("expired", "it held until 2031-05-17; mend the finding or waive it again")

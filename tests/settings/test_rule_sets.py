@@ -55,6 +55,20 @@ def test_a_project_takes_a_set_over_by_like(name: str) -> None:
     assert (found.source, found.load) == (template.source, template.load)
 
 
+def test_every_rule_has_a_shipped_limit_but_those_whose_amount_only_a_project_knows() -> None:
+    every = read_settings(Path("demo.yaml"), forms=FORMS, text=f"extends: [base, {', '.join(SETS)}]")
+    limits = [*every.limits.values(), *(limit for klass in every.classes for limit in klass.limits.values())]
+    # What a single cause or a neighbour may convert follows from the whole link and the board, not from an interface.
+    own = {"source-balance", "trace-balance", "cable-balance", "load-balance", "pickup-electric"}
+    assert {limit.rule for limit in limits} == set(all_rules()) - own
+    for limit in limits:
+        # A standard or a book is named, or it is said that there is none.
+        assert limit.place and any(mark in limit.source for mark in NAMED), (limit.rule, limit.place, limit.source)
+
+
+NAMED = ("no source", "IEEE 802.3", "IEC ", "TIA-", "ISO 11898", "USB 2.0", "PCI Express", "Ott,")
+
+
 def test_all_sets_together_have_no_fault() -> None:
     settings = read_settings(Path("demo.yaml"), forms=FORMS, text=f"extends: [{', '.join(SETS)}]")
     assert sorted(one.name for one in settings.classes) == SETS
