@@ -25,29 +25,16 @@ Example
 
 from __future__ import annotations
 
-from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.checks.cause_balance import judge_cause
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.result import Finding, Place
+from pairrules.result import Finding
 from pairrules.settings.limit import Limit
 
 
 def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     """Compare the cable's conversion with `least`."""
     none = subject.klass is not None and subject.klass.cable is None
-    return judge_cause(subject, limit, cause="cable", none=none, advise=_advise)
-
-
-def _advise(subject: Subject, _: PairElectrical, __: float) -> tuple[str, tuple[Place, ...]]:
-    cable = None if subject.klass is None else subject.klass.cable
-    values = {} if cable is None else cable.values
-    said = []
-    if values.get("resistance_unbalance"):
-        said.append(f"{100 * abs(values['resistance_unbalance']):.3g} % of resistance unbalance")
-    if values.get("capacitance_unbalance"):
-        said.append(f"{1e12 * abs(values['capacitance_unbalance']):.3g} pF/m of capacitance unbalance")
-    length = f" or a shorter one than {values['length']:.4g} m" if "length" in values else ""
-    return f"take a cable with less than its {' and '.join(said) or 'unbalance'}{length}", ()
+    return judge_cause(subject, limit, cause="cable", none=none)
 
 
 RULE = Rule(

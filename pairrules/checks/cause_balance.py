@@ -2,9 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
-
-from pairrules.balance.pair_electrical import BalanceAt, PairElectrical
+from pairrules.balance.pair_electrical import BalanceAt
 from pairrules.balance.remedies import CONVERSION
 from pairrules.checks.balance_advice import Advice, solved_advice
 from pairrules.checks.electrical_figures import figures, hertz, wanted_points
@@ -13,13 +11,16 @@ from pairrules.checks.wording import TOLERANCE, amounts
 from pairrules.result import Finding
 from pairrules.settings.limit import Limit
 
-Advise = Callable[[Subject, PairElectrical, float], Advice]
-"""From the pair and the [dB] that are lacking to an advice where the link is not at hand to be solved again."""
+EQUAL = {
+    "source": "make the source's two legs equal, or take a load of higher common-mode impedance",
+    "trace": "make the legs alike in length, width and surroundings",
+    "cable": "take a cable of less unbalance or a shorter one",
+    "load": "give both legs the same impedance to reference at the load",
+}
+"""What to do about a cause in general, where the link is not at hand to be solved again."""
 
 
-def judge_cause(
-    subject: Subject, limit: Limit, *, cause: str, none: bool, advise: Advise
-) -> tuple[Finding, ...] | Undecided:
+def judge_cause(subject: Subject, limit: Limit, *, cause: str, none: bool) -> tuple[Finding, ...] | Undecided:
     """Compare −`cause`_db with `least` at each frequency; the worst is told.
 
     Parameters: none: whether the pair's class says that the link has nothing of that cause.
@@ -37,8 +38,7 @@ def judge_cause(
         if below < least - TOLERANCE:
             asked = {one.frequency_hz: least for _, one in known}
             solved = solved_advice(subject, electrical, asked, figure=CONVERSION, cause=cause)
-            advice = solved or advise(subject, electrical, least - below)
-            return (_finding(limit, cause, below, worst, advice),)
+            return (_finding(limit, cause, below, worst, solved or (EQUAL[cause], ())),)
     if len(known) == len(points) or (none and not known):
         return ()
     lost = next(one for one in points if conversion_db(one, cause) is None)

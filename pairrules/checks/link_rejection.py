@@ -28,19 +28,12 @@ from __future__ import annotations
 from pairrules.balance.pair_electrical import BalanceAt
 from pairrules.balance.remedies import REJECTION
 from pairrules.checks.balance_advice import Advice, solved_advice
-from pairrules.checks.cause_balance import greatest_cause
+from pairrules.checks.cause_balance import EQUAL, greatest_cause
 from pairrules.checks.electrical_figures import figures, hertz, lacking, wanted_points
 from pairrules.checks.rule import Rule, Subject, Undecided
 from pairrules.checks.wording import TOLERANCE, amounts
 from pairrules.result import Finding, Place
 from pairrules.settings.limit import Limit
-
-_MEND = {
-    "source": "make its two legs' impedances equal",
-    "trace": "make the legs alike in length, width and surroundings",
-    "cable": "take one of less unbalance or a shorter one",
-    "load": "give both legs the same impedance to reference there",
-}
 
 
 def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
@@ -81,7 +74,7 @@ def _finding(limit: Limit, rejection: float, worst: BalanceAt, solved: Advice | 
         advice = "take a receiver of higher rejection: the link before it would do"
     else:
         name, figure = cause
-        advice = f"begin with the {name}, which converts most ({figure:.1f} dB): {_MEND[name]}"
+        advice = f"begin with the {name}, which converts most ({figure:.1f} dB): {EQUAL[name]}"
     return Finding(
         rule=limit.rule,
         severity=limit.severity,

@@ -23,35 +23,15 @@ Example
 
 from __future__ import annotations
 
-from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.checks.cause_balance import judge_cause
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.result import Finding, Place
+from pairrules.result import Finding
 from pairrules.settings.limit import Limit
 
 
 def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     """Compare the load's conversion with `least`."""
-    return judge_cause(subject, limit, cause="load", none=False, advise=_advise)
-
-
-def _advise(subject: Subject, _: PairElectrical, __: float) -> tuple[str, tuple[Place, ...]]:
-    load = None if subject.klass is None else subject.klass.load
-    values = {} if load is None else load.values
-    if load is not None and load.kind == "difference-amplifier":
-        return (
-            "put a buffer before each input of the difference amplifier: its two inputs load the legs unequally",
-            (),
-        )
-    mismatched = sorted(key for key in values if key.endswith("mismatch") and values[key])
-    said = [f"{key.replace('_', ' ')} of {100 * abs(values[key]):.3g} %" for key in mismatched]
-    for quantity, unit, scale in (("resistance", "ohm", 1.0), ("capacitance", "pF", 1e12)):
-        plus, minus = values.get(f"plus.{quantity}"), values.get(f"minus.{quantity}")
-        if plus != minus:
-            plus_said, minus_said = ("none" if one is None else f"{one * scale:.4g} {unit}" for one in (plus, minus))
-            said.append(f"{quantity} of plus {plus_said}, minus {minus_said}")
-    about = f" ({'; '.join(said)})" if said else ""
-    return f"give both legs the same impedance to reference at the load{about}", ()
+    return judge_cause(subject, limit, cause="load", none=False)
 
 
 RULE = Rule(

@@ -24,34 +24,15 @@ Example
 
 from __future__ import annotations
 
-from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.checks.cause_balance import judge_cause
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.checks.wording import TOLERANCE
-from pairrules.result import Finding, Place
+from pairrules.result import Finding
 from pairrules.settings.limit import Limit
 
 
 def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     """Compare the source's conversion with `least`."""
-    return judge_cause(subject, limit, cause="source", none=False, advise=_advise)
-
-
-def _advise(subject: Subject, electrical: PairElectrical, lacks_db: float) -> tuple[str, tuple[Place, ...]]:
-    source = None if subject.klass is None else subject.klass.source
-    if electrical.source_ohm is not None:
-        plus, minus = electrical.source_ohm
-        if abs(plus - minus) > TOLERANCE:
-            # Conversion grows in proportion to a small difference.
-            allowed = abs(plus - minus) * 10 ** (-lacks_db / 20)
-            return (
-                f"bring the source resistances (plus {plus:.6g} ohm, minus {minus:.6g} ohm) to within "
-                f"{allowed:.3g} ohm of each other, or take a load of higher common-mode impedance",
-                (),
-            )
-    if source is not None and source.values.get("winding_capacitance_mismatch"):
-        return "take a transformer with equal or lower winding capacitances, or one with a screen", ()
-    return "make the source's two legs equal, or take a load of higher common-mode impedance", ()
+    return judge_cause(subject, limit, cause="source", none=False)
 
 
 RULE = Rule(

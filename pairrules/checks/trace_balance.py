@@ -24,36 +24,15 @@ Example
 
 from __future__ import annotations
 
-from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.checks.cause_balance import judge_cause
-from pairrules.checks.electrical_figures import most_tilted
 from pairrules.checks.rule import Rule, Subject, Undecided
-from pairrules.checks.wording import spot
-from pairrules.result import Finding, Place
+from pairrules.result import Finding
 from pairrules.settings.limit import Limit
 
 
 def judge(subject: Subject, limit: Limit) -> tuple[Finding, ...] | Undecided:
     """Compare the tracks' conversion with `least`."""
-    return judge_cause(subject, limit, cause="trace", none=False, advise=_advise)
-
-
-def _advise(subject: Subject, electrical: PairElectrical, _: float) -> tuple[str, tuple[Place, ...]]:
-    amounts = (
-        (electrical.resistance_mismatch_ohm, "ohm"),
-        (electrical.capacitance_mismatch_pf, "pF"),
-        (electrical.inductance_mismatch_nh, "nH"),
-    )
-    said = [f"{figure:+.3g} {unit}" for figure, unit in amounts if figure is not None and abs(figure) > _NOTHING]
-    advice = f"make the legs alike, plus differs from minus by {', '.join(said)}" if said else "make the legs alike"
-    where = most_tilted(subject, electrical)
-    if where is None:
-        return advice, ()
-    return f"{advice}; their capacitances differ most from {spot(subject.board, where)} on", (where,)
-
-
-_NOTHING = 1e-9
-"""Differences below this, in any of the units, are rounding of sums."""
+    return judge_cause(subject, limit, cause="trace", none=False)
 
 
 RULE = Rule(

@@ -100,6 +100,65 @@ def test_a_better_cable_or_a_shorter_one(tmp_path: Path) -> None:
     assert finding(tmp_path, "cable-balance", 105, unbalance=1.6, cable=1.05 * length) is not None
 
 
+OTHER = """
+extends: []
+reference_nets: [GND]
+classes:
+  bridge:
+    match: ["IN"]
+    source: {source}
+    load: {load}
+    frequencies: [50 Hz, 10 kHz]
+    limits: {{{rule}: {{least: 80 dB}}}}
+"""
+
+
+def advice_of(folder: Path, rule: str, source: str, load: str) -> str:
+    (folder / "board.json").write_text(json.dumps(straight()))
+    (folder / "pairrules.yaml").write_text(OTHER.format(rule=rule, source=source, load=load))
+    (pair,) = check(folder / "board.json").pairs
+    assert not pair.unjudged
+    return "".join(one.advice for one in pair.findings)
+
+
+def test_windings_of_a_transformer(tmp_path: Path) -> None:
+    def advice(mismatch: float) -> str:
+        windings = f"winding_capacitance: 50 pF, winding_capacitance_mismatch: {mismatch} %"
+        source = f"{{kind: transformer, resistance: 300 ohm, {windings}}}"
+        return advice_of(tmp_path, "source-balance", source, "{kind: line-receiver, resistance: 100 kohm}")
+
+    found = re.search(
+        r"match the source's capacitances to reference to ([\d.]+) pF \(plus has 20 pF more\)", advice(40)
+    )
+    assert found
+    share = float(found.group(1)) / 50 * 100
+    assert advice(share) == advice(-share) == "" != advice(1.05 * share)
+
+
+def test_a_receivers_mismatch(tmp_path: Path) -> None:
+    def advice(mismatch: float) -> str:
+        load = f"{{kind: line-receiver, resistance: 30 kohm, mismatch: {mismatch} %}}"
+        return advice_of(tmp_path, "load-balance", "{kind: impedance, plus: 350 ohm}", load)
+
+    found = re.search(r"match the load's resistances to reference to ([\d.]+) % \(minus has 3 % more\)", advice(-3))
+    assert found
+    share = float(found.group(1))
+    assert advice(share) == advice(-share) == "" != advice(1.05 * share)
+
+
+def test_unequal_sources_before_a_difference_amplifier(tmp_path: Path) -> None:
+    def advice(plus: float, minus: float) -> str:
+        load = "{kind: difference-amplifier, r1: 10 kohm, r2: 100 kohm}"
+        source = f"{{kind: impedance, plus: {plus:.9g} ohm, minus: {minus:.9g} ohm}}"
+        return advice_of(tmp_path, "link-rejection", source, load)
+
+    found = re.search(r"match the source's legs to ([\d.]+) ohm \(minus has 100 ohm more\)", advice(350, 450))
+    assert found
+    half = float(found.group(1)) / 2
+    assert advice(400 - half, 400 + half) == advice(400 + half, 400 - half) == ""
+    assert advice(400 - 1.05 * half, 400 + 1.05 * half) + advice(400 + 1.05 * half, 400 - 1.05 * half)
+
+
 def test_two_causes_at_once(tmp_path: Path) -> None:
     values: dict[str, Any] = {"minus": 353.5, "capacitance_minus": 12}
     found = finding(tmp_path, "link-rejection", 110, **values)
