@@ -43,6 +43,10 @@ class LinkCase:
     place: str
 
 
+_LEAST, _MOST = 1e-24, 1e24
+"""Magnitudes in SI units; beyond them products of a few leave the range of numbers."""
+
+
 @dataclass(frozen=True, slots=True)
 class _Node:
     """A value of the document and where it stands."""
@@ -86,6 +90,8 @@ class _Node:
         if value is None or value < least or (above and value == least):
             wanted = "greater than" if above else "not below"
             raise self.fault(f"{self.shown()} is no number {wanted} {least:g}", "give one in SI units")
+        if value != 0 and not _LEAST < abs(value) < _MOST:
+            raise self.fault(f"{self.shown()} is out of reach", "give one in SI units")
         return value
 
     def row(self, count: int, wanted: str) -> list[_Node]:

@@ -136,6 +136,8 @@ FAULTS: list[tuple[Any, str]] = [
     (changed(["source"], [1, 2]), "[2].source: [1, 2] is no object; give an object with R"),
     (changed(["source", "R"], 5), "[2].source.R: 5 is not a list of two numbers; write [plus, minus]"),
     (changed(["source", "R"], [1, -1]), "[2].source.R[1]: -1 is no number not below 0; give one in SI units"),
+    (changed(["source", "R"], [1e30, 1]), "[2].source.R[0]: 1e+30 is out of reach; give one in SI units"),
+    (changed(["source", "R"], [1e-30, 1]), "[2].source.R[0]: 1e-30 is out of reach; give one in SI units"),
     (changed(["source", "R"], [True, 1]), "[2].source.R[0]: true is no number not below 0; give one in SI units"),
     (changed(["source", "R"], [None, 1]), "[2].source.R[0]: null is no number not below 0; give one in SI units"),
     (
