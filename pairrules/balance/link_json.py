@@ -43,8 +43,9 @@ class LinkCase:
     place: str
 
 
-_LEAST, _MOST = 1e-24, 1e24
-"""Magnitudes in SI units; beyond them products of a few leave the range of numbers."""
+_LEAST, _OPEN = 1e-24, 1e100
+"""Least magnitude in SI units, and the greatest of a resistance across, which people write for none; beyond what
+`_Node.number` takes, products of a few leave the range of numbers."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,12 +86,12 @@ class _Node:
         remedy = f"write {near[0]}" if near else "known are " + ", ".join(keys)
         return self.fault(f"{json.dumps(key)[:60]} is no key of this format", remedy)
 
-    def number(self, *, least: float = 0.0, above: bool = False) -> float:
+    def number(self, *, least: float = 0.0, above: bool = False, most: float = 1e24) -> float:
         value = _finite(self.value)
         if value is None or value < least or (above and value == least):
             wanted = "greater than" if above else "not below"
             raise self.fault(f"{self.shown()} is no number {wanted} {least:g}", "give one in SI units")
-        if value != 0 and not _LEAST < abs(value) < _MOST:
+        if value != 0 and not _LEAST < abs(value) <= most:
             raise self.fault(f"{self.shown()} is out of reach", "give one in SI units")
         return value
 
@@ -249,7 +250,7 @@ def _frequencies(node: _Node) -> Floats:
 def _or_absent(node: _Node, *, above: bool, absent: float | None) -> float:
     if node.value is None and absent is not None:
         return absent
-    return node.number(above=above)
+    return node.number(above=above, most=_OPEN) if above else node.number()
 
 
 def _finite(value: object) -> float | None:
