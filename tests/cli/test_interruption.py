@@ -13,6 +13,7 @@ from pathlib import Path
 
 import pytest
 
+from pairrules import pipeline
 from pairrules.cli import output, run
 from tests.cli.boards import put
 
@@ -179,3 +180,19 @@ def test_a_folder_that_is_none(tmp_path: Path, capsys: pytest.CaptureFixture[str
         "",
         f"pairrules: {out}: --output cannot be written (Not a directory); name a file in a folder you may write to\n",
     )
+
+
+@pytest.mark.skipif(not Path("/dev/zero").is_char_device(), reason="this system has no device without end")
+def test_a_device_is_no_board(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    assert run(["check", "/dev/zero", "--no-cache"]) == 3
+    assert capsys.readouterr().err == "pairrules: /dev/zero: this is a device, not a file; name the board file\n"
+
+
+def test_a_file_beyond_any_board(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    board = put(tmp_path)
+    monkeypatch.setattr(pipeline, "MOST_BYTES", 100)
+    assert run(["check", str(board), "--no-cache"]) == 3
+    said = "the file is larger than 0 GB; export the board by itself, not a panel or an archive of many"
+    assert capsys.readouterr().err == f"pairrules: {board}: {said}\n"
