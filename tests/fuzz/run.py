@@ -143,8 +143,25 @@ def _roles(section: Any) -> tuple[str, ...]:
     return tuple(one.role for one in section.conductors)
 
 
+class Choices(Random):
+    """Random choices that a string of bytes makes, so that a changed byte changes a choice; zeros after its end."""
+
+    def __init__(self, data: bytes) -> None:
+        super().__init__(0)
+        self.data, self.place = data, 0
+
+    def getrandbits(self, k: int, /) -> int:
+        size = -(-k // 8)
+        taken = self.data[self.place : self.place + size].ljust(size, b"\0")
+        self.place += size
+        return int.from_bytes(taken, "little") >> (8 * size - k)
+
+    def random(self) -> float:
+        return self.getrandbits(53) / 2**53
+
+
 def guided(run: Run, count: int, seed: int) -> int:
-    """Changes chosen by the library atheris from what they reach: its numbers are the seeds of our changes."""
+    """Changes chosen by the library atheris from what they reach; it stops at the first fault and keeps its bytes."""
     try:
         import atheris
     except ImportError:
@@ -152,11 +169,14 @@ def guided(run: Run, count: int, seed: int) -> int:
         return 2
 
     def one(data: bytes) -> None:
-        run.one(data.hex()[:40], drawn(Random(data)), run.done)
+        found = run.one(data.hex()[:40], drawn(Choices(data)), run.done)
+        if found.fault:
+            raise AssertionError(found.fault)
 
-    atheris.Setup([sys.argv[0], f"-runs={count}", f"-seed={seed}"], one)
+    atheris.instrument_all()
+    atheris.Setup([sys.argv[0], f"-runs={count}", f"-seed={seed}", "-max_len=400", "-len_control=0"], one)
     atheris.Fuzz()
-    return 1 if run.faults else 0
+    return 0
 
 
 if __name__ == "__main__":
