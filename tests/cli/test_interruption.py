@@ -22,7 +22,9 @@ FULL = Path("/dev/full")
 BEFORE = "what stood here before\n"
 
 WAITING = """
-import sys, time
+import signal, sys, time
+# A shell that starts the tests in the background has interrupts ignored, and so do all their children.
+signal.signal(signal.SIGINT, signal.default_int_handler)
 import pairrules.cli, pairrules.cli.check as check
 def judged(*_, **__):
     print("ready", flush=True)
