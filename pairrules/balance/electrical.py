@@ -24,6 +24,7 @@ from pairrules.balance.solved_link import SolvedLink
 from pairrules.balance.stack_heights import Heights, heights_of, lacking
 from pairrules.balance.tolerance import tolerated
 from pairrules.board.board import Board
+from pairrules.fields.chain_matrix import RangeError
 from pairrules.geometry.board_copper import BoardCopper
 from pairrules.geometry.hatched_copper import hatched_beside
 from pairrules.geometry.loop_area import vector_area
@@ -173,8 +174,12 @@ class _Stage:
             self._missing[_BALANCE] = str(error)
             return (), None, None
         self._assumed += link.assumed
-        solved = SolvedLink(elements=link.elements, frequencies_hz=at, own_rejection_db=link.load.own_rejection(at))
-        return self._points(link, solved), link.source_ohm, solved
+        try:
+            solved = SolvedLink(elements=link.elements, frequencies_hz=at, own_rejection_db=link.load.own_rejection(at))
+            return self._points(link, solved), link.source_ohm, solved
+        except RangeError as error:
+            self._missing[_BALANCE] = f"{error}: check the class's frequencies and cable"
+            return (), None, None
 
     def _points(self, link: BoardLink, solved: SolvedLink) -> tuple[BalanceAt, ...]:
         at = solved.frequencies_hz

@@ -20,6 +20,7 @@ import numpy as np
 from pairrules.balance.conversion import by_cause, decibel, solve
 from pairrules.balance.networks import Element, Floats, Line, Series, Shunt
 from pairrules.errors import UsageError
+from pairrules.fields.chain_matrix import RangeError
 
 Solved: TypeAlias = Callable[[str], tuple[Floats, Floats] | None]
 """Name of a section to its L [H/m] and C [F/m], both (2, 2); None where no section has that name."""
@@ -161,8 +162,13 @@ def answer(case: LinkCase) -> dict[str, Any]:
 
     Raises: UsageError where the link attenuates beyond the range of numbers.
     """
-    response = solve(case.elements, case.frequencies)
-    causes = by_cause(case.elements, case.frequencies)
+    try:
+        response = solve(case.elements, case.frequencies)
+        causes = by_cause(case.elements, case.frequencies)
+    except RangeError as error:
+        raise UsageError(
+            str(error), file=case.file, place=case.place, remedy="check the sections' lengths and the frequencies"
+        ) from None
     if not (np.isfinite(response.conversion).all() and np.isfinite(response.gain).all()):
         raise UsageError(
             "the link attenuates by more than numbers can hold",

@@ -38,6 +38,9 @@ class SectionMatrices:
     coupling: tuple[tuple[float, ...], ...]
 
 
+FLATTEST = 400.0
+"""Width over height of a section that is still solved: cells, and with their square the memory, grow with it."""
+
 Store = MutableMapping[CrossSection, SectionMatrices | str]
 """Section to its matrices, or to why it has none; a plain dict will do, whoever hands it in decides where it lives."""
 
@@ -51,11 +54,26 @@ def solved(section: CrossSection, store: Store) -> SectionMatrices | str:
 
 
 def _matrices(section: CrossSection) -> SectionMatrices | str:
+    if (ratio := _flatness(section)) > FLATTEST:
+        return f"its copper is {ratio:.0f} times as wide as high above its reference, beyond the {FLATTEST:.0f} solved"
     try:
         solution = solve_section(section)
     except ValueError as error:
         return str(error)
     return _of_pair(solution) if solution.pair is not None else _of_one(solution)
+
+
+def _flatness(section: CrossSection) -> float:
+    """Width of all copper over its least distance from a plane; 0 where there is no plane."""
+    left = min(conductor.x_range[0] for conductor in section.conductors)
+    right = max(conductor.x_range[1] for conductor in section.conductors)
+    apart = [
+        max(plane.y - conductor.y_range[1], conductor.y_range[0] - plane.y)
+        for plane in section.planes
+        for conductor in section.conductors
+    ]
+    least = min((height for height in apart if height > 0), default=0.0)
+    return (right - left) / least if least > 0 else 0.0
 
 
 def _of_pair(solution: SectionSolution) -> SectionMatrices | str:

@@ -8,9 +8,9 @@ from itertools import pairwise
 from pairrules.board.stackup import Layer, Stackup
 from pairrules.fields import cross_section
 
-THINNEST_MM, THICKEST_MM = 0.0002, 100.0
-"""Thicknesses a layer can have, twice the grid that sections are drawn on at least; another is a slip of the file, and
-as good as none. Common practice, no source: foils begin at 1.5 µm."""
+THINNEST_MM, THICKEST_MM = 0.001, 100.0
+"""Thicknesses a layer can have, ten times the grid that sections are drawn on at least; another is a slip of the file,
+and as good as none. Common practice, no source: foils begin at 1.5 µm, laminates at 5 µm."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -29,6 +29,10 @@ _MOST_DOUBLINGS = 40
 """A line of more than 2^40 radians has no phase left in double precision."""
 
 
+class RangeError(ValueError):
+    """A line's figures leave the range of numbers."""
+
+
 def series_modes(plus: Scalars, minus: Scalars, mutual: Scalars = 0.0) -> Complexes:
     """Series impedances of the legs and the mutual one [ohm], as a (…, 2, 2) matrix Z: V_dc = Z I_dc."""
     p, n, m = (np.asarray(value, dtype=np.complex128) for value in (plus, minus, mutual))
@@ -71,7 +75,7 @@ def line(Z: Complexes, Y: Complexes) -> Complexes:
     formulas. No eigenvector is formed: equal or nearly equal modes, f → 0 and a leg without any length are nothing
     special, and a symmetric line stays exactly symmetric.
 
-    Raises: ValueError where the line is too long for double precision (2^40 radians) or not finite.
+    Raises: RangeError where the line is too long for double precision (2^40 radians) or not finite.
     """
     cosh, sinhc = _cosh_and_sinhc(Z @ Y)
     return _blocks(cosh, sinhc @ Z, Y @ sinhc, np.swapaxes(cosh, -1, -2))
@@ -97,11 +101,11 @@ def to_legs(F: Complexes) -> Complexes:
 def _cosh_and_sinhc(P: Complexes) -> tuple[Complexes, Complexes]:
     size = np.abs(P).sum(axis=-1).max(axis=-1) if P.size else np.zeros(P.shape[:-2])
     if not np.isfinite(size).all():
-        raise ValueError("a line's impedance times admittance is not finite")
+        raise RangeError("a line's impedance times admittance is not finite")
     doublings = np.maximum(np.ceil(np.log2(np.maximum(size, 1.0)) / 2), 0).astype(np.int64)
     most = int(doublings.max(initial=0))
     if most > _MOST_DOUBLINGS:
-        raise ValueError("a line is longer than 2^40 radians, too long to compute")
+        raise RangeError("a line is longer than 2^40 radians, too long to compute")
     part = P * (0.25**doublings)[..., None, None]
     one = np.eye(2)
     cosh: Complexes = np.zeros_like(part)

@@ -28,6 +28,9 @@ from pairrules.fields.kernels import Surroundings, interaction
 from pairrules.fields.reduction import Pair, pair_of
 from pairrules.fields.regions import regions_of
 
+MOST_CELLS = 5000
+"""Memory grows with the square of the cells, time with the cube; usual sections take some hundreds."""
+
 EPSILON_0 = 8.8541878128e-12
 """Electric constant [F/m]. Source: CODATA 2018."""
 
@@ -82,7 +85,7 @@ def solve_section(section: CrossSection, *, refine: float = 1.0) -> SectionSolut
 
     Raises
     ------
-    ValueError: where conductors overlap, touch, or reach through an infinite plane.
+    ValueError: where conductors overlap, touch, or reach through an infinite plane, or would take too many cells.
     """
     count = len(section.conductors)
     complex_c = np.zeros((count, count), dtype=np.complex128)
@@ -145,6 +148,10 @@ def _solve_region(region: Region, refine: float) -> _Found:
     if not np.any(pieces.owner != INTERFACE):
         return _nothing(len(region.members), pieces)
     cells = cells_of(pieces, region, refine=refine)
+    if len(cells.owner) > MOST_CELLS:
+        raise ValueError(
+            f"the section takes {len(cells.owner)} cells, more than {MOST_CELLS}: its copper is wide for its height"
+        )
     # copper first, then level interfaces, then others: blocks of rows alike are filled faster
     way = cells.end - cells.start
     order = np.argsort((cells.owner == INTERFACE) * (1 + (np.abs(way.imag) > 1e-9 * np.abs(way))), kind="stable")

@@ -213,3 +213,12 @@ def test_a_link_beyond_the_range_of_numbers_is_told() -> None:
         "link.json: [2]: the link attenuates by more than numbers can hold; "
         "check the sections' lengths and resistances, and the frequencies"
     )
+
+
+def test_a_line_too_long_to_compute_is_refused() -> None:
+    with pytest.raises(UsageError) as caught:
+        answer(read(changed(["sections", 0, "length"], 1e20)))
+    assert str(caught.value) == (
+        "link.json: [2]: a line is longer than 2^40 radians, too long to compute; "
+        "check the sections' lengths and the frequencies"
+    )

@@ -113,6 +113,18 @@ def _cuts_upon_cuts() -> bytes:
     return document(drawn + cuts)
 
 
+def _two_metres_wide() -> bytes:
+    """Legs so wide for their height over the plane that a cross-section would take ten thousands of cells."""
+    tree = straight_pair().board
+    for track, pin, sign in zip(tree["tracks"], (0, 1), (1, -1), strict=True):
+        y = sign * 1000.1
+        track |= {"width": 2000.0, "points": [[0, y], [20, y]]}
+        for part in tree["parts"]:
+            part["pins"][pin]["at"][1] = y
+    tree["areas"][0]["outline"] = [[-5000, -5000], [5000, -5000], [5000, 5000], [-5000, 5000]]
+    return json.dumps(tree).encode()
+
+
 REFUSED: dict[str, Attack] = {
     "entities of entities": _doctype(_laughs(), "&l11;"),
     "an entity from a file": _doctype('<!DOCTYPE IPC-2581 [<!ENTITY f SYSTEM "file:///etc/passwd">]>', "&f;"),
@@ -160,6 +172,7 @@ BORNE: dict[str, Attack] = {
     "a hundred thousand kinds of elements": _xml("<Set>" + "".join(f"<K{i}/>" for i in range(100_000)) + "</Set>"),
     "names of archive members that climb": _zip(("../../../../etc/b.xml", document(TRACK)), ("/etc/x", b"x")),
     "a leg of twenty thousand tracks upon one another": _copper_upon_itself,
+    "tracks two metres wide": _two_metres_wide,
     "control characters in names": _json(tracks__0__net="IN_P\x1b[2J\u202e"),
 }
 """Files that are read all the same, in bounded memory, and hurt nobody."""
