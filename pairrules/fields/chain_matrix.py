@@ -77,7 +77,9 @@ def line(Z: Complexes, Y: Complexes) -> Complexes:
 
     Raises: RangeError where the line is too long for double precision (2^40 radians) or not finite.
     """
-    cosh, sinhc = _cosh_and_sinhc(Z @ Y)
+    with np.errstate(over="ignore", invalid="ignore"):  # what leaves the range of numbers is refused next
+        product = Z @ Y
+    cosh, sinhc = _cosh_and_sinhc(product)
     return _blocks(cosh, sinhc @ Z, Y @ sinhc, np.swapaxes(cosh, -1, -2))
 
 
