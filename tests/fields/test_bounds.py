@@ -40,4 +40,4 @@ def test_a_section_of_too_many_cells_is_refused(monkeypatch: pytest.MonkeyPatch)
 def test_a_line_beyond_the_range_of_numbers_says_so(length: float) -> None:
     one = np.eye(2)
     with pytest.raises(RangeError):
-            line(1j * 300.0 * length * one, 1j * 0.1 * length * one)
+        line(1j * 300.0 * length * one, 1j * 0.1 * length * one)
