@@ -29,7 +29,7 @@ def zipped(name: str, data: bytes) -> bytes:
         (IPC, False),
         (IPC.decode().encode("utf-16"), False),
         (JSON, False),
-        (gzip.compress(IPC), False),
+        (gzip.compress(IPC, mtime=0), False),
         (zipped("board.xml", IPC), False),
         (b"", False),  # reading says that it is empty
         (b"\x1f\x8b broken", False),
@@ -38,7 +38,7 @@ def zipped(name: str, data: bytes) -> bytes:
         (b'{"name": "package"}', True),
         (b"[1]", True),
         (b"text", True),
-        (gzip.compress(b"<html/>"), True),
+        (gzip.compress(b"<html/>", mtime=0), True),
         (zipped("a.xml", b"<html/>"), True),
     ],
 )
