@@ -35,6 +35,12 @@ from pairrules.result import PairResult
 Tree = dict[str, Any]
 Cut = tuple[str | int, ...]
 
+BASE = """extends: [base]
+limits:
+  neighbour-tilt: {gap: 0.2 mm, for: 4 mm, severity: note}
+"""
+"""For boards without settings of their own; the tilt of a neighbour is a matter of classes, not of the base set."""
+
 SETTINGS = """
 extends: [base]
 classes:
@@ -172,7 +178,7 @@ def _strip(tree: Tree, layer: str) -> None:
 
 def pairs_of(folder: Path, tree: Tree, settings: str) -> tuple[PairResult, ...]:
     (folder / "board.json").write_text(json.dumps(tree), encoding="utf-8")
-    (folder / "pairrules.yaml").write_text(settings or "extends: [base]\n", encoding="utf-8")
+    (folder / "pairrules.yaml").write_text(settings or BASE, encoding="utf-8")
     try:
         return check(folder / "board.json").pairs
     except BoardError:
