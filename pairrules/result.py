@@ -53,7 +53,11 @@ class Measures:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class BalancePoint:
-    """How much common mode turns into signal at one frequency, by cause [dB]; `None` where a cause is not modelled."""
+    """How much common mode turns into signal at one frequency, by cause [dB]; `None` where a cause is not modelled.
+
+    worst_db: conversion at worst over the tolerances that are given; bound_95_db: what 95 % of drawn links keep; `None`
+    where no tolerance is given.
+    """
 
     frequency_hz: float
     source_db: float | None
@@ -62,6 +66,8 @@ class BalancePoint:
     load_db: float | None
     total_db: float | None
     rejection_db: float | None
+    worst_db: float | None = None
+    bound_95_db: float | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -268,6 +268,24 @@ def part_spreads(board: Board, link: Link, elements: tuple[Element, ...]) -> tup
     return tuple(found)
 
 
+def leg_resistance(elements: tuple[Element, ...]) -> tuple[float, float]:
+    """Resistance [ohm] of each leg as a difference between them finds it, at low frequency.
+
+    The source's legs, every resistor from a leg to reference, and half of every resistor between the legs, in parallel;
+    resistors in series with the tracks are taken as small beside these.
+    """
+    conductance = np.zeros(2)
+    with np.errstate(divide="ignore"):
+        conductance += 1 / np.array(_source_ohm(tuple(e for e in elements if e.cause == "source")))
+        for element in elements:
+            if isinstance(element, Shunt):
+                conductance += 1 / np.asarray(element.resistance) + 2 / np.asarray(element.across_resistance)
+            elif isinstance(element, DifferenceInput):
+                conductance += 1 / (np.asarray(element.r1) + np.asarray(element.r2))
+        legs = 1 / conductance
+    return float(legs[0]), float(legs[1])
+
+
 def _source_ohm(source: tuple[Element, ...]) -> tuple[float, float]:
     total = np.zeros(2)
     for element in source:

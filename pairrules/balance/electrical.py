@@ -12,7 +12,14 @@ from fnmatch import fnmatchcase
 
 import numpy as np
 
-from pairrules.balance.board_link import BoardLink, NoModelError, board_link, load_admittance, part_spreads
+from pairrules.balance.board_link import (
+    BoardLink,
+    NoModelError,
+    board_link,
+    leg_resistance,
+    load_admittance,
+    part_spreads,
+)
 from pairrules.balance.board_parts import bias_paths, placed_hung, placed_series, terminations
 from pairrules.balance.layer_changes import layer_changes
 from pairrules.balance.link_balance import balance_points
@@ -87,7 +94,7 @@ class _Stage:
             sections = self._sections(heights)
         balance, source_ohm, solved = self._balance(sections, plus, minus)
         area = self._area(heights, plus, minus)
-        electric, aggressor = self._electric(sections, source_ohm)
+        electric, aggressor = self._electric(sections, solved)
         limit = None if heights is None else _quasi_static(heights, sections)
         self._note_validity(limit)
         changes = [
@@ -232,23 +239,22 @@ class _Stage:
         )
         return float(found[0])
 
-    def _electric(
-        self, sections: tuple[PairSection, ...], source_ohm: tuple[float, float] | None
-    ) -> tuple[float | None, str]:
+    def _electric(self, sections: tuple[PairSection, ...], solved: SolvedLink | None) -> tuple[float | None, str]:
         pickup = None if self._klass is None else self._klass.pickup
         if pickup is None or not pickup.aggressors:
             return None, ""
-        if not sections or source_ohm is None:
+        if not sections or solved is None:
             why = self._missing.get(_SECTIONS) or self._missing.get(_BALANCE) or "the pair has no source"
             self._missing.setdefault("electric", why)
             return None, ""
+        legs = leg_resistance(tuple(solved.elements))
         worst, name = 0.0, ""
         for net in sorted({net for section in sections for net in section.neighbours if net >= 0}):
             for aggressor in pickup.aggressors:
                 if not fnmatchcase(self._board.nets[net], aggressor.net):
                     continue
                 capacitance = _coupled(sections, net)
-                volts = abs(edge_pickup(aggressor.swing_v, aggressor.rise_time_s, capacitance, source_ohm))
+                volts = abs(edge_pickup(aggressor.swing_v, aggressor.rise_time_s, capacitance, legs))
                 if volts > worst:
                     worst, name = volts, self._board.nets[net]
         return worst, name

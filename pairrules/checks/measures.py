@@ -61,6 +61,8 @@ def balance_figures(figures: PairElectrical, frequencies: tuple[float, ...]) -> 
             load_db=point.load_db,
             total_db=point.total_db,
             rejection_db=point.rejection_db,
+            worst_db=point.worst_db,
+            bound_95_db=point.bound_db,
         )
         for point in figures.balance
         if point.frequency_hz in frequencies

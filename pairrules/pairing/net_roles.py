@@ -75,11 +75,6 @@ def is_supply_name(name: str) -> bool:
     return all(
         is_supply or _WITH_SUPPLY.fullmatch(word) is not None for word, is_supply in zip(said, supplies, strict=True)
     )
-    return (
-        is_ground_name(name)
-        or _SUPPLY.fullmatch(said[-1]) is not None
-        or (_SUPPLY.fullmatch(said[0]) is not None and not any(_NO_GROUND.fullmatch(word) for word in said))
-    )
 
 
 def is_rail_word(word: str) -> bool:

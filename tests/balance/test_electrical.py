@@ -269,3 +269,34 @@ def test_values_that_the_settings_give_win_and_protection_capacitance_counts(tmp
     found = run(tmp_path, board, "part_values: {D1: 1 nF}\n" + text)
     expected = abs(1 - 1 / (1 + 2j * math.pi * 1e3 * 1e3 * 1e-9))
     assert found.balance[0].total_db == pytest.approx(20 * math.log10(expected), abs=0.05)
+
+
+def test_tolerances_are_told_at_worst_and_as_a_bound(tmp_path: Path) -> None:
+    """Source legs of 350 ohm ± 1 % are at worst 7 ohm apart; nodal analysis of just that (elementary)."""
+    text = CLASS.replace("plus: 350 ohm, minus: 351 ohm", "plus: 350 ohm, tolerance: 1 %").replace("12 pF", "10 pF")
+    (first, *_) = run(tmp_path, straight(), text).balance
+    a = np.array([[1 / 353.5 + 1e-6 + 1e-4, -1e-4], [-1e-4, 1 / 346.5 + 1e-6 + 1e-4]])
+    volts = np.linalg.solve(a, [1 / 353.5, 1 / 346.5])
+    assert first.worst_db == pytest.approx(20 * math.log10(abs(volts[0] - volts[1])), abs=0.02)
+    assert first.bound_95_db is not None and first.total_db is not None and first.worst_db is not None
+    assert first.total_db < first.bound_95_db < first.worst_db
+    assert all(point.worst_db is None for point in run(tmp_path, straight()).balance)
+
+
+def test_a_swinging_neighbour_finds_source_and_load_in_parallel(tmp_path: Path) -> None:
+    """ΔC R dV/dt (F11): with a load like the source the voltage is half of that into a high input."""
+    board = straight()
+    for part in board["parts"]:
+        x = part["pins"][0]["at"][0]
+        part["pins"].append(pin("9", "SPI_CK", x, -0.5))
+    board["tracks"].append({"net": "SPI_CK", "layer": "TOP", "width": 0.25, "points": [[0, -0.5], [LENGTH, -0.5]]})
+    text = CLASS[: CLASS.index("    load:")].replace("plus: 350 ohm, minus: 351 ohm", "plus: 50 ohm")
+    text += "    pickup: {aggressors: [{net: SPI_CK, swing: 3.3 V, rise_time: 50 ns}]}\n    frequencies: [1 kHz]\n"
+    text += "    limits: {pickup-electric: {most: 1 nV}}\n"
+    volts = []
+    for ohm in ("1 Gohm", "50 ohm"):
+        pair = run(tmp_path, board, text + f"    load: {{kind: instrumentation-amplifier, resistance: {ohm}}}\n")
+        (found,) = (one for one in pair.findings if one.rule == "pickup-electric")
+        assert found.measured is not None
+        volts.append(found.measured)
+    assert volts[0] == pytest.approx(2 * volts[1], rel=1e-3)
