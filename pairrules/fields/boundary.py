@@ -60,6 +60,18 @@ class Pieces:
     far: Bools
     contacts: tuple[tuple[int, int], ...] = ()
 
+    def of(self, which: Ints | Bools) -> Pieces:
+        """Some of them."""
+        return Pieces(
+            start=self.start[which],
+            end=self.end[which],
+            owner=self.owner[which],
+            left=self.left[which],
+            right=self.right[which],
+            far=self.far[which],
+            contacts=self.contacts,
+        )
+
 
 def pieces_of(region: Region) -> Pieces:
     """Cut the outlines of a region.

@@ -27,6 +27,7 @@ _TO_INTERFACE = 0.6  # times a corner's β: what it asks of other pieces that ar
 _LEAST_SHARE = 0.45
 _OPEN = 1.2  # how much finer where no whole plane holds the field together
 _UNIFORM = 1.35  # how much finer in one dielectric, where copper alone has cells and more is asked of it
+_DISTANT = 2.5  # how much coarser at most round the corners of grounded copper, dielectrics far from live copper
 _STRAIGHT = 0.75  # corners that turn by less (radians) carry no singular charge worth grading: round outlines
 _SAMPLES = 24
 
@@ -42,25 +43,26 @@ class Cells:
     right: Complexes
 
 
-def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
-    """Grade the pieces; `refine` multiplies the number of cells."""
-    corner, at_start, at_end = _corners(pieces)
-    points, weight, sharp, smooth, reach = _scales(pieces, region, corner, at_start, at_end)
-    divided = _cut_beside_corners(pieces, points, _foreign(pieces, sharp, smooth))
+def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0, left_of: float | None = None) -> Cells:
+    """Grade the pieces, or those left of an axis alone; `refine` multiplies the number of cells."""
+    corners, at_start, at_end = _corners(pieces, region)
+    divided = _cut_beside_corners(pieces, corners)
     if divided is not pieces:
         pieces = divided
-        corner, at_start, at_end = _corners(pieces)
-        points, weight, sharp, smooth, reach = _scales(pieces, region, corner, at_start, at_end)
+        corners, at_start, at_end = _corners(pieces, region)
+    if left_of is not None:
+        chosen = np.nonzero(pieces.start.real + pieces.end.real < 2.0 * left_of)[0]
+        pieces, at_start, at_end = pieces.of(chosen), at_start[chosen], at_end[chosen]
     s = np.linspace(0.0, 1.0, _SAMPLES + 1)
     way = pieces.end - pieces.start
     length = np.abs(way)
     graded, slope = _two_sided(s)
     x = pieces.start[:, None] + graded[None, :] * way[:, None]
-    apart = x[:, :, None] - points[None, None, :]
+    apart = x[:, :, None] - corners.point[None, None, :]
     square = apart.real**2 + apart.imag**2
     rows = np.arange(len(way))
-    foreign = square * (weight * weight)[None, None, :]
-    foreign.transpose(0, 2, 1)[~_foreign(pieces, sharp, smooth)] = np.inf
+    foreign = square * (corners.beta * corners.beta)[None, None, :]
+    foreign.transpose(0, 2, 1)[~corners.asked_of(pieces)] = np.inf
     foreign[rows, :, at_start] = np.inf
     foreign[rows, :, at_end] = np.inf
     rate = 1.0 / np.sqrt(np.maximum(foreign.min(axis=2, initial=np.inf), 1e-30))
@@ -69,13 +71,12 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     demand = rate * (length[:, None] * slope[None, :])
     ratio = _slope_ratio(s)
     for end, run, across in ((at_start, graded, ratio), (at_end, 1.0 - graded, ratio[::-1])):
-        scale = (reach[end] / length)[:, None]
-        between = (pieces.owner == INTERFACE) & (weight[end] != _OF_DIELECTRIC)
-        beta = np.where(between, _OF_INTERFACE, weight[end])[:, None]
+        scale = (corners.reach[end] / length)[:, None]
+        beta = np.where(pieces.owner == INTERFACE, corners.beta_interface[end], corners.beta[end])[:, None]
         near = across[None, :] / (beta * np.cbrt(scale))  # dρ / (β ρ^(2/3) ℓ^(1/3))
         beyond = slope[None, :] / (beta * np.maximum(run[None, :], 1e-12))
         own = np.where(run[None, :] < scale, near, beyond)
-        own[~sharp[end]] = 0.0
+        own[~corners.sharp[end]] = 0.0
         demand = np.maximum(demand, own)
     demand *= _share(pieces)[:, None]
     if region.bottom is None and region.top is None:
@@ -92,12 +93,6 @@ def cells_of(pieces: Pieces, region: Region, *, refine: float = 1.0) -> Cells:
     return _divide(pieces, running, count, s)
 
 
-def _foreign(pieces: Pieces, sharp: Bools, smooth: Ints) -> Bools:
-    """Which corners ask which pieces for small cells: sharp ones all, those of round copper only other things."""
-    asks: Bools = sharp[None, :] | ((smooth >= 0)[None, :] & (smooth[None, :] != pieces.owner[:, None]))
-    return asks
-
-
 def _share(pieces: Pieces) -> Floats:
     """How finely an interface needs to be divided, against one between laminate and air.
 
@@ -110,15 +105,15 @@ def _share(pieces: Pieces) -> Floats:
     return share
 
 
-def _cut_beside_corners(pieces: Pieces, corners: Complexes, foreign: Bools) -> Pieces:
+def _cut_beside_corners(pieces: Pieces, corners: _Corners) -> Pieces:
     """Cut long pieces where they pass a corner so closely that sampling them from end to end would miss it."""
     way = pieces.end - pieces.start
     length = np.abs(way)
-    offset = (corners[None, :] - pieces.start[:, None]) * (way.conj() / length)[:, None]
+    offset = (corners.point[None, :] - pieces.start[:, None]) * (way.conj() / length)[:, None]
     along, apart = offset.real, np.abs(offset.imag)
     to_end = np.minimum(along, length[:, None] - along)
     spacing = (4.5 / _SAMPLES) * np.cbrt(np.maximum(to_end, 0.0) ** 2 * length[:, None])
-    of, which = np.nonzero(foreign & (to_end > apart + 1e-8) & (apart < spacing))
+    of, which = np.nonzero(corners.asked_of(pieces) & (to_end > apart + 1e-8) & (apart < spacing))
     if not len(of):
         return pieces
     order = np.lexsort((along[of, which], of))
@@ -177,18 +172,31 @@ def _slope_ratio(t: Floats) -> Floats:
     return ratio
 
 
-def _corners(pieces: Pieces) -> tuple[Complexes, Ints, Ints]:
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class _Corners:
+    """k corners: where; β on the pieces that end there, and on interfaces among them; whether sharp; the conductor of
+    whose round outline they are part, else −1; their scale ℓ. All (k,).
+    """
+
+    point: Complexes
+    beta: Floats
+    beta_interface: Floats
+    sharp: Bools
+    smooth: Ints
+    reach: Floats
+
+    def asked_of(self, pieces: Pieces) -> Bools:
+        """Which corners ask which pieces for small cells: sharp ones all, those of round copper only other things."""
+        asks: Bools = self.sharp | ((self.smooth >= 0) & (self.smooth != pieces.owner[:, None]))
+        return asks
+
+
+def _corners(pieces: Pieces, region: Region) -> tuple[_Corners, Ints, Ints]:
+    """The corners, and which of them each piece starts and ends at."""
     ends = np.concatenate((pieces.start, pieces.end))
     same = np.abs(ends[:, None] - ends[None, :]) < 1e-8
-    first = np.argmax(same, axis=1)
-    kept, number = np.unique(first, return_inverse=True)
-    return ends[kept], number[: len(pieces.start)], number[len(pieces.start) :]
-
-
-def _scales(
-    pieces: Pieces, region: Region, corner: Complexes, at_start: Ints, at_end: Ints
-) -> tuple[Complexes, Floats, Bools, Ints, Floats]:
-    """Corners, their β, whether they are sharp, whose round copper they belong to (else −1), and their scale ℓ."""
+    kept, number = np.unique(np.argmax(same, axis=1), return_inverse=True)
+    corner, at_start, at_end = ends[kept], number[: len(pieces.start)], number[len(pieces.start) :]
     count = len(corner)
     copper = pieces.owner != INTERFACE
     has_copper = np.zeros(count, dtype=np.bool_)
@@ -202,11 +210,12 @@ def _scales(
     for chosen, marked in ((sheet, has_sheet), (~copper, has_interface)):
         marked[at_start[chosen]] = True
         marked[at_end[chosen]] = True
-    weight = np.select(
+    beta = np.select(
         [has_sheet & has_interface, has_sheet, has_copper & has_interface, has_copper],
         [_OF_EDGE_BETWEEN, _OF_EDGE, _OF_COPPER_BETWEEN, _OF_COPPER],
         _OF_DIELECTRIC,
     )
+    beta_interface = np.where(has_copper, _OF_INTERFACE, _OF_DIELECTRIC)
     # turning at corners where exactly two pieces of one kind meet head to tail
     way = (pieces.end - pieces.start) / np.abs(pieces.end - pieces.start)
     meeting = np.bincount(at_start, minlength=count) + np.bincount(at_end, minlength=count)
@@ -236,4 +245,31 @@ def _scales(
         if bound is not None:
             gap = np.abs(corner.imag - bound)
             reach = np.minimum(reach, np.where(gap > 1e-9, gap, np.inf))
-    return corner, weight, sharp, smooth, np.where(np.isfinite(reach), reach, 1.0)
+    coarser = _coarser(corner, region)
+    found = _Corners(
+        point=corner,
+        beta=beta * coarser,
+        beta_interface=beta_interface * coarser,
+        sharp=sharp,
+        smooth=smooth,
+        reach=np.where(np.isfinite(reach), reach, 1.0),
+    )
+    return found, at_start, at_end
+
+
+def _coarser(point: Complexes, region: Region) -> Floats:
+    """How much coarser cells may be round a corner than beside live copper, for its distance from that copper.
+
+    What is wrong there adds to the capacitance of grounded copper, little to that of the legs.
+    """
+    live = [c for place in region.members if (c := region.section.conductors[place]).role != "grounded"]
+    if not live:
+        return np.ones(point.shape)
+    low_x, high_x = min(c.x_range[0] for c in live) / region.scale, max(c.x_range[1] for c in live) / region.scale
+    low_y, high_y = min(c.y_range[0] for c in live) / region.scale, max(c.y_range[1] for c in live) / region.scale
+    away = np.hypot(
+        np.maximum(np.maximum(low_x - point.real, point.real - high_x), 0.0),
+        np.maximum(np.maximum(low_y - point.imag, point.imag - high_y), 0.0),
+    )
+    coarser: Floats = np.clip(np.sqrt(away / (high_x - low_x)), 1.0, _DISTANT)
+    return coarser

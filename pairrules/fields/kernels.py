@@ -14,6 +14,7 @@ Source: images and conformal maps, W. R. Smythe, Static and Dynamic Electricity 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 
@@ -34,7 +35,7 @@ class Surroundings:
 
 
 def interaction(
-    centre: Complexes, way: Complexes, copper: int, rows_flux: Ints, around: Surroundings
+    centre: Complexes, way: Complexes, copper: int, rows_flux: Ints, around: Surroundings, *, axis: float | None = None
 ) -> tuple[Floats, Floats]:
     """Mean potentials (times 2π ε0) and fluxes (times 2π ε0) of cells with unit charge.
 
@@ -42,33 +43,46 @@ def interaction(
     ----------
     centre, way: complex (n,): centres of the cells and the way from start to end; y = 0 is the plane, if there is one.
     copper: at how many cells, from the first on, the potential is wanted. rows_flux: the cells where the flux is (k,).
-    around: the infinite planes.
+    around: the infinite planes. axis: x of an axis left of which all cells lie, to have what their mirror images bring.
 
     Returns
     -------
-    (copper, n) and (k, n).
+    (sets, copper, n) and (sets, k, n); one set for the cells themselves, a second for their images in the axis.
     """
     way = _squared_up(way)
     count = len(centre)
-    potential = np.empty((copper, count))
-    flux = np.empty((len(rows_flux), count))
+    cells = _Cells(centre, way)
+    sets = [cells] if axis is None else [cells, _Cells(2.0 * axis - centre.conj(), -way.conj())]
+    potential = np.empty((len(sets), copper, count))
+    flux = np.empty((len(sets), len(rows_flux), count))
     room = np.empty((_BUFFERS, max(_BLOCK, count)))  # fresh memory for every step would cost more than the arithmetic
-    first = 0
-    while first < copper:  # the means are symmetric: what lies left of the diagonal is known from above it
-        across = count - first
-        last = min(first + max(_BLOCK // across, 1), copper)
-        space = room[:, : (last - first) * across].reshape(_BUFFERS, last - first, across)
-        rows = np.arange(last - first)
-        part = potential[first:last, first:]
-        _rows(centre[first:], way[first:], rows, around, space, part, wants_flux=False)
-        potential[last:, first:last] = part[:, last - first : copper - first].T
-        first = last
-    at_once = max(_BLOCK // count, 1)
-    for first in range(0, len(rows_flux), at_once):
-        rows = rows_flux[first : first + at_once]
-        space = room[:, : len(rows) * count].reshape(_BUFFERS, len(rows), count)
-        _rows(centre, way, rows, around, space, flux[first : first + at_once], wants_flux=True)
+    for place, charges in enumerate(sets):
+        itself = place == 0
+        first = 0
+        while first < copper:  # the means are symmetric: what lies left of the diagonal is known from above it
+            across = count - first
+            last = min(first + max(_BLOCK // across, 1), copper)
+            space = room[:, : (last - first) * across].reshape(_BUFFERS, last - first, across)
+            here = np.arange(last - first) if itself else None
+            part = potential[place, first:last, first:]
+            _rows(cells.of(slice(first, last)), charges.of(slice(first, None)), here, around, space, part, False)
+            potential[place, last:, first:last] = part[:, last - first : copper - first].T
+            first = last
+        at_once = max(_BLOCK // count, 1)
+        for first in range(0, len(rows_flux), at_once):
+            rows = rows_flux[first : first + at_once]
+            space = room[:, : len(rows) * count].reshape(_BUFFERS, len(rows), count)
+            part = flux[place, first : first + at_once]
+            _rows(cells.of(rows), charges, rows if itself else None, around, space, part, True)
     return potential, flux
+
+
+class _Cells(NamedTuple):
+    centre: Complexes
+    way: Complexes
+
+    def of(self, which: slice | Ints) -> _Cells:
+        return _Cells(self.centre[which], self.way[which])
 
 
 def _squared_up(way: Complexes) -> Complexes:
@@ -81,32 +95,30 @@ def _squared_up(way: Complexes) -> Complexes:
 
 
 def _rows(
-    centre: Complexes,
-    way: Complexes,
-    rows: Ints,
-    around: Surroundings,
-    room: Floats,
-    found: Floats,
-    *,
-    wants_flux: bool,
+    at: _Cells, charges: _Cells, same: Ints | None, around: Surroundings, room: Floats, found: Floats, wants_flux: bool
 ) -> None:
-    """Fill `found` with the means for some rows; `room` is memory to work in."""
+    """Fill `found` with the means over the cells `at` (r,) of what `charges` (c,) bring; `room` is memory to work in.
+
+    same: which of the charges each cell itself is (r,), `None` where it is none of them.
+    """
     kappa = 0.0 if around.height is None else np.pi / (2.0 * around.height)
     dx, dx2, dy, apart, image_apart, reach, wide, u, v, below, spare, other, sinh2, sinh_cosh = room
-    square = way * way / 24.0
-    slanted = bool(np.any(square.imag))
-    own, x, y, size = way[rows], centre.real, centre.imag, _NEAR * np.abs(way)
-    here = (np.arange(len(rows)), rows)
-    np.add(square.real[rows, None], square.real, out=wide)
-    np.add(size[rows, None], size, out=reach)
+    (middle, own), (centre, way) = at, charges
+    square, own_square = way * way / 24.0, own * own / 24.0
+    slanted = bool(np.any(square.imag) or np.any(own_square.imag))
+    x, y, size, own_y, own_size = centre.real, centre.imag, _NEAR * np.abs(way), middle.imag, _NEAR * np.abs(own)
+    here = None if same is None else (np.arange(len(same)), same)
+    np.add(own_square.real[:, None], square.real, out=wide)
+    np.add(own_size[:, None], size, out=reach)
     np.multiply(reach, reach, out=reach)
-    np.subtract(x[rows, None], x, out=dx)
+    np.subtract(middle.real[:, None], x, out=dx)
     np.multiply(dx, dx, out=dx2)
-    np.subtract(y[rows, None], y, out=dy)
+    np.subtract(own_y[:, None], y, out=dy)
     np.multiply(dy, dy, out=apart)
     apart += dx2
     near = apart < reach
-    near[here] = False
+    if here is not None:
+        near[here] = False
     exact = [(1.0, near, centre, way)]  # sign, where, charges (or their images) to integrate exactly
     if around.height is not None and 2.0 * size.max() > 2.0 * around.height - np.ptp(y):
         # a cell's own images in both planes, where cells are about as long as the planes are apart
@@ -116,26 +128,27 @@ def _rows(
         )
     if kappa:
         _hyperbolic(dx, kappa, sinh2, sinh_cosh, spare)
-        _slope_between(kappa * y[rows], -kappa * y, kappa, apart, here, u, v, sinh2, sinh_cosh, spare)
+        _slope_between(kappa * own_y, -kappa * y, kappa, apart, here, u, v, sinh2, sinh_cosh, spare)
     else:
         _slope(dx, dy, apart, here, u, v, spare)
-    lean = square.imag[rows, None] + square.imag if slanted else None
+    lean = own_square.imag[:, None] + square.imag if slanted else None
     _expanded(u, v, wide, lean, kappa, own, found, spare, other, wants_flux=wants_flux)
-    found[here] = 0.0
+    if here is not None:
+        found[here] = 0.0
     if around.grounded:
-        np.add(y[rows, None], y, out=dy)
+        np.add(own_y[:, None], y, out=dy)
         np.multiply(dy, dy, out=image_apart)
         image_apart += dx2
-        if (y[rows] - size[rows]).min() + (y - size).min() < 0.0:
+        if (own_y - own_size).min() + (y - size).min() < 0.0:
             exact.append((-1.0, image_apart < reach, centre.conj(), way.conj()))
         if around.height is not None and (y + size).max() > around.height:
             shift = 2.0 * around.height
             exact.append((-1.0, dx2 + (dy - shift) ** 2 < reach, centre.conj() + 1j * shift, way.conj()))
         if kappa:
-            _slope_between(kappa * y[rows], kappa * y, kappa, image_apart, None, u, v, sinh2, sinh_cosh, spare)
+            _slope_between(kappa * own_y, kappa * y, kappa, image_apart, None, u, v, sinh2, sinh_cosh, spare)
         else:
             _slope(dx, dy, image_apart, None, u, v, spare)
-        lean = square.imag[rows, None] - square.imag if slanted else None
+        lean = own_square.imag[:, None] - square.imag if slanted else None
         _expanded(u, v, wide, lean, kappa, own, below, spare, other, wants_flux=wants_flux)
         found -= below
     if not wants_flux:
@@ -143,13 +156,14 @@ def _rows(
         np.log(below, out=below)
         below *= 0.5
         found += below
-        found[here] += 1.5 - np.log(np.abs(own))
-        if kappa:
-            found[here] -= np.log(kappa) + 4.0 * kappa * kappa / 6.0 * square[rows].real
-    for sign, where, charges, ways in exact:
+        if here is not None:
+            found[here] += 1.5 - np.log(np.abs(own))
+            if kappa:
+                found[here] -= np.log(kappa) + 4.0 * kappa * kappa / 6.0 * own_square.real
+    for sign, where, centres, ways in exact:
         i, j = np.nonzero(where)
         if len(i):
-            found[i, j] += sign * _near(centre[rows[i]] - charges[j], own[i], ways[j], wants_flux=wants_flux)
+            found[i, j] += sign * _near(middle[i] - centres[j], own[i], ways[j], wants_flux=wants_flux)
 
 
 def _slope(

@@ -17,6 +17,7 @@ and Techniques 32 (1984) 439–450 (both from memory).
 
 from __future__ import annotations
 
+import functools
 from dataclasses import dataclass
 
 import numpy as np
@@ -25,6 +26,7 @@ from pairrules.fields.boundary import INTERFACE, PLANE, Complexes, Floats, Ints,
 from pairrules.fields.cross_section import CrossSection
 from pairrules.fields.grading import cells_of
 from pairrules.fields.kernels import Surroundings, interaction
+from pairrules.fields.mirror import cut_at, mirror_of
 from pairrules.fields.reduction import Pair, pair_of
 from pairrules.fields.regions import regions_of
 
@@ -87,6 +89,7 @@ def solve_section(section: CrossSection, *, refine: float = 1.0) -> SectionSolut
     ------
     ValueError: where conductors overlap, touch, or reach through an infinite plane, or would take too many cells.
     """
+    _keep_freed_memory()
     count = len(section.conductors)
     complex_c = np.zeros((count, count), dtype=np.complex128)
     cair = np.zeros((count, count))
@@ -101,10 +104,6 @@ def solve_section(section: CrossSection, *, refine: float = 1.0) -> SectionSolut
         unknowns += found.unknowns
         contacts += found.contacts
         air.append(_air_charge(region, found, count))
-    mirror = mirrored_order(section)
-    if mirror is not None:  # the law holds exactly; rounding in the mesh would blur it
-        swap = np.ix_(mirror, mirror)
-        complex_c, cair = (complex_c + complex_c[swap]) / 2, (cair + cair[swap]) / 2
     c, g = complex_c.real.copy(), -complex_c.imag
     groups = _joined(contacts)
     for group in groups:
@@ -120,6 +119,16 @@ def solve_section(section: CrossSection, *, refine: float = 1.0) -> SectionSolut
         air=tuple(air),
         joined=tuple(section.conductors[place].name for place in sorted(set().union(*groups) - {PLANE})),
     )
+
+
+@functools.cache
+def _keep_freed_memory() -> None:
+    """Have the C library keep blocks of some megabytes for the next section instead of handing them back.
+
+    Fresh pages for every matrix take a fifth of a section's time. The GNU library raises its threshold to the greatest
+    block freed so far, at most 32 MB; to others this is nothing.
+    """
+    np.empty(4_000_000)
 
 
 def _joined(contacts: list[tuple[int, int]]) -> list[set[int]]:
@@ -147,49 +156,90 @@ def _solve_region(region: Region, refine: float) -> _Found:
     pieces = pieces_of(region)
     if not np.any(pieces.owner != INTERFACE):
         return _nothing(len(region.members), pieces)
-    cells = cells_of(pieces, region, refine=refine)
-    if len(cells.owner) > MOST_CELLS:
+    mirror = mirror_of(pieces, len(region.section.conductors))
+    axis = None if mirror is None else mirror.axis
+    cells = cells_of(pieces if axis is None else cut_at(pieces, axis), region, refine=refine, left_of=axis)
+    halves = 1 if mirror is None else 2
+    if halves * len(cells.owner) > MOST_CELLS:
         raise ValueError(
-            f"the section takes {len(cells.owner)} cells, more than {MOST_CELLS}: its copper is wide for its height"
+            f"the section takes {halves * len(cells.owner)} cells, more than {MOST_CELLS}: its copper is wide for its "
+            "height"
         )
     # copper first, then level interfaces, then others: blocks of rows alike are filled faster
     way = cells.end - cells.start
     order = np.argsort((cells.owner == INTERFACE) * (1 + (np.abs(way.imag) > 1e-9 * np.abs(way))), kind="stable")
-    start, end = cells.start[order], cells.end[order]
-    owner, left, right = cells.owner[order], cells.left[order], cells.right[order]
+    start, end, owner = cells.start[order], cells.end[order], cells.owner[order]
+    left, right = cells.left[order], cells.right[order]
     copper = int(np.count_nonzero(owner != INTERFACE))
     between = np.nonzero((owner >= 0) & ~np.isnan(left) & ~np.isnan(right) & (left != right))[0]
     rows_flux = np.concatenate((np.arange(copper, len(owner)), between))
     centre, way, around = _placed(region, start, end)
-    potential, flux = interaction(centre, way, copper, rows_flux, around)
+    potential, flux = interaction(centre, way, copper, rows_flux, around, axis=axis)
     if region.bottom is None and region.top is not None:
         flux = -flux  # the region was turned over, and left and right with it
-    open_below = not around.grounded
     members = np.array(region.members)
-    volts = (owner[:copper, None] == members[None, :]).astype(np.float64)
-    in_air, response = _copper_solution(potential[:, :copper], potential[:, copper:], volts, open_below=open_below)
-    charge_copper, charge_interface = _with_dielectrics(
-        in_air, response, flux[: len(owner) - copper], left[copper:], right[copper:]
-    )
-    outside = np.where(np.isnan(left[:copper]), right[:copper], np.where(np.isnan(right[:copper]), left[:copper], 0.0))
-    sheet = ~np.isnan(left[:copper]) & ~np.isnan(right[:copper])
-    outside[sheet] = (left[:copper][sheet] + right[:copper][sheet]) / 2
-    free = outside[:, None] * charge_copper
-    if len(between):
-        every = np.concatenate((charge_copper, charge_interface))
-        free[between] += (left - right)[between, None] * (flux[len(owner) - copper :] @ every) / (2 * np.pi)
+    owner = owner[:copper]
+    volts = (owner[:, None] == members).astype(np.float64)
+    open_below = not around.grounded
+    if mirror is None:
+        in_air, free = _charges(potential[0], flux[0], volts, left, right, between, open_below=open_below)
+    else:
+        start, end = (np.concatenate((one[:copper], 2.0 * mirror.axis - one[:copper].conj())) for one in (start, end))
+        of_image = np.where(owner >= 0, mirror.image[owner], owner)
+        volts_image = (of_image[:, None] == members).astype(np.float64)
+        owner = np.concatenate((owner, of_image))
+        even, odd = (
+            _charges(
+                potential[0] + sign * potential[1],
+                flux[0] + sign * flux[1],
+                (volts + sign * volts_image) / 2,
+                left,
+                right,
+                between,
+                open_below=open_below and sign > 0,  # odd charges sum up to zero anyhow
+            )
+            for sign in (1.0, -1.0)
+        )
+        in_air, free = (np.concatenate((one + other, one - other)) for one, other in zip(even, odd, strict=True))
+        volts = np.concatenate((volts, volts_image))
     factor = 2.0 * np.pi * EPSILON_0
     capacitance, in_air_only = factor * (volts.T @ free), factor * (volts.T @ in_air)
     return _Found(
         capacitance=(capacitance + capacitance.T) / 2,
         air_capacitance=(in_air_only + in_air_only.T) / 2,
-        unknowns=len(owner) + int(open_below),
+        unknowns=halves * len(cells.owner) + int(open_below),
         contacts=pieces.contacts,
-        start=start[:copper],
-        end=end[:copper],
-        owner=owner[:copper],
+        start=start[: len(owner)],
+        end=end[: len(owner)],
+        owner=owner,
         air_charge=factor * in_air,
     )
+
+
+def _charges(
+    potential: Floats,
+    flux: Floats,
+    volts: Floats,
+    left: Complexes,
+    right: Complexes,
+    between: Ints,
+    *,
+    open_below: bool,
+) -> tuple[Floats, Complexes]:
+    """Charges on copper for given potentials in air, and the free ones with the dielectrics, over 2π ε0."""
+    copper = len(potential)
+    in_air, response = _copper_solution(potential[:, :copper], potential[:, copper:], volts, open_below=open_below)
+    interfaces = len(left) - copper
+    charge_copper, charge_interface = _with_dielectrics(
+        in_air, response, flux[:interfaces], left[copper:], right[copper:]
+    )
+    left, right = left[:copper], right[:copper]
+    outside = np.where(np.isnan(left), right, np.where(np.isnan(right), left, (left + right) / 2))
+    free = outside[:, None] * charge_copper
+    if len(between):
+        every = np.concatenate((charge_copper, charge_interface))
+        free[between] += (left - right)[between, None] * (flux[interfaces:] @ every) / (2 * np.pi)
+    return in_air, free
 
 
 def _nothing(members: int, pieces: Pieces) -> _Found:
@@ -251,58 +301,6 @@ def _with_dielectrics(
         added = -ratio.imag[:, None] * (driven + through @ interface.real)
         interface.imag = np.linalg.solve(matrix.astype(np.float32), added.astype(np.float32))
     return in_air - response @ interface, interface
-
-
-def mirrored_order(section: CrossSection) -> list[int] | None:
-    """For a section that is its own mirror image left to right: where each conductor's image stands; else `None`."""
-    sides = [conductor.x_range for conductor in section.conductors]
-    left, right = min(a for a, _ in sides), max(b for _, b in sides)
-    twice, touch = left + right, 1e-9 * max(right - left, 1e-300)
-
-    def same(one: list[tuple[float, float]], other: list[tuple[float, float]]) -> bool:
-        return len(one) == len(other) and all(
-            any(abs(xa - xb) < touch and abs(ya - yb) < touch for xb, yb in other) for xa, ya in one
-        )
-
-    def image(points: list[tuple[float, float]]) -> list[tuple[float, float]]:
-        return [(twice - x, y) for x, y in points]
-
-    outlines = []
-    for conductor in section.conductors:
-        if conductor.strip is not None:
-            x0, x1, y = conductor.strip
-            outlines.append([(x0, y), (x1, y)])
-        else:
-            outlines.append(list(conductor.polygon or ()))
-    order = []
-    for place, outline in enumerate(outlines):
-        matches = [
-            other
-            for other, candidate in enumerate(outlines)
-            if same(image(outline), candidate)
-            and (section.conductors[place].strip is None) == (section.conductors[other].strip is None)
-        ]
-        if len(matches) != 1:
-            return None
-        order.append(matches[0])
-    for patch in section.patches:
-        if not any(
-            same(image(list(patch.polygon)), list(other.polygon))
-            and (patch.er, patch.loss_tangent) == (other.er, other.loss_tangent)
-            for other in section.patches
-        ):
-            return None
-    for plane in section.planes:
-        if plane.intervals is None:
-            continue
-        turned = [(twice - b, twice - a) for a, b in reversed(plane.intervals)]
-        if not all(
-            ours == theirs or abs(ours - theirs) < touch
-            for mine, yours in zip(turned, plane.intervals, strict=True)
-            for ours, theirs in zip(mine, yours, strict=True)
-        ):
-            return None
-    return order
 
 
 def _air_charge(region: Region, found: _Found, count: int) -> AirCharge:

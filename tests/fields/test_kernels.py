@@ -68,7 +68,7 @@ def by_quadrature(i: int, j: int, around: Surroundings) -> tuple[float, float]:
 def test_means_are_those_of_numerical_integration(around: Surroundings) -> None:
     centre, way = (STARTS + ENDS) / 2, ENDS - STARTS
     every = np.arange(len(STARTS))
-    potential, flux = interaction(centre, way, len(STARTS), every, around)
+    (potential,), (flux,) = interaction(centre, way, len(STARTS), every, around)
     for i in range(len(STARTS)):
         for j in range(len(STARTS)):
             expected_potential, expected_flux = by_quadrature(i, j, around)
@@ -82,7 +82,7 @@ def test_two_pieces_of_a_cell_add_up_to_the_whole() -> None:
     centre = np.array([0.2 + 0.3j, 0.15 + 0.3j, 0.25 + 0.3j, 0.45 + 0.2j])
     way = np.array([0.2, 0.1, 0.1, 0.1j], dtype=np.complex128)
     for around in (Surroundings(grounded=False), Surroundings(grounded=True), Surroundings(grounded=True, height=0.5)):
-        potential, flux = interaction(centre, way, 4, np.arange(4), around)
+        (potential,), (flux,) = interaction(centre, way, 4, np.arange(4), around)
         assert potential[3, 0] == pytest.approx((potential[3, 1] + potential[3, 2]) / 2, abs=1e-3)
         assert potential[0, 0] == pytest.approx(potential[1:3, 1:3].sum() / 4, abs=2e-4)
         assert flux[0, 3] == pytest.approx(flux[1, 3] + flux[2, 3], abs=1e-3)
@@ -97,7 +97,7 @@ def test_flux_out_of_a_closed_box_is_the_charge_inside(around: Surroundings) -> 
     inside, outside = np.array([0.35 + 0.4j]), np.array([0.9 + 0.4j])
     centre = np.concatenate(((starts + ends) / 2, inside, outside))
     way = np.concatenate((ends - starts, np.array([0.05, 0.05j])))
-    _, flux = interaction(centre, way, 0, np.arange(len(starts)), around)
+    _, (flux,) = interaction(centre, way, 0, np.arange(len(starts)), around)
     out = -flux.sum(axis=0)  # the box is walked counter-clockwise, so its inside lies left
     assert out[-2] == pytest.approx(2 * math.pi, rel=1e-4)
     assert out[-1] == pytest.approx(0.0, abs=2e-4)
@@ -106,7 +106,7 @@ def test_flux_out_of_a_closed_box_is_the_charge_inside(around: Surroundings) -> 
 def test_the_potential_vanishes_on_planes() -> None:
     centre = np.array([0.3 + 0.4j, 0.5 + 1e-9j, 0.5 + (1 - 1e-9) * 1j])
     way = np.array([0.1, 0.1, 0.1], dtype=np.complex128)
-    potential, _ = interaction(centre, way, 3, np.arange(0), Surroundings(grounded=True, height=1.0))
+    (potential,), _ = interaction(centre, way, 3, np.arange(0), Surroundings(grounded=True, height=1.0))
     assert potential[0, 1] == pytest.approx(0.0, abs=1e-7)
     assert potential[0, 2] == pytest.approx(0.0, abs=1e-7)
 
@@ -116,14 +116,26 @@ def test_potentials_are_symmetric() -> None:
     centre: Complexes = (rng.uniform(0, 1, 300) + 1j * rng.uniform(0.05, 0.95, 300)).astype(np.complex128)
     way = (rng.uniform(0.001, 0.05, 300) * np.exp(1j * rng.choice([0.0, np.pi / 2, 0.3], 300))).astype(np.complex128)
     for around in (Surroundings(grounded=False), Surroundings(grounded=True), Surroundings(grounded=True, height=1.0)):
-        potential, _ = interaction(centre, way, 300, np.arange(0), around)
+        (potential,), _ = interaction(centre, way, 300, np.arange(0), around)
         assert np.max(np.abs(potential - potential.T)) < 1e-9
+
+
+@pytest.mark.parametrize("around", PLANES)
+def test_images_in_an_axis_bring_what_such_cells_would(around: Surroundings) -> None:
+    axis, count = 1.2, len(STARTS)
+    centre, way = (STARTS + ENDS) / 2, ENDS - STARTS
+    both = np.concatenate((centre, 2 * axis - centre.conj()))
+    ways = np.concatenate((way, -way.conj()))
+    (_, potential), (_, flux) = interaction(centre, way, count, np.arange(count), around, axis=axis)
+    (of_all,), (flux_of_all,) = interaction(both, ways, 2 * count, np.arange(count), around)
+    assert np.allclose(potential, of_all[:count, count:], rtol=0.0, atol=1e-12)
+    assert np.allclose(flux, flux_of_all[:, count:], rtol=0.0, atol=1e-12)
 
 
 def test_cells_a_thousand_heights_apart_do_not_overflow() -> None:
     centre = np.array([0.0 + 0.05j, 5000.0 + 0.05j])
     way = np.array([0.01, 0.01], dtype=np.complex128)
-    potential, flux = interaction(centre, way, 2, np.arange(2), Surroundings(grounded=True, height=0.1))
+    (potential,), (flux,) = interaction(centre, way, 2, np.arange(2), Surroundings(grounded=True, height=0.1))
     assert np.all(np.isfinite(potential))
     assert np.all(np.isfinite(flux))
     assert potential[0, 1] == pytest.approx(0.0, abs=1e-12)

@@ -9,7 +9,7 @@ import numpy as np
 import pytest
 
 from pairrules.fields.cross_section import Conductor, CrossSection, Layer, Patch, Plane
-from pairrules.fields.solve import mirrored_order, solve_section
+from pairrules.fields.solve import solve_section
 from tests.fields.closeness import near
 from tests.fields.sections import INF, all_sections, bar, contract_example, microstrip, strip, stripline
 
@@ -123,16 +123,6 @@ def test_a_symmetric_section_has_no_tilt(name: str) -> None:
         assert abs(pair.capacitance_tilt) < 1e-12
         assert pair.inductance_tilt is not None
         assert abs(pair.inductance_tilt) < 1e-12
-
-
-def test_symmetry_is_not_seen_where_there_is_none() -> None:
-    assert mirrored_order(SECTIONS["mask both"]) == [1, 0]
-    assert mirrored_order(SECTIONS["mask one leg"]) is None
-    assert mirrored_order(SECTIONS["slot under one leg"]) is None
-    assert mirrored_order(SECTIONS["plane ends"]) is None
-    assert mirrored_order(SECTIONS["pour one side"]) is None
-    patch = Patch(er=3.0, polygon=((-0.3, 0.2), (0.0, 0.2), (0.0, 0.3)))
-    assert mirrored_order(dataclasses.replace(SECTIONS["strips"], patches=(patch,))) is None
 
 
 def test_a_far_conductor_changes_nothing() -> None:
