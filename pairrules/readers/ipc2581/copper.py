@@ -6,6 +6,7 @@ from dataclasses import dataclass, field
 
 from pairrules.board import PadShape
 from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed
+from pairrules.readers.ipc2581.places import Crowds
 from pairrules.readers.ipc2581.primitives import Primitive
 from pairrules.readers.ipc2581.transform import Transform
 
@@ -127,6 +128,7 @@ class Copper:
     drawn_layers: set[str] = field(default_factory=set)
     undeclared: set[str] = field(default_factory=set)
     net_lines: dict[str, int] = field(default_factory=dict)
+    crowds: Crowds = field(default_factory=Crowds)
     order: int = 0
 
     def next(self) -> int:
@@ -137,11 +139,6 @@ class Copper:
     def __bool__(self) -> bool:
         """Whether anything is drawn or drilled."""
         return bool(self.tracks or self.areas or self.pads or self.holes)
-
-    @property
-    def size(self) -> int:
-        """Pieces drawn so far."""
-        return len(self.tracks) + len(self.areas) + len(self.erasures)
 
     def draw(self, items: tuple[Item, ...], layer: str, net: str) -> int:
         """Take in strokes and fills on a layer. Returns: pieces without length that were left out."""

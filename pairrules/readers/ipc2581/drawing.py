@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, replace
+from functools import lru_cache
 from typing import Any
 
 import numpy as np
@@ -30,6 +31,11 @@ class Stroke:
     sweeps: tuple[float, ...]
     width: float
     erase: bool = False
+
+    @property
+    def pieces(self) -> int:
+        """Pieces of track it comes to."""
+        return len(self.sweeps)
 
     def placed(self, by: Transform) -> Stroke:
         """The stroke after a placement; a mirror turns the arcs' sense."""
@@ -67,6 +73,11 @@ class Fill:
     holes: tuple[Plane, ...] = ()
     erase: bool = False
     hatched: bool = False
+
+    @property
+    def pieces(self) -> int:
+        """Areas it comes to."""
+        return 1
 
     def placed(self, by: Transform) -> Fill:
         """The fill after a placement."""
@@ -132,11 +143,14 @@ def sweep(start: complex, end: complex, centre: complex, *, clockwise: bool) -> 
     return arcs.sweep(*ends, clockwise=clockwise)
 
 
+@lru_cache(maxsize=64)
 def disc(diameter: float) -> Plane:
-    """A circle about the origin as corners."""
+    """A circle about the origin as corners, not to be written into: the few sizes of a board's circles share them."""
     radius = diameter / 2
     turned = arcs.flatten((radius, 0.0), (0.0, 0.0), 2 * math.pi)
-    return turned[:, 0] + 1j * turned[:, 1]
+    circle = np.asarray(turned[:, 0] + 1j * turned[:, 1])
+    circle.flags.writeable = False
+    return circle
 
 
 def _pairs(points: Plane) -> Any:

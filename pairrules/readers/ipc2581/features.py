@@ -16,6 +16,12 @@ from pairrules.readers.ipc2581.transform import IDENTITY, Plane, Transform, xfor
 if TYPE_CHECKING:
     from lxml.etree import _Element as Element
 
+MOST_PIECES = 5_000_000
+"""Pieces of copper a board may have, far above any (common practice, no source)."""
+
+_FEW_PIECES = 50_000
+_BYTES_A_PIECE = 8
+
 MOST_ITEMS = 20_000
 """Items one user shape may draw; a shape that names others over and over would fill the memory."""
 
@@ -32,6 +38,15 @@ STYLES = {"LineDesc", "LineDescRef", "FillDesc", "FillDescRef", "Color", "ColorR
 PRIMITIVES = {"StandardPrimitiveRef", "UserPrimitiveRef"}
 
 
+def most_pieces(size: int) -> int:
+    """Pieces of copper and pins that a file of `size` bytes may come to.
+
+    Each takes dozens of bytes where it is written out; shapes that are named and repeated take fewer, but not next to
+    nothing: a small file that repeats a shape without end would fill the memory.
+    """
+    return min(MOST_PIECES, max(_FEW_PIECES, size // _BYTES_A_PIECE))
+
+
 @dataclass(frozen=True, slots=True)
 class Line:
     """How a line is drawn. width: [mm]. erase: the line removes copper."""
@@ -42,9 +57,11 @@ class Line:
 
 @dataclass(slots=True)
 class Shapes:
-    """What the file's dictionaries name, and the reading of features with their help."""
+    """What the file's dictionaries name, and the reading of features with their help. most: pieces it may draw."""
 
     remarks: Remarks
+    most: int = MOST_PIECES
+    spent: int = 0
     lines: dict[str, Line] = field(default_factory=dict)
     fillings: dict[str, str] = field(default_factory=dict)
     standard: dict[str, Primitive] = field(default_factory=dict)
@@ -53,6 +70,12 @@ class Shapes:
     absent: set[tuple[str, str]] = field(default_factory=set)
     outlines: dict[Element, Plane] = field(default_factory=dict)
     """Corners of outlines whose own elements are dropped already, of the record that is being read."""
+
+    def spend(self, element: Element, pieces: int) -> None:
+        """Count pieces that are about to be drawn or copied. Raises: BoardError where they become too many."""
+        self.spent += pieces
+        if self.spent > self.most:
+            wrong(element, f"the board draws more than {self.most} pieces")
 
     # -- dictionaries -------------------------------------------------------------------------------------------------
 
@@ -136,6 +159,7 @@ class Shapes:
         by = self.placement(turned, factor)
         if by == IDENTITY:
             return found
+        self.spend(element, found.pieces)
         moved = placed(found.items, by)
         return Primitive(moved, None if found.pad is None else outer_pad(moved))
 
@@ -182,6 +206,7 @@ class Shapes:
             if drawn is None:
                 self.remarks.unknown(tag, "user shapes")
             else:
+                self.spend(element, drawn.pieces)
                 items += drawn.items
                 if len(items) > MOST_ITEMS:
                     wrong(element, f"a user shape draws more than {MOST_ITEMS} pieces")

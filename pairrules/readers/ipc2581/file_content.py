@@ -14,8 +14,8 @@ from typing import TYPE_CHECKING, cast
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.copper import Copper
 from pairrules.readers.ipc2581.elements import child, clean, local, units, word, wrong
-from pairrules.readers.ipc2581.features import Shapes
-from pairrules.readers.ipc2581.layer_features import MOST_PIECES, SetReader, most_pieces, net_name
+from pairrules.readers.ipc2581.features import MOST_PIECES, Shapes, most_pieces
+from pairrules.readers.ipc2581.layer_features import SetReader, net_name
 from pairrules.readers.ipc2581.layers import LayerTable, read_layer, read_spec, read_stackup
 from pairrules.readers.ipc2581.nets import Nets, note_partner, read_logical_net, read_phy_net
 from pairrules.readers.ipc2581.parts import Parts, read_bom_item, read_component, read_package
@@ -89,7 +89,7 @@ class FileContent:
     shapes: Shapes = field(init=False)
 
     def __post_init__(self) -> None:
-        self.shapes = Shapes(self.remarks)
+        self.shapes = Shapes(self.remarks, most=self.most_pieces)
 
     def asked_too_early(self) -> bool:
         """Whether something was left out for want of what stands later in the file."""
@@ -338,8 +338,7 @@ class _Walk:
         self.content.steps[name] = self.step
         self.content.shapes.remarks = self.step.remarks
         content, step = self.content, self.step
-        most = content.most_pieces
-        self.sets = SetReader(step.copper, content.shapes, content.table, step.remarks, factor, most)
+        self.sets = SetReader(step.copper, content.shapes, content.table, step.remarks, factor)
 
     def _repeat(self, element: Element) -> None:
         if self.step is not None:

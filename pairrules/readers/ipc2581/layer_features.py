@@ -10,6 +10,7 @@ from pairrules.readers.ipc2581.drawing import Item, erasing, placed
 from pairrules.readers.ipc2581.elements import NO_NET, child, children, length, line, size, word, wrong
 from pairrules.readers.ipc2581.features import STYLES, Line, Shapes
 from pairrules.readers.ipc2581.layers import DRILLED, FileLayer, LayerTable
+from pairrules.readers.ipc2581.places import crowd_at
 from pairrules.readers.ipc2581.primitives import outer_pad
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Transform, location
@@ -18,20 +19,6 @@ if TYPE_CHECKING:
     from lxml.etree import _Element as Element
 
 FIDUCIALS = {"BadBoardMark", "GlobalFiducial", "GoodPanelMark", "LocalFiducial", "Fiducial"}
-MOST_PIECES = 5_000_000
-_FEW_PIECES = 200_000
-_BYTES_A_PIECE = 4
-
-
-def most_pieces(size: int) -> int:
-    """Pieces of copper and pins that a file of `size` bytes may come to.
-
-    Each takes dozens of bytes where it is written out; shapes that are named and repeated take fewer, but not next to
-    nothing: a small file that repeats a shape without end would fill the memory.
-    """
-    return min(MOST_PIECES, max(_FEW_PIECES, size // _BYTES_A_PIECE))
-
-
 _SILENT = {*STYLES, "SpecRef", "LineDescGroup", "ColorGroup"}
 
 
@@ -43,14 +30,13 @@ def net_name(element: Element, name: str = "net", default: str = "") -> str:
 
 @dataclass(slots=True)
 class SetReader:
-    """Reads the sets of one step. factor: millimetres in the header's unit. most_pieces: that the step may draw."""
+    """Reads the sets of one step. factor: millimetres in the header's unit."""
 
     copper: Copper
     shapes: Shapes
     table: LayerTable
     remarks: Remarks
     factor: float
-    most_pieces: int = MOST_PIECES
 
     def read(self, element: Element, layer_name: str, route_net: str) -> None:
         """A `Set` on a layer. route_net: net of the `Route` around it (revision A), "" where none."""
@@ -101,14 +87,14 @@ class SetReader:
                     drawn.append(shape)
         if drawn:
             self._stand(net, element)
+        # Counted before any is drawn: a shape and its places may be few lines, and what they draw may be no end.
+        self.shapes.spend(element, sum(shape.pieces for shape in drawn) * max(1, len(places)))
         for place in places or [0j]:
             by = turned.then(Transform(shift=place))
             for shape in drawn:
                 items = placed(shape.items, by)
                 dropped = self.copper.draw(erasing(items) if erase else items, layer, net)
                 self.remarks.count("{n} line piece{s} without length {are} left out", dropped, line=line(element))
-                if self.copper.size > self.most_pieces:
-                    wrong(element, f"the board draws more than {self.most_pieces} pieces")
 
     # -- pads ---------------------------------------------------------------------------------------------------------
 
@@ -137,11 +123,14 @@ class SetReader:
             shape = self.copper.stacks[stack].shapes.get(layer)
         self._stand(net, element)
         if erase:
+            self.shapes.spend(element, shape.pieces if shape else 0)
             self.copper.draw(erasing(placed(shape.items if shape else (), by)), layer, net)
             return
         order = self.copper.next()
         for owner, pin in pins or [(ref, "")]:
             plane = usage == "PLANE"
+            if self.copper.crowds.crowded(by.shift):
+                wrong(element, crowd_at(by.shift))
             self.copper.pads.append(PadRow(by, layer, net, owner, pin, shape, stack, usage == "VIA", order, plane))
 
     # -- holes --------------------------------------------------------------------------------------------------------
@@ -177,6 +166,7 @@ class SetReader:
                 if shape is None:
                     self.remarks.unknown(tag, "slots")
                 else:
+                    self.shapes.spend(element, shape.pieces)
                     items += placed(shape.items, Transform())
         outline = outer_pad(tuple(replace(item, erase=False) for item in items))
         if outline is None:

@@ -45,14 +45,13 @@ def place_pins(copper: Copper, parts: Parts, nets: Nets, table: LayerTable, most
     """
     known = {(pad.ref, pad.pin) for pad in copper.pads if pad.pin}
     loose: Places[PadRow] = Places()
-    asked = 0
+    asked = sum(len(parts.packages.get(component.package, {})) for component in parts.components.values())
+    if asked > most:
+        raise BoardError(f"the parts have more than {most} pins", remedy="export the file again")
     for pad in copper.pads:
         if not pad.pin and not pad.via:
             loose.put(pad.at, pad)
     for component in parts.components.values():
-        asked += len(parts.packages.get(component.package, {}))
-        if asked > most:
-            raise BoardError(f"the parts have more than {most} pins", remedy="export the file again")
         for pin, package_pin in parts.packages.get(component.package, {}).items():
             if (component.ref, pin) in known:
                 continue

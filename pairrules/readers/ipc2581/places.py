@@ -18,6 +18,24 @@ _CELL_MM = 0.02
 Thing = TypeVar("Thing")
 
 
+class Crowds:
+    """Counts things by place while they are read, so that a crowd is refused before all of it has been read."""
+
+    def __init__(self) -> None:
+        self._counts: dict[tuple[int, int], int] = {}
+
+    def crowded(self, at: complex) -> bool:
+        """Count a thing. Returns: whether more than `MOST_AT_ONE_PLACE` lie here."""
+        key = (math.floor(at.real / _CELL_MM), math.floor(at.imag / _CELL_MM))
+        count = self._counts[key] = self._counts.get(key, 0) + 1
+        return count > MOST_AT_ONE_PLACE
+
+
+def crowd_at(at: complex) -> str:
+    """What is wrong where a crowd lies."""
+    return f"more than {MOST_AT_ONE_PLACE} pads or holes lie at ({at.real:.3f}, {at.imag:.3f}) mm"
+
+
 class Places(Generic[Thing]):
     """A store of things by place, in the order put in."""
 
@@ -30,10 +48,7 @@ class Places(Generic[Thing]):
         cell = self._cells.setdefault(key, [])
         cell.append((at, thing))
         if len(cell) > MOST_AT_ONE_PLACE:
-            raise BoardError(
-                f"more than {MOST_AT_ONE_PLACE} pads or holes lie at ({at.real:.3f}, {at.imag:.3f}) mm",
-                remedy="export the file again",
-            )
+            raise BoardError(crowd_at(at), remedy="export the file again")
 
     def near(self, at: complex, within: float = NEAR_MM) -> list[Thing]:
         """The things within a distance [mm] of a place, at most a cell wide."""

@@ -40,6 +40,11 @@ class Primitive:
     pad: PadShape | None
     thermal: bool = False
 
+    @property
+    def pieces(self) -> int:
+        """Pieces of track and areas it comes to."""
+        return sum(item.pieces for item in self.items)
+
     def scaled_pad(self, scale: float) -> PadShape | None:
         """The pad at another scale."""
         pad = self.pad
