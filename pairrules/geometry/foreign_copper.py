@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 import numpy as np
 import shapely
 
 from pairrules.board.board import Board
-from pairrules.board.columns import Floats, Ints
+from pairrules.board.columns import Bools, Floats, Ints
 from pairrules.geometry.area_polygons import AreaPolygons
 from pairrules.geometry.copper_outlines import solid_parts
 from pairrules.geometry.layer_index import LayerIndexes
@@ -21,10 +23,13 @@ class ForeignCopper:
         self._layers = LayerIndexes(board, self._areas) if layers is None else layers
         self._rings: dict[int, tuple[RingRuns, Ints]] = {}
 
-    def near(self, layer: int, lines: Shapes, reach: Floats, own: tuple[int, ...] = ()) -> tuple[Ints, Floats, Ints]:
+    def near(
+        self, layer: int, lines: Shapes, reach: Floats, leg: Ints, own: Sequence[tuple[int, ...]]
+    ) -> tuple[Ints, Floats, Ints]:
         """Edges of copper within reach of lines, of every net and of none.
 
-        Parameters: lines: (k,). reach: (k,) [mm]. own: nets left out.
+        Parameters: lines: (k,). reach: (k,) [mm]. leg: (k,) which each line is part of. own: of each leg the nets left
+        out beside it.
         Returns: the line (n,), the edge (n, 2, 2) [mm] with copper to its left, and its net (n,), for every pair of a
         line and an edge within reach of it, and of a few further ones. Outlines of one net may overlap: an edge may lie
         within other copper.
@@ -34,7 +39,7 @@ class ForeignCopper:
         (filled, filled_net), of = self._rings[layer], self._layers.layer(layer)
         which, edge = filled.near(lines, reach)
         near, shape = of.tree.query(lines, predicate="dwithin", distance=reach + of.widest)
-        foreign = ~np.isin(of.drawn.net[shape], own)
+        foreign = ~_owned(leg[near], of.drawn.net[shape], own)
         near, shape = near[foreign], shape[foreign]
         shapes, place = np.unique(shape, return_inverse=True)
         parts, row = solid_parts(of.drawn.outlines(shapes))
@@ -52,8 +57,17 @@ class ForeignCopper:
         # Column by column, since reducing over two values a row costs more than all the rest.
         (x0, y0), (x1, y1), (left, low, right, high) = edges[:, 0].T, edges[:, 1].T, box[line].T
         within = (np.maximum(x0, x1) >= left) & (np.minimum(x0, x1) <= right)
-        within &= (np.maximum(y0, y1) >= low) & (np.minimum(y0, y1) <= high) & ~np.isin(net, own)
+        within &= (np.maximum(y0, y1) >= low) & (np.minimum(y0, y1) <= high) & ~_owned(leg[line], net, own)
         return line[within], edges[within], net[within]
+
+
+def _owned(leg: Ints, net: Ints, own: Sequence[tuple[int, ...]]) -> Bools:
+    """Whether each net is one of its leg's own."""
+    pairs = np.array([(one, held) for one, nets in enumerate(own) for held in nets], dtype=np.int64).reshape(-1, 2)
+    # Leg and net as one number; copper of no net has −1.
+    many = 2 + int(max(net.max(initial=-1), pairs[:, 1].max(initial=-1)))
+    owned: Bools = np.isin(leg * many + net + 1, pairs[:, 0] * many + pairs[:, 1] + 1)
+    return owned
 
 
 def _area_edges(areas: AreaPolygons, layer: int) -> tuple[RingRuns, Ints]:

@@ -40,15 +40,18 @@ class Nearest:
 class NearestTrack:
     """Nearest track of the other leg, for points on pieces of this leg."""
 
-    def __init__(self, own: Pieces, other: Pieces, rows: Ints, reach: float) -> None:
+    def __init__(self, own: Pieces, own_pair: Ints, other: Pieces, other_pair: Ints) -> None:
+        """own, other: pieces of this leg and of the other, of many pairs at once. own_pair, other_pair: of which."""
         self._own = curves_of(own)
         self._other = curves_of(other)
         self._half = own.width / 2
         self._other_half = other.width / 2
-        self.reach = reach
+        self._reach = np.full(len(own), np.inf)
         self.length = own.length
         tracks = np.flatnonzero(other.kind == TRACK)
-        first, second = _candidates(self._own, own.layer, self._other, other.layer, self._other_half, rows, tracks)
+        layers = 1 + max(int(one.layer.max(initial=0)) for one in (own, other))
+        levels = (own_pair * layers + own.layer, other_pair * layers + other.layer)
+        first, second = _candidates(self._own, levels[0], self._other, levels[1], self._other_half, tracks)
         order = np.lexsort((second, first))
         self._pairs = second[order]
         self._offset = np.searchsorted(first[order], np.arange(len(own) + 1))
@@ -61,9 +64,13 @@ class NearestTrack:
         inside: npt.NDArray[np.bool_] = (other >= 0) & (feature == 1) & flat
         return inside
 
-    def within_reach(self, found: Nearest) -> Nearest:
-        """What was found, judged by the reach that holds now."""
-        return replace(found, coupled=(found.gap <= self.reach) & (found.angle < COUPLED_TURN))
+    def reach_out(self, reach: Floats) -> None:
+        """From now on each piece of this leg counts as beside the other within its `reach` (k,)."""
+        self._reach = reach
+
+    def within_reach(self, rows: Ints, found: Nearest) -> Nearest:
+        """What was found for points on pieces `rows` (n,), judged by the reach that holds now."""
+        return replace(found, coupled=(found.gap <= self._reach[rows]) & (found.angle < COUPLED_TURN))
 
     def pairs(self) -> tuple[Ints, Ints]:
         """All candidate pairs: row of this leg, row of the other."""
@@ -101,17 +108,19 @@ class NearestTrack:
         angle = np.full(len(rows), np.nan)
         other[~none], angle[~none] = candidate[pick], turn[best]
         feature[~none] = np.where(foot[pick] <= 0.0, 0, np.where(foot[pick] >= 1.0, 2, 1))
-        coupled = (np.where(none, np.inf, least) <= self.reach) & (np.where(none, np.inf, angle) < COUPLED_TURN)
+        # Where there is none both are NaN, which is within nothing.
+        coupled = (least <= self._reach[rows]) & (angle < COUPLED_TURN)
         return Nearest(other, feature, least, angle, coupled)
 
-    def at_each(self, rows: Ints, *places: Floats) -> list[Nearest]:
-        """The same for several parameters on each piece, asked at once."""
-        found = self.at(np.tile(rows, len(places)), np.concatenate(places))
-        columns = [
-            np.split(column, len(places))
-            for column in (found.other, found.feature, found.gap, found.angle, found.coupled)
-        ]
-        return [Nearest(*one) for one in zip(*columns, strict=True)]
+    def gap_to(self, other: Ints, rows: Ints, t: Floats) -> Floats:
+        """Gap (n,) from the points at parameter t of this leg's pieces `rows` to given pieces of the other leg.
+
+        NaN where `other` is −1.
+        """
+        some = np.maximum(other, 0)
+        _, away = nearest(self._other.take(some), points(self._own.take(rows), t))
+        gap: Floats = np.where(other < 0, np.nan, away - self._half[rows] - self._other_half[some])
+        return gap
 
     def equal(self, rows: Ints, left: Floats, right: Floats, one: Ints, two: Ints) -> tuple[Ints, Floats]:
         """Places between two parameters where pieces `one` and `two` of the other leg change places as the nearest.
@@ -122,14 +131,16 @@ class NearestTrack:
         """
         same = one == two
         # Where there is no track of the other leg, nothing is guessed.
-        known = np.flatnonzero((one >= 0) & (two >= 0) & (~same | np.isfinite(self.reach)))
+        known = np.flatnonzero((one >= 0) & (two >= 0) & (~same | np.isfinite(self._reach[rows])))
         # The one that runs more nearly alongside counts as long as both are as good as equally near.
         known, more = np.tile(known, 2), np.repeat([-_TIE_MM, _TIE_MM], len(known))
         rows, one, two, same = rows[known], one[known], two[known], same[known]
         a, b, own, more = left[known], right[known], self._own.take(rows), np.where(same, 0.0, more)
 
         both = self._other.take(np.concatenate([one, two]))
-        half = self._other_half[one] + more + np.where(same, self.reach + self._half[rows], -self._other_half[two])
+        half = (
+            self._other_half[one] + more + np.where(same, self._reach[rows] + self._half[rows], -self._other_half[two])
+        )
 
         def apart(t: Floats) -> Floats:
             far = nearest(both, np.tile(points(own, t), (2, 1)))[1].reshape(2, -1)
@@ -139,10 +150,12 @@ class NearestTrack:
         at_a, at_b = apart(a), apart(b)
         crosses = at_a * at_b < 0
         for _ in range(_GUESSES):
-            if (np.abs(at_b[crosses]) < _EQUAL_MM).all():
+            settled = ~crosses | (np.abs(at_b) < _EQUAL_MM)
+            if settled.all():
                 break
             steep = at_b - at_a
             t = np.where(steep == 0.0, (a + b) / 2, b - at_b * (b - a) / np.where(steep == 0.0, 1.0, steep))
+            t = np.where(settled, b, t)
             at_t = apart(t)
             turned = at_t * at_b < 0
             a, at_a = np.where(turned, b, a), np.where(turned, at_b, at_a / 2)
@@ -156,36 +169,39 @@ def curves_of(pieces: Pieces) -> Curves:
 
 
 def _candidates(
-    own: Curves,
-    own_layer: Ints,
-    other: Curves,
-    other_layer: Ints,
-    other_half: Floats,
-    rows: Ints,
-    tracks: Ints,
+    own: Curves, own_level: Ints, other: Curves, other_level: Ints, other_half: Floats, tracks: Ints
 ) -> tuple[Ints, Ints]:
     """Pairs (this leg's row, other leg's row) among which the nearest of any point must be.
 
     A point of a piece is never farther from the piece's nearest neighbour than their distance plus the piece's length.
+    own_level, other_level: pair and layer as one number; only what is on one level is held against each other.
     """
-    none = np.zeros(0, dtype=np.int64)
-    found: list[tuple[Ints, Ints]] = []
-    for layer in np.unique(own_layer[rows]):
-        mine, theirs = rows[own_layer[rows] == layer], tracks[other_layer[tracks] == layer]
-        if not len(theirs):
-            continue
-        lines = _lines(other.take(theirs))
-        searched = _lines(own.take(mine))
-        tree = shapely.STRtree(lines)
-        (asked, _), away = tree.query_nearest(searched, return_distance=True, all_matches=False)
-        slack = 2 * (float(other_half[theirs].max()) - float(other_half[theirs].min())) + 2 * _SEARCH_MM
-        bound = np.zeros(len(mine))
-        bound[asked] = away
-        first, second = tree.query(searched, predicate="dwithin", distance=bound + lengths(own.take(mine)) + slack)
-        found.append((mine[first], theirs[second]))
-    if not found:
-        return none, none
-    return np.concatenate([first for first, _ in found]), np.concatenate([second for _, second in found])
+    levels, theirs = np.unique(other_level[tracks], return_inverse=True)
+    mine = np.flatnonzero(np.isin(own_level, levels))
+    if not len(mine):
+        return np.zeros(0, dtype=np.int64), np.zeros(0, dtype=np.int64)
+    own_place = np.searchsorted(levels, own_level[mine])
+    own, other = own.take(mine), other.take(tracks)
+    # Levels are searched side by side, too far apart for any to meet another: one search serves all.
+    ends = np.concatenate([own.start, own.end, other.start, other.end])
+    apart = 10.0 * (float(np.abs(ends).max()) + max(lengths(own).max(), lengths(other).max()) + 1.0)
+    searched = _lines(_moved(own, own_place * apart))
+    tree = shapely.STRtree(_lines(_moved(other, theirs * apart)))
+    (asked, _), away = tree.query_nearest(searched, return_distance=True, all_matches=False)
+    widest, narrowest = np.full(len(levels), -np.inf), np.full(len(levels), np.inf)
+    np.maximum.at(widest, theirs, other_half[tracks])
+    np.minimum.at(narrowest, theirs, other_half[tracks])
+    slack = 2 * (widest - narrowest)[own_place] + 2 * _SEARCH_MM
+    bound = np.zeros(len(mine))
+    bound[asked] = away
+    first, second = tree.query(searched, predicate="dwithin", distance=bound + lengths(own) + slack)
+    return mine[first], tracks[second]
+
+
+def _moved(curves: Curves, by: Floats) -> Curves:
+    """The curves moved along x, each by its own length."""
+    shift = np.column_stack([by, np.zeros(len(by))])
+    return Curves(start=curves.start + shift, end=curves.end + shift, centre=curves.centre + shift, sweep=curves.sweep)
 
 
 def _lines(curves: Curves) -> npt.NDArray[np.object_]:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -13,9 +14,10 @@ from pairrules.geometry.copper_outlines import centre_lines
 from pairrules.geometry.curves import Curves, parts
 from pairrules.geometry.facing_edges import Facing, Nearest, cut_further, enters, facing, nearest_facing
 from pairrules.geometry.foreign_copper import ForeignCopper
+from pairrules.geometry.legs import laid_out
 from pairrules.geometry.pair_geometry import TRACK, Pieces
 
-__all__ = ["STEP", "STEP_MM", "ForeignCopper", "NeighbourProfile", "neighbours"]
+__all__ = ["STEP", "STEP_MM", "ForeignCopper", "NeighbourProfile", "neighbours", "neighbours_of_legs"]
 
 STEP = 1.05
 """A gap that grows by more than this factor begins a new stretch: a gap's error of 5 % is within etching tolerance
@@ -82,22 +84,38 @@ def neighbours(
     *,
     copper: ForeignCopper | None = None,
 ) -> NeighbourProfile:
-    """The neighbours of one leg.
+    """The neighbours of one leg. Parameters as of `neighbours_of_legs`."""
+    (found,) = neighbours_of_legs([pieces], board, [own_nets], [within_mm], copper=copper)
+    return found
 
-    Parameters: pieces: the leg. own_nets: the nets of both legs, whose copper is not foreign and hides nothing
-    behind it. within_mm: greatest gap looked at. copper: of the board, where it is at hand from another leg.
+
+def neighbours_of_legs(
+    legs: Sequence[Pieces],
+    board: Board,
+    own_nets: Sequence[tuple[int, ...]],
+    within_mm: Sequence[float],
+    *,
+    copper: ForeignCopper | None = None,
+) -> list[NeighbourProfile]:
+    """The neighbours of m legs, all in one pass.
+
+    Parameters: own_nets: of each leg the nets of its pair, whose copper is not foreign and hides nothing behind it.
+    within_mm: greatest gap looked at beside each. copper: of the board, where it is at hand from another leg.
     Returns: exact stretches but for the flattening of round copper; arcs of the leg are not flattened.
     Source: lower envelope of segments (elementary geometry).
     """
     copper = ForeignCopper(board) if copper is None else copper
-    row = np.flatnonzero((pieces.kind == TRACK) & (pieces.length > 0))
-    length = pieces.length[row]
-    s_ends = np.concatenate([[0.0], np.cumsum(length)])
+    together = laid_out(legs)
+    pieces = together.pieces
+    is_track = (pieces.kind == TRACK) & (pieces.length > 0)
+    row = np.flatnonzero(is_track)
+    length, before = pieces.length[row], together.before(np.where(is_track, pieces.length, 0.0))[row]
     curves = Curves(start=pieces.start, end=pieces.end, centre=pieces.centre, sweep=pieces.sweep).take(row)
-    layer, half = pieces.layer[row], pieces.width[row] / 2
+    layer, half, leg = pieces.layer[row], pieces.width[row] / 2, together.leg[row]
+    reach = np.array(within_mm)[leg] + half
 
-    which, edges, net = _edges_near(copper, curves, layer, within_mm + half, own_nets)
-    faces = facing(curves.take(which), length[which], edges, (within_mm + half)[which])
+    which, edges, net = _edges_near(copper, curves, layer, reach, leg, own_nets)
+    faces = facing(curves.take(which), length[which], edges, reach[which])
     faces = Facing(row=which[faces.row], edge=faces.edge, begin=faces.begin, end=faces.end, side=faces.side)
     found = nearest_facing(curves, length, edges, faces)
     for _ in range(_ROUNDS):
@@ -120,29 +138,42 @@ def neighbours(
     least = np.fmin.reduceat(low, opens, axis=0) if len(track) else low
     track, begin, end = track[opens], found.begin[opens] - 2 * track[opens], found.end[closes] - 2 * track[closes]
     stretches = parts(curves, track, begin, end)
-    return NeighbourProfile(
-        s_from=s_ends[track] + begin * length[track],
-        s_to=np.where(end == 1.0, s_ends[track + 1], s_ends[track] + end * length[track]),
-        piece=row[track],
-        layer=layer[track],
-        start=stretches.start,
-        end=stretches.end,
-        left_gap=least[:, 0],
-        left_net=nets[opens, 0],
-        right_gap=least[:, 1],
-        right_net=nets[opens, 1],
-    )
+    s_from = before[track] + begin * length[track]
+    s_to = before[track] + np.where(end == 1.0, length[track], end * length[track])
+    profiles = []
+    for number, span in enumerate(together.spans(row[track])):
+        own = slice(*span)
+        profiles.append(
+            NeighbourProfile(
+                s_from=s_from[own],
+                s_to=s_to[own],
+                piece=row[track[own]] - together.first[number],
+                layer=layer[track[own]],
+                start=stretches.start[own],
+                end=stretches.end[own],
+                left_gap=least[own, 0],
+                left_net=nets[opens[own], 0],
+                right_gap=least[own, 1],
+                right_net=nets[opens[own], 1],
+            )
+        )
+    return profiles
 
 
 def _edges_near(
-    copper: ForeignCopper, curves: Curves, layer: Ints, reach: Floats, own_nets: tuple[int, ...]
+    copper: ForeignCopper,
+    curves: Curves,
+    layer: Ints,
+    reach: Floats,
+    leg: Ints,
+    own_nets: Sequence[tuple[int, ...]],
 ) -> tuple[Ints, Floats, Ints]:
     """Pairs of curve and foreign edge within reach on one layer: row of the curve, edge (k, 2, 2), net."""
     which, edges, nets = [np.empty(0, np.int64)], [np.empty((0, 2, 2))], [np.empty(0, np.int64)]
     for one in np.unique(layer).tolist():
         mine = np.flatnonzero(layer == one)
         lines = centre_lines(curves.take(mine))
-        near, edge, net = copper.near(one, lines, reach[mine] + 2 * FLATTENING_MM, own_nets)
+        near, edge, net = copper.near(one, lines, reach[mine] + 2 * FLATTENING_MM, leg[mine], own_nets)
         order = np.argsort(near, kind="stable")
         which.append(mine[near[order]])
         edges.append(edge[order])

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -12,11 +13,12 @@ from pairrules.board.columns import Bools, Floats, Ints, freeze
 from pairrules.geometry.copper_outlines import centre_lines
 from pairrules.geometry.curve_edges import crossings, nearest_to_edges
 from pairrules.geometry.curves import Curves, parts, points
+from pairrules.geometry.legs import laid_out
 from pairrules.geometry.pair_geometry import TRACK, Pieces
 from pairrules.geometry.reference_copper import NO_NET, UNKNOWN, ReferenceCopper
 from pairrules.geometry.ring_runs import RingRuns
 
-__all__ = ["NO_NET", "UNKNOWN", "Cover", "ReferenceCopper", "reference_cover"]
+__all__ = ["NO_NET", "UNKNOWN", "Cover", "ReferenceCopper", "reference_cover", "reference_covers"]
 
 _SAME_MM = 1e-9
 """Cuts nearer than this are one: far below any copper, far above rounding."""
@@ -84,21 +86,29 @@ class Cover:
 
 
 def reference_cover(pieces: Pieces, board: Board, reference: tuple[int, ...] | ReferenceCopper) -> Cover:
-    """The cover of one leg by reference copper on the copper layers next to its own.
+    """The cover of one leg. Parameters as of `reference_covers`."""
+    (cover,) = reference_covers([pieces], board, reference)
+    return cover
 
-    Parameters: pieces: the leg. reference: indices of the reference nets, or their copper where it is at hand from
-    another leg of the same board.
-    Returns: stretches cut exactly where a piece's centre line, arcs included, passes an edge of the copper.
+
+def reference_covers(legs: Sequence[Pieces], board: Board, reference: tuple[int, ...] | ReferenceCopper) -> list[Cover]:
+    """The cover of legs by reference copper on the copper layers next to their own, all in one pass.
+
+    Parameters: reference: indices of the reference nets, or their copper where it is at hand from another leg of the
+    same board.
+    Returns: of each leg stretches cut exactly where a piece's centre line, arcs included, passes an edge of the copper.
     Source: common practice, no source (a return current follows the nearest plane).
     """
     copper = reference if isinstance(reference, ReferenceCopper) else ReferenceCopper(board, reference)
-    length = pieces.length
-    row = np.flatnonzero((pieces.kind == TRACK) & (length > 0))
-    s_ends = np.concatenate([[0.0], np.cumsum(length[row])])
+    together = laid_out(legs)
+    pieces = together.pieces
+    is_track = (pieces.kind == TRACK) & (pieces.length > 0)
+    row = np.flatnonzero(is_track)
+    length, before = pieces.length[row], together.before(np.where(is_track, pieces.length, 0.0))[row]
     curves = Curves(start=pieces.start, end=pieces.end, centre=pieces.centre, sweep=pieces.sweep).take(row)
     layer = pieces.layer[row]
 
-    track, t_from, t_to = _cut(copper, curves, layer, length[row])
+    track, t_from, t_to = _cut(copper, curves, layer, length)
     middle = points(curves.take(track), (t_from + t_to) / 2)
     nets = [_next_net(copper, layer[track] + step, middle) for step in (-1, 1)]
     opens = np.ones(len(track), dtype=np.bool_)
@@ -109,27 +119,32 @@ def reference_cover(pieces: Pieces, board: Board, reference: tuple[int, ...] | R
     edges = [
         _edge_distance(copper, stretches, layer[track] + step, net) for step, net in zip((-1, 1), nets, strict=True)
     ]
-
-    s_from = s_ends[track] + t_from * length[row[track]]
-    s_to = np.where(t_to == 1.0, s_ends[track + 1], s_ends[track] + t_to * length[row[track]])
-    missing = _missing(copper, layer[track], nets)
+    s_from = before[track] + t_from * length[track]
+    s_to = before[track] + np.where(t_to == 1.0, length[track], t_to * length[track])
     bare = (nets[0] == NO_NET) & (nets[1] == NO_NET)
-    return Cover(
-        s_from=s_from,
-        s_to=s_to,
-        piece=row[track],
-        layer=layer[track],
-        start=stretches.start,
-        end=stretches.end,
-        above=nets[0],
-        below=nets[1],
-        edge_above=edges[0][0],
-        edge_below=edges[1][0],
-        edge_above_at=edges[0][1],
-        edge_below_at=edges[1][1],
-        uncovered_mm=None if missing else float((s_to - s_from)[bare].sum()),
-        missing=missing,
-    )
+    covers = []
+    for leg, (begin, end) in enumerate(together.spans(row[track])):
+        own = slice(begin, end)
+        missing = _missing(copper, layer[track[own]], [net[own] for net in nets])
+        covers.append(
+            Cover(
+                s_from=s_from[own],
+                s_to=s_to[own],
+                piece=row[track[own]] - together.first[leg],
+                layer=layer[track[own]],
+                start=stretches.start[own],
+                end=stretches.end[own],
+                above=nets[0][own],
+                below=nets[1][own],
+                edge_above=edges[0][0][own],
+                edge_below=edges[1][0][own],
+                edge_above_at=edges[0][1][own],
+                edge_below_at=edges[1][1][own],
+                uncovered_mm=None if missing else float((s_to - s_from)[own][bare[own]].sum()),
+                missing=missing,
+            )
+        )
+    return covers
 
 
 def _missing(copper: ReferenceCopper, layer: Ints, nets: list[Ints]) -> str:

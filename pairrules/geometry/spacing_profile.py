@@ -8,13 +8,15 @@ arcs included, until they no longer move; no cut is missed that lies between two
 
 from __future__ import annotations
 
-import math
+from collections.abc import Sequence
+from dataclasses import dataclass, fields
 
 import numpy as np
 
 from pairrules.board.columns import Floats, Ints
 from pairrules.geometry.curves import Curves, directions, nearest, parts, points
 from pairrules.geometry.gap_figures import usual_gap
+from pairrules.geometry.legs import Legs, laid_out
 from pairrules.geometry.nearest_track import Nearest, NearestTrack, curves_of
 from pairrules.geometry.pair_geometry import TRACK, Pieces, SpacingProfile
 
@@ -30,38 +32,70 @@ _FLAT_MM = 1e-7
 _NOTHING_MM = 1e-9
 
 
-def spacing_profiles(
-    plus: Pieces, minus: Pieces, reach_mm: float | None
-) -> tuple[SpacingProfile, SpacingProfile, float]:
-    """The profile of each leg, and the reach [mm] both use: the given one, else four times plus's usual gap."""
-    own = _Searched(plus, minus)
-    if reach_mm is None:
-        usual = usual_gap(own.profile(math.inf, exact=False))
-        reach_mm = max(LEAST_REACH_MM, REACH_GAPS * usual) if usual is not None else LEAST_REACH_MM
-    return own.profile(reach_mm), _Searched(minus, plus).profile(reach_mm), reach_mm
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Spacing:
+    """The profile of each leg of a pair, and the reach [mm] both use."""
+
+    plus: SpacingProfile
+    minus: SpacingProfile
+    reach_mm: float
+
+
+def spacing_profiles(pairs: Sequence[tuple[Pieces, Pieces]], reaches_mm: Sequence[float | None]) -> list[Spacing]:
+    """The spacing of each of m pairs (plus, minus), all in one pass.
+
+    reaches_mm: of each; `None` for four times plus's usual gap.
+    """
+    plus, minus = [one for one, _ in pairs], [other for _, other in pairs]
+    searched = _Searched([*plus, *minus], [*minus, *plus])
+    reaches = []
+    first = searched.profiles(np.full(2 * len(pairs), np.inf), len(pairs)) if None in reaches_mm else []
+    for place, reach in enumerate(reaches_mm):
+        usual = usual_gap(first[place]) if reach is None else None
+        wide = LEAST_REACH_MM if usual is None else max(LEAST_REACH_MM, REACH_GAPS * usual)
+        reaches.append(wide if reach is None else reach)
+    found = searched.profiles(np.tile(reaches, 2))
+    both = zip(found[: len(pairs)], found[len(pairs) :], reaches, strict=True)
+    return [Spacing(plus=one, minus=other, reach_mm=float(reach)) for one, other, reach in both]
 
 
 class _Searched:
-    """One leg, made ready to be asked for the other."""
+    """Legs, made ready to be asked for the leg each runs beside."""
 
-    def __init__(self, own: Pieces, other: Pieces) -> None:
-        self._own = own
-        rows = np.flatnonzero(own.kind == TRACK)
-        self._short, self._origin, self._t0, self._t1 = _short_pieces(own, rows)
-        self._search = NearestTrack(self._short, other, np.arange(len(self._short)), math.inf)
-        self._samples = _samples(self._short, other, *self._search.pairs())
+    def __init__(self, own: Sequence[Pieces], other: Sequence[Pieces]) -> None:
+        self._own, self._other = laid_out(own), laid_out(other)
+        pieces = self._own.pieces
+        rows = np.flatnonzero(pieces.kind == TRACK)
+        self._short, self._origin, self._t0, self._t1 = _short_pieces(pieces, rows)
+        self._leg = self._own.leg[self._origin]
+        self._search = NearestTrack(self._short, self._leg, self._other.pieces, self._other.leg)
+        self._samples = _samples(self._short, self._other.pieces, *self._search.pairs())
         self._found = self._search.at(*self._samples)
 
-    def profile(self, reach: float, *, exact: bool = True) -> SpacingProfile:
-        """The profile; not exact, its cuts lie at the nearest samples, enough to see which gap lasts longest."""
-        self._search.reach = reach
+    def profiles(self, reach: Floats, rough: int = 0) -> list[SpacingProfile]:
+        """The profile of each leg with its `reach` (legs,).
+
+        rough: only the first so many legs, their cuts at the nearest samples: enough to see which gap lasts longest.
+        """
+        self._search.reach_out(reach[self._leg])
         piece, t = self._samples
-        label = self._search.within_reach(self._found).label()
-        if exact:
-            piece, t = _with_cuts(self._search, piece, t, label)
+        label = self._search.within_reach(piece, self._found).label()
+        if rough:
+            count = int(np.searchsorted(self._leg[piece], rough))
+            piece, t, _ = _thinned(self._search, piece[:count], t[:count], label[:count])
         else:
-            piece, t, _ = _thinned(self._search, piece, t, label)
-        return _stretches(self._own, self._origin, self._t0, self._t1, self._search, piece, t)
+            piece, t = _with_cuts(self._search, piece, t, label)
+        return self._split(_stretches(self._own, self._origin, self._t0, self._t1, self._search, piece, t))
+
+    def _split(self, whole: SpacingProfile) -> list[SpacingProfile]:
+        found = []
+        for leg, (begin, end) in enumerate(self._own.spans(whole.piece)):
+            columns = {one.name: getattr(whole, one.name)[begin:end] for one in fields(SpacingProfile)}
+            columns["piece"] = columns["piece"] - self._own.first[leg]
+            other = columns["other"]
+            columns["other"] = np.where(other >= 0, other - self._other.first[leg], other)
+            found.append(SpacingProfile(**columns))
+        return found
 
 
 def _short_pieces(own: Pieces, rows: Ints) -> tuple[Pieces, Ints, Floats, Floats]:
@@ -156,16 +190,16 @@ def _with_cuts(search: NearestTrack, piece: Ints, t: Floats, label: Ints) -> tup
             break
         low, high = left.copy(), right.copy()
         after = right_label.copy()
-        every = np.arange(len(row))
-        while ((high - low) > _CUT).any():
+        wide = np.arange(len(row))
+        while len(wide := wide[high[wide] - low[wide] > _CUT]):
             # In many parts at once, since a question costs hardly more for many points than for one.
-            inner = low[:, None] + (high - low)[:, None] * _PARTS
-            seen = search.at(np.repeat(row, len(_PARTS)), inner.ravel()).label().reshape(inner.shape)
-            other = np.column_stack([seen != left_label[:, None], np.ones(len(row), dtype=np.bool_)])
-            first = np.argmax(other, axis=1)
-            ends = np.column_stack([low, inner, high])
-            after = np.column_stack([seen, after])[every, first]
-            low, high = ends[every, first], ends[every, first + 1]
+            inner = low[wide, None] + (high - low)[wide, None] * _PARTS
+            seen = search.at(np.repeat(row[wide], len(_PARTS)), inner.ravel()).label().reshape(inner.shape)
+            other = np.column_stack([seen != left_label[wide, None], np.ones(len(wide), dtype=np.bool_)])
+            first, every = np.argmax(other, axis=1), np.arange(len(wide))
+            ends = np.column_stack([low[wide], inner, high[wide]])
+            after[wide] = np.column_stack([seen, after[wide]])[every, first]
+            low[wide], high[wide] = ends[every, first], ends[every, first + 1]
         extra_piece += [row, row]
         extra_t += [low, high]
         more = (after != right_label) & (right - high > _CUT)
@@ -195,18 +229,26 @@ def _bent_cut_finer(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints,
     """Stretches halved until a parabola through three points gives the gap within `_FLAT_MM`."""
     row, a, b = _spans(search, piece, t)
     extra: list[tuple[Ints, Floats]] = [(piece, t)]
-    bent = ~search.straight(row, search.at(row, (a + b) / 2).label())
-    row, a, b = row[bent], a[bent], b[bent]
+    middle = search.at(row, (a + b) / 2)
+    # Over a stretch one piece is nearest, so that no other need be asked for.
+    bent = np.flatnonzero(~search.straight(row, middle.label()) & (middle.other >= 0))
+    row, a, b, other, at_half = row[bent], a[bent], b[bent], middle.other[bent], middle.gap[bent]
+    at_a, at_b = search.gap_to(np.tile(other, 2), np.tile(row, 2), np.concatenate([a, b])).reshape(2, -1)
     for _ in range(8):
         if not len(row):
             break
-        places = a + (b - a) * np.array([[1e-9], [0.25], [0.5], [1 - 1e-9]])
-        start, quarter, middle, end = search.at(np.tile(row, 4), places.ravel()).gap.reshape(4, -1)
-        off = np.abs(quarter - (3 * start + 6 * middle - end) / 8) > _FLAT_MM
-        row, a, b = row[off], a[off], b[off]
+        places = a + (b - a) * np.array([[0.25], [0.75]])
+        quarter, late = search.gap_to(np.tile(other, 2), np.tile(row, 2), places.ravel()).reshape(2, -1)
+        off = np.abs(quarter - (3 * at_a + 6 * at_half - at_b) / 8) > _FLAT_MM
+        off |= np.abs(late - (3 * at_b + 6 * at_half - at_a) / 8) > _FLAT_MM
+        row, a, b, other = row[off], a[off], b[off], other[off]
+        at_a, quarter, at_half, late, at_b = (one[off] for one in (at_a, quarter, at_half, late, at_b))
         half = (a + b) / 2
         extra.append((row, half))
-        row, a, b = np.tile(row, 2), np.concatenate([a, half]), np.concatenate([half, b])
+        row, other = np.tile(row, 2), np.tile(other, 2)
+        a, b = np.concatenate([a, half]), np.concatenate([half, b])
+        at_a, at_b = np.concatenate([at_a, at_half]), np.concatenate([at_half, at_b])
+        at_half = np.concatenate([quarter, late])
     piece, t = np.concatenate([p for p, _ in extra]), np.concatenate([at for _, at in extra])
     order = np.lexsort((t, piece))
     return piece[order], t[order]
@@ -219,12 +261,14 @@ def _spans(search: NearestTrack, piece: Ints, t: Floats) -> tuple[Ints, Floats, 
 
 
 def _stretches(
-    own: Pieces, origin: Ints, t0: Floats, t1: Floats, search: NearestTrack, piece: Ints, t: Floats
+    legs: Legs, origin: Ints, t0: Floats, t1: Floats, search: NearestTrack, piece: Ints, t: Floats
 ) -> SpacingProfile:
+    own = legs.pieces
     row, a, b = _spans(search, piece, t)
-    inward = np.minimum(1e-10, (b - a) / 4)
-    start, middle, end = search.at_each(row, a + inward, (a + b) / 2, b - inward)
-    before = np.cumsum(np.where(own.kind == TRACK, own.length, 0.0)) - np.where(own.kind == TRACK, own.length, 0.0)
+    middle = search.at(row, (a + b) / 2)
+    ends = search.gap_to(np.tile(middle.other, 2), np.tile(row, 2), np.concatenate([a, b]))
+    start, end = ends.reshape(2, -1)
+    before = legs.before(np.where(own.kind == TRACK, own.length, 0.0))
     t_from, t_to = t0[row] + (t1 - t0)[row] * a, t0[row] + (t1 - t0)[row] * b
     of = origin[row]
     s_from, s_to = before[of] + own.length[of] * t_from, before[of] + own.length[of] * t_to
@@ -234,15 +278,15 @@ def _stretches(
     curves = curves_of(own)
     # Over a group the gap is linear, so its middle is the mean; a group of one keeps its measured middle.
     single = first == last
-    mid = np.where(single, middle.gap[first], (start.gap[first] + end.gap[last]) / 2)
+    mid = np.where(single, middle.gap[first], (start[first] + end[last]) / 2)
     return SpacingProfile(
         s_from=s_from[first],
         s_to=s_to[last],
         piece=of[first],
         other=middle.other[first],
-        gap_from=start.gap[first],
+        gap_from=start[first],
         gap_mid=mid,
-        gap_to=end.gap[last],
+        gap_to=end[last],
         angle=middle.angle[first],
         coupled=middle.coupled[first],
         start=points(curves.take(of[first]), t_from[first]),
@@ -251,20 +295,20 @@ def _stretches(
     )
 
 
-def _steady_groups(of: Ints, middle: Nearest, start: Nearest, end: Nearest, s_from: Floats, s_to: Floats) -> Ints:
+def _steady_groups(of: Ints, middle: Nearest, start: Floats, end: Floats, s_from: Floats, s_to: Floats) -> Ints:
     """A number for each stretch, the same for neighbours on one piece that continue one straight course of the gap."""
     if not len(of):
         return np.zeros(0, dtype=np.int64)
     size = s_to - s_from
-    slope = (end.gap - start.gap) / size
-    bent = np.abs(middle.gap - (start.gap + end.gap) / 2) > _FLAT_MM
+    slope = (end - start) / size
+    bent = np.abs(middle.gap - (start + end) / 2) > _FLAT_MM
     label = middle.other * 2 + middle.coupled
     joined = (
         (of[1:] == of[:-1])
         & (label[1:] == label[:-1])
         & ~bent[1:]
         & ~bent[:-1]
-        & (np.abs(start.gap[1:] - end.gap[:-1]) < _FLAT_MM)
+        & (np.abs(start[1:] - end[:-1]) < _FLAT_MM)
         & (np.abs(slope[1:] - slope[:-1]) * np.maximum(size[1:], size[:-1]) < _FLAT_MM)
     )
     unknown = np.isnan(middle.gap)

@@ -82,12 +82,14 @@ def gaps(path: str) -> dict[str, float]:
     links = find_links(board, listed=(), ignore=(), reference=reference).links
     index = BoardCopper(board, reference).index
     with _Clock() as ours:
-        found = {}
+        pairs = []
         for link in links:
             plus, minus = leg_route(board, index, link.hops_plus), leg_route(board, index, link.hops_minus)
             assert isinstance(plus, LegRoute)
             assert isinstance(minus, LegRoute)
-            found[link.name] = gap_figures(spacing_profiles(plus.pieces, minus.pieces, None)[0])
+            pairs.append((plus.pieces, minus.pieces))
+        spacings = spacing_profiles(pairs, [None] * len(pairs))
+        found = {link.name: gap_figures(one.plus) for link, one in zip(links, spacings, strict=True)}
     nets = read_segments(Path(path))
     with _Clock() as theirs:
         sampled = {}
