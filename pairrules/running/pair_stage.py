@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import date
 from functools import cached_property
@@ -20,9 +21,11 @@ from pairrules.checks.waiving import waive
 from pairrules.drawn.pair_drawing import pair_drawing
 from pairrules.drawn.window_copper import DrawnBoard
 from pairrules.geometry.board_copper import BoardCopper
-from pairrules.geometry.measure import measure_link
+from pairrules.geometry.measure import Asked, measure_links
+from pairrules.geometry.pair_geometry import PairGeometry
 from pairrules.pairing.link import Hop, Link
 from pairrules.result import FoundPair, PairResult, SeriesPart, WaiverState
+from pairrules.settings.limit import Limit
 from pairrules.settings.pair_class import PairClass
 from pairrules.settings.settings import Settings
 from pairrules.settings.waivers import Waiver
@@ -70,16 +73,26 @@ class PairStage:
     def __getstate__(self) -> dict[str, object]:
         return {name: value for name, value in self.__dict__.items() if name not in {"copper", "drawn"}}
 
-    def judge(self, link: Link) -> Judged:
-        """Measure a link, solve its sections, let every rule with a limit judge."""
+    def judge(self, links: Sequence[Link]) -> list[Judged]:
+        """Measure links, solve their sections, let every rule with a limit judge."""
+        classes = [self.settings.class_of(link.name, net_names(self.board, link), link.klass) for link in links]
+        limits = [self.settings.limits_for(klass) for klass in classes]
+        asked = [
+            Asked(
+                link=link,
+                reach_mm=None if klass is None else klass.reach_mm,
+                beside=bool(own.keys() & BESIDE_RULES),
+            )
+            for link, klass, own in zip(links, classes, limits, strict=True)
+        ]
+        measured = measure_links(self.board, asked, copper=self.copper)
+        every = zip(links, measured, classes, limits, strict=True)
+        return [self._judged(link, geometry, klass, own) for link, geometry, klass, own in every]
+
+    def _judged(
+        self, link: Link, geometry: PairGeometry, klass: PairClass | None, limits: Mapping[str, Limit]
+    ) -> Judged:
         board, rules = self.board, all_rules()
-        klass = self.settings.class_of(link.name, net_names(board, link), link.klass)
-        reach = None if klass is None else klass.reach_mm
-        limits = self.settings.limits_for(klass)
-        beside = bool(limits.keys() & BESIDE_RULES)
-        geometry = measure_link(
-            board, link, reach_mm=reach, reference=self.reference, copper=self.copper, beside=beside
-        )
         figures = electrical(board, link, geometry, klass, copper=self.copper, store=self.store)
         measures = with_electrical(geometric_measures(geometry), figures)
         pins = pin_extra(

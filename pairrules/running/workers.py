@@ -20,10 +20,11 @@ Progress = Callable[[str, int, int], None]
 Given = TypeVar("Given")
 Made = TypeVar("Made")
 
-_FIRST, _MANY = 4, 64
+_MANY = 64
 _MOST_LINKS = 16
-_SHARES = 4
-"""Links go to the workers in so many shares each, `_MOST_LINKS` at most in one, lest one be left with the long ones."""
+_SHARES = 8
+"""Links are judged in so many shares or more, `_MOST_LINKS` at most in one: whatever the number of processes, the same
+are measured in one pass, and none is left with all the long ones."""
 
 
 def judge_links(
@@ -36,17 +37,16 @@ def judge_links(
     """
     found: list[Judged] = []
     every = len(links)
-    if jobs > 1 and len(links) > _MANY:
+    size = max(1, min(_MOST_LINKS, every // _SHARES))
+    shares = [links[i : i + size] for i in range(0, every, size)]
+    if jobs > 1 and every > _MANY:
         # What they need of the board's copper is then at hand when the workers fork, once for all.
-        found += [stage.judge(link) for link in links[:_FIRST]]
-        links = links[_FIRST:]
-    size = max(1, min(_MOST_LINKS, -(-len(links) // (jobs * _SHARES))))
-    shares = [links[i : i + size] for i in range(0, len(links), size)]
+        found += stage.judge(shares.pop(0))
     if jobs == 1 or len(shares) < 2:
-        for done, link in enumerate(links):
+        for share in shares:
             if progress is not None:
-                progress("measuring pairs", done, every)
-            found.append(stage.judge(link))
+                progress("measuring pairs", len(found), every)
+            found += stage.judge(share)
         return found
     try:
         for judged in in_processes(_judge_share, shares, jobs=min(jobs, len(shares)), start=_take_stage, given=stage):
@@ -103,4 +103,4 @@ def _take_stage(stage: PairStage) -> None:
 
 
 def _judge_share(links: Sequence[Link]) -> list[Judged]:
-    return [_STAGE[0].judge(link) for link in links]
+    return _STAGE[0].judge(links)
