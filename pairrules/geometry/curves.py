@@ -28,7 +28,14 @@ class Curves:
 
     def take(self, rows: Ints | npt.NDArray[np.bool_]) -> Curves:
         """The pieces of the given rows."""
-        return Curves(start=self.start[rows], end=self.end[rows], centre=self.centre[rows], sweep=self.sweep[rows])
+        some = np.flatnonzero(rows) if rows.dtype == np.bool_ else rows
+        # `take` along rows of two is an order of magnitude faster than indexing.
+        return Curves(
+            start=self.start.take(some, axis=0),
+            end=self.end.take(some, axis=0),
+            centre=self.centre.take(some, axis=0),
+            sweep=self.sweep.take(some),
+        )
 
 
 def lengths(curves: Curves) -> Floats:

@@ -97,23 +97,26 @@ def gap_figures(profile: SpacingProfile) -> GapFigures:
     least, greatest = every.min(axis=0), every.max(axis=0)
     flat = greatest - least <= _SAME_MM
 
-    def below(gaps: Floats) -> Floats:
-        """Length over which the gap is at most each of `gaps` (m,)."""
+    def below(gaps: Floats, left: float, right: float) -> Floats:
+        """Length over which the gap is at most each of `gaps` (m,), none of which lies beyond left or right."""
+        some = np.flatnonzero((greatest > left - _SAME_MM) & (least <= right + _SAME_MM))
         gap = gaps[:, None]
-        share = np.where(flat, gap >= (least + greatest) / 2, _share_below(start - gap, slope, bend))
-        return share @ length
+        middle = (least[some] + greatest[some]) / 2
+        share = np.where(flat[some], gap >= middle, _share_below(start[some] - gap, slope[some], bend[some]))
+        return share @ length[some] + float(length[greatest <= left - _SAME_MM].sum())
 
     def reaching(part: float, left: float) -> float:
         right = float(greatest.max())
         while right - left > _SAME_MM / 10:
             # In many parts at once, since a question costs hardly more for many gaps than for one.
             places = np.concatenate([[left], left + (right - left) * _PARTS, [right]])
-            first = 1 + int(np.argmax(np.append(below(places[1:-1]) >= part, True)))
+            first = 1 + int(np.argmax(np.append(below(places[1:-1], left, right) >= part, True)))
             left, right = float(places[first - 1]), float(places[first])
         return right
 
     median = reaching(size / 2 * (1 - 1e-12), float(least.min()) - _SAME_MM)
-    if below(np.array([median + _SAME_MM]))[0] < size / 2 * (1 + 1e-12):
+    beyond = median + _SAME_MM
+    if below(np.array([beyond]), median, beyond)[0] < size / 2 * (1 + 1e-12):
         # Exactly half the length lies below a step: the middle of the step.
         median = (median + reaching(size / 2 * (1 + 1e-12), median)) / 2
     return GapFigures(least=float(least.min()), median=median, greatest=float(greatest.max()), coupled_mm=size)

@@ -88,7 +88,7 @@ class NearestTrack:
             nothing = np.zeros(len(rows), dtype=np.int64)
             return Nearest(nothing - 1, nothing, unknown, unknown, np.zeros(len(rows), dtype=np.bool_))
         own = self._own.take(rows)
-        foot, away = nearest(self._other.take(candidate), points(own, t)[owner])
+        foot, away = nearest(self._other.take(candidate), points(own, t).take(owner, axis=0))
         gap = away - self._half[rows][owner] - self._other_half[candidate]
         least = np.full(len(rows), np.nan)
         least[~none] = np.minimum.reduceat(gap, (np.cumsum(count) - count)[~none])

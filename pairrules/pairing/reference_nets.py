@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
 import numpy as np
 
-from pairrules.board.areas import Area
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats
 from pairrules.pairing.net_patterns import matches
@@ -46,17 +46,26 @@ def reference_nets(board: Board, globs: tuple[str, ...] | None) -> tuple[int, ..
 def _areas_mm2(board: Board) -> Floats:
     """Total area [mm²] of each net, holes taken off."""
     pieces: list[list[float]] = [[] for _ in board.nets]
-    for area in board.areas:
-        if area.net >= 0:
-            pieces[area.net].append(_area_mm2(area))
+    nets = [area.net for area in board.areas for _ in range(1 + len(area.holes))]
+    outer = [hole < 0 for area in board.areas for hole in range(-1, len(area.holes))]
+    rings = [ring for area in board.areas for ring in (area.outline, *area.holes)]
+    for net, is_outline, size in zip(nets, outer, _rings_mm2(rings), strict=True):
+        if net >= 0:
+            pieces[net].append(size if is_outline else -size)
     return np.array([math.fsum(of_net) for of_net in pieces], dtype=np.float64)
 
 
-def _area_mm2(area: Area) -> float:
-    return _ring_mm2(area.outline) - math.fsum(_ring_mm2(hole) for hole in area.holes)
-
-
-def _ring_mm2(ring: Floats) -> float:
-    """Area within a closed line. Source: the shoelace formula, ½ |Σ (x_i y_{i+1} − x_{i+1} y_i)| (Gauss)."""
-    x, y = (ring - ring[0]).T
-    return abs(float(np.dot(x, np.roll(y, -1)) - np.dot(y, np.roll(x, -1)))) / 2
+def _rings_mm2(rings: Sequence[Floats]) -> list[float]:
+    """Area within each closed line. Source: the shoelace formula, ½ |Σ (x_i y_{i+1} − x_{i+1} y_i)| (Gauss)."""
+    size = np.array([len(ring) for ring in rings], dtype=np.int64)
+    if not len(size):
+        return []
+    first = np.cumsum(size) - size
+    at = np.concatenate(rings)
+    # About its own first corner, which keeps the digits of a small ring far from the origin.
+    x, y = (at - np.repeat(at.take(first, axis=0), size, axis=0)).T
+    following = np.arange(1, len(at) + 1)
+    following[first + size - 1] = first
+    cross = x * y.take(following) - x.take(following) * y
+    found: list[float] = (np.abs(np.add.reduceat(cross, first)) / 2).tolist()
+    return found
