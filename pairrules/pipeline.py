@@ -49,7 +49,7 @@ def check(
     drawing: bool = False,
     today: date | None = None,
     settings_of: str | Path | None = None,
-    jobs: int = 1,
+    jobs: int | None = 1,
     progress: Progress | None = None,
 ) -> Result:
     """Read a board, measure its pairs, judge them.
@@ -63,7 +63,8 @@ def check(
     drawing: whether the result carries what pictures and pages draw, which takes longer.
     today: the day that decides which waivers have expired; `None` for the clock's.
     settings_of: the board whose settings and waivers hold, where it is not this one and `settings` is `None`.
-    jobs: how many processes measure pairs; the result is the same for any number.
+    jobs: how many processes measure pairs, `None` for as many as there are processors where there are many pairs; the
+        result is the same for any number.
     progress: called as the work goes on.
 
     Raises

@@ -60,8 +60,11 @@ def boards_of(arguments: Sequence[str]) -> tuple[tuple[str, bool], ...]:
     return tuple(named.items())
 
 
-def judged(asked: Sequence[Asked], *, jobs: int) -> Iterator[Result | UserError | None]:
-    """What became of each board, in order: its result, its error, or `None` where it was found and is no board."""
+def judged(asked: Sequence[Asked], *, jobs: int | None) -> Iterator[Result | UserError | None]:
+    """What became of each board, in order: its result, its error, or `None` where it was found and is no board.
+
+    jobs: how many processes; `None` for as many as there are processors.
+    """
     if jobs == 1 or len(asked) == 1:
         for one in asked:
             with ProgressLine() as progress:
@@ -69,8 +72,9 @@ def judged(asked: Sequence[Asked], *, jobs: int) -> Iterator[Result | UserError 
         return
     from concurrent.futures.process import BrokenProcessPool
 
-    from pairrules.running.workers import in_processes
+    from pairrules.running.workers import in_processes, processors
 
+    jobs = processors() if jobs is None else jobs
     done = 0
     with ProgressLine() as progress:
         try:
@@ -97,7 +101,7 @@ def _hidden(path: Path, folder: str) -> bool:
     return any(part.startswith(".") for part in path.relative_to(folder).parts)
 
 
-def _judge(asked: Asked, *, jobs: int = 1, progress: ProgressLine | None = None) -> Result | UserError | None:
+def _judge(asked: Asked, *, jobs: int | None = 1, progress: ProgressLine | None = None) -> Result | UserError | None:
     if asked.found:
         from pairrules.running.foreign import is_foreign
 

@@ -82,7 +82,7 @@ def command(
     step: str,
     today: date | None,
     skip_foreign: bool,
-    jobs: int,
+    jobs: int | None,
     cached: bool,
 ) -> None:
     """Judge the pairs of each BOARD (IPC-2581 XML or plain JSON) against the limits of their classes.

@@ -26,7 +26,7 @@ def earlier_result(
     pair: str = "*",
     step: str = "",
     today: date | None = None,
-    jobs: int = 1,
+    jobs: int | None = 1,
     cached: bool = False,
 ) -> Result:
     """The result in a file of JSON, or of judging the board in it; only pairs that match `pair`.

@@ -101,12 +101,12 @@ def _check(name: str, new: Path, old: Path | None, top: Path) -> int:
         since=before,
         cached=False,
     )
-    (outcome,) = judged([asked], jobs=1)
+    (outcome,) = judged([asked], jobs=None)
     if outcome is None:
         return 0
     if isinstance(outcome, UserError) and before is not None and outcome.file.startswith(before):
         # The version that was committed cannot be judged: the staged one is, by itself.
-        (outcome,) = judged([replace(asked, since=None)], jobs=1)
+        (outcome,) = judged([replace(asked, since=None)], jobs=None)
     if isinstance(outcome, UserError):
         for line in error_lines(outcome):
             click.echo(line.replace(f"{new}{os.sep}", ""), err=True)

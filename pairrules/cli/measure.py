@@ -47,7 +47,7 @@ def command(
     pair: str,
     step: str,
     today: date | None,
-    jobs: int,
+    jobs: int | None,
     cached: bool,
 ) -> None:
     """Print all figures of the pairs of BOARD. Exit status 0 whatever they are, 2 and 3 as `check`."""

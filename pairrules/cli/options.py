@@ -38,9 +38,9 @@ today_option = click.option(
 jobs_option = click.option(
     "--jobs",
     type=click.IntRange(min=1),
-    default=1,
+    default=None,
     metavar="N",
-    help="Work in so many processes; the result is the same for any number.",
+    help="Work in so many processes; as many as there are processors where that pays. The result is the same for any.",
 )
 cache_option = click.option(
     "--cache/--no-cache",

@@ -37,7 +37,7 @@ def command(
     pair: str,
     step: str,
     today: date | None,
-    jobs: int,
+    jobs: int | None,
 ) -> None:
     """Write a page on BOARD that opens from disk: the board, its flagged pairs, and a decision for each finding.
 

@@ -18,6 +18,8 @@ fill the memory."""
 
 _SAME_MM = 1e-9
 _PARTS = np.arange(1, 16) / 16
+_ROUNDS = 14
+"""Enough to come from ten metres to where doubles end."""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -107,7 +109,9 @@ def gap_figures(profile: SpacingProfile) -> GapFigures:
 
     def reaching(part: float, left: float) -> float:
         right = float(greatest.max())
-        while right - left > _SAME_MM / 10:
+        for _ in range(_ROUNDS):
+            if right - left <= _SAME_MM / 1000:
+                break
             # In many parts at once, since a question costs hardly more for many gaps than for one.
             places = np.concatenate([[left], left + (right - left) * _PARTS, [right]])
             first = 1 + int(np.argmax(np.append(below(places[1:-1], left, right) >= part, True)))

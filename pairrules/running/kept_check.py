@@ -43,7 +43,7 @@ def kept_check(
     step: str = "",
     today: date | None = None,
     settings_of: str | None = None,
-    jobs: int = 1,
+    jobs: int | None = 1,
     progress: Progress | None = None,
     kept: KeptResults | None,
 ) -> Result:

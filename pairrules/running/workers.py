@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import multiprocessing
+import os
 import signal
 import sys
 from collections.abc import Callable, Iterable, Iterator, Sequence
@@ -21,6 +22,7 @@ Given = TypeVar("Given")
 Made = TypeVar("Made")
 
 _MANY = 64
+_MOST_PROCESSES = 8
 _MOST_LINKS = 16
 _SHARES = 8
 """Links are judged in so many shares or more, `_MOST_LINKS` at most in one: whatever the number of processes, the same
@@ -28,15 +30,17 @@ are measured in one pass, and none is left with all the long ones."""
 
 
 def judge_links(
-    stage: PairStage, links: Sequence[Link], *, jobs: int = 1, name: str = "", progress: Progress | None = None
+    stage: PairStage, links: Sequence[Link], *, jobs: int | None = 1, name: str = "", progress: Progress | None = None
 ) -> list[Judged]:
     """Every link judged, in order.
 
-    Parameters: jobs: how many processes. name: of the board, for messages. progress: called as the work goes on.
+    Parameters: jobs: how many processes, `None` for as many as pay. name: of the board, for messages. progress: called as the work goes on.
     Raises: BoardError where a worker process ended before its work was done.
     """
     found: list[Judged] = []
     every = len(links)
+    if jobs is None:
+        jobs = processors() if every > _MANY else 1
     size = max(1, min(_MOST_LINKS, every // _SHARES))
     shares = [links[i : i + size] for i in range(0, every, size)]
     if jobs > 1 and every > _MANY:
@@ -60,6 +64,12 @@ def judge_links(
             remedy="free memory or take fewer --jobs, then run again",
         ) from None
     return found
+
+
+def processors() -> int:
+    """How many processes may work at once here, `_MOST_PROCESSES` at most: each takes memory of its own."""
+    usable = len(os.sched_getaffinity(0)) if sys.platform == "linux" else os.cpu_count()
+    return min(usable or 1, _MOST_PROCESSES)
 
 
 def in_processes(
