@@ -14,7 +14,7 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
-from pairrules.balance.networks import CAUSES, Element
+from pairrules.balance.networks import CAUSES, Element, chains_of
 from pairrules.fields.chain_matrix import Complexes
 
 FLOOR_DB = -400.0
@@ -68,19 +68,22 @@ def by_cause(link: Sequence[Element], frequencies: npt.ArrayLike) -> Mapping[str
 
     Only causes that the link has elements of are there. While all are small they add up, with phase, to the whole.
     """
-    present = {element.cause for element in link}
+    return response_by_cause(link, frequencies)[1]
+
+
+def response_by_cause(link: Sequence[Element], frequencies: npt.ArrayLike) -> tuple[Response, Mapping[str, Complexes]]:
+    """As `solve` and `by_cause`, at the cost of one; no value of the link has an axis of samples."""
+    causes = [element.cause for element in link]
+    present = [cause for cause in CAUSES if cause in causes]
     omega = _omega(frequencies)
     with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
-        given = [element.chain(omega) for element in link]
-        equal = [element.symmetrised().chain(omega) for element in link]
-    return {
-        cause: response(
-            [own if element.cause == cause else alike for element, own, alike in zip(link, given, equal, strict=True)],
-            omega,
-        ).conversion
-        for cause in CAUSES
-        if cause in present
-    }
+        given, equal = chains_of(link, omega)
+    # The whole link comes first, then one variant a cause.
+    own = np.array([[True] * len(link), *([one == cause for one in causes] for cause in present)])
+    chosen = own.T[:, :, None, None, None]
+    found = response([np.where(*each) for each in zip(chosen, given, equal, strict=True)], omega)
+    whole = Response(conversion=found.conversion[0], gain=found.gain[0])
+    return whole, dict(zip(present, found.conversion[1:], strict=True))
 
 
 def decibel(ratio: npt.ArrayLike) -> npt.NDArray[np.float64]:

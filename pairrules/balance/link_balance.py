@@ -8,7 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
-from pairrules.balance.conversion import by_cause, decibel, solve
+from pairrules.balance.conversion import decibel, response_by_cause
 from pairrules.balance.networks import Element
 
 
@@ -52,8 +52,7 @@ def balance_points(
     One record a frequency, in the order given. rejection = −20 log(|conversion|/|A_d| + 10^(−R/20)).
     """
     at = np.atleast_1d(np.asarray(frequencies, dtype=np.float64))
-    response = solve(link, at)
-    causes = by_cause(link, at)
+    response, causes = response_by_cause(link, at)
     with np.errstate(divide="ignore", invalid="ignore"):
         referred = np.abs(response.conversion) / np.abs(response.gain)
     if receiver_rejection is not None:

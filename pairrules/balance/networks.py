@@ -10,9 +10,9 @@ conductance of the shunt or the elastance of the capacitor, which keeps the link
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
-from typing import Protocol, Self, TypeAlias, runtime_checkable
+from typing import Any, Protocol, Self, TypeAlias, runtime_checkable
 
 import numpy as np
 import numpy.typing as npt
@@ -59,15 +59,19 @@ class Series:
     capacitance: npt.ArrayLike = (np.inf, np.inf)
 
     def __post_init__(self) -> None:
-        _freeze(self, legs=("resistance", "inductance", "capacitance"), single=("mutual",))
+        _freeze(self)
 
     def chain(self, omega: Floats) -> Complexes:
         """Chain matrices (…, F, 4, 4)."""
+        return chain_matrix.series(self.impedance(omega))
+
+    def impedance(self, omega: Floats) -> Complexes:
+        """Series impedance (…, F, 2, 2) [ohm] in modes."""
         R, L, C = _array(self.resistance), _array(self.inductance), _array(self.capacitance)
         with np.errstate(divide="ignore", invalid="ignore"):
             capacitor = np.where(np.isinf(C), 0.0, 1.0 / (omega[:, None] * C))
         plus, minus = (R[..., leg] + 1j * (omega * L[..., leg] - capacitor[..., leg]) for leg in (0, 1))
-        return chain_matrix.series(chain_matrix.series_modes(plus, minus, 1j * omega * _array(self.mutual)))
+        return chain_matrix.series_modes(plus, minus, 1j * omega * _array(self.mutual))
 
     def symmetrised(self) -> Series:
         """The same with equal legs."""
@@ -96,14 +100,18 @@ class Shunt:
     across_capacitance: npt.ArrayLike = 0.0
 
     def __post_init__(self) -> None:
-        _freeze(self, legs=("resistance", "capacitance"), single=("across_resistance", "across_capacitance"))
+        _freeze(self)
 
     def chain(self, omega: Floats) -> Complexes:
         """Chain matrices (…, F, 4, 4)."""
+        return chain_matrix.shunt(self.admittance(omega))
+
+    def admittance(self, omega: Floats) -> Complexes:
+        """Shunt admittance (…, F, 2, 2) [S] in modes."""
         R, C = _array(self.resistance), _array(self.capacitance)
         plus, minus = (1 / R[..., leg] + 1j * omega * C[..., leg] for leg in (0, 1))
         between = 1 / _array(self.across_resistance) + 1j * omega * _array(self.across_capacitance)
-        return chain_matrix.shunt(chain_matrix.shunt_modes(plus, minus, between))
+        return chain_matrix.shunt_modes(plus, minus, between)
 
     def symmetrised(self) -> Shunt:
         """The same with equal legs."""
@@ -131,10 +139,10 @@ class Line:
 
     def __post_init__(self) -> None:
         matrices = ("inductance", "capacitance", "resistance", "conductance")
-        _freeze(self, legs=("lengths",), square=matrices)
+        _freeze(self)
         length = _array(self.lengths)
-        coupled = any(bool((_array(getattr(self, name))[..., 0, 1] != 0).any()) for name in matrices)
-        if coupled and bool((length[..., 0] != length[..., 1]).any()):
+        unequal = length[..., 0] != length[..., 1]
+        if unequal.any() and any((unequal & (_array(getattr(self, name))[..., 0, 1] != 0)).any() for name in matrices):
             raise ValueError("legs that are coupled have one length")
 
     def chain(self, omega: Floats) -> Complexes:
@@ -181,7 +189,7 @@ class DifferenceInput:
     equal: bool = False
 
     def __post_init__(self) -> None:
-        _freeze(self, single=("r1", "r2"))
+        _freeze(self)
 
     def chain(self, omega: Floats) -> Complexes:
         """Chain matrices (…, F, 4, 4)."""
@@ -206,6 +214,46 @@ def via(inductance: npt.ArrayLike, capacitance: npt.ArrayLike, *, cause: str = "
     """
     half = Shunt(cause=cause, capacitance=_array(capacitance) / 2)
     return (half, Series(cause=cause, inductance=inductance), half)
+
+
+def chains_of(link: Sequence[Element], omega: Floats) -> tuple[Complexes, Complexes]:
+    """Chain matrices (elements, F, 4, 4) of a link as given, and with equal legs; no value has an axis of samples.
+
+    Elements of one kind are worked out as one element with a first axis: a link has many, and each is small.
+    """
+    given = np.empty((len(link), len(omega), 4, 4), dtype=np.complex128)
+    equal = np.empty_like(given)
+    rows: dict[type, list[int]] = {}
+    for place, element in enumerate(link):
+        rows.setdefault(type(element), []).append(place)
+    for kind, places in rows.items():
+        if kind in {Series, Shunt, Line}:
+            both = _together([link[place] for place in places], len(omega))
+            found = both.chain(omega)
+            given[places], equal[places] = found[: len(places)], found[len(places) :]
+            continue
+        for place in places:
+            given[place], equal[place] = link[place].chain(omega), link[place].symmetrised().chain(omega)
+    return given, equal
+
+
+def _together(elements: Sequence[Element], frequencies: int) -> Element:
+    """Elements of one kind as one with a first axis: all as given, then all with equal legs."""
+    first: Any = elements[0]
+    values: dict[str, Floats] = {}
+    for name, trailing in _TRAILING[type(first).__name__].items():
+        arrays = [getattr(element, name) for element in elements]
+        varies = any(array.ndim > len(trailing) for array in arrays)
+        shape = (frequencies if varies else 1, *trailing)
+        stacked = np.empty((len(arrays), *shape))
+        for row, array in zip(stacked, arrays, strict=True):
+            row[...] = array
+        values[name] = stacked
+    given = replace(first, **values)
+    equal = given.symmetrised()
+    both = {name: np.concatenate([value, getattr(equal, name)]) for name, value in values.items()}
+    found: Element = replace(first, **both)
+    return found
 
 
 def _array(value: npt.ArrayLike) -> Floats:
@@ -240,18 +288,30 @@ def _mean_diagonal(matrix: npt.ArrayLike) -> Floats:
     return legs
 
 
-def _freeze(
-    element: object, *, legs: Iterable[str] = (), square: Iterable[str] = (), single: Iterable[str] = ()
-) -> None:
-    """Replace each named value by a read-only copy, after checking its last axes."""
+_TRAILING: dict[str, dict[str, tuple[int, ...]]] = {
+    "Series": {"resistance": (2,), "inductance": (2,), "mutual": (), "capacitance": (2,)},
+    "Shunt": {"resistance": (2,), "capacitance": (2,), "across_resistance": (), "across_capacitance": ()},
+    "Line": {
+        "inductance": (2, 2),
+        "capacitance": (2, 2),
+        "lengths": (2,),
+        "resistance": (2, 2),
+        "conductance": (2, 2),
+    },
+    "DifferenceInput": {"r1": (), "r2": ()},
+}
+"""The last axes of every value of each kind of element."""
+
+
+def _freeze(element: object) -> None:
+    """Replace each value by a read-only copy, after checking its last axes."""
     if getattr(element, "cause") not in CAUSES:  # noqa: B009 (the elements share no base)
         raise ValueError(f"cause is one of {', '.join(CAUSES)}")
-    for names, trailing in ((legs, (2,)), (square, (2, 2)), (single, ())):
-        for name in names:
-            array = np.array(getattr(element, name), dtype=np.float64)
-            if trailing and array.shape[-len(trailing) :] != trailing:
-                raise ValueError(f"{type(element).__name__}.{name} has shape {array.shape}; it must end in {trailing}")
-            if np.isnan(array).any():
-                raise ValueError(f"{type(element).__name__}.{name} is not a number")
-            array.flags.writeable = False
-            object.__setattr__(element, name, array)
+    for name, trailing in _TRAILING[type(element).__name__].items():
+        array = np.array(getattr(element, name), dtype=np.float64)
+        if trailing and array.shape[-len(trailing) :] != trailing:
+            raise ValueError(f"{type(element).__name__}.{name} has shape {array.shape}; it must end in {trailing}")
+        if np.isnan(array).any():
+            raise ValueError(f"{type(element).__name__}.{name} is not a number")
+        array.flags.writeable = False
+        object.__setattr__(element, name, array)

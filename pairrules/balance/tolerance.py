@@ -10,9 +10,9 @@ from typing import Any
 import numpy as np
 import numpy.typing as npt
 
-from pairrules.balance.conversion import solve
-from pairrules.balance.networks import Element, Floats, Series, Shunt
-from pairrules.fields.chain_matrix import Complexes
+from pairrules.balance.conversion import response
+from pairrules.balance.networks import Element, Floats, Series, Shunt, chains_of
+from pairrules.fields.chain_matrix import Complexes, cascade
 
 SEED = 20240229
 """Of the samples; the same link gives the same bound on every run."""
@@ -76,34 +76,81 @@ def tolerated(
     the sum of the magnitudes that each value adds alone (linearised). Bound: values drawn independently and evenly
     between their extremes, a common assumption for parts sold by tolerance, no source.
     """
-    nominal = np.abs(solve(link, frequencies).conversion)
-    if not spreads:
-        return Toleranced(nominal=nominal, worst=nominal, bound_95=nominal)
-    count = len(spreads)
+    omega = 2 * np.pi * np.atleast_1d(np.asarray(frequencies, dtype=np.float64))
+    with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
+        chains = chains_of(link, omega)[0]
+        nominal = np.abs(response(list(chains), omega).conversion)
+        if not spreads:
+            return Toleranced(nominal=nominal, worst=nominal, bound_95=nominal)
+        count = len(spreads)
+        if count <= _MOST_CORNERS:
+            corners = np.array(list(itertools.product((-1.0, 1.0), repeat=count)))
+        else:
+            corners = np.vstack([np.eye(count), -np.eye(count)])
+        drawn = np.random.default_rng(seed).uniform(-1.0, 1.0, (samples, count))
+        found = _conversion(link, chains, spreads, omega, np.vstack([corners, drawn]))
+    extreme, usual = found[:, : len(corners)], np.abs(found[:, len(corners) :])
     if count <= _MOST_CORNERS:
-        corners = np.array(list(itertools.product((-1.0, 1.0), repeat=count)))
-        worst = np.abs(_conversion(link, spreads, frequencies, corners)).max(axis=0)
+        worst = np.abs(extreme).max(axis=-1)
     else:
-        each = _conversion(link, spreads, frequencies, np.vstack([np.eye(count), -np.eye(count)]))
-        worst = nominal + np.abs(each[:count] - each[count:]).sum(axis=0) / 2
-    drawn = np.random.default_rng(seed).uniform(-1.0, 1.0, (samples, count))
-    bound = np.quantile(np.abs(_conversion(link, spreads, frequencies, drawn)), 0.95, axis=0)
-    return Toleranced(nominal=nominal, worst=np.maximum(worst, nominal), bound_95=bound)
+        worst = nominal + np.abs(extreme[:, :count] - extreme[:, count:]).sum(axis=-1) / 2
+    return Toleranced(nominal=nominal, worst=np.maximum(worst, nominal), bound_95=np.quantile(usual, 0.95, axis=-1))
 
 
 def _conversion(
-    link: Sequence[Element], spreads: Sequence[Spread], frequencies: npt.ArrayLike, deviations: Floats
+    link: Sequence[Element], chains: Complexes, spreads: Sequence[Spread], omega: Floats, deviations: Floats
 ) -> Complexes:
-    """Conversions (S, F) with each spread's value off by deviation × share; deviations (S, spreads)."""
-    changed = list(link)
+    """Conversions (F, S) with each spread's value off by deviation × share.
+
+    Parameters: chains: of the link as given (elements, F, 4, 4). deviations: (S, spreads).
+
+    Samples stand last: what lies between two spread elements is then one product of (4, 4) and (4, 2S) a frequency,
+    and an element that is spread changes the state by its own few numbers, not by a matrix a sample.
+    """
+    changed = _spread_elements(link, spreads, deviations)
+    state: Complexes = np.zeros((len(omega), 4, 2, 1), dtype=np.complex128)
+    state[:, [0, 1], [0, 1]] = 1.0
+    end = len(link)
+    for place in (*sorted(changed, reverse=True), -1):
+        if place + 1 < end:
+            between = cascade(*chains[place + 1 : end])
+            size = state.shape
+            state = (between @ state.reshape(*size[:2], -1)).reshape(size)
+        end = place
+        if place < 0:
+            break
+        element = changed[place]
+        state = np.broadcast_to(state, (*state.shape[:3], len(deviations))).copy()
+        volts, amperes = state[:, :2], state[:, 2:]
+        if isinstance(element, Series):
+            volts += _times(element.impedance(omega), amperes)
+        else:
+            amperes += _times(element.admittance(omega), volts)
+    (dd, dc), (cd, cc) = np.moveaxis(state[:, :2], 0, 2)
+    found: Complexes = -dc / (dd * cc - dc * cd)
+    return found
+
+
+def _times(by: Complexes, state: Complexes) -> Complexes:
+    """The product of matrices (S, F, 2, 2) and states (F, 2, 2, S)."""
+    (a, b), (c, d) = np.ascontiguousarray(np.moveaxis(by, (0, 1), (3, 2)))[:, :, :, None]
+    first, second = state[:, 0], state[:, 1]
+    return np.stack([a * first + b * second, c * first + d * second], axis=1)
+
+
+def _spread_elements(
+    link: Sequence[Element], spreads: Sequence[Spread], deviations: Floats
+) -> dict[int, Series | Shunt]:
+    """The elements that have spread values, by their place, with a first axis of samples."""
+    changed: dict[int, Series | Shunt] = {}
     for column, spread in enumerate(spreads):
-        element: Any = changed[spread.element]
+        element: Any = changed.get(spread.element, link[spread.element])
         values = np.asarray(getattr(element, spread.field), dtype=np.float64)
         trailing = values.shape[values.ndim - len(spread.at) :]
         factor = np.ones((len(deviations), 1, *trailing))
         factor[_index(spread.at)] = 1 + spread.share * deviations[:, column, None]
         changed[spread.element] = replace(element, **{spread.field: values * factor})
-    return solve(changed, frequencies).conversion
+    return changed
 
 
 def _index(at: tuple[int, ...]) -> Any:
