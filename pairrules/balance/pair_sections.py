@@ -3,14 +3,15 @@
 from __future__ import annotations
 
 import math
-from dataclasses import replace
+from collections.abc import Sequence
 
 import numpy as np
 
-from pairrules.balance.drawn_section import Drawing, draw
+from pairrules.balance.drawn_section import GRID_MM, Drawing, Leg, beside_steps, draw_steps
 from pairrules.balance.leg_stretches import stretches
+from pairrules.balance.met_copper import Beside, met_copper
 from pairrules.balance.pair_electrical import PairSection
-from pairrules.balance.sampled_cuts import Cut, cuts_of, with_copper
+from pairrules.balance.sampled_cuts import BOTH, LEGS, Cuts, cuts_of
 from pairrules.balance.section_store import SectionMatrices, Store, solved
 from pairrules.balance.stack_heights import Heights
 from pairrules.board.columns import Floats
@@ -52,11 +53,13 @@ def pair_sections(
     if plus is None or minus is None or profile is None:
         raise UnsolvableError("a leg is not routed from end to end")
     cuts = cuts_of(plus.pieces, minus.pieces, profile, stretches(plus.pieces, minus.pieces, profile), _breaks(geometry))
-    cuts = with_copper(cuts, heights, board_cuts, own, reference)
-    drawn = _drawn(cuts, heights)
-    found: list[SectionMatrices | str] = [solved(section, store) for section in drawn]
+    (beside,) = met_copper([cuts], [own], heights, board_cuts, reference)
+    drawn = _drawn(cuts, beside, heights)
+    # Cuts that are alike share one section, and a section's hash takes its time.
+    known = {key: solved(section, store) for key, section in {id(section): section for section in drawn}.items()}
+    found = [known[id(section)] for section in drawn]
     _borrow(cuts, found, plus, minus, layers)
-    return _joined(cuts, drawn, found, heights)
+    return _joined(cuts, beside, drawn, found, heights)
 
 
 def _breaks(geometry: PairGeometry) -> tuple[Floats, Floats]:
@@ -66,84 +69,86 @@ def _breaks(geometry: PairGeometry) -> tuple[Floats, Floats]:
     )
 
 
-def _drawn(cuts: list[Cut], heights: Heights) -> list[CrossSection]:
-    """The section of each cut; cuts that met the same are drawn once."""
-    known: dict[object, CrossSection] = {}
+def _drawn(cuts: Cuts, beside: list[Beside], heights: Heights) -> list[CrossSection]:
+    """The section of each cut."""
+    legs = np.rint(cuts.spans / GRID_MM).tolist()
     found = []
-    for cut in cuts:
-        key = (cut.layer, cut.legs, cut.beside, cut.planes)
-        if key not in known:
-            known[key] = draw(heights, cut.layer, cut.legs, cut.beside, dict(cut.planes))
-        found.append(known[key])
+    for leg, layer, spans, met in zip(cuts.leg.tolist(), cuts.layer.tolist(), legs, beside, strict=True):
+        named = tuple((name, int(low), int(high)) for name, (low, high) in zip(_names(leg), spans, strict=False))
+        found.append(draw_steps(heights, layer, named, beside_steps(met.spans), met.planes))
     return found
 
 
-def _length(cut: Cut) -> float:
-    return max(cut.plus[1] - cut.plus[0], cut.minus[1] - cut.minus[0])
+def _names(leg: int) -> tuple[str, ...]:
+    return LEGS[:BOTH] if leg == BOTH else (LEGS[leg],)
 
 
 def _borrow(
-    cuts: list[Cut], found: list[SectionMatrices | str], plus: LegRoute, minus: LegRoute, layers: tuple[str, ...]
+    cuts: Cuts, found: list[SectionMatrices | str], plus: LegRoute, minus: LegRoute, layers: tuple[str, ...]
 ) -> None:
     """Cuts that cannot be solved take over the nearest solved one of their leg, where they are a small share."""
     lost = [i for i, matrices in enumerate(found) if isinstance(matrices, str)]
     if not lost:
         return
     total = max(plus.track_mm, minus.track_mm)
-    if math.fsum(_length(cuts[i]) for i in lost) > _BORROWED_SHARE * total:
-        first = cuts[lost[0]]
-        where = f"on {layers[first.layer]} at ({first.start[0]:.3f}, {first.start[1]:.3f}) mm"
+    length = np.maximum(cuts.plus[:, 1] - cuts.plus[:, 0], cuts.minus[:, 1] - cuts.minus[:, 0])
+    if math.fsum(length[lost].tolist()) > _BORROWED_SHARE * total:
+        x, y = cuts.start[lost[0]]
+        where = f"on {layers[cuts.layer[lost[0]]]} at ({x:.3f}, {y:.3f}) mm"
         raise UnsolvableError(f"the cross-section {where} cannot be solved: {found[lost[0]]}")
     for i in lost:
-        alike = [k for k in range(len(cuts)) if k not in lost and cuts[k].leg == cuts[i].leg]
+        alike = [k for k in range(len(cuts)) if k not in lost and cuts.leg[k] == cuts.leg[i]]
         if not alike:
-            raise UnsolvableError(f"no cross-section of {cuts[i].leg} can be solved: {found[i]}")
+            raise UnsolvableError(f"no cross-section of {LEGS[cuts.leg[i]]} can be solved: {found[i]}")
         found[i] = found[min(alike, key=lambda k: (abs(k - i), k))]
 
 
 def _joined(
-    cuts: list[Cut], drawn: list[CrossSection], found: list[SectionMatrices | str], heights: Heights
+    cuts: Cuts,
+    beside: list[Beside],
+    drawn: Sequence[CrossSection],
+    found: Sequence[SectionMatrices | str],
+    heights: Heights,
 ) -> tuple[PairSection, ...]:
-    """Neighbouring cuts with the same solved matrices as one section."""
-    sections: list[PairSection] = []
-    last: tuple[object, str, int, int] | None = None
-    for cut, section, matrices in zip(cuts, drawn, found, strict=True):
-        if isinstance(matrices, str):
-            continue
-        key = (section, cut.leg, cut.hop, cut.layer)
-        if last == key and sections and _meets(sections[-1], cut):
-            before = sections[-1]
-            sections[-1] = replace(
-                before,
-                plus_mm=(before.plus_mm[0], cut.plus[1]),
-                minus_mm=(before.minus_mm[0], cut.minus[1]),
-                end=cut.end,
-            )
-            continue
-        last = key
-        sections.append(_section(cut, matrices, heights))
+    """Neighbouring cuts with the same section as one."""
+    meets = np.ones(len(cuts), dtype=np.bool_)
+    meets[:1] = False
+    for column in (cuts.leg, cuts.hop, cuts.layer):
+        meets[1:] &= column[1:] == column[:-1]
+    for along in (cuts.plus, cuts.minus):
+        meets[1:] &= np.abs(along[:-1, 1] - along[1:, 0]) < 1e-5
+    first = [i for i, joins in enumerate(meets.tolist()) if not (joins and drawn[i] == drawn[i - 1])]
+    sections = []
+    for i, after in zip(first, [*first[1:], len(cuts)], strict=True):
+        matrices = found[i]
+        if not isinstance(matrices, str):
+            sections.append(_section(cuts, i, after - 1, beside[i], matrices, heights))
     return tuple(sections)
 
 
-def _meets(before: PairSection, cut: Cut) -> bool:
-    return abs(before.plus_mm[1] - cut.plus[0]) < 1e-5 and abs(before.minus_mm[1] - cut.minus[0]) < 1e-5
-
-
-def _section(cut: Cut, matrices: SectionMatrices, heights: Heights) -> PairSection:
-    low, high = heights.copper[cut.layer]
-    width = {leg.name: leg.width for leg in cut.legs}
-    gap = math.nan
-    if len(cut.legs) == 2:
-        gap = cut.legs[1].span[0] - cut.legs[0].span[1]
-    area = [leg.width * (high - low) * 1e-6 for leg in cut.legs]
+def _section(
+    cuts: Cuts, first: int, last: int, beside: Beside, matrices: SectionMatrices, heights: Heights
+) -> PairSection:
+    """The section of the cuts from first to last."""
+    leg, layer = int(cuts.leg[first]), int(cuts.layer[first])
+    low, high = heights.copper[layer]
+    legs = tuple(
+        Leg(name=name, centre=centre, width=width)
+        for name, centre, width in zip(
+            _names(leg), cuts.centre[first].tolist(), cuts.width[first].tolist(), strict=False
+        )
+    )
+    width = {one.name: one.width for one in legs}
+    gap = legs[1].span[0] - legs[0].span[1] if leg == BOTH else math.nan
+    area = [one.width * (high - low) * 1e-6 for one in legs]
     return PairSection(
-        leg=cut.leg,
-        plus_mm=cut.plus,
-        minus_mm=cut.minus,
-        hop=cut.hop,
-        layer=cut.layer,
-        start=cut.start,
-        end=cut.end,
+        leg=LEGS[leg],
+        plus_mm=(float(cuts.plus[first, 0]), float(cuts.plus[last, 1])),
+        minus_mm=(float(cuts.minus[first, 0]), float(cuts.minus[last, 1])),
+        hop=int(cuts.hop[first]),
+        layer=layer,
+        start=_xy(cuts.start[first]),
+        end=_xy(cuts.end[last]),
         width_plus_mm=width.get("plus", math.nan),
         width_minus_mm=width.get("minus", math.nan),
         gap_mm=gap,
@@ -156,8 +161,12 @@ def _section(cut: Cut, matrices: SectionMatrices, heights: Heights) -> PairSecti
         impedance_diff_ohm=matrices.diff,
         impedance_common_ohm=matrices.common,
         delay=matrices.delay,
-        planes=tuple(k for k, _ in cut.planes),
-        neighbours=cut.beside_nets,
+        planes=tuple(k for k, _ in beside.planes),
+        neighbours=beside.nets,
         coupling=matrices.coupling,
-        drawing=Drawing(heights=heights, layer=cut.layer, legs=cut.legs, beside=cut.beside, planes=cut.planes),
+        drawing=Drawing(heights=heights, layer=layer, legs=legs, beside=beside.spans, planes=beside.planes),
     )
+
+
+def _xy(point: Floats) -> tuple[float, float]:
+    return float(point[0]), float(point[1])

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import lru_cache
 from itertools import pairwise
 
 from pairrules.board.stackup import Layer, Stackup
@@ -22,7 +23,7 @@ class Mask:
     loss_tangent: float
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Heights:
     """A stack as heights [mm], 0 at the lower face of the lowest laminate or copper, upward.
 
@@ -62,8 +63,9 @@ def lacking(stackup: Stackup) -> tuple[str, ...]:
     return tuple(found)
 
 
+@lru_cache(maxsize=8)
 def heights_of(stackup: Stackup) -> Heights:
-    """The stack in heights.
+    """The stack in heights; one record for the same stack.
 
     Raises: ValueError where `lacking` names something.
     """

@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
 import shapely
 
 from pairrules.board.board import Board
-from pairrules.board.columns import Floats, Ints
+from pairrules.board.columns import Bools, Floats, Ints
 from pairrules.geometry.layer_index import LayerIndexes
 
 
@@ -32,23 +33,42 @@ class CrossCuts:
     def __init__(self, board: Board, layers: LayerIndexes | None = None) -> None:
         self._layers = LayerIndexes(board) if layers is None else layers
 
-    def across(self, layer: int, origin: Floats, along: Floats, low: Floats, high: Floats) -> Met:
+    def across(
+        self,
+        layer: int,
+        origin: Floats,
+        along: Floats,
+        low: Floats,
+        high: Floats,
+        *,
+        unwanted: Callable[[Ints, Ints], Bools] | None = None,
+    ) -> Met:
         """Copper of `layer` that the cuts meet.
 
         Parameters
         ----------
         origin: (n, 2) [mm]; along: (n, 2) unit vectors; low, high: (n,) [mm] where each cut begins and ends.
+        unwanted: which copper is left out, by cut (k,) and net (k,).
         """
         of = self._layers.layer(layer)
         ends = np.stack([origin + along * low[:, None], origin + along * high[:, None]], axis=1)
         lines = np.empty(len(origin), dtype=np.object_)
         lines[:] = shapely.linestrings(ends)
-        cut, shape = of.areas.query(lines, predicate="intersects")
+        cut, tile = of.areas.query(lines, predicate="intersects")
         near, drawn = of.tree.query(lines, predicate="dwithin", distance=of.widest)
+        if unwanted is not None:
+            kept, also = ~unwanted(cut, of.area_net[tile]), ~unwanted(near, of.drawn.net[drawn])
+            cut, tile, near, drawn = cut[kept], tile[kept], near[also], drawn[also]
+        # Most cuts over a plane lie in it from end to end, and what they have in common with it is themselves.
+        areas = of.areas.geometries[tile]
+        within = shapely.covers(areas, lines[cut])
         rows, place = np.unique(drawn, return_inverse=True)
-        shapes = np.concatenate([of.areas.geometries[shape], of.drawn.outlines(rows)[place]])
-        cut, net = np.concatenate([cut, near]), np.concatenate([of.area_net[shape], of.drawn.net[drawn]])
-        pieces, row = shapely.get_parts(shapely.intersection(lines[cut], shapes), return_index=True)
+        shapes = np.concatenate([areas[~within], of.drawn.outlines(rows)[place]])
+        crossing = np.concatenate([cut[~within], near])
+        common = np.concatenate([lines[cut[within]], shapely.intersection(lines[crossing], shapes)])
+        net = np.concatenate([of.area_net[tile[within]], of.area_net[tile[~within]], of.drawn.net[drawn]])
+        cut = np.concatenate([cut[within], crossing])
+        pieces, row = shapely.get_parts(common, return_index=True)
         use = (shapely.get_dimensions(pieces) == 1) & ~shapely.is_empty(pieces)
         pieces, row = pieces[use], row[use]
         bounds = shapely.get_point(pieces, 0), shapely.get_point(pieces, -1)
