@@ -22,8 +22,6 @@ MOST_MEETINGS = 1_000_000
 MOST_JOINED = 1000
 """Pieces of copper that one area may join."""
 
-_SHARE = 256
-
 
 class CrowdedError(Exception):
     """Raised where copper cannot be followed; its text says why, going on from the leg's name."""
@@ -50,8 +48,10 @@ def _meetings(low: Floats, high: Floats) -> int:
         return 0
     boxes = np.asarray(shapely.box(low[:, 0], low[:, 1], high[:, 0], high[:, 1]), dtype=np.object_)
     tree, total = shapely.STRtree(boxes), 0
-    for start in range(0, len(boxes), _SHARE):
-        total += tree.query(boxes[start : start + _SHARE]).shape[1]
+    # A share whose boxes all meet every box comes to the bound, and to no more memory than that takes.
+    share = max(1, MOST_MEETINGS // len(boxes))
+    for start in range(0, len(boxes), share):
+        total += tree.query(boxes[start : start + share]).shape[1]
         if total > MOST_MEETINGS:
             break
     return total

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection
+from collections.abc import Collection, Container
 from dataclasses import dataclass
 
 from pairrules.pairing.pairs import NetPair
@@ -42,16 +42,28 @@ def chains_of(site: Site, pairs: tuple[NetPair, ...]) -> tuple[Chain, ...]:
     return tuple(found)
 
 
+@dataclass(frozen=True, slots=True)
+class _Barred:
+    """Nets of either of two sets, without a copy of both at every step."""
+
+    taken: Collection[int]
+    on: Collection[int]
+
+    def __contains__(self, net: object) -> bool:
+        return net in self.on or net in self.taken
+
+
 def _follow(site: Site, seed: tuple[int, int], taken: Collection[int]) -> Chain:
     nodes, steps = [seed], list[Step]()
     branches: list[Step] = []
+    on = set(seed)
     for forward in (True, False):
         while True:
             here = nodes[-1] if forward else nodes[0]
-            barred = {*taken, *(net for node in nodes for net in node)}
-            ways = _ways(site, here, barred, joined=len(nodes) > 1)
+            ways = _ways(site, here, _Barred(taken, on), joined=len(nodes) > 1)
             if not ways:
                 break
+            on.update(ways[0].to)
             if forward:
                 nodes.append(ways[0].to)
                 steps.append(ways[0])
@@ -61,11 +73,11 @@ def _follow(site: Site, seed: tuple[int, int], taken: Collection[int]) -> Chain:
     nodes, steps = _cut(site, nodes, steps)
     on = {net for node in nodes for net in node}
     for node in nodes:
-        branches.extend(named_steps(site, node, {*taken, *on}))
+        branches.extend(named_steps(site, node, _Barred(taken, on)))
     return Chain(nodes=tuple(nodes), steps=tuple(steps), branches=tuple(branches))
 
 
-def _ways(site: Site, here: tuple[int, int], barred: Collection[int], *, joined: bool) -> tuple[Step, ...]:
+def _ways(site: Site, here: tuple[int, int], barred: Container[int], *, joined: bool) -> tuple[Step, ...]:
     """Ways on from a node, best first; to nets that no name pairs only while an end is still wanted there."""
     named = named_steps(site, here, barred)
     wanted = len(ends_on(site, here)) + joined < 2

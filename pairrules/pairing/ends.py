@@ -71,7 +71,7 @@ def ends_of(site: Site, chain: Chain, *, name: str, source: str, load: str) -> E
 
     both = [
         (one, other)
-        for one, other in product(first, last)
+        for one, other in product(_likely(site, first, wanted), _likely(site, last, wanted))
         if len(chain.nodes) > 1 or not {one.plus, one.minus} & {other.plus, other.minus} - {-1}
     ]
     best = min(both, key=rank)
@@ -83,12 +83,29 @@ def ends_of(site: Site, chain: Chain, *, name: str, source: str, load: str) -> E
 def _options(site: Site, node: tuple[int, int], series: set[int]) -> tuple[End, ...]:
     """Ends that a node offers: parts with pins on both legs, two stations with one leg each (two amplifiers), none."""
     plus, minus = ([part for part in site.wiring.parts_on(net) if part not in series] for net in node)
-    both = [part for part in plus if part in set(minus)]
-    found = [End(plus=part, minus=part) for part in both]
+    both = set(plus) & set(minus)
+    found = [End(plus=part, minus=part) for part in plus if part in both]
     own = [[part for part in leg if part not in both and site.wiring.is_station(part)] for leg in (plus, minus)]
     if all(own):
         found.append(End(plus=own[0][0], minus=own[1][0]))
     return (*found, End(plus=-1, minus=-1))
+
+
+def _likely(site: Site, ends: tuple[End, ...], wanted: set[int]) -> tuple[End, ...]:
+    """The ends that can come first: a few of those alike in all but pins and order.
+
+    Thousands would make millions of two. Two ends of one chain share a part at most on each leg, so that a
+    fifth of a kind is never asked for.
+    """
+    wiring, kinds = site.wiring, dict[tuple[bool, int, bool], list[End]]()
+    for end in ends:
+        kinds.setdefault((end.part in wanted, _cost(site, end), _outer(site, end)), []).append(end)
+
+    def place(end: End) -> tuple[int, int]:
+        pins = int(wiring.pins[end.part]) if end.part >= 0 else 0
+        return -pins, int(wiring.order[end.plus]) if end.plus >= 0 else -1
+
+    return tuple(end for alike in kinds.values() for end in sorted(alike, key=place)[:4])
 
 
 def _cost(site: Site, end: End) -> int:

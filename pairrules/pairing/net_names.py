@@ -14,6 +14,9 @@ from pairrules.pairing.net_roles import words
 _MOST = 16
 """Places in one name that are looked at for each pattern, from the right; a name needs one or two."""
 
+_MOST_READ = 4
+"""Readings of one name by one pattern: each holds the name once more, and a name may be long."""
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Reading:
@@ -58,6 +61,8 @@ _NUMBERS = re.compile(r"[0-9]+")
 
 _APART = "[^A-Za-z0-9+]"
 _START = rf"(?:^|{_APART})"
+_NOT_WORD = "(?<![A-Za-z0-9+])"
+_D = "(?<=D)"
 _OWN = rf"(?:{_APART}|$)"
 _SIGNAL = (
     r"(?:TX|RX|TD|RD|TXD|RXD|CLK|CK|DQS|IN|OUT|DATA|STROBE|STB|REF|SIG|SENSE|SNS|MIC|SPK|LINE|AUX|TMDS|PET|PER|SIN|COS)"
@@ -73,9 +78,13 @@ class _Pattern:
     sure: bool
     lone: tuple[int, ...]
     asked: str
+    finder: re.Pattern[str]
 
 
-def _pattern(plus: str, minus: str, before: str, after: str, *, sure: bool, lone: tuple[int, ...] = ()) -> _Pattern:
+def _pattern(
+    plus: str, minus: str, before: str, after: str, *, sure: bool, lone: tuple[int, ...] = (), last: str = ""
+) -> _Pattern:
+    """A pattern. last: what `before` asks of the sign next to the polarity; few places are looked at closely."""
     return _Pattern(
         plus=plus,
         minus=minus,
@@ -84,46 +93,51 @@ def _pattern(plus: str, minus: str, before: str, after: str, *, sure: bool, lone
         sure=sure,
         lone=lone,
         asked=f"{plus}/{minus} {before} {after}",
+        finder=re.compile(rf"{last}(?=({re.escape(plus)}|{re.escape(minus)}))", re.IGNORECASE),
     )
 
 
 # A lone `_N` or `-` is usually active low, a lone `_DM` a data mask, a lone `_POS` a position: none of these is a half.
 _PATTERNS = (
-    _pattern("P", "N", _START, _OWN, sure=True, lone=(1,)),
-    _pattern("P", "M", rf"{_START}D|[0-9]D", _OWN, sure=True, lone=(1,)),
-    _pattern("P", "N", rf"{_START}D|[0-9]D", _OWN, sure=True),
+    _pattern("P", "N", _START, _OWN, sure=True, lone=(1,), last=_NOT_WORD),
+    _pattern("P", "M", rf"{_START}D|[0-9]D", _OWN, sure=True, lone=(1,), last=_D),
+    _pattern("P", "N", rf"{_START}D|[0-9]D", _OWN, sure=True, last=_D),
     _pattern("+", "-", r"[A-Za-z0-9_)\]>]", r"(?:[^A-Za-z0-9+\-]|$)", sure=True, lone=(1,)),
-    _pattern("PLUS", "MINUS", _START, _OWN, sure=True, lone=(1, -1)),
-    _pattern("POS", "NEG", _START, _OWN, sure=True, lone=(-1,)),
+    _pattern("PLUS", "MINUS", _START, _OWN, sure=True, lone=(1, -1), last=_NOT_WORD),
+    _pattern("POS", "NEG", _START, _OWN, sure=True, lone=(-1,), last=_NOT_WORD),
     _pattern("H", "L", rf"{_START}CAN(?:FD|BUS)?{_APART}?[0-9]*{_APART}?", rf"[0-9]*{_OWN}", sure=True, lone=(1, -1)),
-    _pattern("T", "C", r"(?:CK|CLK|DQS)[A-Z]?[0-9]*[^A-Za-z0-9+]+(?:[0-9]+[^A-Za-z0-9+]+)?", _OWN, sure=True),
-    _pattern("H", "L", _APART, _OWN, sure=False),
-    _pattern("P", "N", "[0-9]", _OWN, sure=False),
+    _pattern(
+        "T", "C", r"(?:CK|CLK|DQS)[A-Z]?[0-9]*[^A-Za-z0-9+]+(?:[0-9]+[^A-Za-z0-9+]+)?", _OWN, sure=True, last=_NOT_WORD
+    ),
+    _pattern("H", "L", _APART, _OWN, sure=False, last=_NOT_WORD),
+    _pattern("P", "N", "[0-9]", _OWN, sure=False, last="(?<=[0-9])"),
     _pattern("P", "N", _SIGNAL, rf"[0-9]*{_OWN}", sure=False),
     _pattern("P", "N", rf"{_START}D?", rf"[0-9]+{_OWN}", sure=False),
-    _pattern("P", "M", rf"{_START}D", rf"[0-9]+{_OWN}", sure=False),
-    _pattern("P", "M", "[A-Z]D", rf"[0-9]*{_OWN}", sure=False),
-    _pattern("P", "N", "[A-Z]D", rf"[0-9]*{_OWN}", sure=False),
+    _pattern("P", "M", rf"{_START}D", rf"[0-9]+{_OWN}", sure=False, last=_D),
+    _pattern("P", "M", "[A-Z]D", rf"[0-9]*{_OWN}", sure=False, last=_D),
+    _pattern("P", "N", "[A-Z]D", rf"[0-9]*{_OWN}", sure=False, last=_D),
     _pattern("+", "-", "[A-Za-z]", rf"[0-9]+{_OWN}", sure=False),
-    _pattern("+", "-", "^", "[A-Za-z]", sure=False),
+    _pattern("+", "-", "^", "[A-Za-z]", sure=False, last=r"\A"),
     _pattern("PLUS", "MINUS", "[A-Za-z0-9]", _OWN, sure=False),
     _pattern("POS", "NEG", "[A-Za-z0-9]", _OWN, sure=False),
 )
 
 
-_FINDERS = tuple(re.compile(rf"(?=({re.escape(p.plus)}|{re.escape(p.minus)}))", re.IGNORECASE) for p in _PATTERNS)
-
-
 def readings(name: str) -> tuple[Reading, ...]:
     """Every way to read the name as half of a pair: sure ones first, then the rightmost, then the commoner pattern."""
     found: list[Reading] = []
-    for rank, (pattern, finder) in enumerate(zip(_PATTERNS, _FINDERS, strict=True)):
-        for place in list(finder.finditer(name))[-_MOST:]:
-            token = place[1]
-            head, tail = name[: place.start()], name[place.start() + len(token) :]
+    for rank, pattern in enumerate(_PATTERNS):
+        read = 0
+        for place in reversed(list(pattern.finder.finditer(name))[-_MOST:]):
+            token, start = place[1], place.start()
             # The end of a long head decides; searching all of it would cost the square of the name's length.
-            if not pattern.before.search(head[-64:]) or not pattern.after.match(tail):
+            before = name[max(0, start - 64) : start]
+            if not pattern.after.match(name, place.end(1)) or not pattern.before.search(before):
                 continue
+            if read == _MOST_READ:
+                break
+            read += 1
+            head, tail = name[:start], name[place.end(1) :]
             sign = 1 if token.upper() == pattern.plus else -1
             found.append(
                 Reading(

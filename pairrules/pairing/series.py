@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Mapping
+from collections.abc import Container, Mapping
 from dataclasses import dataclass
 from itertools import product
 
@@ -59,7 +59,7 @@ def ends_on(site: Site, node: tuple[int, int]) -> tuple[int, ...]:
     return tuple(part for part in site.wiring.stations_on(node[0]) if part in other)
 
 
-def named_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> tuple[Step, ...]:
+def named_steps(site: Site, node: tuple[int, int], barred: Container[int]) -> tuple[Step, ...]:
     """Steps to nets that are a pair by themselves: the same kind of part in both legs first."""
     plus, minus = node
     alike: list[Step] = []
@@ -72,7 +72,7 @@ def named_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> t
     return _one_each((*alike, *wound, *unlike))
 
 
-def plain_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> tuple[Step, ...]:
+def plain_steps(site: Site, node: tuple[int, int], barred: Container[int]) -> tuple[Step, ...]:
     """Steps to two nets that no name pairs, through alike parts: each the only one, or both leading to one part."""
     wiring = site.wiring
     onward = [
@@ -104,7 +104,7 @@ def _only(site: Site, steps: list[Step]) -> list[Step]:
     return []
 
 
-def single_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> tuple[Step, ...]:
+def single_steps(site: Site, node: tuple[int, int], barred: Container[int]) -> tuple[Step, ...]:
     """Steps of one leg alone, to a part that the other leg reaches without one."""
     wiring, found = site.wiring, []
     for leg in (0, 1):
@@ -117,7 +117,7 @@ def single_steps(site: Site, node: tuple[int, int], barred: Collection[int]) -> 
     return tuple(found)
 
 
-def _series(site: Site, net: int, barred: Collection[int]) -> tuple[tuple[int, int], ...]:
+def _series(site: Site, net: int, barred: Container[int]) -> tuple[tuple[int, int], ...]:
     """Two-pin parts in series on a net and the net behind each, in natural order of the parts."""
     wiring, found = site.wiring, []
     for part in wiring.parts_on(net):
@@ -147,7 +147,7 @@ def _fed_back(site: Site, node: tuple[int, int], to: tuple[int, int]) -> bool:
     return False
 
 
-def _wound(site: Site, node: tuple[int, int], barred: Collection[int]) -> tuple[Step, ...]:
+def _wound(site: Site, node: tuple[int, int], barred: Container[int]) -> tuple[Step, ...]:
     """Steps through one part that both legs pass: a choke of four pins, or two elements of an array."""
     wiring, found = site.wiring, []
     other = set(wiring.parts_on(node[1]))
