@@ -3,9 +3,12 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass
+from itertools import zip_longest
 
 import numpy as np
+import numpy.typing as npt
 
 from pairrules.balance.board_parts import hung_elements, series_element, value_of
 from pairrules.balance.cable import cable_elements
@@ -144,9 +147,10 @@ def _lines(sections: tuple[PairSection, ...], frequencies: Floats) -> list[Eleme
     """
     found: list[Element] = []
     alone: list[list[PairSection]] = [[], []]
+    losses = _losses(sections, frequencies)
 
     def flush() -> None:
-        found.extend(_alone(alone, frequencies))
+        found.extend(_alone(alone, losses))
         alone[0], alone[1] = [], []
 
     for section in sections:
@@ -156,8 +160,7 @@ def _lines(sections: tuple[PairSection, ...], frequencies: Floats) -> list[Eleme
         flush()
         lengths = [(span[1] - span[0]) * 1e-3 for span in (section.plus_mm, section.minus_mm)]
         common = min(lengths)
-        R = _pair_resistance(section, frequencies)
-        G = 2 * np.pi * frequencies[:, None, None] * section.loss
+        R, G = losses[id(section)]
         if common > 0:
             found.append(
                 Line(
@@ -186,28 +189,52 @@ def _lines(sections: tuple[PairSection, ...], frequencies: Floats) -> list[Eleme
     return found
 
 
-def _alone(alone: list[list[PairSection]], frequencies: Floats) -> list[Element]:
+def _alone(alone: list[list[PairSection]], losses: Mapping[int, tuple[Floats, Floats]]) -> list[Element]:
     """Stretches of each leg alone as uncoupled lines, leg by leg side by side, the longer leg's rest after them."""
     found: list[Element] = []
-    for k in range(max(len(alone[0]), len(alone[1]))):
-        pair = [legs[k] if k < len(legs) else None for legs in alone]
-        some = next(s for s in pair if s is not None)
-        each = [s or some for s in pair]
-        lengths = [0.0 if s is None else _own_length(s) for s in pair]
-        R = np.stack([track_resistance(s.R, s.widths_mm, s.thickness_mm, frequencies)[:, 0] for s in each], axis=-1)
-        G = np.zeros((len(frequencies), 2, 2))
-        for leg, s in enumerate(each):
-            G[:, leg, leg] = 2 * np.pi * frequencies * s.loss[0, 0]
+    for plus, minus in zip_longest(*alone):
+        one, other = plus or minus, minus or plus
+        (R_plus, G_plus), (R_minus, G_minus) = losses[id(one)], losses[id(other)]
         found.append(
             Line(
                 cause="trace",
-                inductance=np.diag([float(s.L[0, 0]) for s in each]),
-                capacitance=np.diag([float(s.C[0, 0]) for s in each]),
-                resistance=R[:, :, None] * np.eye(2),
-                conductance=G,
-                lengths=lengths,
+                inductance=_diagonal(one.L[0, 0], other.L[0, 0]),
+                capacitance=_diagonal(one.C[0, 0], other.C[0, 0]),
+                resistance=_diagonal(R_plus, R_minus),
+                conductance=_diagonal(G_plus, G_minus),
+                lengths=[0.0 if s is None else _own_length(s) for s in (plus, minus)],
             )
         )
+    return found
+
+
+def _losses(sections: tuple[PairSection, ...], frequencies: Floats) -> dict[int, tuple[Floats, Floats]]:
+    """Resistance [ohm/m] and conductance [S/m] of each section by its `id`: (F, 2, 2) of both legs, (F,) of one.
+
+    The reference is ideal. Sections that were solved as one have the same.
+    """
+    omega = 2 * np.pi * frequencies
+    known: dict[int, tuple[Floats, Floats]] = {}
+    found: dict[int, tuple[Floats, Floats]] = {}
+    alone = [section for section in sections if section.leg != "both"]
+    if alone:
+        R = track_resistance(
+            [s.R[0] for s in alone], [s.widths_mm[0] for s in alone], [s.thickness_mm for s in alone], frequencies
+        )
+        G = omega[:, None] * np.array([s.loss[0, 0] for s in alone])
+        found.update((id(section), (R[:, i], G[:, i])) for i, section in enumerate(alone))
+    for section in sections:
+        if section.leg == "both":
+            key = id(section.loss)
+            if key not in known:
+                known[key] = _pair_resistance(section, frequencies), omega[:, None, None] * section.loss
+            found[id(section)] = known[key]
+    return found
+
+
+def _diagonal(plus: npt.ArrayLike, minus: npt.ArrayLike) -> Floats:
+    found = np.zeros((*np.shape(plus), 2, 2))
+    found[..., 0, 0], found[..., 1, 1] = plus, minus
     return found
 
 

@@ -1,13 +1,14 @@
 """The electrical stage: one pair's sections, delays, mismatches, balance and pickup, with what each rests on.
 
-A pair's geometry comes in, one frozen record goes out. What cannot be known is `None`, and `missing` says why:
-"sections" for what the stackup lacks, "balance" for what the class leaves open, "pickup" for a field, "electric" for
-swinging neighbours.
+The geometry of pairs comes in, one frozen record a pair goes out; the copper that cuts meet is looked up for all of
+them at once. What cannot be known is `None`, and `missing` says why: "sections" for what the stackup lacks, "balance"
+for what the class leaves open, "pickup" for a field, "electric" for swinging neighbours.
 """
 
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from fnmatch import fnmatchcase
 
 import numpy as np
@@ -23,9 +24,11 @@ from pairrules.balance.board_link import (
 from pairrules.balance.board_parts import bias_paths, placed_hung, placed_series, terminations
 from pairrules.balance.layer_changes import layer_changes
 from pairrules.balance.link_balance import balance_points
+from pairrules.balance.met_copper import Beside, met_copper
 from pairrules.balance.pair_electrical import BalanceAt, PairElectrical, PairSection
-from pairrules.balance.pair_sections import UnsolvableError, pair_sections
+from pairrules.balance.pair_sections import UnsolvableError, pair_cuts, pair_sections
 from pairrules.balance.pickup import edge_pickup, magnetic_pickup
+from pairrules.balance.sampled_cuts import Cuts
 from pairrules.balance.section_store import Store
 from pairrules.balance.solved_link import SolvedLink
 from pairrules.balance.stack_heights import Heights, heights_of, lacking
@@ -47,20 +50,31 @@ _SECTIONS, _BALANCE, _PICKUP = "sections", "balance", "pickup"
 def electrical(
     board: Board, link: Link, geometry: PairGeometry, klass: PairClass | None, *, copper: BoardCopper, store: Store
 ) -> PairElectrical:
-    """The electrical figures of one pair.
+    """The electrical figures of one pair. Parameters as of `electricals`."""
+    (found,) = electricals(board, [(link, geometry, klass)], copper=copper, store=store)
+    return found
+
+
+def electricals(
+    board: Board, pairs: Sequence[tuple[Link, PairGeometry, PairClass | None]], *, copper: BoardCopper, store: Store
+) -> list[PairElectrical]:
+    """The electrical figures of pairs, each with its class.
 
     Parameters
     ----------
-    klass: the pair's class, whose source, cable, load, frequencies, mask and pickup are used; `None` where it has none.
+    pairs: a class's source, cable, load, frequencies, mask and pickup are used; `None` where a pair has none.
     copper: of the board. store: sections solved so far; added to.
     """
-    plus, minus = geometry.plus, geometry.minus
-    if plus is None or minus is None or geometry.profile_plus is None:
-        known = geometry.missing if geometry.plus is None and not geometry.broken else ()
-        why = known[-1] if known else "a leg is not routed from end to end"
-        return PairElectrical(missing=dict.fromkeys((_SECTIONS, _BALANCE, _PICKUP), why))
-    stage = _Stage(board, link, geometry, klass, copper, store)
-    return stage.run(plus, minus)
+    gap = lacking(board.stackup)
+    heights = None if gap else heights_of(board.stackup)
+    stages = [_Stage(board, *pair, gap, heights, copper, store) for pair in pairs]
+    cut = [(stage, cuts) for stage in stages if (cuts := stage.cuts()) is not None]
+    if heights is not None:
+        own = [stage.own for stage, _ in cut]
+        met = met_copper([cuts for _, cuts in cut], own, heights, copper.cuts, frozenset(copper.reference_nets))
+        for (stage, cuts), beside in zip(cut, met, strict=True):
+            stage.solve(cuts, beside, heights)
+    return [stage.run() for stage in stages]
 
 
 class _Stage:
@@ -72,26 +86,63 @@ class _Stage:
         link: Link,
         geometry: PairGeometry,
         klass: PairClass | None,
+        gap: tuple[str, ...],
+        heights: Heights | None,
         copper: BoardCopper,
         store: Store,
     ) -> None:
         self._board, self._link, self._geometry, self._klass = board, link, geometry, klass
+        self._gap, self._heights = gap, heights
         self._copper, self._store = copper, store
         self._reference = frozenset(copper.reference_nets)
+        self._sections: tuple[PairSection, ...] = ()
         self._missing: dict[str, str] = {}
         self._assumed: list[str] = []
 
-    def run(self, plus: LegRoute, minus: LegRoute) -> PairElectrical:
-        board, link, klass = self._board, self._link, self._klass
-        gap = lacking(board.stackup)
-        heights = None if gap else heights_of(board.stackup)
-        if heights is None:
+    @property
+    def own(self) -> frozenset[int]:
+        """The pair's nets."""
+        return frozenset(hop.net for hop in (*self._link.hops_plus, *self._link.hops_minus))
+
+    def cuts(self) -> Cuts | None:
+        """Where the pair is cut across, to be told what copper is met there; `None` where it has no sections."""
+        cuts = pair_cuts(self._geometry)
+        if cuts is None:
+            return None
+        if self._heights is None:
             self._missing[_SECTIONS] = (
-                f"the stackup lacks the {gap[0]}: give it in the board file or under stackup: in the settings"
+                f"the stackup lacks the {self._gap[0]}: give it in the board file or under stackup: in the settings"
             )
-            sections: tuple[PairSection, ...] = ()
-        else:
-            sections = self._sections(heights)
+            return None
+        if not self._reference:
+            self._missing[_SECTIONS] = "no net is known as reference: name it under reference_nets: in the settings"
+            return None
+        if hatched := hatched_beside(self._board, self._copper.areas, self._geometry):
+            self._missing[_SECTIONS] = f"copper on {hatched} next to the legs is hatched, and how is not known"
+            return None
+        return cuts
+
+    def solve(self, cuts: Cuts, beside: Sequence[Beside], heights: Heights) -> None:
+        """Solve the sections of the cuts, each with what it meets."""
+        legs = (self._geometry.plus, self._geometry.minus)
+        longer = max(leg.track_mm for leg in legs if leg is not None)
+        try:
+            self._sections = pair_sections(
+                cuts, beside, heights, track_mm=longer, layers=self._board.copper, store=self._store
+            )
+        except UnsolvableError as error:
+            self._missing[_SECTIONS] = str(error)
+            return
+        self._assumed += heights.assumed
+
+    def run(self) -> PairElectrical:
+        """The figures, once the sections are solved."""
+        plus, minus = self._geometry.plus, self._geometry.minus
+        if plus is None or minus is None or self._geometry.profile_plus is None:
+            known = self._geometry.missing if self._geometry.plus is None and not self._geometry.broken else ()
+            why = known[-1] if known else "a leg is not routed from end to end"
+            return PairElectrical(missing=dict.fromkeys((_SECTIONS, _BALANCE, _PICKUP), why))
+        board, link, klass, heights, sections = self._board, self._link, self._klass, self._heights, self._sections
         balance, source_ohm, solved = self._balance(sections, plus, minus)
         area = self._area(heights, plus, minus)
         electric, aggressor = self._electric(sections, solved)
@@ -135,30 +186,6 @@ class _Stage:
                 f"above {limit / 1e9:.2g} GHz the cross-sections are wider than a tenth of a wavelength, "
                 "and their quasi-static figures no more than an approximation"
             )
-
-    def _sections(self, heights: Heights) -> tuple[PairSection, ...]:
-        if not self._reference:
-            self._missing[_SECTIONS] = "no net is known as reference: name it under reference_nets: in the settings"
-            return ()
-        if hatched := hatched_beside(self._board, self._copper.areas, self._geometry):
-            self._missing[_SECTIONS] = f"copper on {hatched} next to the legs is hatched, and how is not known"
-            return ()
-        own = frozenset(hop.net for hop in (*self._link.hops_plus, *self._link.hops_minus))
-        try:
-            sections = pair_sections(
-                self._geometry,
-                heights,
-                self._copper.cuts,
-                layers=self._board.copper,
-                own=own,
-                reference=self._reference,
-                store=self._store,
-            )
-        except UnsolvableError as error:
-            self._missing[_SECTIONS] = str(error)
-            return ()
-        self._assumed += heights.assumed
-        return sections
 
     def _balance(
         self, sections: tuple[PairSection, ...], plus: LegRoute, minus: LegRoute

@@ -10,7 +10,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pairrules.board.columns import Bools, Floats, Ints
+from pairrules.board.columns import Floats, Ints
 from pairrules.geometry.curves import nearest
 from pairrules.geometry.nearest_track import curves_of
 from pairrules.geometry.pair_geometry import SERIES, TRACK, Pieces, SpacingProfile
@@ -53,11 +53,12 @@ def stretches(plus: Pieces, minus: Pieces, profile: SpacingProfile) -> tuple[Str
     """The link's stretches in order; `profile` is plus's."""
     ends_plus, ends_minus = hop_ends(plus), hop_ends(minus)
     found: list[Stretch] = []
+    beside = _advancing(minus, profile)
     at = [0.0, 0.0]
     for hop in range(max(len(ends_plus), len(ends_minus))):
         end_plus = ends_plus[min(hop, len(ends_plus) - 1)]
         end_minus = ends_minus[min(hop, len(ends_minus) - 1)]
-        for run_plus, run_minus in _runs(minus, profile, at[0], end_plus):
+        for run_plus, run_minus in _runs(minus, profile, beside, at[0], end_plus):
             start, stop = max(run_minus[0], at[1]), min(run_minus[1], end_minus)
             if stop - start <= _NOTHING_MM or run_plus[1] - run_plus[0] <= _NOTHING_MM:
                 continue
@@ -76,43 +77,42 @@ def _alone(found: list[Stretch], at: list[float], until: tuple[float, float], ho
 
 
 def _runs(
-    minus: Pieces, profile: SpacingProfile, low: float, high: float
+    minus: Pieces, profile: SpacingProfile, beside: Ints, low: float, high: float
 ) -> list[tuple[tuple[float, float], tuple[float, float]]]:
-    """Coupled runs of plus between two lengths, with the length of minus that each faces.
+    """Coupled runs of plus between two lengths, with the length of minus that each faces. `beside`: the rows of both.
 
     Runs that follow one another with no more than a sliver between are one. A run that minus faces backwards is left
     out: there the legs carry the signal in opposite directions.
     """
-    beside = _advancing(minus, profile)
+    starts, stops = np.maximum(profile.s_from[beside], low), np.minimum(profile.s_to[beside], high)
     runs: list[list[float]] = []
     rows: list[list[int]] = []
-    for row in np.flatnonzero(beside):
-        start, stop = max(float(profile.s_from[row]), low), min(float(profile.s_to[row]), high)
+    for row, start, stop in zip(beside.tolist(), starts.tolist(), stops.tolist(), strict=True):
         if stop - start <= _NOTHING_MM:
             continue
         if runs and start - runs[-1][1] <= _SLIVER_MM:
             runs[-1][1] = stop
-            rows[-1].append(int(row))
+            rows[-1].append(row)
         else:
             runs.append([start, stop])
-            rows.append([int(row)])
-    found = []
-    for (start, stop), of in zip(runs, rows, strict=True):
-        facing = _facing(minus, profile, np.array([of[0], of[-1]]), np.array([start, stop]))
-        if facing[1] > facing[0]:
-            found.append(((start, stop), (float(facing[0]), float(facing[1]))))
-    return found
+            rows.append([row])
+    ends = np.array([row for of in rows for row in (of[0], of[-1])], dtype=np.int64)
+    facing = _facing(minus, profile, ends, np.array(runs).reshape(-1)).reshape(-1, 2).tolist()
+    return [
+        ((start, stop), (first, last))
+        for (start, stop), (first, last) in zip(runs, facing, strict=True)
+        if last > first
+    ]
 
 
-def _advancing(minus: Pieces, profile: SpacingProfile) -> Bools:
+def _advancing(minus: Pieces, profile: SpacingProfile) -> Ints:
     """Coupled rows of plus's profile along which minus advances too, not just faces plus with a corner."""
-    found = np.zeros(len(profile), dtype=np.bool_)
     rows = np.flatnonzero(profile.coupled)
     size = (profile.s_to - profile.s_from)[rows]
     inset = np.minimum(size / 4, 1e-4)
-    start = _facing(minus, profile, rows, profile.s_from[rows] + inset)
-    stop = _facing(minus, profile, rows, profile.s_to[rows] - inset)
-    found[rows] = (stop - start) > _LEAST_ADVANCE * (size - 2 * inset)
+    ends = np.concatenate([profile.s_from[rows] + inset, profile.s_to[rows] - inset])
+    start, stop = _facing(minus, profile, np.tile(rows, 2), ends).reshape(2, -1)
+    found: Ints = rows[(stop - start) > _LEAST_ADVANCE * (size - 2 * inset)]
     return found
 
 

@@ -20,6 +20,9 @@ PLANE_WIDTH_MM = 1.0
 SLIVER_MM = 2 * GRID_MM
 """Copper narrower than this, which a cut near a corner leaves, carries no field worth the name."""
 
+_MOST_CUTS = 4096
+"""So many cuts are made at once, or those of one pair."""
+
 _EDGE_STEP = 0.1
 WHOLE: tuple[Span, ...] = ((-math.inf, math.inf),)
 
@@ -47,8 +50,24 @@ def met_copper(
 
     Parameters: own: nets of each pair. reference: nets whose copper on other layers counts however narrow it is.
     """
-    if not pairs:
-        return []
+    found: list[list[Beside]] = []
+    while len(found) < len(pairs):
+        first = last = len(found)
+        cuts = 0
+        while last < len(pairs) and (last == first or cuts + len(pairs[last]) <= _MOST_CUTS):
+            cuts += len(pairs[last])
+            last += 1
+        found += _met_copper(pairs[first:last], own[first:last], heights, board_cuts, reference)
+    return found
+
+
+def _met_copper(
+    pairs: Sequence[Cuts],
+    own: Sequence[frozenset[int]],
+    heights: Heights,
+    board_cuts: CrossCuts,
+    reference: frozenset[int],
+) -> list[list[Beside]]:
     asked = _Asked(pairs, own, board_cuts, reference)
     planes: list[list[tuple[int, tuple[Span, ...]]]] = [[] for _ in range(len(asked.layer))]
     beside: list[tuple[tuple[Span, ...], tuple[int, ...]]] = [((), ())] * len(asked.layer)

@@ -9,7 +9,7 @@ import numpy as np
 
 from pairrules.balance.drawn_section import GRID_MM, Drawing, Leg, beside_steps, draw_steps
 from pairrules.balance.leg_stretches import stretches
-from pairrules.balance.met_copper import Beside, met_copper
+from pairrules.balance.met_copper import Beside
 from pairrules.balance.pair_electrical import PairSection
 from pairrules.balance.sampled_cuts import BOTH, LEGS, Cuts, cuts_of
 from pairrules.balance.section_store import SectionMatrices, Store, solved
@@ -17,8 +17,7 @@ from pairrules.balance.stack_heights import Heights
 from pairrules.board.columns import Floats
 from pairrules.fields.cross_section import CrossSection
 from pairrules.fields.loss import COPPER_OHM_M
-from pairrules.geometry.cross_cut import CrossCuts
-from pairrules.geometry.pair_geometry import LegRoute, PairGeometry
+from pairrules.geometry.pair_geometry import PairGeometry
 
 _BORROWED_SHARE = 0.05
 """Up to this share of the route may take over the section beside it where its own cannot be solved."""
@@ -28,37 +27,40 @@ class UnsolvableError(Exception):
     """A pair's sections cannot be solved; the sentence says why."""
 
 
+def pair_cuts(geometry: PairGeometry) -> Cuts | None:
+    """Where a pair is cut across; `None` unless both legs are complete."""
+    plus, minus, profile = geometry.plus, geometry.minus, geometry.profile_plus
+    if plus is None or minus is None or profile is None:
+        return None
+    runs = stretches(plus.pieces, minus.pieces, profile)
+    return cuts_of(plus.pieces, minus.pieces, profile, runs, _breaks(geometry))
+
+
 def pair_sections(
-    geometry: PairGeometry,
+    cuts: Cuts,
+    beside: Sequence[Beside],
     heights: Heights,
-    board_cuts: CrossCuts,
     *,
+    track_mm: float,
     layers: tuple[str, ...],
-    own: frozenset[int],
-    reference: frozenset[int],
     store: Store,
 ) -> tuple[PairSection, ...]:
-    """The sections of a pair whose legs are both complete, in order from source to load.
+    """The sections of a pair, in order from source to load.
 
     Parameters
     ----------
-    layers: names of the copper layers, for messages. own: the pair's nets. reference: the reference nets.
+    beside: what each cut meets. track_mm: length of the longer leg. layers: names of the copper layers, for messages.
     store: sections solved so far; added to.
 
     Raises
     ------
     UnsolvableError: where more than a twentieth of the route has no copper that could be its reference.
     """
-    plus, minus, profile = geometry.plus, geometry.minus, geometry.profile_plus
-    if plus is None or minus is None or profile is None:
-        raise UnsolvableError("a leg is not routed from end to end")
-    cuts = cuts_of(plus.pieces, minus.pieces, profile, stretches(plus.pieces, minus.pieces, profile), _breaks(geometry))
-    (beside,) = met_copper([cuts], [own], heights, board_cuts, reference)
     drawn = _drawn(cuts, beside, heights)
     # Cuts that are alike share one section, and a section's hash takes its time.
     known = {key: solved(section, store) for key, section in {id(section): section for section in drawn}.items()}
     found = [known[id(section)] for section in drawn]
-    _borrow(cuts, found, plus, minus, layers)
+    _borrow(cuts, found, track_mm, layers)
     return _joined(cuts, beside, drawn, found, heights)
 
 
@@ -69,7 +71,7 @@ def _breaks(geometry: PairGeometry) -> tuple[Floats, Floats]:
     )
 
 
-def _drawn(cuts: Cuts, beside: list[Beside], heights: Heights) -> list[CrossSection]:
+def _drawn(cuts: Cuts, beside: Sequence[Beside], heights: Heights) -> list[CrossSection]:
     """The section of each cut."""
     legs = np.rint(cuts.spans / GRID_MM).tolist()
     found = []
@@ -83,16 +85,13 @@ def _names(leg: int) -> tuple[str, ...]:
     return LEGS[:BOTH] if leg == BOTH else (LEGS[leg],)
 
 
-def _borrow(
-    cuts: Cuts, found: list[SectionMatrices | str], plus: LegRoute, minus: LegRoute, layers: tuple[str, ...]
-) -> None:
+def _borrow(cuts: Cuts, found: list[SectionMatrices | str], track_mm: float, layers: tuple[str, ...]) -> None:
     """Cuts that cannot be solved take over the nearest solved one of their leg, where they are a small share."""
     lost = [i for i, matrices in enumerate(found) if isinstance(matrices, str)]
     if not lost:
         return
-    total = max(plus.track_mm, minus.track_mm)
     length = np.maximum(cuts.plus[:, 1] - cuts.plus[:, 0], cuts.minus[:, 1] - cuts.minus[:, 0])
-    if math.fsum(length[lost].tolist()) > _BORROWED_SHARE * total:
+    if math.fsum(length[lost].tolist()) > _BORROWED_SHARE * track_mm:
         x, y = cuts.start[lost[0]]
         where = f"on {layers[cuts.layer[lost[0]]]} at ({x:.3f}, {y:.3f}) mm"
         raise UnsolvableError(f"the cross-section {where} cannot be solved: {found[lost[0]]}")
@@ -105,7 +104,7 @@ def _borrow(
 
 def _joined(
     cuts: Cuts,
-    beside: list[Beside],
+    beside: Sequence[Beside],
     drawn: Sequence[CrossSection],
     found: Sequence[SectionMatrices | str],
     heights: Heights,

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 from datetime import date
 from functools import cached_property
 
-from pairrules.balance.electrical import electrical
+from pairrules.balance.electrical import electricals
 from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.balance.section_store import Store
 from pairrules.board.board import Board
@@ -86,14 +86,19 @@ class PairStage:
             for link, klass, own in zip(links, classes, limits, strict=True)
         ]
         measured = measure_links(self.board, asked, copper=self.copper)
-        every = zip(links, measured, classes, limits, strict=True)
-        return [self._judged(link, geometry, klass, own) for link, geometry, klass, own in every]
+        pairs = list(zip(links, measured, classes, strict=True))
+        figures = electricals(self.board, pairs, copper=self.copper, store=self.store)
+        return [self._judged(*pair, found, own) for pair, found, own in zip(pairs, figures, limits, strict=True)]
 
     def _judged(
-        self, link: Link, geometry: PairGeometry, klass: PairClass | None, limits: Mapping[str, Limit]
+        self,
+        link: Link,
+        geometry: PairGeometry,
+        klass: PairClass | None,
+        figures: PairElectrical,
+        limits: Mapping[str, Limit],
     ) -> Judged:
         board, rules = self.board, all_rules()
-        figures = electrical(board, link, geometry, klass, copper=self.copper, store=self.store)
         measures = with_electrical(geometric_measures(geometry), figures)
         pins = pin_extra(
             board,
