@@ -16,7 +16,9 @@ from pairrules.geometry.pair_geometry import TRACK, Pieces
 COUPLED_TURN = math.radians(30.0)
 """Legs turned less than this to each other run side by side."""
 
-_TIE_MM = 1e-7
+TIE_MM = 1e-7
+"""Pieces whose distances differ by less are equally near."""
+
 _GUESSES = 10
 _EQUAL_MM = 1e-12
 _SEARCH_MM = 0.001
@@ -92,7 +94,7 @@ class NearestTrack:
         gap = away - self._half[rows][owner] - self._other_half[candidate]
         least = np.full(len(rows), np.nan)
         least[~none] = np.minimum.reduceat(gap, (np.cumsum(count) - count)[~none])
-        tied = np.flatnonzero(gap <= least[owner] + _TIE_MM)
+        tied = np.flatnonzero(gap <= least[owner] + TIE_MM)
         heading = directions(own, t)[owner[tied]]
         turn = np.abs(
             (directions(self._other.take(candidate[tied]), foot[tied]) - heading + np.pi / 2) % np.pi - np.pi / 2
@@ -133,7 +135,7 @@ class NearestTrack:
         # Where there is no track of the other leg, nothing is guessed.
         known = np.flatnonzero((one >= 0) & (two >= 0) & (~same | np.isfinite(self._reach[rows])))
         # The one that runs more nearly alongside counts as long as both are as good as equally near.
-        known, more = np.tile(known, 2), np.repeat([-_TIE_MM, _TIE_MM], len(known))
+        known, more = np.tile(known, 2), np.repeat([-TIE_MM, TIE_MM], len(known))
         rows, one, two, same = rows[known], one[known], two[known], same[known]
         a, b, own, more = left[known], right[known], self._own.take(rows), np.where(same, 0.0, more)
 

@@ -17,7 +17,7 @@ from pairrules.board.columns import Floats, Ints
 from pairrules.geometry.curves import Curves, directions, nearest, parts, points
 from pairrules.geometry.gap_figures import usual_gap
 from pairrules.geometry.legs import Legs, laid_out
-from pairrules.geometry.nearest_track import Nearest, NearestTrack, curves_of
+from pairrules.geometry.nearest_track import TIE_MM, Nearest, NearestTrack, curves_of
 from pairrules.geometry.pair_geometry import TRACK, Pieces, SpacingProfile
 
 LEAST_REACH_MM = 0.3
@@ -268,6 +268,9 @@ def _stretches(
     middle = search.at(row, (a + b) / 2)
     ends = search.gap_to(np.tile(middle.other, 2), np.tile(row, 2), np.concatenate([a, b]))
     start, end = ends.reshape(2, -1)
+    # Where one stretch ends and the next begins, the piece that runs alongside may be a tie's width from the nearest.
+    meet = np.flatnonzero((row[1:] == row[:-1]) & (np.abs(start[1:] - end[:-1]) <= 2 * TIE_MM))
+    end[meet] = start[meet + 1] = np.minimum(end[meet], start[meet + 1])
     before = legs.before(np.where(own.kind == TRACK, own.length, 0.0))
     t_from, t_to = t0[row] + (t1 - t0)[row] * a, t0[row] + (t1 - t0)[row] * b
     of = origin[row]
