@@ -51,7 +51,8 @@ def whole(path: str, *, jobs: int = 1, solved: bool = True) -> dict[str, float]:
     from pairrules.running import pair_stage, workers
 
     if not solved:
-        pair_stage.electrical = lambda *_, **__: PairElectrical(missing={"sections": "not asked for"})  # type: ignore[assignment]
+        unknown = PairElectrical(missing={"sections": "not asked for"})
+        pair_stage.electricals = lambda _, pairs, **__: [unknown for _ in pairs]  # type: ignore[assignment]
     pairs = _Clock()
     judge = workers.judge_links
 

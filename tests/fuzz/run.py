@@ -111,12 +111,12 @@ class Sections(dict[Any, Any]):
         super().__init__()
         self.real = True
         self.likes: dict[tuple[str, ...], Any] = {}
-        solve = pair_stage.electrical
+        solve = pair_stage.electricals
 
-        def electrical(*arguments: Any, **named: Any) -> Any:
+        def electricals(*arguments: Any, **named: Any) -> Any:
             return solve(*arguments, **{**named, "store": self})
 
-        pair_stage.electrical = electrical
+        pair_stage.electricals = electricals
         read, settings = pipeline.read_settings, dict[bytes, Any]()
 
         def read_settings(path: Path | None, **named: Any) -> Any:
