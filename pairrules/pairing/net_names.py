@@ -14,6 +14,9 @@ from pairrules.pairing.net_roles import words
 _MOST = 16
 """Places in one name that are looked at for each pattern, from the right; a name needs one or two."""
 
+_FARTHEST = 500
+"""Letters from a name's end within which a polarity is looked for; no name of a net is as long."""
+
 _MOST_READ = 4
 """Readings of one name by one pattern: each holds the name once more, and a name may be long."""
 
@@ -128,7 +131,7 @@ def readings(name: str) -> tuple[Reading, ...]:
     found: list[Reading] = []
     for rank, pattern in enumerate(_PATTERNS):
         read = 0
-        for place in reversed(list(pattern.finder.finditer(name))[-_MOST:]):
+        for place in reversed(list(pattern.finder.finditer(name, max(0, len(name) - _FARTHEST)))[-_MOST:]):
             token, start = place[1], place.start()
             # The end of a long head decides; searching all of it would cost the square of the name's length.
             before = name[max(0, start - 64) : start]

@@ -13,7 +13,9 @@ import numpy as np
 
 from pairrules.board.areas import Area
 from pairrules.board.board import Board, DeclaredPair
+from pairrules.board.columns import Floats
 from pairrules.board.crossing_rings import crossing_rings
+from pairrules.board.knots import MOST_CROSSINGS, knotted
 from pairrules.board.pads import Pads, PadShape, Part
 from pairrules.board.tracks import Tracks
 from pairrules.board.units import LENGTH_MM
@@ -91,6 +93,8 @@ class _Reading:
         self.layers = {layer: index for index, layer in enumerate(stackup.copper)}
         outline = self.tree.get("outline")
         edge = None if outline is None else self.ruler.ring(outline, (None, "outline"))
+        if edge is not None:
+            self._refuse_knots([(edge, (None, "outline"))])
         parts, pads = self._parts()
         tracks, vias, areas = self._tracks(), self._vias(), self._areas()
         kinds = self._kinds()
@@ -123,11 +127,11 @@ class _Reading:
         written_name = members.get(key)
         if isinstance(written_name, str) and written_name in self.layers:
             return self.layers[written_name]
+        if all_too and written_name == ALL_LAYERS:
+            return -1
         names = tuple(self.layers) + ((ALL_LAYERS,) if all_too else ())
         remedy = f"give a copper layer of the stackup: {or_list(names)}"
         name = members.text(key, remedy)
-        if all_too and name == ALL_LAYERS:
-            return -1
         if name not in self.layers:
             raise self.document.fault((members.path, key), name, remedy)
         return self.layers[name]
@@ -188,6 +192,7 @@ class _Reading:
         points: tuple[Point, ...] = ()
         if kind == "polygon":
             ring = self.ruler.ring(members.need("points", "give the pad's outline about its centre"), (path, "points"))
+            self._refuse_knots([(ring, (path, "points"))])
             points = tuple((float(x), float(y)) for x, y in ring)
             size = (float(np.ptp(ring[:, 0])), float(np.ptp(ring[:, 1])))
         else:
@@ -271,12 +276,22 @@ class _Reading:
             members = self.document.members(entry, path, _AREA, "net, layer and outline")
             net, layer = self._net(members.get("net"), (path, "net")), self._layer(members, "layer")
             outline = self.ruler.ring(members.need("outline", "give three points or more"), (path, "outline"))
-            paths.append((path, "outline"))
+            paths.append(path)
             holes = tuple(self.ruler.ring(hole, place) for place, hole in members.entries("holes", "outlines"))
             areas.append(Area(net=net, layer=layer, outline=outline, holes=holes))
+        self._refuse_knots([(row.outline, path) for row, path in zip(areas, paths, strict=True)])
+        self._refuse_knots([(hole, path) for row, path in zip(areas, paths, strict=True) for hole in row.holes])
         for place, _, _ in crossing_rings([area.outline for area in areas]):
-            self.document.note("crosses or touches itself and is read by what its lines enclose", paths[place])
+            self.document.note(
+                "crosses or touches itself and is read by what its lines enclose", (paths[place], "outline")
+            )
         return areas
+
+    def _refuse_knots(self, rings: list[tuple[Floats, Path]]) -> None:
+        place = knotted([ring for ring, _ in rings])
+        if place >= 0:
+            found = f"has an outline that crosses itself more than {MOST_CROSSINGS} times"
+            raise self.document.misfit(rings[place][1], found, "draw it around its copper")
 
     def _kinds(self) -> dict[str, str]:
         kinds: dict[str, str] = {}

@@ -9,11 +9,13 @@ import numpy as np
 from pairrules.board import Area, Board, Pads, PadShape, Tracks, Vias
 from pairrules.board.columns import Floats
 from pairrules.board.crossing_rings import crossing_rings
+from pairrules.board.knots import MOST_CROSSINGS, knotted
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581 import mirrors, polarity
 from pairrules.readers.ipc2581.completeness import complete
 from pairrules.readers.ipc2581.copper import Copper, FillRow
-from pairrules.readers.ipc2581.elements import FARTHEST_MM
+from pairrules.readers.ipc2581.drawing import Fill, Item
+from pairrules.readers.ipc2581.elements import FARTHEST_MM, shown
 from pairrules.readers.ipc2581.file_content import FileContent, Step
 from pairrules.readers.ipc2581.layers import build_stackup
 from pairrules.readers.ipc2581.nets import declared_pairs, name_unnamed
@@ -24,6 +26,7 @@ from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Plane
 
 _FARTHEST_MM = FARTHEST_MM * math.sqrt(2)
+_TOLD = 6
 LEAST_MM2 = 1e-9
 """An area below this, a square of 30 nanometres, is none."""
 
@@ -38,6 +41,7 @@ def assemble(content: FileContent, wanted: str) -> Board:
     for sentence, count in step.remarks.counts.items():
         remarks.count(sentence, count, line=step.remarks.lines.get(sentence, 0))
     copper = step.copper
+    _refuse_knots(copper, step)
     name_unnamed(copper, step.nets)
     mirrors.settle(copper, step.parts, remarks)
     place_pins(copper, step.parts, step.nets, content.table, content.most_pieces)
@@ -87,6 +91,21 @@ def _within_ten_metres(copper: Copper, step: Step) -> None:
         )
 
 
+def _refuse_knots(copper: Copper, step: Step) -> None:
+    """Refuse outlines that cross themselves too often, of areas, of what is cut out, of pads and of the board."""
+    drawn: list[tuple[Item, str]] = [(row.fill, f"on {row.layer}") for row in copper.areas]
+    drawn += [(row.item, f"on {row.layer}") for row in copper.erasures]
+    shapes = {id(row.shape): (row.shape, f"of a pad on {row.layer}") for row in copper.pads if row.shape is not None}
+    drawn += [(item, where) for shape, where in shapes.values() for item in shape.items]
+    drawn += [] if step.profile is None else [(Fill(step.profile), "of the board's profile")]
+    rings = [(ring, where) for item, where in drawn if isinstance(item, Fill) for ring in (item.outline, *item.holes)]
+    place = knotted([_points(ring) for ring, _ in rings])
+    if place >= 0:
+        ring, where = rings[place]
+        found = f"an outline {where} at ({ring[0].real:.3f}, {ring[0].imag:.3f}) mm crosses itself"
+        raise BoardError(f"{found} more than {MOST_CROSSINGS} times", remedy="draw it around its copper")
+
+
 def choose_step(content: FileContent, wanted: str) -> Step:
     """The step to check: the one asked for, else the only one with copper, panels that repeat others left aside."""
     held = {name: step for name, step in content.steps.items() if step.copper}
@@ -98,7 +117,7 @@ def choose_step(content: FileContent, wanted: str) -> Step:
         return held[wanted]
     boards = {name: step for name, step in held.items() if not step.repeats} or held
     if len(boards) > 1:
-        names = ", ".join(boards)
+        names = _some(boards)
         raise BoardError(f"the file holds {len(boards)} boards: {names}", remedy="say which one with --step NAME")
     if not boards or not content.table.copper:
         modes = f" (it was written for {', '.join(content.modes)})" if any(content.modes) else ""
@@ -107,7 +126,13 @@ def choose_step(content: FileContent, wanted: str) -> Step:
 
 
 def _choices(held: dict[str, Step]) -> str:
-    return f"choose one of: {', '.join(held)}" if held else "export the board with its copper layers"
+    return f"choose one of: {_some(held)}" if held else "export the board with its copper layers"
+
+
+def _some(names: dict[str, Step]) -> str:
+    """The first of the names, since a file may hold thousands."""
+    told = [shown(name) for name in list(names)[:_TOLD]]
+    return ", ".join(told) + (f" and {len(names) - _TOLD} more" if len(names) > _TOLD else "")
 
 
 def _net_names(step: Step, copper: Copper, pads: list[JoinedPad], vias: list[JoinedVia]) -> tuple[str, ...]:

@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Container
+from collections.abc import Container, Iterable
 from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING
 
+from pairrules.board import PadShape
+from pairrules.board.knots import meetings
 from pairrules.readers.ipc2581.corners import corners
 from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, sweep
 from pairrules.readers.ipc2581.elements import child, children, length, line, local, size, truth, word, wrong
@@ -21,6 +23,7 @@ MOST_PIECES = 5_000_000
 
 _FEW_PIECES = 50_000
 _BYTES_A_PIECE = 8
+_PIECES_A_MEETING = 5
 
 MOST_ITEMS = 20_000
 """Items one user shape may draw; a shape that names others over and over would fill the memory."""
@@ -161,7 +164,7 @@ class Shapes:
             return found
         self.spend(element, found.pieces)
         moved = placed(found.items, by)
-        return Primitive(moved, None if found.pad is None else outer_pad(moved))
+        return Primitive(moved, None if found.pad is None else self.outer_pad(element, moved))
 
     def as_pad(self, element: Element, factor: float) -> Primitive | None:
         """The same as `shape`, with the outer outline as the pad where lines or several pieces draw it."""
@@ -169,11 +172,18 @@ class Shapes:
         if found is None or found.pad is not None or all(item.erase for item in found.items):
             return found
         if local(element) != "UserPrimitiveRef":
-            return replace(found, pad=outer_pad(found.items))
+            return replace(found, pad=self.outer_pad(element, found.items))
         name = word(element, "id")  # drawn once for all pads that name it
         if name not in self.user_pads:
-            self.user_pads[name] = replace(found, pad=outer_pad(found.items))
+            self.user_pads[name] = replace(found, pad=self.outer_pad(element, found.items))
         return self.user_pads[name]
+
+    def outer_pad(self, element: Element, items: Iterable[Item]) -> PadShape | None:
+        """The pad of several pieces, which are united; those that meet count, since each crossing takes its time."""
+        regions = [item.region() for item in items if not item.erase]
+        if len(regions) > 1:
+            self.spend(element, (meetings(regions, self.most) - len(regions)) // 2 * _PIECES_A_MEETING)
+        return outer_pad(regions)
 
     def _bare_shape(self, element: Element, factor: float, default: Line | None) -> Primitive | None:
         tag = local(element)

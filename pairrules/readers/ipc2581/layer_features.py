@@ -11,7 +11,6 @@ from pairrules.readers.ipc2581.elements import NO_NET, child, children, length, 
 from pairrules.readers.ipc2581.features import STYLES, Line, Shapes
 from pairrules.readers.ipc2581.layers import DRILLED, FileLayer, LayerTable
 from pairrules.readers.ipc2581.places import crowd_at
-from pairrules.readers.ipc2581.primitives import outer_pad
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Transform, location
 
@@ -168,7 +167,7 @@ class SetReader:
                 else:
                     self.shapes.spend(element, shape.pieces)
                     items += placed(shape.items, Transform())
-        outline = outer_pad(tuple(replace(item, erase=False) for item in items))
+        outline = self.shapes.outer_pad(element, (replace(item, erase=False) for item in items))
         if outline is None:
             self.remarks.count("{n} slot{s} without an outline {are} left out")
             return

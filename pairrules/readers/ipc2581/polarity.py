@@ -13,6 +13,7 @@ from typing import Any
 import shapely
 from shapely.strtree import STRtree
 
+from pairrules.board.knots import MOST_MEETINGS, crowded, meetings
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.copper import Copper, Erasure, FillRow, HoleRow
 from pairrules.readers.ipc2581.drawing import Fill, Item, fills
@@ -67,7 +68,9 @@ def invert(copper: Copper, negatives: list[str], profile: Plane | None, remarks:
             continue
         left: Any = Fill(profile).region()
         for run, erase in _runs(drawn):
-            region = shapely.union_all([item.region() for item in run])
+            regions = [item.region() for item in run]
+            _refuse_crowds(regions, layer)
+            region = shapely.union_all(regions)
             left = left.union(region.intersection(Fill(profile).region())) if erase else left.difference(region)
         order = copper.next()
         for piece in fills(left):
@@ -140,13 +143,28 @@ class _Cuts:
         return sorted(i for i in touched if erasures[i].order > order)
 
 
+def _refuse_crowds(regions: list[Any], layer: str) -> None:
+    """Raises: BoardError where what cuts a layer lies upon itself so often that its union would take minutes."""
+    if crowded(regions):
+        raise BoardError(
+            f"what is cut out of layer {layer} lies upon itself more than {MOST_MEETINGS} times",
+            remedy="export the file again",
+        )
+
+
 def _erase_layer(copper: Copper, layer: str, remarks: Remarks) -> None:
     erasures = [row for row in copper.erasures if row.layer == layer]
     regions = [row.item.region() for row in erasures]
+    _refuse_crowds(regions, layer)
     tree, cuts = STRtree(regions), _Cuts()
     kept: list[FillRow] = []
-    for row in copper.areas:
-        later = cuts.later(tree, erasures, row.fill.region(), row.order) if row.layer == layer else []
+    # Cuts that lie upon one another take as much longer to unite.
+    upon = 1 + meetings(regions, MOST_CUTS) // len(regions) // 10
+    laters = [
+        cuts.later(tree, erasures, row.fill.region(), row.order, weight=upon) if row.layer == layer else []
+        for row in copper.areas
+    ]
+    for row, later in zip(copper.areas, laters, strict=True):
         if not later:
             kept.append(row)
             continue

@@ -68,9 +68,9 @@ def polygon_pad(outline: Plane) -> PadShape:
     return PadShape(kind="polygon", size=extent, points=tuple(zip(x.tolist(), y.tolist(), strict=True)))
 
 
-def outer_pad(items: tuple[Item, ...]) -> PadShape | None:
+def outer_pad(regions: list[Any]) -> PadShape | None:
     """The pad of several pieces: the outline of the largest, holes closed; `None` where nothing is covered."""
-    pieces = fills(shapely.union_all([item.region() for item in items if not item.erase]))
+    pieces = fills(shapely.union_all(regions))
     areas = [abs(signed_area(piece.outline)) for piece in pieces]
     if not areas:
         return None
