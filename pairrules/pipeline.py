@@ -50,6 +50,7 @@ def check(
     today: date | None = None,
     settings_of: str | Path | None = None,
     jobs: int | None = 1,
+    store: Store | None = None,
     progress: Progress | None = None,
 ) -> Result:
     """Read a board, measure its pairs, judge them.
@@ -65,6 +66,7 @@ def check(
     settings_of: the board whose settings and waivers hold, where it is not this one and `settings` is `None`.
     jobs: how many processes measure pairs, `None` for as many as there are processors where there are many pairs; the
         result is the same for any number.
+    store: cross-sections solved so far, added to; `None` for none.
     progress: called as the work goes on.
 
     Raises
@@ -81,6 +83,7 @@ def check(
         waivers=waivers,
         day=today or date.today(),
         drawing=drawing,
+        store={} if store is None else store,
     )
     judged = judge_links(stage, opened.links, jobs=jobs, name=str(path), progress=progress)
     states: dict[Waiver, list[WaiverState]] = {waiver: [] for waiver in waivers}

@@ -47,7 +47,10 @@ def kept_check(
     progress: Progress | None = None,
     kept: KeptResults | None,
 ) -> Result:
-    """`pipeline.check`, answered from `kept` where it can be; `None` keeps nothing and asks nothing."""
+    """`pipeline.check`, answered from `kept` where it can be; `None` keeps nothing and asks nothing.
+
+    Where it has to be done, sections that earlier runs solved are taken from the same folder, and new ones go there.
+    """
     digest = None if kept is None else _digest(path)
     if kept is None or not digest:
         from pairrules.pipeline import check
@@ -63,16 +66,29 @@ def kept_check(
             progress=progress,
         )
     day = (today or date.today()).isoformat()
-    key = _key(digest, path, settings, pairs, step, settings_of)
+    tool = _tool()
+    key = _key(tool, digest, path, settings, pairs, step, settings_of)
     found = _believed(kept.get(key), day)
     if found is not None:
         return found
     from pairrules.pipeline import check, files_asked_for
+    from pairrules.running.kept_sections import KeptSections
+    from pairrules.running.section_file import SectionFile
 
+    sections = KeptSections(SectionFile(kept.folder), f"{__version__} {tool}")
     rests_on = _state(files_asked_for(settings_of or path, settings))
     result = check(
-        path, settings, pairs=pairs, step=step, today=today, settings_of=settings_of, jobs=jobs, progress=progress
+        path,
+        settings,
+        pairs=pairs,
+        step=step,
+        today=today,
+        settings_of=settings_of,
+        jobs=jobs,
+        store=sections,
+        progress=progress,
     )
+    sections.save()
     if result.board.sha256 == digest and rests_on == _state(path for path, _ in rests_on):
         entry = {"rests_on": rests_on, "day": day if result.waivers else "", "result": to_plain(result)}
         kept.put(key, entry)
@@ -106,8 +122,8 @@ def _digest(path: str | Path) -> str:
         return ""
 
 
-def _key(digest: str, path: str, *options: str | None) -> str:
-    asked = [_FORM, __version__, _tool(), digest, path, os.path.abspath(path), *options]  # noqa: PTH100
+def _key(tool: str, digest: str, path: str, *options: str | None) -> str:
+    asked = [_FORM, __version__, tool, digest, path, os.path.abspath(path), *options]  # noqa: PTH100
     return hashlib.sha256(json.dumps(asked).encode()).hexdigest()
 
 

@@ -10,10 +10,11 @@ import contextlib
 import hashlib
 import json
 import os
-import tempfile
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
+
+from pairrules.running.whole_file import PART, write_whole
 
 MOST_BYTES = 256 * 1024 * 1024
 """The folder is cut back to nine tenths of this, least recently used first, when it has grown beyond it."""
@@ -61,24 +62,8 @@ class KeptResults:
         data = hashlib.sha256(text).hexdigest().encode("ascii") + b"\n" + text
         if len(data) > self._most // 4:
             return
-        try:
-            self.folder.mkdir(mode=0o700, parents=True, exist_ok=True)
-            handle, name = tempfile.mkstemp(prefix=".", suffix=".part", dir=self.folder)
-        except OSError:
-            return
-        try:
-            with os.fdopen(handle, "wb") as file:
-                file.write(data)
-            os.replace(name, self._path(key))  # noqa: PTH105 - a Path for one call says no more
-        except OSError:
-            with contextlib.suppress(OSError):
-                os.unlink(name)  # noqa: PTH108
-            return
-        except BaseException:
-            with contextlib.suppress(OSError):
-                os.unlink(name)  # noqa: PTH108
-            raise
-        self._cut_back()
+        if write_whole(self._path(key), data):
+            self._cut_back()
 
     def extent(self) -> Extent:
         """How much is kept."""
@@ -91,7 +76,7 @@ class KeptResults:
         for path in (path for *_, path in found):
             with contextlib.suppress(OSError):
                 path.unlink()
-        for path in self._files(".part"):
+        for path in self._files(PART):
             with contextlib.suppress(OSError):
                 path.unlink()
         return Extent(results=len(found), size=sum(size for _, size, _ in found))

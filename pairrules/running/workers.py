@@ -13,6 +13,7 @@ from typing import TypeVar
 
 from pairrules.errors import BoardError
 from pairrules.pairing.link import Link
+from pairrules.running.kept_sections import add_to, taken_from
 from pairrules.running.pair_stage import Judged, PairStage
 
 Progress = Callable[[str, int, int], None]
@@ -34,7 +35,8 @@ def judge_links(
 ) -> list[Judged]:
     """Every link judged, in order.
 
-    Parameters: jobs: how many processes, `None` for as many as pay. name: of the board, for messages. progress: called as the work goes on.
+    Parameters: jobs: how many processes, `None` for as many as pay. name: of the board, for messages. progress: called
+    as the work goes on.
     Raises: BoardError where a worker process ended before its work was done.
     """
     found: list[Judged] = []
@@ -53,8 +55,10 @@ def judge_links(
             found += stage.judge(share)
         return found
     try:
-        for judged in in_processes(_judge_share, shares, jobs=min(jobs, len(shares)), start=_take_stage, given=stage):
+        told = in_processes(_judge_share, shares, jobs=min(jobs, len(shares)), start=_take_stage, given=stage)
+        for judged, sections in told:
             found += judged
+            add_to(stage.store, sections)
             if progress is not None:
                 progress("measuring pairs", len(found), every)
     except BrokenProcessPool:
@@ -112,5 +116,6 @@ def _take_stage(stage: PairStage) -> None:
     _STAGE[:] = [stage]
 
 
-def _judge_share(links: Sequence[Link]) -> list[Judged]:
-    return _STAGE[0].judge(links)
+def _judge_share(links: Sequence[Link]) -> tuple[list[Judged], dict[bytes, bytes]]:
+    """The links judged, and the sections solved on the way that are to be kept."""
+    return _STAGE[0].judge(links), taken_from(_STAGE[0].store)

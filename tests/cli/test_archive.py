@@ -3,12 +3,15 @@
 from __future__ import annotations
 
 import importlib
+import json
 from pathlib import Path
 
 import pytest
 
 from pairrules.cli import run
 from pairrules.running.kept_results import KeptResults
+from pairrules.running.section_file import SectionFile
+from tests.balance.test_electrical import straight
 from tests.cli.boards import limits, put
 
 
@@ -81,16 +84,31 @@ def test_a_folder_without_boards(tmp_path: Path, capsys: pytest.CaptureFixture[s
 def test_the_commands_cache_and_no_cache(
     archive: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
 ) -> None:
+    (archive / "a.json").write_text(json.dumps(straight()), encoding="utf-8")
     kept = KeptResults(archive / "kept")
-    monkeypatch.setattr(importlib.import_module("pairrules.cli.boards"), "kept_results", lambda: kept)
-    monkeypatch.setattr(importlib.import_module("pairrules.cli.cache"), "kept_results", lambda: kept)
+    for user in ("boards", "measure", "cache"):
+        monkeypatch.setattr(importlib.import_module(f"pairrules.cli.{user}"), "kept_results", lambda: kept)
     run(["check", "a.json", "--no-cache"])
-    assert kept.extent().results == 0
+    run(["measure", "a.json", "--no-cache"])
+    assert not kept.folder.exists()
     run(["check", "a.json"])
+    solved = SectionFile(kept.folder)
+    assert solved.extent().sections == 1
+    # What is kept is not even read where that is not wanted.
+    monkeypatch.setattr(SectionFile, "read", lambda _: pytest.fail("read"))
+    run(["check", "a.json", "--no-cache"])
+    monkeypatch.undo()
+    monkeypatch.chdir(archive)
+    for user in ("boards", "cache"):
+        monkeypatch.setattr(importlib.import_module(f"pairrules.cli.{user}"), "kept_results", lambda: kept)
     first = capsys.readouterr().out
     run(["check", "a.json"])
     assert first.endswith(capsys.readouterr().out)
     assert run(["cache"]) == 0
-    assert capsys.readouterr().out.startswith("1 result kept, 0.0 MB, in ")
+    told = capsys.readouterr().out.splitlines()
+    assert told == [f"1 {what} kept, 0.0 MB, in {kept.folder}" for what in ("result", "solved cross-section")]
     assert run(["cache", "--clear"]) == 0
-    assert kept.extent().results == 0
+    told = capsys.readouterr().out.splitlines()
+    assert told == [f"1 {what} dropped, 0.0 MB, in {kept.folder}" for what in ("result", "solved cross-section")]
+    assert (kept.extent().results, solved.extent().sections) == (0, 0)
+    assert not list(kept.folder.iterdir())
