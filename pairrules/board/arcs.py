@@ -27,6 +27,12 @@ def sweep(
     return -turn if clockwise else turn
 
 
+def chords_of(radius: float, angle: float, *, within: float = FLATTENING_MM) -> int:
+    """Into how many chords an arc is flattened."""
+    steps = 4 if radius <= within else math.ceil(abs(angle) / (2 * math.acos(1 - within / radius)))
+    return max(steps, 1)
+
+
 def flatten(
     start: tuple[float, float], centre: tuple[float, float], angle: float, *, within: float = FLATTENING_MM
 ) -> Floats:
@@ -35,8 +41,7 @@ def flatten(
     Source: sagitta r(1 − cos(θ/2)) of a chord of angle θ (elementary geometry).
     """
     dx, dy = start[0] - centre[0], start[1] - centre[1]
-    radius = math.hypot(dx, dy)
-    steps = 4 if radius <= within else math.ceil(abs(angle) / (2 * math.acos(1 - within / radius)))
-    turns = angle * np.arange(1, max(steps, 1) + 1) / max(steps, 1)
+    steps = chords_of(math.hypot(dx, dy), angle, within=within)
+    turns = angle * np.arange(1, steps + 1) / steps
     cos, sin = np.cos(turns), np.sin(turns)
     return np.column_stack([centre[0] + dx * cos - dy * sin, centre[1] + dx * sin + dy * cos])

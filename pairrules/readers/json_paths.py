@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from pairrules.board.arcs import flatten, sweep
+from pairrules.board.arcs import chords_of, flatten, sweep
 from pairrules.board.columns import Floats
 from pairrules.readers.json_tree import Document, Members, Path
 
@@ -16,6 +16,12 @@ THINNEST_MM = 0.0001
 
 FARTHEST_MM = 10_000.0
 """Greatest coordinate or size: beyond ten metres the units must be wrong. Common practice, no source."""
+
+MOST_CHORDS = 400_000
+"""Chords beyond the first `_FEW_CHORDS` of each arc, all together: a full circle of 8 mm comes to two hundred, one of
+ten metres to seven thousand. Common practice, no source."""
+
+_FEW_CHORDS = 200
 
 _ARC_KEYS = frozenset({"arc_to", "centre", "clockwise"})
 _ARC_SLACK_MM = 0.001
@@ -130,4 +136,9 @@ class Ruler:
                 f"{near / self.scale:.6g} {self.unit} at its start and {far / self.scale:.6g} {self.unit} at its end"
             )
             raise self.document.misfit(path, f"has a radius of {radii}", "give a centre as far from both")
-        return start, end, centre, sweep(start, end, centre, clockwise=clockwise)
+        angle = sweep(start, end, centre, clockwise=clockwise)
+        self.document.chords += max(0, chords_of(near, angle) - _FEW_CHORDS)
+        if self.document.chords > MOST_CHORDS:
+            found = f"is a round piece too many: those of great radius come to more than {MOST_CHORDS} chords"
+            raise self.document.misfit(path, found, f"give arcs of a board's size; the file's unit is {self.unit}")
+        return start, end, centre, angle

@@ -37,12 +37,14 @@ class Document:
     file: its name for messages.
     unknown: members that nobody asked for, by path without numbers.
     cleaned: how many texts held characters that cannot be printed, which were taken out.
+    chords: of its arcs, as `json_paths` counts them.
     notes: what was mended, with how often and where first.
     """
 
     file: str
     unknown: Counter[str] = field(default_factory=Counter)
     cleaned: int = 0
+    chords: int = 0
     notes: dict[str, tuple[int, Path]] = field(default_factory=dict)
 
     def note(self, what: str, path: Path) -> None:

@@ -13,11 +13,11 @@ from pairrules.errors import BoardError
 MOST_BYTES = 2 * 1024**3
 """Size, unpacked, that is still taken for a board."""
 
-MOST_RATIO = 200
+MOST_RATIO = 100
 """Unpacked to packed size that is still taken for text: boards reach 10 to 40, deflate itself 1032 (zlib's technical
 notes; the rest common practice, no source)."""
 
-_SMALL_BYTES = 16 * 1024**2
+_SMALL_BYTES = 4 * 1024**2
 """Below this size no ratio is asked: so much repetition harms nobody."""
 
 _MOST_MEMBERS = 1000
@@ -91,7 +91,8 @@ def _gunzip(data: bytes, name: str) -> bytes:
                 rest = engine.unconsumed_tail
                 parts.append(piece)
                 total += len(piece)
-                _check_size(total, len(data), name)
+                # Against what has been read so far, so that a long file of blanks fills no memory before it is refused.
+                _check_size(total, place - len(rest), name)
         except zlib.error:
             raise _broken(name, "the gzip data is damaged") from None
         place -= len(engine.unused_data)
@@ -104,7 +105,7 @@ def _from_zip(data: bytes, name: str) -> tuple[bytes, str]:
     try:
         with zipfile.ZipFile(io.BytesIO(data)) as archive:
             members = [member for member in archive.infolist() if not member.is_dir()]
-            chosen = _choose(members, lambda member, most: _member(archive, member, name, most))
+            chosen = _choose(members, lambda member, most: _member(archive, member, name, len(data), most))
             if chosen is None:
                 raise BoardError(
                     "the archive holds no board", file=name, remedy="put an .xml, .cvg or .json board in it"
@@ -114,7 +115,7 @@ def _from_zip(data: bytes, name: str) -> tuple[bytes, str]:
                 raise BoardError(
                     "the archive is packed in an unusual way", file=label, remedy="pack it with deflate, as is usual"
                 )
-            plain = _member(archive, chosen, name, None)
+            plain = _member(archive, chosen, name, len(data), None)
     except _ZIP_FAULTS as error:
         locked = "encrypted" in str(error)
         raise _broken(name, "the zip archive is locked" if locked else "the zip archive is damaged") from None
@@ -140,8 +141,11 @@ def _looks_like_board(start: bytes) -> bool:
     return b"IPC-2581" in bare or b"pairrules_board" in bare
 
 
-def _member(archive: zipfile.ZipFile, member: zipfile.ZipInfo, name: str, most: int | None) -> bytes:
-    """A member's bytes, or its first `most`. The sizes an archive states of itself are not believed."""
+def _member(archive: zipfile.ZipFile, member: zipfile.ZipInfo, name: str, packed: int, most: int | None) -> bytes:
+    """A member's bytes, or its first `most`. The sizes an archive states of itself are not believed.
+
+    packed: the archive's size.
+    """
     parts: list[bytes] = []
     total = 0
     with archive.open(member) as stream:
@@ -150,7 +154,7 @@ def _member(archive: zipfile.ZipFile, member: zipfile.ZipInfo, name: str, most: 
         while piece := stream.read(_CHUNK):
             parts.append(piece)
             total += len(piece)
-            _check_size(total, member.compress_size, name)
+            _check_size(total, min(member.compress_size, packed), name)
     return b"".join(parts)
 
 

@@ -15,6 +15,17 @@ from shapely.geometry import LineString, MultiPolygon, Polygon
 from pairrules.board import arcs
 from pairrules.readers.ipc2581.transform import Plane, Transform
 
+_FEW_CORNERS = 200
+_CORNERS_A_PIECE = 8
+
+
+def surplus(corners: int) -> int:
+    """Pieces that an outline or arc of many corners counts for beside itself.
+
+    An arc of some metres' radius comes to thousands of corners, a circle of 8 mm to two hundred.
+    """
+    return max(0, corners - _FEW_CORNERS) // _CORNERS_A_PIECE
+
 
 @dataclass(frozen=True, slots=True)
 class Stroke:
@@ -35,7 +46,9 @@ class Stroke:
     @property
     def pieces(self) -> int:
         """Pieces of track it comes to."""
-        return len(self.sweeps)
+        round_ones = zip(self.points, self.centres, self.sweeps, strict=False)
+        chords = (arcs.chords_of(abs(at - centre), turn) for at, centre, turn in round_ones if centre is not None)
+        return len(self.sweeps) + sum(map(surplus, chords))
 
     def placed(self, by: Transform) -> Stroke:
         """The stroke after a placement; a mirror turns the arcs' sense."""
@@ -77,7 +90,7 @@ class Fill:
     @property
     def pieces(self) -> int:
         """Areas it comes to."""
-        return 1
+        return 1 + sum(surplus(len(edge)) for edge in (self.outline, *self.holes))
 
     def placed(self, by: Transform) -> Fill:
         """The fill after a placement."""

@@ -7,9 +7,10 @@ from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING
 
 from pairrules.board import PadShape
+from pairrules.board.arcs import chords_of
 from pairrules.board.knots import meetings
 from pairrules.readers.ipc2581.corners import corners
-from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, sweep
+from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, surplus, sweep
 from pairrules.readers.ipc2581.elements import child, children, length, line, local, size, truth, word, wrong
 from pairrules.readers.ipc2581.primitives import Primitive, hollow, outer_pad, polygon_pad, primitive
 from pairrules.readers.ipc2581.remarks import Remarks
@@ -205,7 +206,10 @@ class Shapes:
         if tag in {"Hexagon", "Octagon"}:
             self.remarks.count("{n} hexagon{s} or octagon{s} {are} read with the length from corner to corner")
         found = primitive(element, factor)
-        return None if found is None else self._filled(element, found, factor, default)
+        if found is None:
+            return None
+        self.spend(element, found.pieces - len(found.items))
+        return self._filled(element, found, factor, default)
 
     def _special(self, element: Element, factor: float, default: Line | None) -> Primitive:
         items: list[Item] = []
@@ -338,7 +342,9 @@ class Shapes:
             centre = _fitting(start, end, centre)
         if radius == 0.0 or other == 0.0:
             return None, 0.0
-        return centre, sweep(start, end, centre, clockwise=truth(element, "clockwise", default=True))
+        angle = sweep(start, end, centre, clockwise=truth(element, "clockwise", default=True))
+        self.spend(element, surplus(chords_of(abs(start - centre), angle)))
+        return centre, angle
 
 
 def _fitting(start: complex, end: complex, centre: complex) -> complex:

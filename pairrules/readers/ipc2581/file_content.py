@@ -42,11 +42,12 @@ _BROKEN = {
 _DICTIONARIES = {
     f"Dictionary{held}" for held in ("Color", "FillDesc", "Firmware", "Font", "LineDesc", "Standard", "User")
 }
-MOST_IN_RECORD = 1_000_000
-"""Elements one record may hold beside the corners of its outlines; each takes a tenth of a kilobyte and more."""
+MOST_IN_RECORD = 300_000
+"""Elements, attributes and texts one record may hold beside the corners of its outlines; each takes a tenth of a
+kilobyte and more. A record is one net's copper on one layer, a package or a part: some thousands."""
 
 _CHUNK = 32 * 1024
-_COUNT_EVERY = 4 * 1024 * 1024
+_COUNT_EVERY = 256 * 1024
 _OUTLINES = {"Cutout", "Polygon"}
 _FEW = 8
 """Outlines of no more corners are read with their record."""
@@ -163,6 +164,12 @@ def _free(element: Element) -> None:
             del parent[0]
 
 
+def _held(element: Element) -> float:
+    """How many elements, texts and attributes stand in an element."""
+    count = element.xpath("count(.//node()) + count(.//@*)")
+    return count if isinstance(count, float) else 0.0
+
+
 class _Walk:
     """Where in the file the walk is, and what to do with each element there."""
 
@@ -234,8 +241,8 @@ class _Walk:
         if self.record is not None:
             if place >= self.counted + _COUNT_EVERY:
                 self.counted = place
-                if sum(1 for _ in self.record.iter()) > MOST_IN_RECORD:
-                    wrong(self.record, f"{local(self.record)} holds more than {MOST_IN_RECORD} elements")
+                if _held(self.record) > MOST_IN_RECORD:
+                    wrong(self.record, f"{local(self.record)} holds more than {MOST_IN_RECORD} elements and attributes")
             return
         while node is not None and len(node):
             del node[:-1]

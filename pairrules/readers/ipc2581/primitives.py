@@ -25,8 +25,12 @@ from pairrules.readers.ipc2581.transform import Plane
 if TYPE_CHECKING:
     from lxml.etree import _Element as Element
 
-MOST_RINGS = 1000
+MOST_RINGS = 50
 """A moiré target has a handful of rings; more is a fault of the file."""
+
+
+MOST_SPOKES = 16
+"""A thermal relief has four spokes, seldom eight; more is a fault of the file."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -247,7 +251,7 @@ def _thermal(element: Element, factor: float) -> Primitive:
     holes = (_outline_of(shape, inner),) if inner > 0 else ()
     region: Any = Fill(_outline_of(shape, outer), holes).region()
     count, gap = int(number(element, "spokeCount", 4)), size(element, "gap", factor, 0.0)
-    if not 0 <= count <= 64:
+    if not 0 <= count <= MOST_SPOKES:
         wrong(element, f"Thermal has {count} spokes")
     for spoke in range(count if gap > 0 else 0):
         strip = shapely.box(0.0, -gap / 2, outer, gap / 2)
