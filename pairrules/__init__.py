@@ -6,9 +6,10 @@ runs. It is looked up when first used, so that `import pairrules` costs nothing.
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING, Any
-
+TYPE_CHECKING = False  # of `typing`, whose import takes longer than all of this
 if TYPE_CHECKING:
+    from typing import Any
+
     from pairrules.pipeline import check as check
 
 __version__ = "0.1.0"

@@ -10,7 +10,9 @@ from pathlib import Path
 import pytest
 
 from pairrules import __version__, check
-from pairrules.cli import commands, group, run
+from pairrules.cli import run
+from pairrules.cli.command_line import group
+from pairrules.cli.overview import commands
 from pairrules.pipeline import find_pairs
 from pairrules.schemas import SCHEMAS, schema_text
 from tests.cli.boards import limits, put
