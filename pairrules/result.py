@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
-from pairrules.drawing import Drawing, PairDrawing
+if TYPE_CHECKING:  # a hundred records that only pictures and pages need
+    from pairrules.drawing import Drawing, PairDrawing
 
 RESULT_VERSION = 1
 SEVERITIES = ("blocker", "review", "note")

@@ -10,6 +10,9 @@ from typing import Any, SupportsFloat, TypeVar
 
 Record = TypeVar("Record")
 
+_NEVER_KEPT = {"Drawing": object, "PairDrawing": object}
+"""Fields of these types are `None` in every result that is kept; what they are is not imported for it."""
+
 
 def to_plain(value: Any) -> Any:
     """A record as a list of its fields' values in order, tuples as lists, all else as it is."""
@@ -72,4 +75,4 @@ def _fields(kind: Any) -> tuple[dataclasses.Field[Any], ...]:
 
 @cache
 def _hints(kind: Any) -> dict[str, Any]:
-    return typing.get_type_hints(kind)
+    return typing.get_type_hints(kind, localns=_NEVER_KEPT)
