@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from dataclasses import dataclass
 from fnmatch import fnmatchcase
 
 import numpy as np
@@ -22,7 +23,7 @@ from pairrules.balance.board_link import (
     part_spreads,
 )
 from pairrules.balance.board_parts import bias_paths, placed_hung, placed_series, terminations
-from pairrules.balance.layer_changes import layer_changes
+from pairrules.balance.layer_changes import ReturnVias, layer_changes
 from pairrules.balance.link_balance import balance_points
 from pairrules.balance.met_copper import Beside, met_copper
 from pairrules.balance.pair_electrical import BalanceAt, PairElectrical, PairSection
@@ -66,35 +67,46 @@ def electricals(
     copper: of the board. store: sections solved so far; added to.
     """
     gap = lacking(board.stackup)
-    heights = None if gap else heights_of(board.stackup)
-    stages = [_Stage(board, *pair, gap, heights, copper, store) for pair in pairs]
+    shared = _Shared(
+        board=board,
+        copper=copper,
+        store=store,
+        reference=frozenset(copper.reference_nets),
+        gap=gap[0] if gap else "",
+        heights=None if gap else heights_of(board.stackup),
+        hatched=any(area.hatched for area in board.areas),
+        returns=ReturnVias(board, frozenset(copper.reference_nets)),
+    )
+    stages = [_Stage(shared, *pair) for pair in pairs]
     cut = [(stage, cuts) for stage in stages if (cuts := stage.cuts()) is not None]
-    if heights is not None:
+    if shared.heights is not None:
         own = [stage.own for stage, _ in cut]
-        met = met_copper([cuts for _, cuts in cut], own, heights, copper.cuts, frozenset(copper.reference_nets))
+        met = met_copper([cuts for _, cuts in cut], own, shared.heights, copper.cuts, shared.reference)
         for (stage, cuts), beside in zip(cut, met, strict=True):
-            stage.solve(cuts, beside, heights)
+            stage.solve(cuts, beside, shared.heights)
     return [stage.run() for stage in stages]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class _Shared:
+    """What all pairs share. gap: what the stackup lacks. hatched: whether any area of the board is."""
+
+    board: Board
+    copper: BoardCopper
+    store: Store
+    reference: frozenset[int]
+    gap: str
+    heights: Heights | None
+    hatched: bool
+    returns: ReturnVias
 
 
 class _Stage:
     """Gathers one pair's figures; lives only while they are worked out."""
 
-    def __init__(
-        self,
-        board: Board,
-        link: Link,
-        geometry: PairGeometry,
-        klass: PairClass | None,
-        gap: tuple[str, ...],
-        heights: Heights | None,
-        copper: BoardCopper,
-        store: Store,
-    ) -> None:
-        self._board, self._link, self._geometry, self._klass = board, link, geometry, klass
-        self._gap, self._heights = gap, heights
-        self._copper, self._store = copper, store
-        self._reference = frozenset(copper.reference_nets)
+    def __init__(self, shared: _Shared, link: Link, geometry: PairGeometry, klass: PairClass | None) -> None:
+        self._shared, self._board, self._reference = shared, shared.board, shared.reference
+        self._link, self._geometry, self._klass = link, geometry, klass
         self._sections: tuple[PairSection, ...] = ()
         self._missing: dict[str, str] = {}
         self._assumed: list[str] = []
@@ -106,21 +118,19 @@ class _Stage:
 
     def cuts(self) -> Cuts | None:
         """Where the pair is cut across, to be told what copper is met there; `None` where it has no sections."""
-        cuts = pair_cuts(self._geometry)
-        if cuts is None:
-            return None
-        if self._heights is None:
+        shared = self._shared
+        if shared.heights is None:
             self._missing[_SECTIONS] = (
-                f"the stackup lacks the {self._gap[0]}: give it in the board file or under stackup: in the settings"
+                f"the stackup lacks the {shared.gap}: give it in the board file or under stackup: in the settings"
             )
             return None
         if not self._reference:
             self._missing[_SECTIONS] = "no net is known as reference: name it under reference_nets: in the settings"
             return None
-        if hatched := hatched_beside(self._board, self._copper.areas, self._geometry):
+        if shared.hatched and (hatched := hatched_beside(self._board, shared.copper.areas, self._geometry)):
             self._missing[_SECTIONS] = f"copper on {hatched} next to the legs is hatched, and how is not known"
             return None
-        return cuts
+        return pair_cuts(self._geometry)
 
     def solve(self, cuts: Cuts, beside: Sequence[Beside], heights: Heights) -> None:
         """Solve the sections of the cuts, each with what it meets."""
@@ -128,7 +138,7 @@ class _Stage:
         longer = max(leg.track_mm for leg in legs if leg is not None)
         try:
             self._sections = pair_sections(
-                cuts, beside, heights, track_mm=longer, layers=self._board.copper, store=self._store
+                cuts, beside, heights, track_mm=longer, layers=self._board.copper, store=self._shared.store
             )
         except UnsolvableError as error:
             self._missing[_SECTIONS] = str(error)
@@ -142,7 +152,8 @@ class _Stage:
             known = self._geometry.missing if self._geometry.plus is None and not self._geometry.broken else ()
             why = known[-1] if known else "a leg is not routed from end to end"
             return PairElectrical(missing=dict.fromkeys((_SECTIONS, _BALANCE, _PICKUP), why))
-        board, link, klass, heights, sections = self._board, self._link, self._klass, self._heights, self._sections
+        board, link, klass = self._board, self._link, self._klass
+        heights, sections = self._shared.heights, self._sections
         balance, source_ohm, solved = self._balance(sections, plus, minus)
         area = self._area(heights, plus, minus)
         electric, aggressor = self._electric(sections, solved)
@@ -155,7 +166,7 @@ class _Stage:
                 ("minus", minus, self._geometry.cover_minus),
             )
             if cover is not None
-            for change in layer_changes(board, self._reference, leg, route, cover)
+            for change in layer_changes(self._shared.returns, leg, route, cover)
         ]
         resistive = klass is not None and klass.load is not None and _gives_path(klass)
         return PairElectrical(

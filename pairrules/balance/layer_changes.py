@@ -3,18 +3,45 @@
 from __future__ import annotations
 
 import math
+from functools import cached_property
 
 import numpy as np
 
 from pairrules.balance.pair_electrical import LayerChange
 from pairrules.board.board import Board
+from pairrules.board.columns import Floats, Ints
 from pairrules.geometry.pair_geometry import BARREL, TRACK, LegRoute, Pieces
 from pairrules.geometry.reference_cover import Cover
 
 
-def layer_changes(
-    board: Board, reference: frozenset[int], leg: str, route: LegRoute, cover: Cover
-) -> tuple[LayerChange, ...]:
+class ReturnVias:
+    """Vias and plated holes of the reference nets, picked out of the board's when first asked for."""
+
+    def __init__(self, board: Board, reference: frozenset[int]) -> None:
+        self._board, self._nets = board, list(reference)
+
+    @cached_property
+    def _found(self) -> tuple[Floats, Ints, Ints]:
+        vias, pads = self._board.vias, self._board.pads
+        own = np.flatnonzero(np.isin(vias.net, self._nets))
+        holes = np.flatnonzero(np.isin(pads.net, self._nets) & (pads.layer < 0))
+        through = np.full(len(holes), len(self._board.copper))
+        return (
+            np.concatenate([vias.at[own], pads.at[holes]]),
+            np.concatenate([vias.first[own], np.zeros(len(holes), dtype=np.int64)]),
+            np.concatenate([vias.last[own], through]),
+        )
+
+    def nearest(self, at: tuple[float, float], before: set[int], after: set[int]) -> float:
+        """Distance [mm] to the nearest that goes through a layer of each side; inf without one."""
+        places, first, last = self._found
+        joins = np.ones(len(places), dtype=np.bool_)
+        for side in (before, after):
+            joins &= np.logical_or.reduce([(first <= k) & (k <= last) for k in side])
+        return float(np.hypot(*(places[joins] - at).T).min(initial=math.inf))
+
+
+def layer_changes(returns: ReturnVias, leg: str, route: LegRoute, cover: Cover) -> tuple[LayerChange, ...]:
     """The vias of one leg at which the copper layers that carry its reference change.
 
     The reference on either side is read from the cover of the tracks before and after the via. Where one layer serves
@@ -39,7 +66,7 @@ def layer_changes(
                 leave=via.leave,
                 before=tuple(sorted(left)),
                 after=tuple(sorted(right)),
-                return_mm=_nearest(board, reference, (via.x_mm, via.y_mm), left, right),
+                return_mm=returns.nearest((via.x_mm, via.y_mm), left, right),
             )
         )
     return tuple(found)
@@ -61,16 +88,3 @@ def _layers(pieces: Pieces, cover: Cover, away: list[int]) -> set[int]:
             layer = int(cover.layer[row])
             return {k for k, net in ((layer - 1, cover.above[row]), (layer + 1, cover.below[row])) if net >= 0}
     return set()
-
-
-def _nearest(
-    board: Board, reference: frozenset[int], at: tuple[float, float], before: set[int], after: set[int]
-) -> float:
-    """Distance [mm] to the nearest reference via or plated hole through a layer of each side; inf without one."""
-    vias, pads = board.vias, board.pads
-    nets = list(reference)
-    joins = np.isin(vias.net, nets) & np.logical_or.reduce([(vias.first <= k) & (k <= vias.last) for k in before])
-    joins &= np.logical_or.reduce([(vias.first <= k) & (k <= vias.last) for k in after])
-    holes = np.isin(pads.net, nets) & (pads.layer < 0)
-    places = np.concatenate([vias.at[joins], pads.at[holes]])
-    return float(np.hypot(*(places - at).T).min()) if len(places) else math.inf
