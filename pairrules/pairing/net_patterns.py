@@ -12,7 +12,7 @@ from functools import lru_cache
 
 def matches(name: str, pattern: str) -> bool:
     """Whether the net name fits the pattern, upper and lower case being different."""
-    return name == pattern or _compiled(pattern, single=True).fullmatch(name) is not None
+    return name == pattern or _compiled(pattern).fullmatch(name) is not None
 
 
 def starred(name: str, pattern: str) -> tuple[str, ...] | None:
@@ -20,8 +20,20 @@ def starred(name: str, pattern: str) -> tuple[str, ...] | None:
 
     The first star takes as much as it can, so that with several ways to fit the rightmost place is the one meant.
     """
-    found = _compiled(pattern, single=False).fullmatch(name)
-    return None if found is None else found.groups()
+    first, *rest = pattern.split("*")
+    if not rest:
+        return () if name == pattern else None
+    if not name.startswith(first) or not name.endswith(rest[-1]):
+        return None
+    # From the end, each piece as far right as it goes: no piece is ever tried twice, however many stars there are.
+    end, texts = len(name), list[str]()
+    for piece in reversed(rest):
+        place = name.rfind(piece, len(first), end) if texts else end - len(piece)
+        if place < len(first):
+            return None
+        texts.append(name[place + len(piece) : end])
+        end = place
+    return (name[len(first) : end], *reversed(texts[1:]))
 
 
 def filled(pattern: str, texts: tuple[str, ...]) -> str:
@@ -33,6 +45,10 @@ def filled(pattern: str, texts: tuple[str, ...]) -> str:
 
 
 @lru_cache(maxsize=256)
-def _compiled(pattern: str, *, single: bool) -> re.Pattern[str]:
-    special = {"*": "(.*)", "?": "."} if single else {"*": "(.*)"}
-    return re.compile("".join(special.get(letter, re.escape(letter)) for letter in pattern), re.DOTALL)
+def _compiled(pattern: str) -> re.Pattern[str]:
+    """The pattern as an expression that never goes back to an earlier star: each takes as little as it can."""
+    first, *rest = (
+        "".join("." if letter == "?" else re.escape(letter) for letter in one) for one in pattern.split("*")
+    )
+    between = "".join(f"(?>.*?{piece})" for piece in rest[:-1] if piece)
+    return re.compile(first + between + (f".*{rest[-1]}" if rest else ""), re.DOTALL)

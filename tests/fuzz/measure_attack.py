@@ -1,7 +1,8 @@
 """Runs the command line on files and tells the exit status, what it said, and by how much the memory's peak grew.
 
 `python -m tests.fuzz.measure_attack FILE...` prints a JSON object a file. Each has a process of its own, forked after
-sound boards were checked, so that the libraries are loaded and what remains is the file's own doing.
+sound boards were checked, so that the libraries are loaded and what remains is the file's own doing. A file is a board,
+or, by the end of its name, settings or waivers of a small sound board.
 """
 
 from __future__ import annotations
@@ -12,6 +13,7 @@ import json
 import os
 import re
 import resource
+import shutil
 import sys
 import tempfile
 import time
@@ -20,6 +22,9 @@ from pathlib import Path
 from fixtures.boards import straight_pair
 from fixtures.ipc2581_writer import to_ipc2581
 from pairrules.cli import run
+from pairrules.settings.waivers import FILE_NAME
+
+SETTINGS, WAIVERS = ".settings.yaml", ".waivers.yaml"
 
 
 def main() -> None:
@@ -36,18 +41,32 @@ def main() -> None:
         sys.stdout.flush()
         child = os.fork()
         if not child:
-            print(json.dumps(measured(path)), flush=True)
+            with tempfile.TemporaryDirectory() as folder:
+                found = measured(path, command(path, Path(folder)))
+            print(json.dumps(found), flush=True)
             os._exit(0)
         os.waitpid(child, 0)
 
 
-def measured(path: str) -> dict[str, int | float | str]:
+def command(path: str, folder: Path) -> list[str]:
+    """The command that a file is given to, in this process alone. Waivers lie beside their board, in the folder."""
+    board = Path(path)
+    if path.endswith((SETTINGS, WAIVERS)):
+        board = folder / "board.json"
+        board.write_text(json.dumps(straight_pair().board), encoding="utf-8")
+    if path.endswith(WAIVERS):
+        shutil.copy(path, folder / FILE_NAME)
+    more = ["--settings", path] if path.endswith(SETTINGS) else []
+    return ["check", str(board), "--no-cache", "--jobs", "1", *more]
+
+
+def measured(path: str, arguments: list[str]) -> dict[str, int | float | str]:
     """What became of one file."""
     before = peak_kilobytes(anew=True)
     begun = time.process_time()
     said = io.StringIO()
     with contextlib.redirect_stderr(said), contextlib.redirect_stdout(io.StringIO()):
-        status = run(["check", path, "--no-cache"])
+        status = run(arguments)
     seconds = time.process_time() - begun
     grown = (peak_kilobytes() - before) / 1024
     return {"file": path, "status": status, "said": said.getvalue(), "megabytes": grown, "seconds": seconds}

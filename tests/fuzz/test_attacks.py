@@ -11,15 +11,22 @@ from typing import Any
 import pytest
 
 from pairrules import check
-from tests.fuzz.attacks import BORNE, REFUSED
+from tests.fuzz.attacks import BORNE, REFUSED, SETTINGS, SETTINGS_BORNE, WAIVERS
+from tests.fuzz.measure_attack import SETTINGS as SETTINGS_END
+from tests.fuzz.measure_attack import WAIVERS as WAIVERS_END
 
 ROOT = Path(__file__).resolve().parents[2]
 MOST_MEGABYTES = 100.0
+"""By which memory's peak may grow above that of checking a small board."""
+
 MOST_SECONDS = 600.0
 """After which the process is ended: no measure of speed, but an attack without end shall not hang the tests.
 
-`python -m tests.fuzz.measure_attack FILE` tells the processor's time: below a second for all but a few.
+`python -m tests.fuzz.measure_attack FILE` tells the processor's time: below a second for each.
 """
+
+BOARDS = REFUSED | BORNE
+EVERY = BOARDS | SETTINGS | SETTINGS_BORNE | WAIVERS
 
 Outcomes = dict[str, dict[str, Any]]
 
@@ -27,9 +34,12 @@ Outcomes = dict[str, dict[str, Any]]
 @pytest.fixture(scope="module")
 def outcomes(tmp_path_factory: pytest.TempPathFactory) -> Outcomes:
     folder = tmp_path_factory.mktemp("attacks")
-    files = {str(folder / f"{i}"): name for i, name in enumerate((*REFUSED, *BORNE))}
-    for path, name in files.items():
-        Path(path).write_bytes({**REFUSED, **BORNE}[name]())
+    files = {}
+    for i, (name, attack) in enumerate(EVERY.items()):
+        end = "" if name in BOARDS else WAIVERS_END if name in WAIVERS else SETTINGS_END
+        path = folder / f"{i}{end}"
+        path.write_bytes(attack())
+        files[str(path)] = name
     command = [sys.executable, "-m", "tests.fuzz.measure_attack", *files]
     done = subprocess.run(command, cwd=ROOT, capture_output=True, text=True, timeout=MOST_SECONDS, check=False)
     assert done.returncode == 0
@@ -49,12 +59,23 @@ def test_refused(outcomes: Outcomes, name: str) -> None:
     assert found["megabytes"] < MOST_MEGABYTES
 
 
-@pytest.mark.parametrize("name", BORNE)
+@pytest.mark.parametrize("name", SETTINGS | WAIVERS)
+def test_settings_and_waivers_are_refused(outcomes: Outcomes, name: str) -> None:
+    found = outcomes[name]
+    lines = found["said"].splitlines()
+    assert found["status"] == 2
+    assert lines
+    assert all(line.startswith("pairrules: ") and "; " in line and line.isprintable() for line in lines)
+    assert all(len(line) < 500 for line in lines)
+    assert found["megabytes"] < MOST_MEGABYTES
+
+
+@pytest.mark.parametrize("name", BORNE | SETTINGS_BORNE)
 def test_borne(outcomes: Outcomes, name: str) -> None:
     found = outcomes[name]
     assert found["status"] in {0, 1}
     assert found["said"] == ""
-    assert found["megabytes"] < 3 * MOST_MEGABYTES
+    assert found["megabytes"] < MOST_MEGABYTES
 
 
 def test_copper_that_cannot_be_followed_is_undecided(tmp_path: Path) -> None:
