@@ -10,7 +10,6 @@ import shapely
 from pairrules.board.board import Board
 from pairrules.board.columns import Floats, Ints
 from pairrules.geometry.area_polygons import AreaPolygons
-from pairrules.geometry.area_tiles import tiles
 from pairrules.geometry.copper_outlines import copper_outlines
 from pairrules.geometry.ring_runs import RingRuns, Shapes, ring_runs
 
@@ -50,7 +49,7 @@ class ReferenceCopper:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class LayerCopper:
-    """Reference copper of a layer: each net's copper in tiles, and the edges of the union of all."""
+    """Reference copper of a layer: each net's copper, prepared to be asked for points, and the edges of all of it."""
 
     by_net: tuple[tuple[int, Shapes, shapely.STRtree], ...]
     outline: RingRuns
@@ -79,8 +78,8 @@ def _layer_copper(board: Board, layer: int, reference: tuple[int, ...], areas: A
     by_net, unions = [], [np.empty(0, dtype=np.object_)]
     for net in np.unique(outlines.net).tolist():
         unions.append(_union(outlines.polygons[outlines.net == net]))
-        pieces = np.concatenate([tiles(part) for part in unions[-1]])
-        by_net.append((net, pieces, shapely.STRtree(pieces)))
+        shapely.prepare(unions[-1])
+        by_net.append((net, unions[-1], shapely.STRtree(unions[-1])))
     every = _union(np.concatenate(unions)) if len(unions) > 2 else unions[-1]
     return LayerCopper(by_net=tuple(by_net), outline=ring_runs(shapely.get_rings(every)))
 
