@@ -181,8 +181,8 @@ def _pads(pads: list[JoinedPad], nets: dict[str, int], parts: dict[str, int]) ->
         part=np.array([parts.get(pad.row.ref, -1) for pad in pads], dtype=np.int64),
         pin=tuple(pad.row.pin for pad in pads),
         shape=np.array(rows, dtype=np.int64),
-        rotation=np.array([pad.row.by.angle for pad in pads], dtype=np.float64),
-        mirror=np.array([pad.row.by.flip for pad in pads], dtype=np.bool_),
+        rotation=np.array([pad.row.way.angle for pad in pads], dtype=np.float64),
+        mirror=np.array([pad.row.way.flip for pad in pads], dtype=np.bool_),
         drill=np.array([pad.drill for pad in pads], dtype=np.float64),
         shapes=tuple(shapes),
     )

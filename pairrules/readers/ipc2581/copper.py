@@ -52,10 +52,12 @@ class Erasure:
 class PadRow:
     """A pad on one layer.
 
+    way: how it is turned, mirrored and scaled, without a shift; pads of one way may share it.
     stack: name of its pad stack definition. via: marked as a via's pad. plane: marked as an opening in a plane.
     """
 
-    by: Transform
+    at: complex
+    way: Transform
     layer: str
     net: str
     ref: str
@@ -67,14 +69,14 @@ class PadRow:
     plane: bool = False
 
     @property
-    def at(self) -> complex:
-        """The pad's place."""
-        return self.by.shift
+    def by(self) -> Transform:
+        """The pad's placement."""
+        return Transform(self.way.turn, self.way.flip, self.at)
 
     @property
     def outline(self) -> PadShape | None:
         """The pad's shape at its scale; `None` where it is unknown, or without extent as exporters write no pad."""
-        pad = None if self.shape is None else self.shape.scaled_pad(self.by.scale)
+        pad = None if self.shape is None else self.shape.scaled_pad(self.way.scale)
         return None if pad is None or min(pad.size) <= 0 else pad
 
     @property

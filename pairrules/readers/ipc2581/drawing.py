@@ -13,7 +13,7 @@ import shapely
 from shapely.geometry import LineString, MultiPolygon, Polygon
 
 from pairrules.board import arcs
-from pairrules.readers.ipc2581.transform import Plane, Transform
+from pairrules.readers.ipc2581.transform import IDENTITY, Plane, Transform
 
 _FEW_CORNERS = 200
 _CORNERS_A_PIECE = 8
@@ -110,7 +110,7 @@ Item = Stroke | Fill
 
 def placed(items: Iterable[Item], by: Transform) -> tuple[Item, ...]:
     """Every item after a placement."""
-    return tuple(item.placed(by) for item in items)
+    return tuple(items) if by == IDENTITY else tuple(item.placed(by) for item in items)
 
 
 def erasing(items: Iterable[Item]) -> tuple[Item, ...]:
@@ -135,9 +135,9 @@ def fills(region: Any) -> tuple[Fill, ...]:
 
 
 def ring(points: Sequence[complex] | Plane, centres: Sequence[complex | None], sweeps: Sequence[float]) -> Plane:
-    """A closed outline as corners, arcs flattened, the closing corner left out. No centres: all steps are straight."""
-    corners = np.array(points, dtype=np.complex128)
-    if any(centre is not None for centre in centres):
+    """A closed outline as corners, arcs flattened, the closing corner left out."""
+    corners = np.asarray(points, dtype=np.complex128)
+    if any(sweeps):
         pieces = [corners[:1]]
         for start, end, centre, angle in zip(corners, corners[1:], centres, sweeps, strict=False):
             if centre is not None:

@@ -106,10 +106,29 @@ def number(element: Element, name: str, default: float | None = None) -> float:
 
 def length(element: Element, name: str, factor: float, default: float | None = None) -> float:
     """A length or coordinate [mm]; `factor` is the millimetres in the unit that holds here."""
+    text = element.get(name)
+    if text is not None and len(text) <= _LONGEST_NUMBER and "_" not in text:
+        try:
+            value = float(text) * factor
+        except ValueError:
+            pass
+        else:
+            if -FARTHEST_MM < value < FARTHEST_MM:
+                return value
+    return _doubtful_length(element, name, factor, default)
+
+
+def _doubtful_length(element: Element, name: str, factor: float, default: float | None) -> float:
+    """The same where the attribute is absent or wrong, for the words of what is wrong."""
     value = number(element, name, default) * factor
     if not -FARTHEST_MM < value < FARTHEST_MM:
         wrong(element, f'{local(element)} has {name}="{shown(element.get(name) or "")}", which is beyond any board')
     return value
+
+
+def point(element: Element, x: str, y: str, factor: float) -> complex:
+    """The place [mm] that two attributes give; a negative nothing is nothing."""
+    return complex(length(element, x, factor), length(element, y, factor)) + 0j
 
 
 def size(element: Element, name: str, factor: float, default: float | None = None) -> float:

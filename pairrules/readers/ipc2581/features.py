@@ -11,7 +11,7 @@ from pairrules.board.arcs import chords_of
 from pairrules.board.knots import meetings
 from pairrules.readers.ipc2581.corners import corners
 from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, surplus, sweep
-from pairrules.readers.ipc2581.elements import child, children, length, line, local, size, truth, word, wrong
+from pairrules.readers.ipc2581.elements import child, children, line, local, point, size, truth, word, wrong
 from pairrules.readers.ipc2581.primitives import Primitive, hollow, outer_pad, polygon_pad, primitive
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import IDENTITY, Plane, Transform, xform
@@ -169,6 +169,10 @@ class Shapes:
 
     def as_pad(self, element: Element, factor: float) -> Primitive | None:
         """The same as `shape`, with the outer outline as the pad where lines or several pieces draw it."""
+        if local(element) == "StandardPrimitiveRef" and not len(element):
+            named = self.standard.get(word(element, "id"))
+            if named is not None and named.pad is not None:
+                return named  # what most pads are: one shape of the dictionary as it is
         found = self.shape(element, factor)
         if found is None or found.pad is not None or all(item.erase for item in found.items):
             return found
@@ -259,23 +263,28 @@ class Shapes:
     def outline(self, element: Element, factor: float) -> Plane:
         """The closed outline of a `Polygon` or `Cutout`."""
         held = self.outlines.get(element)
-        return ring(*self._steps(element, factor)) if held is None else held
+        if held is not None:
+            return held
+        found = corners(element, factor)
+        return ring(*(self._steps(element, factor) if found is None else self._rounded(*found, factor)))
 
     def keep_outline(self, element: Element, factor: float) -> None:
         """Take in the corners of an outline that nothing is wrong with, and drop its elements; leave any other be."""
         found = corners(element, factor)
-        if found is None:
-            return
-        points, curves = found
-        centres: list[complex | None] = []
-        sweeps: list[float] = []
-        if curves:
-            centres, sweeps = [None] * (len(points) - 1), [0.0] * (len(points) - 1)
-            for place, inner in curves:
-                start, end = complex(points[place - 1]), complex(points[place])
-                centres[place - 1], sweeps[place - 1] = self._round(inner, start, end, factor)
-        self.outlines[element] = ring(points, centres, sweeps)
-        del element[:]
+        if found is not None:
+            self.outlines[element] = ring(*self._rounded(*found, factor))
+            del element[:]
+
+    def _rounded(
+        self, points: Plane, curves: list[tuple[int, Element]], factor: float
+    ) -> tuple[Plane, list[complex | None], list[float]]:
+        """Corners with the centres and angles of the steps between them."""
+        centres: list[complex | None] = [None] * (len(points) - 1)
+        sweeps = [0.0] * (len(points) - 1)
+        for place, inner in curves:
+            start, end = complex(points[place - 1]), complex(points[place])
+            centres[place - 1], sweeps[place - 1] = self._round(inner, start, end, factor)
+        return points, centres, sweeps
 
     # -- lines --------------------------------------------------------------------------------------------------------
 
@@ -292,10 +301,15 @@ class Shapes:
             if points[0] != points[-1]:
                 points, centres, sweeps = [*points, points[0]], [*centres, None], [*sweeps, 0.0]
         elif tag == "Polyline":
-            points, centres, sweeps = self._steps(element, factor)
+            found = corners(element, factor, styled=True)
+            if found is None:
+                points, centres, sweeps = self._steps(element, factor)
+            else:
+                places, centres, sweeps = self._rounded(*found, factor)
+                points = places.tolist()
         else:
-            start = complex(length(element, "startX", factor), length(element, "startY", factor))
-            end = complex(length(element, "endX", factor), length(element, "endY", factor))
+            start = point(element, "startX", "startY", factor)
+            end = point(element, "endX", "endY", factor)
             centre, angle = self._round(element, start, end, factor) if tag == "Arc" else (None, 0.0)
             points, centres, sweeps = [start, end], [centre], [angle]
         if len(points) < 2:
@@ -309,7 +323,7 @@ class Shapes:
         sweeps: list[float] = []
         for tag, inner in children(element):
             if tag in {"PolyStepSegment", "PolyStepCurve", "PolyBegin"}:
-                at = complex(length(inner, "x", factor), length(inner, "y", factor))
+                at = point(inner, "x", "y", factor)
                 if (tag == "PolyBegin") == bool(points):
                     wrong(inner, f"{local(element)} has a {tag} out of its order")
                 if points:
@@ -329,7 +343,7 @@ class Shapes:
 
         The sense is clockwise where `clockwise` is absent. Source: IPC-2581A schema, `PolyStepCurveType`.
         """
-        centre = complex(length(element, "centerX", factor), length(element, "centerY", factor))
+        centre = point(element, "centerX", "centerY", factor)
         radius, other = abs(start - centre), abs(end - centre)
         if abs(radius - other) > ROUGH_ARC_MM:
             if abs(radius - other) > MOST_OFF * max(radius, other):

@@ -7,7 +7,7 @@ closes, so that memory holds neither a whole plane's elements nor an object a co
 from __future__ import annotations
 
 import re
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, cast
 
@@ -126,6 +126,7 @@ def _read_once(data: bytes, content: FileContent) -> FileContent:
         huge_tree=False,
         remove_comments=True,
         remove_pis=True,
+        collect_ids=False,
     )
     fault: etree.XMLSyntaxError | None = None
     for start in range(0, len(data), _CHUNK):
@@ -133,8 +134,7 @@ def _read_once(data: bytes, content: FileContent) -> FileContent:
             parser.feed(data[start : start + _CHUNK])
         except etree.XMLSyntaxError as error:
             fault = error
-        for event, element in parser.read_events():
-            walk.event(event, cast("Element", element))
+        walk.follow(cast("Iterable[tuple[str, Element]]", parser.read_events()))
         if fault is not None:
             break
         walk.prune(start)
@@ -155,15 +155,6 @@ def _root_name(data: bytes) -> str:
     return name if re.fullmatch(r"[\w.-]+", name) else ROOT
 
 
-def _free(element: Element) -> None:
-    """Empty a finished element and drop those before it, so that memory holds one record at a time."""
-    element.clear()
-    parent = element.getparent()
-    if parent is not None:
-        while element.getprevious() is not None:
-            del parent[0]
-
-
 def _held(element: Element) -> float:
     """How many elements, texts and attributes stand in an element."""
     count = element.xpath("count(.//node()) + count(.//@*)")
@@ -180,7 +171,6 @@ class _Walk:
         self.sets: SetReader | None = None
         self.layer = ""
         self.route_net = ""
-        self.seen_root = False
         self.root: Element | None = None
         self.record: Element | None = None
         self.counted = 0
@@ -215,43 +205,39 @@ class _Walk:
 
     # -- walking ------------------------------------------------------------------------------------------------------
 
-    def event(self, event: str, element: Element) -> None:
-        """An element opens or closes."""
-        if self.root is None:
-            self.root = element
-        if event == "start":
-            if self.record is None and self.starts(element):
-                self.record = element
-        elif self.record is None:
-            self.ends(element)
-            _free(element)
-        elif element is self.record:
-            self.take(element)
-            self.record = None
-            _free(element)
-        else:
-            self.outline(self.record, element)
+    def follow(self, events: Iterable[tuple[str, Element]]) -> None:
+        """Elements open and close."""
+        for event, element in events:
+            if event == "start":
+                if self.record is None and self.starts(element):
+                    self.record = element
+            elif element is self.record:
+                self.take(element)
+                self.record = None
+            elif self.record is None:
+                self.ends(element)
+            else:
+                self.outline(self.record, element)
 
     def prune(self, place: int) -> None:
-        """Drop what closed without having been asked for, and refuse a record that would fill the memory.
+        """Drop what has closed, and refuse a record that would fill the memory.
 
-        place: bytes read so far. Outside records nothing but the open elements is needed, each the last of its parent.
+        place: bytes read so far. But for an open record nothing is needed save open elements, each the last of its
+        parent.
         """
         node = self.root
-        if self.record is not None:
-            if place >= self.counted + _COUNT_EVERY:
-                self.counted = place
-                if _held(self.record) > MOST_IN_RECORD:
-                    wrong(self.record, f"{local(self.record)} holds more than {MOST_IN_RECORD} elements and attributes")
-            return
-        while node is not None and len(node):
+        while node is not None and node is not self.record and len(node):
             del node[:-1]
             node = node[-1]
+        if self.record is not None and place >= self.counted + _COUNT_EVERY:
+            self.counted = place
+            if _held(self.record) > MOST_IN_RECORD:
+                wrong(self.record, f"{local(self.record)} holds more than {MOST_IN_RECORD} elements and attributes")
 
     def starts(self, element: Element) -> bool:
         """An element opens. Returns: whether it is a record, to be handed over whole when it closes."""
         name = local(element)
-        if not self.seen_root:
+        if self.root is None:
             self._root(element, name)
             return False
         if name in self.records:
@@ -286,7 +272,7 @@ class _Walk:
             self.route_net = ""
 
     def _root(self, element: Element, name: str) -> None:
-        self.seen_root = True
+        self.root = element
         if name != ROOT:
             wrong(element, f"the root element is {clean(name)}, not {ROOT}", "give an IPC-2581 file")
         information = element.getroottree().docinfo
@@ -400,5 +386,6 @@ class _Walk:
     def _set(self, element: Element) -> None:
         if self.sets is None or self.step is None:
             return
-        note_partner(element, net_name(element, default=self.route_net), self.step.nets)
-        self.sets.read(element, self.layer, self.route_net)
+        net = net_name(element, default=self.route_net)
+        note_partner(element, net, self.step.nets)
+        self.sets.read(element, self.layer, net)

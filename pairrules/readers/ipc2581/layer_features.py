@@ -2,17 +2,17 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING
 
 from pairrules.readers.ipc2581.copper import Copper, HoleRow, PadRow, StackDefinition
 from pairrules.readers.ipc2581.drawing import Item, erasing, placed
-from pairrules.readers.ipc2581.elements import NO_NET, child, children, length, line, size, word, wrong
+from pairrules.readers.ipc2581.elements import NO_NET, child, children, line, size, word, wrong
 from pairrules.readers.ipc2581.features import STYLES, Line, Shapes
 from pairrules.readers.ipc2581.layers import DRILLED, FileLayer, LayerTable
 from pairrules.readers.ipc2581.places import crowd_at
 from pairrules.readers.ipc2581.remarks import Remarks
-from pairrules.readers.ipc2581.transform import Transform, location
+from pairrules.readers.ipc2581.transform import IDENTITY, Transform, location
 
 if TYPE_CHECKING:
     from lxml.etree import _Element as Element
@@ -36,9 +36,10 @@ class SetReader:
     table: LayerTable
     remarks: Remarks
     factor: float
+    ways: dict[tuple[complex, bool], Transform] = field(default_factory=dict)
 
-    def read(self, element: Element, layer_name: str, route_net: str) -> None:
-        """A `Set` on a layer. route_net: net of the `Route` around it (revision A), "" where none."""
+    def read(self, element: Element, layer_name: str, net: str) -> None:
+        """A `Set` on a layer. net: its own, or that of the `Route` around it (revision A); "" where none."""
         layer = self.table.layers.get(layer_name)
         if layer is None:
             self.copper.undeclared.add(layer_name)
@@ -48,7 +49,6 @@ class SetReader:
             return
         if not layer.copper and layer.function not in DRILLED:
             return
-        net = net_name(element, default=route_net)
         erase = word(element, "polarity").upper() == "NEGATIVE"
         for tag, inner in children(element):
             if tag == "Hole":
@@ -106,12 +106,13 @@ class SetReader:
         self, element: Element, layer: str, net: str, stack: str, *, erase: bool = False, usage: str = "", ref: str = ""
     ) -> None:
         """A `Pad`, fiducial or `LayerPad`: placement, shape and the pins it belongs to."""
-        by, shape, pins = Transform(), None, []
+        at, way, shape, pins = 0j, IDENTITY, None, []
         for tag, inner in children(element):
             if tag == "Xform":
-                by = self.shapes.placement(inner, self.factor).then(by)
+                by = self.shapes.placement(inner, self.factor).then(Transform(way.turn, way.flip, at))
+                at, way = by.shift, self._way(by)
             elif tag == "Location":
-                by = by.then(Transform(shift=location(inner, self.factor)))
+                at += location(inner, self.factor)
             elif tag == "PinRef":
                 pins.append((word(inner, "componentRef", ref), word(inner, "pin")))
             elif tag not in _SILENT and not tag.endswith("Attribute"):
@@ -123,19 +124,24 @@ class SetReader:
         self._stand(net, element)
         if erase:
             self.shapes.spend(element, shape.pieces if shape else 0)
+            by = Transform(way.turn, way.flip, at)
             self.copper.draw(erasing(placed(shape.items if shape else (), by)), layer, net)
             return
         order = self.copper.next()
+        via, plane = usage == "VIA", usage == "PLANE"
         for owner, pin in pins or [(ref, "")]:
-            plane = usage == "PLANE"
-            if self.copper.crowds.crowded(by.shift):
-                wrong(element, crowd_at(by.shift))
-            self.copper.pads.append(PadRow(by, layer, net, owner, pin, shape, stack, usage == "VIA", order, plane))
+            if self.copper.crowds.crowded(at):
+                wrong(element, crowd_at(at))
+            self.copper.pads.append(PadRow(at, way, layer, net, owner, pin, shape, stack, via, order, plane))
+
+    def _way(self, by: Transform) -> Transform:
+        """A placement without its shift, one for all pads that are turned alike."""
+        return self.ways.setdefault((by.turn, by.flip), Transform(by.turn, by.flip))
 
     # -- holes --------------------------------------------------------------------------------------------------------
 
     def _hole(self, element: Element, holder: Element, layer: FileLayer, net: str) -> None:
-        at = complex(length(element, "x", self.factor), length(element, "y", self.factor))
+        at = location(element, self.factor)
         self.hole(element, at, size(element, "diameter", self.factor), net, layer.span, word(holder, "geometry"))
 
     def hole(
@@ -184,7 +190,7 @@ class SetReader:
         net = net_name(element)
         for tag, inner in children(element):
             if tag == "LayerHole":
-                at = complex(length(inner, "x", self.factor), length(inner, "y", self.factor))
+                at = location(inner, self.factor)
                 self.hole(inner, at, size(inner, "diameter", self.factor), net, ("", ""))
             elif tag == "LayerPad":
                 name = word(inner, "layerRef")

@@ -35,8 +35,8 @@ def settle(copper: Copper, parts: Parts, remarks: Remarks) -> None:
         for ref, part in doubtful.items():
             parts.components[ref] = replace(part, by=_other(part.by))
         for pad in copper.pads:
-            if pad.by.flip:
-                pad.by = _other(pad.by)
+            if pad.way.flip:
+                pad.way = _other(pad.way)
     elif not first_mirrored:
         remarks.count("{n} mirrored and turned part{s} {are} read as mirrored first; no pad shows which", len(doubtful))
 

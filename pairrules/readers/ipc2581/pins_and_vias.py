@@ -12,6 +12,7 @@ from pairrules.readers.ipc2581.nets import Nets
 from pairrules.readers.ipc2581.parts import Parts
 from pairrules.readers.ipc2581.places import Places
 from pairrules.readers.ipc2581.remarks import Remarks
+from pairrules.readers.ipc2581.transform import Transform
 
 ALL_LAYERS = -1
 
@@ -68,8 +69,10 @@ def place_pins(copper: Copper, parts: Parts, nets: Nets, table: LayerTable, most
                 pad.ref, pad.pin, pad.net = component.ref, pin, pad.net or net
             if not found and net and _is_copper(table, component.layer):
                 order = copper.next()
-                row = PadRow(by, component.layer, net, component.ref, pin, package_pin.shape, "", False, order)
-                copper.pads.append(row)
+                way = Transform(by.turn, by.flip)
+                copper.pads.append(
+                    PadRow(by.shift, way, component.layer, net, component.ref, pin, package_pin.shape, "", False, order)
+                )
 
 
 def _is_copper(table: LayerTable, name: str) -> bool:

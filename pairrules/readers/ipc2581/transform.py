@@ -15,7 +15,7 @@ from typing import TYPE_CHECKING, overload
 import numpy as np
 import numpy.typing as npt
 
-from pairrules.readers.ipc2581.elements import length, number, truth, wrong
+from pairrules.readers.ipc2581.elements import length, number, point, truth, wrong
 
 if TYPE_CHECKING:
     from lxml.etree import _Element as Element
@@ -78,4 +78,4 @@ def xform(element: Element | None, factor: float) -> Transform:
 
 def location(element: Element, factor: float) -> complex:
     """The point [mm] of a `Location` element."""
-    return complex(length(element, "x", factor), length(element, "y", factor))
+    return point(element, "x", "y", factor)

@@ -17,16 +17,16 @@ AHEAD = 32 * 1024 // len('<Person name="p"/>') + 2
 
 def test_finished_elements_do_not_pile_up(monkeypatch: pytest.MonkeyPatch) -> None:
     held: list[int] = []
-    free = file_content._free
+    prune = file_content._Walk.prune
 
-    def watched(element: Any) -> None:
-        free(element)
-        parent = element.getparent()
-        while parent is not None:
-            held.append(len(parent))
-            parent = parent.getparent()
+    def watched(walk: Any, place: int) -> None:
+        node = walk.root
+        while node is not None and len(node):
+            held.append(len(node))
+            node = node[-1]
+        prune(walk, place)
 
-    monkeypatch.setattr(file_content, "_free", watched)
+    monkeypatch.setattr(file_content._Walk, "prune", watched)
     silk = LAYERS + '<Layer name="SILK" layerFunction="SILKSCREEN" side="TOP" polarity="POSITIVE"/>'
     drawn = f'<LayerFeature layerRef="SILK">{feature(line((0, 0), (5, 0))) * MANY}</LayerFeature>'
     measured = (
