@@ -46,23 +46,21 @@ def lengths(curves: Curves) -> Floats:
 
 def points(curves: Curves, t: Floats) -> Floats:
     """The point (k, 2) at parameter t (k,) of each piece; t = 0 and 1 give the stored ends exactly."""
-    chord = curves.start + (curves.end - curves.start) * t[:, None]
-    arc = curves.sweep != 0.0
-    if arc.any():
-        rows = np.flatnonzero(arc)
-        x, y = (curves.start[rows] - curves.centre[rows]).T
-        angle = curves.sweep[rows] * t[rows]
-        cos, sin = np.cos(angle), np.sin(angle)
-        turned = curves.centre[rows] + np.column_stack([x * cos - y * sin, x * sin + y * cos])
+    found = curves.start + (curves.end - curves.start) * t[:, None]
+    rows = np.flatnonzero(curves.sweep)
+    if len(rows):
+        arcs, share = curves.take(rows), t.take(rows)
+        x, y = (arcs.start - arcs.centre).T
+        angle = arcs.sweep * share
+        cos, sin, full_cos, full_sin = np.cos(angle), np.sin(angle), np.cos(arcs.sweep), np.sin(arcs.sweep)
         # A written arc's radii at both ends may differ in the last digit; the difference is spread along it.
-        full = curves.sweep[rows]
-        reached = curves.centre[rows] + np.column_stack(
-            [x * np.cos(full) - y * np.sin(full), x * np.sin(full) + y * np.cos(full)]
-        )
-        chord[rows] = turned + (curves.end[rows] - reached) * t[rows, None]
-    ends = t == 1.0
-    chord[ends] = curves.end[ends]
-    return chord
+        off = arcs.end - arcs.centre
+        off_x, off_y = off[:, 0] - (x * full_cos - y * full_sin), off[:, 1] - (x * full_sin + y * full_cos)
+        found[:, 0][rows] = arcs.centre[:, 0] + (x * cos - y * sin) + off_x * share
+        found[:, 1][rows] = arcs.centre[:, 1] + (x * sin + y * cos) + off_y * share
+    ends = np.flatnonzero(t == 1.0)
+    found[:, 0][ends], found[:, 1][ends] = curves.end[:, 0].take(ends), curves.end[:, 1].take(ends)
+    return found
 
 
 def directions(curves: Curves, t: Floats) -> Floats:

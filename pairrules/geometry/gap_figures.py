@@ -107,8 +107,15 @@ def gap_figures(profile: SpacingProfile) -> GapFigures:
         share = np.where(flat[some], gap >= middle, _share_below(start[some] - gap, slope[some], bend[some]))
         return share @ length[some] + float(length[greatest <= left - _SAME_MM].sum())
 
-    def reaching(part: float, left: float) -> float:
-        right = float(greatest.max())
+    by_least, by_greatest = np.argsort(least, kind="stable"), np.argsort(greatest, kind="stable")
+    begun, done = np.cumsum(length[by_least]), np.cumsum(length[by_greatest])
+
+    def reaching(part: float) -> float:
+        """The least gap, within `_SAME_MM`, that holds or is undercut over the length `part`."""
+        # Below `left` stretches too short in all have begun, at `right` stretches long enough have ended.
+        last = len(length) - 1
+        left = float(least[by_least[min(int(np.searchsorted(begun, part)), last)]]) - _SAME_MM
+        right = float(greatest[by_greatest[min(int(np.searchsorted(done, part)), last)]])
         for _ in range(_ROUNDS):
             if right - left <= _SAME_MM / 1000:
                 break
@@ -118,11 +125,11 @@ def gap_figures(profile: SpacingProfile) -> GapFigures:
             left, right = float(places[first - 1]), float(places[first])
         return right
 
-    median = reaching(size / 2 * (1 - 1e-12), float(least.min()) - _SAME_MM)
+    median = reaching(size / 2 * (1 - 1e-12))
     beyond = median + _SAME_MM
     if below(np.array([beyond]), median, beyond)[0] < size / 2 * (1 + 1e-12):
         # Exactly half the length lies below a step: the middle of the step.
-        median = (median + reaching(size / 2 * (1 + 1e-12), median)) / 2
+        median = (median + reaching(size / 2 * (1 + 1e-12))) / 2
     return GapFigures(least=float(least.min()), median=median, greatest=float(greatest.max()), coupled_mm=size)
 
 

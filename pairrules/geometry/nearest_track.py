@@ -175,7 +175,7 @@ def _candidates(
 ) -> tuple[Ints, Ints]:
     """Pairs (this leg's row, other leg's row) among which the nearest of any point must be.
 
-    A point of a piece is never farther from the piece's nearest neighbour than their distance plus the piece's length.
+    No point of a piece is farther from what is nearest to its middle than the middle is, and half the piece's length.
     own_level, other_level: pair and layer as one number; only what is on one level is held against each other.
     """
     levels, theirs = np.unique(other_level[tracks], return_inverse=True)
@@ -189,14 +189,15 @@ def _candidates(
     apart = 10.0 * (float(np.abs(ends).max()) + max(lengths(own).max(), lengths(other).max()) + 1.0)
     searched = _lines(_moved(own, own_place * apart))
     tree = shapely.STRtree(_lines(_moved(other, theirs * apart)))
-    (asked, _), away = tree.query_nearest(searched, return_distance=True, all_matches=False)
+    middles = shapely.points(points(_moved(own, own_place * apart), np.full(len(own), 0.5)))
+    (asked, _), away = tree.query_nearest(middles, return_distance=True, all_matches=False)
     widest, narrowest = np.full(len(levels), -np.inf), np.full(len(levels), np.inf)
     np.maximum.at(widest, theirs, other_half[tracks])
     np.minimum.at(narrowest, theirs, other_half[tracks])
     slack = 2 * (widest - narrowest)[own_place] + 2 * _SEARCH_MM
     bound = np.zeros(len(mine))
     bound[asked] = away
-    first, second = tree.query(searched, predicate="dwithin", distance=bound + lengths(own) + slack)
+    first, second = tree.query(searched, predicate="dwithin", distance=bound + lengths(own) / 2 + slack)
     return mine[first], tracks[second]
 
 
