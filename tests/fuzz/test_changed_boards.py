@@ -92,7 +92,7 @@ def test_a_fault_is_seen(folder: Path, monkeypatch: pytest.MonkeyPatch) -> None:
 
     board = json.dumps(BOARDS[0]().board).encode()
     assert outcome(folder, board).fault == ""
-    real = pair_stage.measure_link
+    real = pair_stage.measure_links
 
     def stray(*arguments: object, **named: object) -> object:
         (folder.parent / "stray").write_text("x", encoding="utf-8")
@@ -103,13 +103,13 @@ def test_a_fault_is_seen(folder: Path, monkeypatch: pytest.MonkeyPatch) -> None:
             one.connect(("127.0.0.1", 1))
         return real(*arguments, **named)  # type: ignore[arg-type]
 
-    monkeypatch.setattr(pair_stage, "measure_link", stray)
+    monkeypatch.setattr(pair_stage, "measure_links", stray)
     assert outcome(folder, board).fault.startswith("touches ")
-    monkeypatch.setattr(pair_stage, "measure_link", dials)
+    monkeypatch.setattr(pair_stage, "measure_links", dials)
     assert outcome(folder, board).fault == "touches socket.connect"
-    monkeypatch.setattr(pair_stage, "measure_link", lambda *_, **__: 1 / 0)
+    monkeypatch.setattr(pair_stage, "measure_links", lambda *_, **__: 1 / 0)
     assert outcome(folder, board).fault.startswith("ZeroDivisionError")
-    monkeypatch.setattr(pair_stage, "measure_link", real)
+    monkeypatch.setattr(pair_stage, "measure_links", real)
     monkeypatch.setattr(json_result.json, "dumps", lambda *_, **__: "[NaN]")
     assert outcome(folder, board).fault == "writes no finite figure: NaN"
 
