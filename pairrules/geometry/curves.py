@@ -80,16 +80,13 @@ def nearest(curves: Curves, at: Floats) -> tuple[Floats, Floats]:
 
     Source: foot of the perpendicular; for an arc the foot lies on the ray from its centre (elementary geometry).
     """
-    chord = curves.end - curves.start
-    square = np.einsum("ij,ij->i", chord, chord)
-    offset = at - curves.start
-    t = np.einsum("ij,ij->i", offset, chord) / np.where(square > 0.0, square, 1.0)
-    t = np.clip(t, 0.0, 1.0)
-    away = offset - chord * t[:, None]
-    distance = np.hypot(away[:, 0], away[:, 1])
+    (x, y), (away_x, away_y) = (curves.end - curves.start).T, (at - curves.start).T
+    square = x * x + y * y
+    t = np.minimum(np.maximum((away_x * x + away_y * y) / np.where(square > 0.0, square, 1.0), 0.0), 1.0)
+    distance = np.hypot(away_x - x * t, away_y - y * t)
     arc = np.flatnonzero(curves.sweep != 0.0)
     if len(arc):
-        t[arc], distance[arc] = _nearest_on_arc(curves.take(arc), at[arc])
+        t[arc], distance[arc] = _nearest_on_arc(curves.take(arc), at.take(arc, axis=0))
     return t, distance
 
 
@@ -127,7 +124,7 @@ def _radius(curves: Curves) -> Floats:
 def _nearest_on_arc(arcs: Curves, at: Floats) -> tuple[Floats, Floats]:
     radial, offset = arcs.start - arcs.centre, at - arcs.centre
     cross = radial[:, 0] * offset[:, 1] - radial[:, 1] * offset[:, 0]
-    dot = np.einsum("ij,ij->i", radial, offset)
+    dot = radial[:, 0] * offset[:, 0] + radial[:, 1] * offset[:, 1]
     turn = np.arctan2(cross, dot) * np.sign(arcs.sweep)
     turn = np.where(turn < 0.0, turn + 2 * np.pi, turn)
     full = np.abs(arcs.sweep)
