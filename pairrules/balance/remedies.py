@@ -24,8 +24,12 @@ CONVERSION, LOSS, REJECTION = "conversion", "conversion loss", "rejection"
 _LEAST = 1e-6
 """Positions of a lever below this are looked for evenly, above it by ratio."""
 
-_COARSE, _FINE, _PASSES = 97, 18, 3
-"""Positions tried at first, in each later pass, and those passes: the position comes out to 3e-5 of itself."""
+_COARSE, _FINE, _PASSES = 33, 13, 4
+"""Positions tried at first, in each later pass, and those passes: the position comes out to 2e-5 of itself."""
+
+MOST_ELEMENTS = 120
+"""Every trial solves all elements anew, and there are thousands of trials. A link of more, such as a pair along hundreds
+of bends of unlike gap, would keep a check busy for many seconds; it goes without this advice."""
 
 _SIGNED = 4
 """Of so many levers that move together each is tried with either leg the greater."""
@@ -77,7 +81,11 @@ def remedies(link: SolvedLink, asked_db: npt.ArrayLike, *, figure: str, cause: s
     ----------
     asked_db: (F,) at the link's own frequencies, −inf where nothing is asked. figure: one of the three above.
     cause: what counts alone, all other causes being made equal; "" for all of them together.
+
+    Returns: nothing at all for a link of more than `MOST_ELEMENTS`.
     """
+    if len(link.elements) > MOST_ELEMENTS:
+        return Remedies(balance=(), sizes=())
     given = [one if cause in {"", one.cause} else one.symmetrised() for one in link.elements]
     trial = _Trial(link, given, np.asarray(asked_db, dtype=np.float64), figure)
     receiver, short = trial.receiver() if figure == REJECTION else (None, False)

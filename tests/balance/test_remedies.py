@@ -15,7 +15,7 @@ from hypothesis import strategies as st
 from pairrules.balance.conversion import by_cause, solve
 from pairrules.balance.levers import Lever, differences, sizes
 from pairrules.balance.networks import DifferenceInput, Element, Floats, Line, Series, Shunt, via
-from pairrules.balance.remedies import CONVERSION, LOSS, REJECTION, Mend, remedies
+from pairrules.balance.remedies import CONVERSION, LOSS, MOST_ELEMENTS, REJECTION, Mend, Remedies, remedies
 from pairrules.balance.solved_link import SolvedLink
 from tests.balance.small_links import cable, coupled_track, load, lone_legs, source
 
@@ -261,3 +261,11 @@ def test_whatever_the_link_what_is_named_meets_the_limit(resistance: float, capa
     asked = float(figure(link, LOSS).min()) + more_db
     found = remedies(link, [asked] * 3, figure=LOSS)
     holds(found.balance, link, asked, LOSS)
+
+
+def test_a_link_of_very_many_elements_goes_without() -> None:
+    # A pair along circles in circles was cut into hundreds of sections; its advice took a minute.
+    few = solved(source(1000, 990), *[coupled_track()] * 20, load())
+    many = solved(source(1000, 990), *[coupled_track()] * MOST_ELEMENTS, load())
+    assert remedies(few, [120.0] * 3, figure=CONVERSION).balance
+    assert remedies(many, [120.0] * 3, figure=CONVERSION) == Remedies(balance=(), sizes=())
