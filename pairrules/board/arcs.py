@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from functools import lru_cache
 
 import numpy as np
 
@@ -42,6 +43,15 @@ def flatten(
     """
     dx, dy = start[0] - centre[0], start[1] - centre[1]
     steps = chords_of(math.hypot(dx, dy), angle, within=within)
+    cos, sin = _turned(angle, steps)
+    points = np.empty((steps, 2))
+    points[:, 0] = centre[0] + dx * cos - dy * sin
+    points[:, 1] = centre[1] + dx * sin + dy * cos
+    return points
+
+
+@lru_cache(maxsize=256)
+def _turned(angle: float, steps: int) -> tuple[Floats, Floats]:
+    """Cosines and sines of the steps to an angle; few angles come up thousands of times, half a turn above all."""
     turns = angle * np.arange(1, steps + 1) / steps
-    cos, sin = np.cos(turns), np.sin(turns)
-    return np.column_stack([centre[0] + dx * cos - dy * sin, centre[1] + dx * sin + dy * cos])
+    return np.cos(turns), np.sin(turns)

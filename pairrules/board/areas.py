@@ -35,7 +35,7 @@ class Area:
 
 def _ring(points: Floats) -> Floats:
     ring = np.array(points, dtype=np.float64).reshape(-1, 2)
-    if len(ring) > 1 and (ring[0] == ring[-1]).all():
+    if len(ring) > 1 and ring[0].tolist() == ring[-1].tolist():
         ring = ring[:-1]
     if len(ring) < 3:
         raise ValueError(f"an outline needs three points, {len(ring)} given")

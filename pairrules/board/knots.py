@@ -29,23 +29,30 @@ a few of their neighbours, a hatch of some hundred lines each way ten thousands.
 _FEW_EDGES = 8
 """An outline of so many edges crosses itself `_FEW` times at most."""
 
+_SHARE = 500
+"""Outlines that are geometries at one time: a board has ten thousands."""
+
 _MOST_BOXES = 2_000_000
 
 
 def knotted(rings: Sequence[Floats]) -> int:
     """The outline (n, 2) [mm] with which crossings come to more than `MOST_CROSSINGS`, -1 where they do not."""
     long = [place for place, ring in enumerate(rings) if len(ring) > _FEW_EDGES]
-    if not long:
-        return -1
-    of = np.repeat(np.arange(len(long)), [len(rings[place]) for place in long])
-    lines = shapely.linearrings(np.concatenate([rings[place] for place in long]), indices=of)
     total = 0
-    for row in np.flatnonzero(~np.asarray(shapely.is_valid(shapely.polygons(lines)))).tolist():
-        crossings = _crossings(rings[long[row]])
-        total += crossings if crossings > _FEW else 0
-        if total > MOST_CROSSINGS:
-            return long[row]
+    for start in range(0, len(long), _SHARE):
+        for place in _crossed(rings, long[start : start + _SHARE]):
+            crossings = _crossings(rings[place])
+            total += crossings if crossings > _FEW else 0
+            if total > MOST_CROSSINGS:
+                return place
     return -1
+
+
+def _crossed(rings: Sequence[Floats], places: list[int]) -> list[int]:
+    """Those of the places whose outlines cross themselves."""
+    of = np.repeat(np.arange(len(places)), [len(rings[place]) for place in places])
+    lines = shapely.linearrings(np.concatenate([rings[place] for place in places]), indices=of)
+    return [places[row] for row in np.flatnonzero(~np.asarray(shapely.is_valid(shapely.polygons(lines)))).tolist()]
 
 
 def _crossings(ring: Floats) -> int:

@@ -11,6 +11,7 @@ from pairrules.board.board import Board
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.prolog import doctype_line, root_name
 from pairrules.readers.reader import Reader
+from pairrules.readers.uncollected import uncollected
 
 
 def recognises(data: bytes) -> bool:
@@ -31,7 +32,8 @@ def read(data: bytes, name: str, step: str) -> Board:
         found = "the file has a DOCTYPE, which a board file does not need"
         raise BoardError(found, file=name, place=f"line {refused}", remedy="remove the DOCTYPE")
     try:
-        return assemble(read_content(data), step)
+        with uncollected():
+            return assemble(read_content(data), step)
     except BoardError as error:
         raise BoardError(error.found, file=name, place=error.place, remedy=error.remedy) from None
 

@@ -80,10 +80,17 @@ def _within_ten_metres(copper: Copper, step: Step) -> None:
 
     Each number of the file was within ten metres; placed one upon another, they need not be.
     """
-    reach = [abs(z) + row.width for row in copper.tracks for z in (row.start, row.end, row.centre or 0j)]
+    drawn = np.array([(row.start, row.end, row.centre or 0j) for row in copper.tracks], dtype=np.complex128)
+    widths = np.array([row.width for row in copper.tracks], dtype=np.float64)
+    reach = (np.abs(drawn).reshape(-1, 3) + widths[:, np.newaxis]).ravel().tolist()
     reach += [float(np.abs(row.fill.outline).max()) for row in copper.areas if len(row.fill.outline)]
-    reach += [abs(row.at) + max(row.outline.size if row.outline else (0.0,)) for row in copper.pads]
     reach += [abs(row.at) for row in copper.holes]
+    extents: dict[tuple[int, float], float] = {}  # the few shapes at their few scales: pads by the hundred thousand
+    for row in copper.pads:
+        key = (id(row.shape), row.way.scale)
+        if key not in extents:
+            extents[key] = max(row.outline.size if row.outline else (0.0,))
+        reach.append(abs(row.at) + extents[key])
     if any(not length <= _FARTHEST_MM for length in reach):
         raise BoardError(
             f'step "{step.name}" draws copper more than ten metres away',
@@ -146,7 +153,7 @@ def _net_names(step: Step, copper: Copper, pads: list[JoinedPad], vias: list[Joi
 
 
 def _points(plane: Plane) -> Floats:
-    return np.column_stack([plane.real, plane.imag])
+    return np.ascontiguousarray(plane).view(np.float64).reshape(-1, 2)
 
 
 def _pairs(values: list[complex]) -> Floats:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import re
 from functools import lru_cache
 from typing import TYPE_CHECKING
@@ -41,11 +42,11 @@ def corners(element: Element, factor: float, *, styled: bool = False) -> tuple[P
     """
     curves: list[tuple[int, Element]] = []
     numbers = (_written_out(element) if len(element) > _FEW else None) or _one_by_one(element, curves, styled=styled)
-    if not numbers:
+    if not numbers or not -FARTHEST_MM < min(numbers) * factor <= max(numbers) * factor < FARTHEST_MM:
         return None
-    at = np.array(numbers) * factor + 0.0  # a negative nothing is nothing
-    if not max(at.max(), -at.min()) < FARTHEST_MM:
-        return None
+    at = np.array(numbers)
+    at *= factor
+    at += 0.0  # a negative nothing is nothing
     return at.view(np.complex128), curves
 
 
@@ -89,6 +90,7 @@ def _one_by_one(element: Element, curves: list[tuple[int, Element]], *, styled: 
         # Joined, since a look for each would cost more than the reading: `float` takes 1_0, the file may not.
         if "_" in "".join(found):  # type: ignore[arg-type]
             return None
-        return list(map(float, found))  # type: ignore[arg-type]
+        numbers = list(map(float, found))  # type: ignore[arg-type]
     except (TypeError, ValueError):
         return None
+    return numbers if all(map(math.isfinite, numbers)) else None

@@ -138,14 +138,19 @@ def ring(points: Sequence[complex] | Plane, centres: Sequence[complex | None], s
     """A closed outline as corners, arcs flattened, the closing corner left out."""
     corners = np.asarray(points, dtype=np.complex128)
     if any(sweeps):
+        ends = corners.tolist()
         pieces = [corners[:1]]
-        for start, end, centre, angle in zip(corners, corners[1:], centres, sweeps, strict=False):
-            if centre is not None:
-                rounded = arcs.flatten((start.real, start.imag), (centre.real, centre.imag), angle)
-                pieces.append(rounded[:-1].copy().view(np.complex128)[:, 0])
-            pieces.append(np.array([end]))
+        for place, centre in enumerate(centres):
+            if centre is None:
+                pieces.append(corners[place + 1 : place + 2])
+                continue
+            start = ends[place]
+            rounded = arcs.flatten((start.real, start.imag), (centre.real, centre.imag), sweeps[place])
+            bend = rounded.view(np.complex128)[:, 0]
+            bend[-1] = ends[place + 1]
+            pieces.append(bend)
         corners = np.concatenate(pieces)
-    if len(corners) > 1 and abs(corners[0] - corners[-1]) < 1e-9:
+    if len(corners) > 1 and abs(complex(corners[0]) - complex(corners[-1])) < 1e-9:
         corners = corners[:-1]
     return corners
 

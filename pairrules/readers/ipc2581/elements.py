@@ -48,9 +48,20 @@ def children(element: Element) -> Iterator[tuple[str, Element]]:
             yield _bare(tag), child
 
 
+def named(element: Element, *names: str) -> Iterator[tuple[str, Element]]:
+    """Name and element of each child of one of the names; steps of an outline, by the thousand, are passed over."""
+    for child in element.iterchildren(*map(_of_any_namespace, names)):
+        yield _bare(str(child.tag)), child
+
+
 def child(element: Element, name: str) -> Element | None:
     """The first child of that name."""
-    return next((found for tag, found in children(element) if tag == name), None)
+    return next(element.iterchildren(_of_any_namespace(name)), None)
+
+
+@lru_cache(maxsize=256)
+def _of_any_namespace(name: str) -> str:
+    return "{*}" + name
 
 
 @lru_cache(maxsize=65536)
@@ -128,6 +139,15 @@ def _doubtful_length(element: Element, name: str, factor: float, default: float 
 
 def point(element: Element, x: str, y: str, factor: float) -> complex:
     """The place [mm] that two attributes give; a negative nothing is nothing."""
+    across, up = element.get(x, "_"), element.get(y, "_")
+    if len(across) + len(up) <= _LONGEST_NUMBER and "_" not in across and "_" not in up:
+        try:
+            at = complex(float(across) * factor, float(up) * factor)
+        except ValueError:
+            pass
+        else:
+            if -FARTHEST_MM < at.real < FARTHEST_MM and -FARTHEST_MM < at.imag < FARTHEST_MM:
+                return at + 0j
     return complex(length(element, x, factor), length(element, y, factor)) + 0j
 
 

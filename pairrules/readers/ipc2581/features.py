@@ -11,7 +11,7 @@ from pairrules.board.arcs import chords_of
 from pairrules.board.knots import meetings
 from pairrules.readers.ipc2581.corners import corners
 from pairrules.readers.ipc2581.drawing import Fill, Item, Stroke, placed, ring, surplus, sweep
-from pairrules.readers.ipc2581.elements import child, children, line, local, point, size, truth, word, wrong
+from pairrules.readers.ipc2581.elements import child, children, line, local, named, point, size, truth, word, wrong
 from pairrules.readers.ipc2581.primitives import Primitive, hollow, outer_pad, polygon_pad, primitive
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import IDENTITY, Plane, Transform, xform
@@ -122,24 +122,22 @@ class Shapes:
 
     def line(self, element: Element, factor: float, default: Line | None = None) -> Line | None:
         """The line style among an element's children; `default` where it has none."""
-        for tag, inner in children(element):
+        for tag, inner in named(element, "LineDescRef", "LineDesc"):
             if tag == "LineDescRef":
                 found = self.lines.get(word(inner, "id"))
                 if found is None:
                     self.absent.add((tag, word(inner, "id")))
                     self.remarks.count("{n} line style{s} named by features {are} not in the file's dictionary")
                 return found
-            if tag == "LineDesc":
-                return self._line(inner, factor)
+            return self._line(inner, factor)
         return default
 
     def filling(self, element: Element) -> str:
         """The fill property among an element's children, or its polygon's; "FILL" where neither says."""
-        for tag, inner in children(element):
+        for tag, inner in named(element, "FillDescRef", "FillDesc"):
             if tag == "FillDescRef":
                 return self.fillings.get(word(inner, "id"), "FILL")
-            if tag == "FillDesc":
-                return word(inner, "fillProperty", "FILL").upper()
+            return word(inner, "fillProperty", "FILL").upper()
         polygon = child(element, "Polygon")
         return "FILL" if polygon is None else self.filling(polygon)
 
@@ -253,7 +251,7 @@ class Shapes:
         if outline is None:
             wrong(element, "Contour has no Polygon")
         corners = self.outline(outline, factor)
-        cutouts = [self.outline(inner, factor) for name, inner in children(element) if name == "Cutout"]
+        cutouts = [self.outline(inner, factor) for _, inner in named(element, "Cutout")]
         if len(corners) < 3:
             self.remarks.count("{n} outline{s} of fewer than three corners {are} left out", line=line(element))
             return Primitive((), None)

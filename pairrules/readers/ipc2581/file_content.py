@@ -47,6 +47,9 @@ MOST_IN_RECORD = 300_000
 kilobyte and more. A record is one net's copper on one layer, a package or a part: some thousands."""
 
 _CHUNK = 32 * 1024
+_BYTES_IN_TWO = 5
+"""Bytes that an element and a text take at least (`x<a/>`); before so many more have come, none need be counted."""
+
 _COUNT_EVERY = 256 * 1024
 _OUTLINES = {"Cutout", "Polygon"}
 _FEW = 8
@@ -157,7 +160,7 @@ def _root_name(data: bytes) -> str:
 
 def _held(element: Element) -> float:
     """How many elements, texts and attributes stand in an element."""
-    count = element.xpath("count(.//node()) + count(.//@*)")
+    count = element.xpath("count(descendant::node()) + count(descendant::*/@*)")
     return count if isinstance(count, float) else 0.0
 
 
@@ -173,7 +176,8 @@ class _Walk:
         self.route_net = ""
         self.root: Element | None = None
         self.record: Element | None = None
-        self.counted = 0
+        self.take: Callable[[Element], None]
+        self.count_at = 0
         self.records: dict[str, Callable[[Element], None]] = {
             "EntryLineDesc": self._entry,
             "EntryFillDesc": self._entry,
@@ -213,6 +217,7 @@ class _Walk:
                     self.record = element
             elif element is self.record:
                 self.take(element)
+                self.content.shapes.outlines.clear()
                 self.record = None
             elif self.record is None:
                 self.ends(element)
@@ -229,9 +234,10 @@ class _Walk:
         while node is not None and node is not self.record and len(node):
             del node[:-1]
             node = node[-1]
-        if self.record is not None and place >= self.counted + _COUNT_EVERY:
-            self.counted = place
-            if _held(self.record) > MOST_IN_RECORD:
+        if self.record is not None and place >= self.count_at:
+            held = _held(self.record)
+            self.count_at = place + max(_COUNT_EVERY, int(_BYTES_IN_TWO * (MOST_IN_RECORD - held) / 2))
+            if held > MOST_IN_RECORD:
                 wrong(self.record, f"{local(self.record)} holds more than {MOST_IN_RECORD} elements and attributes")
 
     def starts(self, element: Element) -> bool:
@@ -240,7 +246,9 @@ class _Walk:
         if self.root is None:
             self._root(element, name)
             return False
-        if name in self.records:
+        taking = self.records.get(name)
+        if taking is not None:
+            self.take = taking
             return True
         opening = self.openings.get(name)
         if opening is not None:
@@ -248,11 +256,6 @@ class _Walk:
         elif name.startswith("Dictionary") and element.get("units") is not None:
             self.dictionary = units(element)
         return False
-
-    def take(self, element: Element) -> None:
-        """A record has closed."""
-        self.records[local(element)](element)
-        self.content.shapes.outlines.clear()
 
     def outline(self, record: Element, element: Element) -> None:
         """An outline within a record has closed: keep its corners and drop its elements."""

@@ -51,14 +51,14 @@ class SetReader:
             return
         erase = word(element, "polarity").upper() == "NEGATIVE"
         for tag, inner in children(element):
-            if tag == "Hole":
+            if layer.copper and (tag == "Pad" or tag in FIDUCIALS):
+                self._pad(inner, element, layer_name, net, erase=erase)
+            elif tag == "Hole":
                 self._hole(inner, element, layer, net)
             elif tag in {"Slot", "SlotCavity"}:
                 self._slot(inner, element, layer, net)
             elif not layer.copper:
                 continue
-            elif tag == "Pad" or tag in FIDUCIALS:
-                self._pad(inner, element, layer_name, net, erase=erase)
             elif tag == "Features":
                 self._features(inner, layer_name, net, self.shapes.line(element, self.factor), erase=erase)
             elif tag not in _SILENT and not tag.endswith("Attribute"):
@@ -93,7 +93,8 @@ class SetReader:
             for shape in drawn:
                 items = placed(shape.items, by)
                 dropped = self.copper.draw(erasing(items) if erase else items, layer, net)
-                self.remarks.count("{n} line piece{s} without length {are} left out", dropped, line=line(element))
+                if dropped:
+                    self.remarks.count("{n} line piece{s} without length {are} left out", dropped, line=line(element))
 
     # -- pads ---------------------------------------------------------------------------------------------------------
 

@@ -52,6 +52,8 @@ def read_logical_net(element: Element, nets: Nets) -> None:
 def note_partner(element: Element, net: str, nets: Nets) -> None:
     """The `netPair` of a `LogicalNet` or `Set`."""
     partner = word(element, "netPair")
+    if not partner:
+        return
     if net and partner and partner != net and partner.casefold() not in NO_NET:
         nets.partners.setdefault(net, partner)
 

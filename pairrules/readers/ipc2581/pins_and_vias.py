@@ -105,8 +105,8 @@ def join(copper: Copper, names: tuple[str, ...], remarks: Remarks) -> tuple[list
             continue
         seen.add(key)
         drill = hole.diameter if hole.diameter > 0 else math.nan
-        here = [pad for pad in pads.near(hole.at) if _same_net(pad, hole) and first <= index[pad.layer] <= last]
-        here = [pad for pad in here if id(pad) not in taken]
+        here = [pad for pad in pads.near(hole.at) if id(pad) not in taken]
+        here = [pad for pad in here if _same_net(pad, hole) and first <= index[pad.layer] <= last]
         pins = [pad for pad in here if pad.pin]
         if pins and hole.plating == "PLATED" and (first, last) == (0, len(names) - 1):
             owners = sorted({(pad.ref, pad.pin) for pad in pins})
@@ -167,9 +167,10 @@ def _span(hole: HoleRow, index: dict[str, int], count: int) -> tuple[int, int]:
 
 
 def _via(hole: HoleRow, pads: list[PadRow], copper: Copper, span: tuple[int, int], drill: float) -> JoinedVia:
-    sizes = [pad.smallest_mm for pad in pads]
-    known = [size for size in sizes if size is not None]
-    stacks = [copper.stacks[name] for name in (hole.stack, *(pad.stack for pad in pads)) if name in copper.stacks]
+    alike = {(id(pad.shape), id(pad.way)): pad for pad in pads}  # mostly one shape on all layers
+    known = [size for pad in alike.values() if (size := pad.smallest_mm) is not None]
+    names = {hole.stack, *(pad.stack for pad in pads)}
+    stacks = [copper.stacks[name] for name in names if name in copper.stacks]
     regular = [stack.pad_mm for stack in stacks if stack.pad_mm is not None]
     antipads = [stack.antipad_mm for stack in stacks if stack.antipad_mm is not None]
     net = hole.net or next((pad.net for pad in pads if pad.net), "")
