@@ -5,6 +5,8 @@ from __future__ import annotations
 import hashlib
 import os
 import stat
+from collections.abc import Iterator
+from contextlib import ExitStack, contextmanager
 from dataclasses import dataclass
 from datetime import date
 from fnmatch import fnmatchcase
@@ -27,6 +29,7 @@ from pairrules.geometry.measure import measure_link
 from pairrules.pairing.find_links import PairRequest, find_links
 from pairrules.pairing.link import Link
 from pairrules.pairing.reference_nets import reference_nets
+from pairrules.readers.long_file import LongFile
 from pairrules.readers.packing import MOST_BYTES
 from pairrules.readers.reader import read_board
 from pairrules.result import BoardSummary, FoundPair, FoundPairs, Result, WaiverState
@@ -205,9 +208,11 @@ def _open(
     path: str | Path, settings: str | Path | None, *, pairs: str, step: str, settings_of: str | Path | None = None
 ) -> _Opened:
     name = str(path)
-    data = _bytes(Path(path), name)
-    chosen = _settings(settings_of or path, settings)
-    board = with_part_values(_stacked(read_board(data, name, step=step), chosen), chosen.part_values)
+    with _bytes(Path(path), name) as data:
+        chosen = _settings(settings_of or path, settings)
+        board = read_board(data, name, step=step)
+        digest = data.sha256() if isinstance(data, LongFile) else hashlib.sha256(data).hexdigest()
+    board = with_part_values(_stacked(board, chosen), chosen.part_values)
     reference = reference_nets(board, chosen.reference_nets)
     listed = tuple(PairRequest(plus=p.plus, minus=p.minus, name=p.name, place=p.place) for p in chosen.pairs)
     pairing = find_links(board, listed=listed, ignore=chosen.ignore, reference=reference)
@@ -218,7 +223,7 @@ def _open(
         )
     summary = BoardSummary(
         file=name,
-        sha256=hashlib.sha256(data).hexdigest(),
+        sha256=digest,
         format=board.format,
         revision=board.revision,
         units=board.units,
@@ -245,13 +250,29 @@ def _stacked(board: Board, settings: Settings) -> Board:
         ) from error
 
 
-def _bytes(path: Path, name: str) -> bytes:
+@contextmanager
+def _bytes(path: Path, name: str) -> Iterator[bytes | LongFile]:
+    """The bytes of a file while it is open. What has no size of its own, such as a pipe, is read at once."""
+    with ExitStack() as opened:
+        data, size = _begun(path, name, opened)
+        if size > MOST_BYTES:
+            found = f"the file is larger than {MOST_BYTES // 1024**3} GB"
+            raise BoardError(found, file=name, remedy="export the board by itself, not a panel or an archive of many")
+        if not size:
+            raise BoardError("the file is empty", file=name, remedy="export the board again")
+        yield data
+
+
+def _begun(path: Path, name: str, opened: ExitStack) -> tuple[bytes | LongFile, int]:
     try:
-        with path.open("rb") as file:
-            mode = os.fstat(file.fileno()).st_mode
-            if not (stat.S_ISREG(mode) or stat.S_ISFIFO(mode)):
-                raise BoardError("this is a device, not a file", file=name, remedy="name the board file")
-            data = file.read(MOST_BYTES + 1)
+        file = opened.enter_context(path.open("rb"))
+        told = os.fstat(file.fileno())
+        if not (stat.S_ISREG(told.st_mode) or stat.S_ISFIFO(told.st_mode)):
+            raise BoardError("this is a device, not a file", file=name, remedy="name the board file")
+        if stat.S_ISREG(told.st_mode) and told.st_size:
+            return LongFile(file, told.st_size, name), told.st_size
+        data = file.read(MOST_BYTES + 1)
+        return data, len(data)
     except FileNotFoundError as error:
         raise BoardError("there is no such file", file=name, remedy="check the path") from error
     except IsADirectoryError as error:
@@ -263,12 +284,6 @@ def _bytes(path: Path, name: str) -> bytes:
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         raise BoardError(f"the file cannot be read ({reason})", file=name, remedy="check path and medium") from error
-    if len(data) > MOST_BYTES:
-        found = f"the file is larger than {MOST_BYTES // 1024**3} GB"
-        raise BoardError(found, file=name, remedy="export the board by itself, not a panel or an archive of many")
-    if not data:
-        raise BoardError("the file is empty", file=name, remedy="export the board again")
-    return data
 
 
 def _settings_path(board: str | Path, settings: str | Path | None) -> Path | None:

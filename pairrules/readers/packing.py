@@ -9,6 +9,7 @@ import zlib
 from collections.abc import Callable, Iterable
 
 from pairrules.errors import BoardError
+from pairrules.readers.long_file import Sliced
 
 MOST_BYTES = 2 * 1024**3
 """Size, unpacked, that is still taken for a board."""
@@ -50,7 +51,7 @@ _BOARD_NAMES = (".xml", ".cvg", ".json")
 _HEAD = 4096
 
 
-def unpack(data: bytes, name: str) -> tuple[bytes, str]:
+def unpack(data: Sliced, name: str) -> tuple[Sliced, str]:
     """The board file inside `data`, and the label that messages call it by ("archive.zip: board.xml").
 
     Plain files come back as they are. From a zip the one board is taken: the only member named .xml, .cvg or .json,
@@ -58,15 +59,16 @@ def unpack(data: bytes, name: str) -> tuple[bytes, str]:
 
     Raises: BoardError where the file is empty, the archive is broken, too large unpacked, or holds no board.
     """
-    if not data:
+    start = data[:4]
+    if not start:
         raise BoardError("the file is empty", file=name, remedy="export the board again")
-    if data.startswith(b"\x1f\x8b"):
-        plain = _gunzip(data, name)
+    if start.startswith(b"\x1f\x8b"):
+        plain = _gunzip(data[:], name)
         if not plain:
             raise BoardError("the archive holds an empty file", file=name, remedy="pack the board again")
         return plain, name
-    if data.startswith((b"PK\x03\x04", b"PK\x05\x06")):
-        return _from_zip(data, name)
+    if start in {b"PK\x03\x04", b"PK\x05\x06"}:
+        return _from_zip(data[:], name)
     return data, name
 
 

@@ -24,6 +24,7 @@ from pairrules.errors import BoardError
 from pairrules.readers.json_paths import Piece, Point, Ruler
 from pairrules.readers.json_stackup import ALL_LAYERS, read_stackup, stackup_gaps
 from pairrules.readers.json_tree import Document, Members, Path, or_list, parse, printable, show, written
+from pairrules.readers.long_file import Sliced
 from pairrules.readers.reader import Reader
 
 VERSION = 1
@@ -46,7 +47,7 @@ _PAIR = frozenset({"name", "plus", "minus", "class", "source", "load"})
 _NET = frozenset({"name", "kind"})
 
 
-def recognises(data: bytes) -> bool:
+def recognises(data: Sliced) -> bool:
     """Whether the first sign after an optional byte order mark is an opening brace."""
     return data[:4096].removeprefix(b"\xef\xbb\xbf").lstrip(b" \t\r\n").startswith(b"{")
 

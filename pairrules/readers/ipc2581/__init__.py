@@ -10,16 +10,17 @@ from __future__ import annotations
 from pairrules.board.board import Board
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.prolog import doctype_line, root_name
+from pairrules.readers.long_file import Sliced
 from pairrules.readers.reader import Reader
 from pairrules.readers.uncollected import uncollected
 
 
-def recognises(data: bytes) -> bool:
+def recognises(data: Sliced) -> bool:
     """Whether the root element is IPC-2581's, with or without a namespace prefix."""
     return root_name(data) == "IPC-2581"
 
 
-def read(data: bytes, name: str, step: str) -> Board:
+def read(data: Sliced, name: str, step: str) -> Board:
     """The board in an IPC-2581 file. step: the wanted board's name, "" where the file holds just one.
 
     Raises: BoardError where the file is malformed, holds no board copper, or several boards of which none is chosen.
@@ -38,4 +39,4 @@ def read(data: bytes, name: str, step: str) -> Board:
         raise BoardError(error.found, file=name, place=error.place, remedy=error.remedy) from None
 
 
-READER = Reader(summary="IPC-2581 XML, revisions A to C", recognises=recognises, read=read)
+READER = Reader(summary="IPC-2581 XML, revisions A to C", recognises=recognises, read=read, piecewise=True)

@@ -22,6 +22,7 @@ from pairrules.readers.ipc2581.parts import Parts, read_bom_item, read_component
 from pairrules.readers.ipc2581.prolog import root_name
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Plane
+from pairrules.readers.long_file import Sliced
 
 if TYPE_CHECKING:
     from lxml.etree import _Element as Element
@@ -101,7 +102,7 @@ class FileContent:
         return bool(wanted & self.table.layers.keys()) or self.shapes.asked_too_early()
 
 
-def read_content(data: bytes) -> FileContent:
+def read_content(data: Sliced) -> FileContent:
     """Read the file. Raises: BoardError, without the file's name, where it is malformed or says what cannot be.
 
     A file that names layers, line styles or shapes before it says what they are is read once more, with them known.
@@ -114,7 +115,7 @@ def read_content(data: bytes) -> FileContent:
     return _read_once(data, again)
 
 
-def _read_once(data: bytes, content: FileContent) -> FileContent:
+def _read_once(data: Sliced, content: FileContent) -> FileContent:
     from lxml import etree
 
     walk = _Walk(content)
@@ -153,7 +154,7 @@ def _read_once(data: bytes, content: FileContent) -> FileContent:
     return walk.content
 
 
-def _root_name(data: bytes) -> str:
+def _root_name(data: Sliced) -> str:
     name = root_name(data)
     return name if re.fullmatch(r"[\w.-]+", name) else ROOT
 

@@ -5,6 +5,8 @@ from __future__ import annotations
 import codecs
 import re
 
+from pairrules.readers.long_file import Sliced
+
 HEAD_BYTES = 65536
 """How far the root element is looked for; declarations and comments before it are short."""
 
@@ -15,7 +17,7 @@ _DOCTYPE = re.compile(r"<!DOCTYPE", re.IGNORECASE)
 _DOCTYPE_ROOT = re.compile(r"<!DOCTYPE\s+([^\s<>\[/!?]+)", re.IGNORECASE)
 
 
-def head(data: bytes) -> str:
+def head(data: Sliced) -> str:
     """The first characters of the file, by its byte order mark, else UTF-16 by its zeros, else as single bytes."""
     start = data[:HEAD_BYTES]
     for mark, encoding in _MARKS:
@@ -28,7 +30,7 @@ def head(data: bytes) -> str:
     return start.decode("latin-1")
 
 
-def root_name(data: bytes) -> str:
+def root_name(data: Sliced) -> str:
     """The root element's name without prefix, "" where none is found."""
     text, place = _after_prolog(head(data))
     # A DOCTYPE names the root too: such a file is recognised, so that it can be refused for what it is.
@@ -36,7 +38,7 @@ def root_name(data: bytes) -> str:
     return "" if found is None else found[1].rpartition(":")[2]
 
 
-def doctype_line(data: bytes) -> int:
+def doctype_line(data: Sliced) -> int:
     """The line on which a DOCTYPE stands before the root element, 0 where there is none."""
     text, place = _after_prolog(head(data))
     return text.count("\n", 0, place) + 1 if _DOCTYPE.match(text, place) else 0
