@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, NoReturn
 from pairrules.errors import BoardError
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 UNIT_MM = {"MILLIMETER": 1.0, "MICRON": 0.001, "INCH": 25.4}
 """Millimetres in the units of a header or dictionary. Source: IPC-2581A schema, `unitsType`."""
@@ -29,39 +29,30 @@ NO_NET = {"", "no net", "none", "$none$", "n/c", "unconnected"}
 """Names, in small letters, that exporters give to copper of no net (common practice, no source)."""
 
 
-@lru_cache(maxsize=4096)
-def _bare(tag: str) -> str:
-    return tag.rpartition("}")[2]
-
-
 def local(element: Element) -> str:
-    """The element's name without its namespace."""
-    tag = element.tag
-    return _bare(str(tag))
+    """The element's name."""
+    return element.tag
 
 
 def children(element: Element) -> Iterator[tuple[str, Element]]:
-    """Name and element of each child, in document order."""
-    for child in element:
-        tag = child.tag
-        if isinstance(tag, str):
-            yield _bare(tag), child
+    """Name and element of each child: steps of an outline first, then all else in document order."""
+    for child in element if element.steps else element.inner:
+        yield child.tag, child
 
 
 def named(element: Element, *names: str) -> Iterator[tuple[str, Element]]:
-    """Name and element of each child of one of the names; steps of an outline, by the thousand, are passed over."""
-    for child in element.iterchildren(*map(_of_any_namespace, names)):
-        yield _bare(str(child.tag)), child
+    """Name and element of each child of one of the names, which are no steps."""
+    for child in element.inner:
+        if child.tag in names:
+            yield child.tag, child
 
 
 def child(element: Element, name: str) -> Element | None:
-    """The first child of that name."""
-    return next(element.iterchildren(_of_any_namespace(name)), None)
-
-
-@lru_cache(maxsize=256)
-def _of_any_namespace(name: str) -> str:
-    return "{*}" + name
+    """The first child of that name, which is no step."""
+    for inner in element.inner:
+        if inner.tag == name:
+            return inner
+    return None
 
 
 @lru_cache(maxsize=65536)
@@ -139,7 +130,7 @@ def _doubtful_length(element: Element, name: str, factor: float, default: float 
 
 def point(element: Element, x: str, y: str, factor: float) -> complex:
     """The place [mm] that two attributes give; a negative nothing is nothing."""
-    across, up = element.get(x, "_"), element.get(y, "_")
+    across, up = element.attributes.get(x, "_"), element.attributes.get(y, "_")
     if len(across) + len(up) <= _LONGEST_NUMBER and "_" not in across and "_" not in up:
         try:
             at = complex(float(across) * factor, float(up) * factor)
@@ -172,9 +163,8 @@ def units(element: Element) -> float:
 
 
 def line(element: Element) -> int:
-    """The line of the file that the element begins on, 0 where unknown."""
-    where: object = element.sourceline
-    return where if isinstance(where, int) else 0
+    """The line of the file that the element begins on."""
+    return element.line
 
 
 def wrong(element: Element, found: str, remedy: str = "correct it there or export the file again") -> NoReturn:

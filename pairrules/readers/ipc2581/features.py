@@ -17,7 +17,7 @@ from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import IDENTITY, Plane, Transform, xform
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 MOST_PIECES = 5_000_000
 """Pieces of copper a board may have, far above any (common practice, no source)."""
@@ -270,8 +270,9 @@ class Shapes:
         """Take in the corners of an outline that nothing is wrong with, and drop its elements; leave any other be."""
         found = corners(element, factor)
         if found is not None:
-            self.outlines[element] = ring(*self._rounded(*found, factor))
-            del element[:]
+            points, curves = found
+            self.outlines[element] = ring(*self._rounded(points, curves, factor)) if curves else ring(points, (), ())
+            element.steps.clear()
 
     def _rounded(
         self, points: Plane, curves: list[tuple[int, Element]], factor: float

@@ -1,67 +1,35 @@
 """Walks the file once, record by record, and keeps of it what a board needs; what has been read is freed.
 
-Only elements that matter are handed over by the parser; the corners of a long outline are taken in as soon as it
-closes, so that memory holds neither a whole plane's elements nor an object a corner.
+The corners of a long outline are taken in as soon as it closes, so that memory holds neither a whole plane's steps nor an
+object a corner.
 """
 
 from __future__ import annotations
 
-import re
-from collections.abc import Callable, Iterable
+from collections.abc import Callable
 from dataclasses import dataclass, field
-from typing import TYPE_CHECKING, cast
+from typing import TYPE_CHECKING
 
-from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.copper import Copper
 from pairrules.readers.ipc2581.elements import child, clean, local, units, word, wrong
 from pairrules.readers.ipc2581.features import MOST_PIECES, Shapes, most_pieces
 from pairrules.readers.ipc2581.layer_features import SetReader, net_name
 from pairrules.readers.ipc2581.layers import LayerTable, read_layer, read_spec, read_stackup
 from pairrules.readers.ipc2581.nets import Nets, note_partner, read_logical_net, read_phy_net
+from pairrules.readers.ipc2581.parsing import follow
 from pairrules.readers.ipc2581.parts import Parts, read_bom_item, read_component, read_package
-from pairrules.readers.ipc2581.prolog import root_name
 from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Plane
 from pairrules.readers.long_file import Sliced
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 ROOT = "IPC-2581"
 
-_BROKEN = {
-    4: "the XML is empty",
-    5: "the XML goes on after its end",
-    76: "an element is closed by the end tag of another",
-    77: "the XML breaks off before its end",
-    110: "the name of an element or attribute is too long",
-    114: "elements are nested too deep, or a text is too long",
-}
-"""Our words for the parser's commonest codes; its own change with its version. Source: libxml2, `xmlParserErrors`."""
-
-
-_DICTIONARIES = {
-    f"Dictionary{held}" for held in ("Color", "FillDesc", "Firmware", "Font", "LineDesc", "Standard", "User")
-}
-MOST_IN_RECORD = 300_000
-"""Elements, attributes and texts one record may hold beside the corners of its outlines; each takes a tenth of a
-kilobyte and more. A record is one net's copper on one layer, a package or a part: some thousands."""
-
-_CHUNK = 32 * 1024
-_BYTES_IN_TWO = 5
-"""Bytes that an element and a text take at least (`x<a/>`); before so many more have come, none need be counted."""
-
-_COUNT_EVERY = 256 * 1024
 _OUTLINES = {"Cutout", "Polygon"}
 _FEW = 8
 """Outlines of no more corners are read with their record."""
-
-_LEFT_OUT = {
-    *("Approval", "AvlItem", "BomHeader", "ChangeRec", "Datum", "DfxMeasurement", "DfxMeasurementList", "Enterprise"),
-    *("EntryColor", "EntryFirmware", "EntryFont", "HistoryRecord", "LogisticHeader", "NonstandardAttribute", "Person"),
-    *("Role", "StepRef", "BomRef", "AvlRef"),
-}
-"""Asked for only to be freed: a file may hold many of them."""
 
 
 @dataclass(slots=True)
@@ -116,53 +84,8 @@ def read_content(data: Sliced) -> FileContent:
 
 
 def _read_once(data: Sliced, content: FileContent) -> FileContent:
-    from lxml import etree
-
-    walk = _Walk(content)
-    # The root is among them whatever it is called, to be judged before anything else.
-    names = {*walk.records, *walk.openings, *_DICTIONARIES, *_OUTLINES, *_LEFT_OUT, _root_name(data)}
-    parser = etree.XMLPullParser(
-        events=("start", "end"),
-        tag=[f"{{*}}{name}" for name in sorted(names)],
-        resolve_entities=False,
-        no_network=True,
-        load_dtd=False,
-        huge_tree=False,
-        remove_comments=True,
-        remove_pis=True,
-        collect_ids=False,
-    )
-    fault: etree.XMLSyntaxError | None = None
-    for start in range(0, len(data), _CHUNK):
-        try:
-            parser.feed(data[start : start + _CHUNK])
-        except etree.XMLSyntaxError as error:
-            fault = error
-        walk.follow(cast("Iterable[tuple[str, Element]]", parser.read_events()))
-        if fault is not None:
-            break
-        walk.prune(start)
-    try:
-        if fault is None:
-            parser.close()
-    except etree.XMLSyntaxError as error:
-        fault = error
-    if fault is not None:
-        found = _BROKEN.get(getattr(fault, "code", 0), "the XML is not well formed")
-        place = f"line {fault.lineno}" if fault.lineno else ""
-        raise BoardError(found, place=place, remedy="export the file again") from None
-    return walk.content
-
-
-def _root_name(data: Sliced) -> str:
-    name = root_name(data)
-    return name if re.fullmatch(r"[\w.-]+", name) else ROOT
-
-
-def _held(element: Element) -> float:
-    """How many elements, texts and attributes stand in an element."""
-    count = element.xpath("count(descendant::node()) + count(descendant::*/@*)")
-    return count if isinstance(count, float) else 0.0
+    follow(data, _Walk(content))
+    return content
 
 
 class _Walk:
@@ -175,10 +98,7 @@ class _Walk:
         self.sets: SetReader | None = None
         self.layer = ""
         self.route_net = ""
-        self.root: Element | None = None
-        self.record: Element | None = None
-        self.take: Callable[[Element], None]
-        self.count_at = 0
+        self.seen_root = False
         self.records: dict[str, Callable[[Element], None]] = {
             "EntryLineDesc": self._entry,
             "EntryFillDesc": self._entry,
@@ -210,46 +130,13 @@ class _Walk:
 
     # -- walking ------------------------------------------------------------------------------------------------------
 
-    def follow(self, events: Iterable[tuple[str, Element]]) -> None:
-        """Elements open and close."""
-        for event, element in events:
-            if event == "start":
-                if self.record is None and self.starts(element):
-                    self.record = element
-            elif element is self.record:
-                self.take(element)
-                self.content.shapes.outlines.clear()
-                self.record = None
-            elif self.record is None:
-                self.ends(element)
-            else:
-                self.outline(self.record, element)
-
-    def prune(self, place: int) -> None:
-        """Drop what has closed, and refuse a record that would fill the memory.
-
-        place: bytes read so far. But for an open record nothing is needed save open elements, each the last of its
-        parent.
-        """
-        node = self.root
-        while node is not None and node is not self.record and len(node):
-            del node[:-1]
-            node = node[-1]
-        if self.record is not None and place >= self.count_at:
-            held = _held(self.record)
-            self.count_at = place + max(_COUNT_EVERY, int(_BYTES_IN_TWO * (MOST_IN_RECORD - held) / 2))
-            if held > MOST_IN_RECORD:
-                wrong(self.record, f"{local(self.record)} holds more than {MOST_IN_RECORD} elements and attributes")
-
     def starts(self, element: Element) -> bool:
         """An element opens. Returns: whether it is a record, to be handed over whole when it closes."""
-        name = local(element)
-        if self.root is None:
+        name = element.tag
+        if not self.seen_root:
             self._root(element, name)
             return False
-        taking = self.records.get(name)
-        if taking is not None:
-            self.take = taking
+        if name in self.records:
             return True
         opening = self.openings.get(name)
         if opening is not None:
@@ -258,16 +145,20 @@ class _Walk:
             self.dictionary = units(element)
         return False
 
+    def take(self, element: Element) -> None:
+        """A record has closed."""
+        self.records[local(element)](element)
+        self.content.shapes.outlines.clear()
+
     def outline(self, record: Element, element: Element) -> None:
-        """An outline within a record has closed: keep its corners and drop its elements."""
-        if local(element) in _OUTLINES and len(element) > _FEW:
+        """An outline within a record has closed: keep its corners and drop its steps."""
+        if element.tag in _OUTLINES and len(element.steps) > _FEW:
             factor = self.dictionary if local(record).startswith("Entry") else self.content.factor
             if factor:
                 self.content.shapes.keep_outline(element, factor)
 
-    def ends(self, element: Element) -> None:
+    def ends(self, name: str) -> None:
         """An element that is no record has closed."""
-        name = local(element)
         if name == "Step":
             self.step = self.sets = None
         elif name == "LayerFeature":
@@ -276,12 +167,9 @@ class _Walk:
             self.route_net = ""
 
     def _root(self, element: Element, name: str) -> None:
-        self.root = element
+        self.seen_root = True
         if name != ROOT:
             wrong(element, f"the root element is {clean(name)}, not {ROOT}", "give an IPC-2581 file")
-        information = element.getroottree().docinfo
-        if information.internalDTD is not None or information.externalDTD is not None:
-            wrong(element, "the file has a DOCTYPE, which a board file does not need", "remove the DOCTYPE")
         self.content.revision = word(element, "revision")
 
     # -- header -------------------------------------------------------------------------------------------------------

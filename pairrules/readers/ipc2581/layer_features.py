@@ -15,7 +15,7 @@ from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import IDENTITY, Transform, location
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 FIDUCIALS = {"BadBoardMark", "GlobalFiducial", "GoodPanelMark", "LocalFiducial", "Fiducial"}
 _SILENT = {*STYLES, "SpecRef", "LineDescGroup", "ColorGroup"}

@@ -11,7 +11,7 @@ from pairrules.readers.ipc2581.elements import child, children, number, size, wo
 from pairrules.readers.ipc2581.remarks import Remarks
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 COPPER = {"CONDUCTOR", "SIGNAL", "PLANE", "MIXED", "CONDFILM", "CONDFOIL"}
 """Layer functions that carry copper. Source: IPC-2581A schema, `layerFunctionType`."""

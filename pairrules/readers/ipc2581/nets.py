@@ -14,7 +14,7 @@ from pairrules.readers.ipc2581.places import Places
 from pairrules.readers.ipc2581.remarks import Remarks
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 _KINDS = {"GROUND": "ground", "POWER": "power", "SIGNAL": "signal"}
 _PLUS = re.compile(r"(?:\+|(?:^|[^A-Z])(?:P|POS|PLUS)|(?<=\d)P|D[PH])\d*\Z", re.IGNORECASE)

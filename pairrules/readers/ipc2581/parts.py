@@ -14,7 +14,7 @@ from pairrules.readers.ipc2581.remarks import Remarks
 from pairrules.readers.ipc2581.transform import Transform, location, xform
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 _MEASURES = ("VALUE", "RESISTANCE", "CAPACITANCE", "INDUCTANCE")
 

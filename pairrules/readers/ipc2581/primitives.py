@@ -23,7 +23,7 @@ from pairrules.readers.ipc2581.elements import local, number, size, truth, word,
 from pairrules.readers.ipc2581.transform import Plane
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 MOST_RINGS = 50
 """A moiré target has a handful of rings; more is a fault of the file."""

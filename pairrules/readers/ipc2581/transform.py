@@ -18,7 +18,7 @@ import numpy.typing as npt
 from pairrules.readers.ipc2581.elements import length, number, point, truth, wrong
 
 if TYPE_CHECKING:
-    from lxml.etree import _Element as Element
+    from pairrules.readers.ipc2581.element import Element
 
 Plane = npt.NDArray[np.complex128]
 
