@@ -1,7 +1,7 @@
 """Walks the file once, record by record, and keeps of it what a board needs; what has been read is freed.
 
-The corners of a long outline are taken in as soon as it closes, so that memory holds neither a whole plane's steps nor an
-object a corner.
+The corners of a long outline are taken in as soon as it closes, so that memory holds neither a whole plane's steps nor
+an object a corner.
 """
 
 from __future__ import annotations

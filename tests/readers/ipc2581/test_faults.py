@@ -127,7 +127,7 @@ def test_a_doctype_behind_a_long_comment_is_refused_too() -> None:
     comment = b"<!--" + b"x" * 100_000 + b"-->"
     data = document(TRACK).replace(b"<IPC-2581 ", comment + b"\n<!DOCTYPE IPC-2581>\n<IPC-2581 ", 1)
     assert refused(data) == (
-        "board.xml: line 4: the file has a DOCTYPE, which a board file does not need; remove the DOCTYPE"
+        "board.xml: line 3: the file has a DOCTYPE, which a board file does not need; remove the DOCTYPE"
     )
 
 

@@ -1,32 +1,35 @@
-"""What has been read is freed: the tree holds what the parser has read ahead, however long the file is."""
+"""What has been read is freed: no more elements live than those of one record, however long the file is."""
 
 from __future__ import annotations
 
-from typing import Any
-
 import pytest
 
-from pairrules.readers.ipc2581 import file_content
+from pairrules.readers.ipc2581 import parsing
+from pairrules.readers.ipc2581.element import Element
 from tests.readers.ipc2581.documents import LAYERS, box, document, feature, line, read
 
 MANY = 8000
 
-AHEAD = 32 * 1024 // len('<Person name="p"/>') + 2
-"""The parser reads ahead a chunk of 32 KiB; so many of the shortest elements below stand in one."""
-
 
 def test_finished_elements_do_not_pile_up(monkeypatch: pytest.MonkeyPatch) -> None:
-    held: list[int] = []
-    prune = file_content._Walk.prune
+    live = most = 0
 
-    def watched(walk: Any, place: int) -> None:
-        node = walk.root
-        while node is not None and len(node):
-            held.append(len(node))
-            node = node[-1]
-        prune(walk, place)
+    class Counted(Element):
+        """An element that is counted while it lives."""
 
-    monkeypatch.setattr(file_content._Walk, "prune", watched)
+        __slots__ = ()
+
+        def __init__(self, tag: str, attributes: dict[str, str], line: int) -> None:
+            nonlocal live, most
+            super().__init__(tag, attributes, line)
+            live += 1
+            most = max(most, live)
+
+        def __del__(self) -> None:
+            nonlocal live
+            live -= 1
+
+    monkeypatch.setattr(parsing, "Element", Counted)
     silk = LAYERS + '<Layer name="SILK" layerFunction="SILKSCREEN" side="TOP" polarity="POSITIVE"/>'
     drawn = f'<LayerFeature layerRef="SILK">{feature(line((0, 0), (5, 0))) * MANY}</LayerFeature>'
     measured = (
@@ -36,4 +39,4 @@ def test_finished_elements_do_not_pile_up(monkeypatch: pytest.MonkeyPatch) -> No
     sets = feature(line((0, 0), (1, 0))) * MANY
     board = read(document(sets, layers=silk, more_features=drawn + measured, bom=people))
     assert len(board.tracks) == MANY
-    assert max(held) <= AHEAD
+    assert most < 100
