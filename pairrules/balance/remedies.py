@@ -28,8 +28,8 @@ _COARSE, _FINE, _PASSES = 33, 13, 4
 """Positions tried at first, in each later pass, and those passes: the position comes out to 2e-5 of itself."""
 
 MOST_ELEMENTS = 120
-"""Every trial solves all elements anew, and there are thousands of trials. A link of more, such as a pair along hundreds
-of bends of unlike gap, would keep a check busy for many seconds; it goes without this advice."""
+"""Every trial solves all elements anew, and there are thousands of trials. A link of more, such as a pair along
+hundreds of bends of unlike gap, would keep a check busy for many seconds; it goes without this advice."""
 
 _SIGNED = 4
 """Of so many levers that move together each is tried with either leg the greater."""

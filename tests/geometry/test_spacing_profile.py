@@ -167,8 +167,7 @@ def test_turned_mirrored_and_moved_boards_have_the_same_figures(turn: float) -> 
     plain = [gap_figures(p) for p in both_profiles(*legs(*WANDERING), None)[:2]]
     for flip in (1.0, -1.0):
         other = [
-            gap_figures(p)
-            for p in both_profiles(*legs(moved(WANDERING[0], flip), moved(WANDERING[1], flip)), None)[:2]
+            gap_figures(p) for p in both_profiles(*legs(moved(WANDERING[0], flip), moved(WANDERING[1], flip)), None)[:2]
         ]
         for a, b in zip(plain, other, strict=True):
             for name in ("least", "median", "greatest", "coupled_mm"):
