@@ -17,10 +17,12 @@ class Element:
 
     __slots__ = ("attributes", "inner", "line", "steps", "tag")
 
+    inner: list[Element] | tuple[()]
+    steps: list[Step] | tuple[()]
+
     def __init__(self, tag: str, attributes: dict[str, str], line: int) -> None:
         self.tag, self.attributes, self.line = tag, attributes, line
-        self.inner: list[Element] = []
-        self.steps: list[Step] = []
+        self.inner = self.steps = ()  # most elements hold nothing
 
     def get(self, name: str) -> str | None:
         """An attribute; `None` where the element has none of that name."""

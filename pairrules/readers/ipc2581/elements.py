@@ -66,7 +66,7 @@ def clean(text: str) -> str:
 
 def word(element: Element, name: str, default: str = "") -> str:
     """A cleaned attribute, `default` where absent."""
-    text = element.get(name)
+    text = element.attributes.get(name)
     if text is None:
         return default
     if len(text) > LONGEST_WORD:
@@ -108,7 +108,7 @@ def number(element: Element, name: str, default: float | None = None) -> float:
 
 def length(element: Element, name: str, factor: float, default: float | None = None) -> float:
     """A length or coordinate [mm]; `factor` is the millimetres in the unit that holds here."""
-    text = element.get(name)
+    text = element.attributes.get(name)
     if text is not None and len(text) <= _LONGEST_NUMBER and "_" not in text:
         try:
             value = float(text) * factor

@@ -272,7 +272,7 @@ class Shapes:
         if found is not None:
             points, curves = found
             self.outlines[element] = ring(*self._rounded(points, curves, factor)) if curves else ring(points, (), ())
-            element.steps.clear()
+            element.steps = ()
 
     def _rounded(
         self, points: Plane, curves: list[tuple[int, Element]], factor: float

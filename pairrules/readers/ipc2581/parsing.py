@@ -13,7 +13,7 @@ from typing import Protocol
 from xml.parsers import expat
 
 from pairrules.errors import BoardError
-from pairrules.readers.ipc2581.element import STEPS, Element
+from pairrules.readers.ipc2581.element import STEPS, Element, Step
 from pairrules.readers.ipc2581.elements import wrong
 from pairrules.readers.ipc2581.prolog import head
 from pairrules.readers.long_file import Sliced
@@ -120,6 +120,7 @@ def _listen(parser: expat.XMLParserType, walk: Walk) -> None:
     marks: list[int] = []  # what the record held when each of them opened
     tags: dict[str, str] = {}
     steps: dict[str, str] = {}  # the names among them that are steps
+    open_steps: list[Step] = []  # of the outline or line that is being walked
     deep = within = held = 0
 
     def tag_of(name: str) -> str:
@@ -131,7 +132,7 @@ def _listen(parser: expat.XMLParserType, walk: Walk) -> None:
         return tag
 
     def start(name: str, attributes: dict[str, str]) -> None:
-        nonlocal deep, held, within
+        nonlocal deep, held, open_steps, within
         tag = tags.get(name) or tag_of(name)
         if not stack:
             element = Element(tag, attributes, parser.CurrentLineNumber)
@@ -146,13 +147,19 @@ def _listen(parser: expat.XMLParserType, walk: Walk) -> None:
         held += 1 + len(attributes)
         if held > MOST_IN_RECORD:
             _crowded(stack[0])
+        top = stack[-1]
         if tag in STEPS:
-            stack[-1].steps.append((tag, attributes, parser.CurrentLineNumber))
+            open_steps = top.steps or []
+            open_steps.append((tag, attributes, parser.CurrentLineNumber))
+            top.steps = open_steps
             within = 1
             parser.StartElementHandler, parser.EndElementHandler = start_step, end_step
             return
         element = Element(tag, attributes, parser.CurrentLineNumber)
-        stack[-1].inner.append(element)
+        if top.inner:
+            top.inner.append(element)
+        else:
+            top.inner = [element]
         stack.append(element)
         marks.append(held)
         if len(stack) > MOST_DEEP:
@@ -180,7 +187,7 @@ def _listen(parser: expat.XMLParserType, walk: Walk) -> None:
             return
         held += 2
         if name in steps and held <= MOST_IN_RECORD:
-            stack[-1].steps.append((steps[name], attributes, parser.CurrentLineNumber))
+            open_steps.append((steps[name], attributes, parser.CurrentLineNumber))
             within = 1
             return
         parser.StartElementHandler, parser.EndElementHandler = start, end

@@ -26,7 +26,7 @@ class Walk:
     def outline(self, record: Element, element: Element) -> None:
         self.told.append(f"{element.tag} of {len(element.steps)} in {record.tag}")
         if element.tag == "Cutout":
-            element.steps.clear()
+            element.steps = ()
 
     def take(self, record: Element) -> None:
         self.records.append(record)
