@@ -54,6 +54,10 @@ def assemble(content: FileContent, wanted: str) -> Board:
     layer_index = {name: i for i, name in enumerate(names)}
     _within_ten_metres(copper, step)
     parts = part_list(step.parts, content.values, [pad.row.ref for pad in pads if pad.row.ref], content.table)
+    # Of a big board rows and columns together would be the most that is ever in memory: rows go as columns come.
+    copper.pads, copper.holes = [], []
+    tracks = _tracks(copper, net_index, layer_index)
+    copper.tracks = []
     return Board(
         name=step.name,
         format="IPC-2581",
@@ -63,7 +67,7 @@ def assemble(content: FileContent, wanted: str) -> Board:
         nets=nets,
         parts=parts,
         pads=_pads(pads, net_index, {part.ref: i for i, part in enumerate(parts)}),
-        tracks=_tracks(copper, net_index, layer_index),
+        tracks=tracks,
         vias=_vias(vias, net_index),
         areas=_areas(copper.areas, net_index, layer_index, remarks),
         pairs=declared_pairs(step.nets, step.parts, set(nets), remarks),
@@ -80,18 +84,22 @@ def _within_ten_metres(copper: Copper, step: Step) -> None:
 
     Each number of the file was within ten metres; placed one upon another, they need not be.
     """
-    drawn = np.array([(row.start, row.end, row.centre or 0j) for row in copper.tracks], dtype=np.complex128)
     widths = np.array([row.width for row in copper.tracks], dtype=np.float64)
-    reach = (np.abs(drawn).reshape(-1, 3) + widths[:, np.newaxis]).ravel().tolist()
-    reach += [float(np.abs(row.fill.outline).max()) for row in copper.areas if len(row.fill.outline)]
-    reach += [abs(row.at) for row in copper.holes]
     extents: dict[tuple[int, float], float] = {}  # the few shapes at their few scales: pads by the hundred thousand
     for row in copper.pads:
         key = (id(row.shape), row.way.scale)
         if key not in extents:
             extents[key] = max(row.outline.size if row.outline else (0.0,))
-        reach.append(abs(row.at) + extents[key])
-    if any(not length <= _FARTHEST_MM for length in reach):
+    beyond = [extents[id(row.shape), row.way.scale] for row in copper.pads]
+    drawn = [
+        (_complex([row.start for row in copper.tracks]), widths),
+        (_complex([row.end for row in copper.tracks]), widths),
+        (_complex([row.centre or 0j for row in copper.tracks]), widths),
+        (_complex([row.at for row in copper.pads]), np.array(beyond, dtype=np.float64)),
+        (_complex([row.at for row in copper.holes]), np.zeros(len(copper.holes))),
+        *((row.fill.outline, np.zeros(1)) for row in copper.areas),
+    ]
+    if not all((np.abs(at) + more <= _FARTHEST_MM).all() for at, more in drawn):
         raise BoardError(
             f'step "{step.name}" draws copper more than ten metres away',
             remedy="correct its placements and scales or export the file again",
@@ -156,8 +164,12 @@ def _points(plane: Plane) -> Floats:
     return np.ascontiguousarray(plane).view(np.float64).reshape(-1, 2)
 
 
+def _complex(values: list[complex]) -> Plane:
+    return np.array(values, dtype=np.complex128)
+
+
 def _pairs(values: list[complex]) -> Floats:
-    return _points(np.array(values, dtype=np.complex128))
+    return _points(_complex(values))
 
 
 def _tracks(copper: Copper, nets: dict[str, int], layers: dict[str, int]) -> Tracks:
@@ -208,8 +220,11 @@ def _vias(vias: list[JoinedVia], nets: dict[str, int]) -> Vias:
 
 
 def _areas(rows: list[FillRow], nets: dict[str, int], layers: dict[str, int], remarks: Remarks) -> tuple[Area, ...]:
+    """Areas, each taken out of its rows as it is made."""
     areas: list[Area] = []
-    for row in rows:
+    rows.reverse()
+    while rows:
+        row = rows.pop()
         # Loops of a line that crosses itself may cancel in the signed area, and enclose copper all the same.
         flat = len(row.fill.outline) < 3 or abs(signed_area(row.fill.outline)) < LEAST_MM2
         if flat and (len(row.fill.outline) < 3 or row.fill.region().area < LEAST_MM2):

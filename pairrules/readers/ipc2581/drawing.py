@@ -151,7 +151,7 @@ def ring(points: Sequence[complex] | Plane, centres: Sequence[complex | None], s
             pieces.append(bend)
         corners = np.concatenate(pieces)
     if len(corners) > 1 and abs(complex(corners[0]) - complex(corners[-1])) < 1e-9:
-        corners = corners[:-1]
+        return corners[:-1].copy()  # a view would keep alive all that it was cut from
     return corners
 
 

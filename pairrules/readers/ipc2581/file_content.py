@@ -150,9 +150,9 @@ class _Walk:
         self.records[local(element)](element)
         self.content.shapes.outlines.clear()
 
-    def outline(self, record: Element, element: Element) -> None:
-        """An outline within a record has closed: keep its corners and drop its steps."""
-        if element.tag in _OUTLINES and len(element.steps) > _FEW:
+    def outline(self, record: Element, holder: Element, element: Element) -> None:
+        """An outline within a record has closed: keep its corners and drop its steps, unless it is drawn as a line."""
+        if element.tag in _OUTLINES and len(element.steps) > _FEW and holder.tag != "Outline":
             factor = self.dictionary if local(record).startswith("Entry") else self.content.factor
             if factor:
                 self.content.shapes.keep_outline(element, factor)

@@ -55,8 +55,8 @@ class Walk(Protocol):
     def ends(self, tag: str) -> None:
         """An element that is no record, and in none, has closed."""
 
-    def outline(self, record: Element, element: Element) -> None:
-        """An outline within an open record has closed."""
+    def outline(self, record: Element, holder: Element, element: Element) -> None:
+        """An outline within an open record has closed. holder: what it stands in."""
 
     def take(self, record: Element) -> None:
         """A record has closed."""
@@ -176,7 +176,7 @@ def _listen(parser: expat.XMLParserType, walk: Walk) -> None:
             deep -= 1
             walk.take(element)
         elif element.steps:
-            walk.outline(stack[0], element)
+            walk.outline(stack[0], stack[-1], element)
             if not element.steps:
                 held = mark
 

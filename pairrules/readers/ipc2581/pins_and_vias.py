@@ -83,10 +83,11 @@ def _is_copper(table: LayerTable, name: str) -> bool:
 def join(copper: Copper, names: tuple[str, ...], remarks: Remarks) -> tuple[list[JoinedPad], list[JoinedVia]]:
     """Pads and vias of the board. names: the copper layers, top first."""
     index = {name: i for i, name in enumerate(names)}
-    pads: Places[PadRow] = Places()
-    for pad in copper.pads:
-        pads.put(pad.at, pad)
-    taken: set[int] = set()
+    rows = copper.pads
+    places: Places[int] = Places()
+    for place, pad in enumerate(rows):
+        places.put(pad.at, place)
+    taken = bytearray(len(rows))
     joined: list[tuple[int, JoinedPad]] = []
     vias: list[tuple[int, JoinedVia]] = []
     seen: set[tuple[float, float, int, int, str]] = set()
@@ -105,27 +106,27 @@ def join(copper: Copper, names: tuple[str, ...], remarks: Remarks) -> tuple[list
             continue
         seen.add(key)
         drill = hole.diameter if hole.diameter > 0 else math.nan
-        here = [pad for pad in pads.near(hole.at) if id(pad) not in taken]
-        here = [pad for pad in here if _same_net(pad, hole) and first <= index[pad.layer] <= last]
-        pins = [pad for pad in here if pad.pin]
+        here = [place for place in places.near(hole.at) if not taken[place]]
+        here = [place for place in here if _same_net(rows[place], hole) and first <= index[rows[place].layer] <= last]
+        pins = [rows[place] for place in here if rows[place].pin]
         if pins and hole.plating == "PLATED" and (first, last) == (0, len(names) - 1):
             owners = sorted({(pad.ref, pad.pin) for pad in pins})
-            taken |= {id(pad) for pad in here}
+            for place in here:
+                taken[place] = True
             for owner in owners:
                 own = [pad for pad in pins if (pad.ref, pad.pin) == owner]
                 top = min(own, key=lambda pad: (index[pad.layer], pad.order))
                 named = replace(top, net=top.net or hole.net)
                 joined.append((top.order, JoinedPad(named, ALL_LAYERS, drill)))
             continue
-        bare = [pad for pad in here if not pad.pin]
-        taken |= {id(pad) for pad in bare}
-        vias.append((hole.order, _via(hole, bare, copper, (first, last), drill)))
+        bare = [place for place in here if not rows[place].pin]
+        for place in bare:
+            taken[place] = True
+        vias.append((hole.order, _via(hole, [rows[place] for place in bare], copper, (first, last), drill)))
     remarks.count("{n} plated hole{s} {are} shortened by back-drilling", shortened)
-    left = [pad for pad in copper.pads if id(pad) not in taken]
+    left = [pad for pad, gone in zip(rows, taken, strict=True) if not gone]
     joined += [(pad.order, JoinedPad(pad, index[pad.layer], math.nan)) for pad in left if not pad.via]
-    vias += _vias_without_holes(
-        [pad for pad in copper.pads if pad.via and id(pad) not in taken], index, copper, remarks
-    )
+    vias += _vias_without_holes([pad for pad in left if pad.via], index, copper, remarks)
     joined.sort(key=lambda row: row[0])
     vias.sort(key=lambda row: row[0])
     return [pad for _, pad in joined], [via for _, via in vias]

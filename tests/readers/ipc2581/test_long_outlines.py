@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 
 import numpy as np
 import pytest
@@ -71,3 +72,53 @@ def test_an_outline_that_begins_twice_is_refused() -> None:
     outline = _ring("Polygon", 4, 40, more='<PolyBegin x="0" y="0"/>')
     with pytest.raises(BoardError, match="Polygon has a PolyBegin out of its order"):
         read(document(feature(f"<Contour>{outline}</Contour>")))
+
+
+@pytest.mark.parametrize("corners", [6, 40])
+def test_a_line_along_a_long_polygon_keeps_its_steps(corners: int) -> None:
+    style = '<LineDesc lineEnd="ROUND" lineWidth="0.2"/>'
+    board = read(document(feature(f"<Outline>{_ring('Polygon', 4, corners)}{style}</Outline>")))
+    assert len(board.tracks) >= corners
+    assert not board.areas
+
+
+@pytest.mark.parametrize("corners", [5, 40])
+def test_an_outline_without_a_beginning_is_refused(corners: int) -> None:
+    outline = _ring("Polygon", 4, corners).replace("PolyBegin", "PolyStepSegment")
+    with pytest.raises(BoardError, match="Polygon has a PolyStepSegment out of its order"):
+        read(document(feature(f"<Contour>{outline}</Contour>")))
+
+
+@pytest.mark.parametrize(
+    ("old", "new"),
+    [
+        ("<PolyStepSegment", "\n   <PolyStepSegment"),
+        ("<PolyStepSegment", "told <!-- a word --><PolyStepSegment"),
+        ("<PolyStepSegment", '<PolyStepSegment comment="&quot;&#233;"'),
+        ("<PolyStepSegment", '<PolyStepSegment z="1"'),
+        ("<PolyBegin", '<PolyBegin z="1"'),
+        ('y="5.0"', "y='5.0'"),
+        ('x="9.0"', 'x="+9"'),
+        ('x="9.0"', 'x=" 9 "'),
+        ('x="9.0"', 'x="9."'),
+        ('x="9.0"', 'x="0.9e1"'),
+        ('x="9.0"', 'x="&#57;"'),
+    ],
+)
+def test_other_ways_to_write_the_same(old: str, new: str) -> None:
+    ring = _ring("Polygon", 4.0, 40).replace(' y="5"', ' y="5.0"')
+    assert old in ring
+    (plain,) = read(document(feature(f"<Contour>{ring}</Contour>"))).areas
+    (other,) = read(document(feature(f"<Contour>{ring.replace(old, new)}</Contour>"))).areas
+    assert np.array_equal(plain.outline, other.outline)
+
+
+def test_another_prefix_and_order_of_coordinates() -> None:
+    ring = _ring("Polygon", 4.0, 40)
+    (plain,) = read(document(feature(f"<Contour>{ring}</Contour>"))).areas
+    turned = re.sub(r'(x="[^"]*") (y="[^"]*")', r"\2 \1", ring)
+    prefixed = re.sub(r"<(/?)(\w)", r"<\1i:\2", document(feature(f"<Contour>{ring}</Contour>")).decode())
+    (swapped,) = read(document(feature(f"<Contour>{turned}</Contour>"))).areas
+    (other,) = read(prefixed.replace("xmlns=", "xmlns:i=").encode()).areas
+    assert np.array_equal(plain.outline, swapped.outline)
+    assert np.array_equal(plain.outline, other.outline)

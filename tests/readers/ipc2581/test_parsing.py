@@ -23,7 +23,7 @@ class Walk:
     def ends(self, tag: str) -> None:
         self.told.append(f"{tag}>")
 
-    def outline(self, record: Element, element: Element) -> None:
+    def outline(self, record: Element, holder: Element, element: Element) -> None:
         self.told.append(f"{element.tag} of {len(element.steps)} in {record.tag}")
         if element.tag == "Cutout":
             element.steps = ()
