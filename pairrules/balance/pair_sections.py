@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from itertools import pairwise
 
 import numpy as np
 
@@ -118,7 +119,7 @@ def _joined(
         meets[1:] &= np.abs(along[:-1, 1] - along[1:, 0]) < 1e-5
     first = [i for i, joins in enumerate(meets.tolist()) if not (joins and drawn[i] == drawn[i - 1])]
     sections = []
-    for i, after in zip(first, [*first[1:], len(cuts)], strict=True):
+    for i, after in pairwise([*first, len(cuts)]):
         matrices = found[i]
         if not isinstance(matrices, str):
             sections.append(_section(cuts, i, after - 1, beside[i], matrices, heights))

@@ -14,7 +14,7 @@ from xml.parsers import expat
 
 from pairrules.errors import BoardError
 from pairrules.readers.ipc2581.element import STEPS, Element, Step
-from pairrules.readers.ipc2581.elements import wrong
+from pairrules.readers.ipc2581.elements import LONGEST_WORD, wrong
 from pairrules.readers.ipc2581.prolog import head
 from pairrules.readers.long_file import Sliced
 
@@ -125,6 +125,12 @@ def _listen(parser: expat.XMLParserType, walk: Walk) -> None:
 
     def tag_of(name: str) -> str:
         tag = name.rpartition("}")[2]
+        if len(tag) > LONGEST_WORD:
+            raise BoardError(
+                f"the name of an element has {len(tag)} characters",
+                place=f"line {parser.CurrentLineNumber}",
+                remedy=f"write at most {LONGEST_WORD}",
+            )
         if len(tags) < _MOST_NAMES:
             tags[name] = tag
             if tag in STEPS:

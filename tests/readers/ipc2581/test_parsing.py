@@ -103,6 +103,7 @@ def test_a_value_of_many_megabytes_is_refused() -> None:
         ("<a/>\n<b/>", "line 2: the XML goes on after its end"),
         ("<a>&b;</a>", "line 1: the XML is not well formed"),
         ("<a b='1' b='2'/>", "line 1: the XML is not well formed"),
+        (f"<{'a' * 5000}/>", "line 1: the name of an element has 5000 characters"),
         ("<p:a/>", "line 1: the XML is not well formed"),
         (
             "<!DOCTYPE a [<!ENTITY b 'c'>]><a>&b;</a>",
