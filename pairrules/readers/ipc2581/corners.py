@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from typing import TYPE_CHECKING
 
+import msgspec
 import numpy as np
 
 from pairrules.readers.ipc2581.element import Element
@@ -12,6 +13,8 @@ from pairrules.readers.ipc2581.elements import FARTHEST_MM
 
 if TYPE_CHECKING:
     from pairrules.readers.ipc2581.transform import Plane
+
+_NUMBERS = msgspec.json.Decoder(list[float])
 
 
 def corners(element: Element, factor: float, *, styled: bool = False) -> tuple[Plane, list[tuple[int, Element]]] | None:
@@ -28,20 +31,38 @@ def corners(element: Element, factor: float, *, styled: bool = False) -> tuple[P
     if element.inner and not (styled and all(inner.tag == "LineDescRef" for inner in element.inner)):
         return None
     try:
-        x, y = [step[1]["x"] for step in steps], [step[1]["y"] for step in steps]
-        # Joined, since a look for each would cost more than the reading: `float` takes 1_0, the file may not.
-        if "_" in "".join(x) or "_" in "".join(y):
-            return None
-        across, up = list(map(float, x)), list(map(float, y))
-    except (KeyError, ValueError):
+        written = [step[1]["x"] for step in steps]
+        written += [step[1]["y"] for step in steps]
+    except KeyError:
         return None
-    for numbers in (across, up):
-        # What is no number at all is neither least nor greatest, but makes the sum none.
-        if not -FARTHEST_MM < min(numbers) * factor <= max(numbers) * factor < FARTHEST_MM or math.isnan(sum(numbers)):
-            return None
+    numbers = _read(written)
+    if not numbers or not -FARTHEST_MM < min(numbers) * factor <= max(numbers) * factor < FARTHEST_MM:
+        return None
     at = np.empty(len(steps), dtype=np.complex128)
-    at.real, at.imag = across, up
+    at.real, at.imag = numbers[: len(steps)], numbers[len(steps) :]
     at *= factor
     at += 0.0  # a negative nothing is nothing
-    curves = [(place, Element(*steps[place])) for place, tag in enumerate(tags) if tag == "PolyStepCurve"]
-    return at, curves
+    if "PolyStepCurve" not in tags:
+        return at, []
+    return at, [(place, Element(*steps[place])) for place, tag in enumerate(tags) if tag == "PolyStepCurve"]
+
+
+def _read(written: list[str]) -> list[float] | None:
+    """The numbers, `None` where one of them is none.
+
+    A reader of JSON takes them all at once, a few times as fast as one by one; numbers that JSON would write otherwise
+    (+1, .5, 1.) are read one by one.
+    """
+    joined = ",".join(written)
+    try:
+        numbers = _NUMBERS.decode(f"[{joined}]")
+    except (msgspec.MsgspecError, UnicodeEncodeError):
+        numbers = []
+    if len(numbers) == len(written):  # a comma within one would make two of it
+        return numbers
+    try:
+        numbers = list(map(float, written))
+    except ValueError:
+        return None
+    # `float` takes 1_0, the file may not; the sum of what is no number at all is none.
+    return None if "_" in joined or math.isnan(sum(numbers)) else numbers
