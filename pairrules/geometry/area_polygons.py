@@ -52,13 +52,21 @@ def area_polygon(area: Area) -> shapely.Geometry:
     voids[wrong] = shapely.make_valid(voids[wrong])
     merged = shapely.get_parts(shapely.disjoint_subset_union_all(voids))
     merged = merged[shapely.get_dimensions(merged) == 2]
-    shapely.prepare(shell)
-    if shapely.get_type_id(shell) != shapely.GeometryType.POLYGON or not shapely.contains_properly(shell, merged).all():
+    if shapely.get_type_id(shell) != shapely.GeometryType.POLYGON:
         return shapely.difference(shell, shapely.disjoint_subset_union_all(merged))
-    # All voids lie inside and apart: their outlines are the holes, and what a ring of voids encloses is left standing.
-    rings, void = shapely.get_rings(merged, return_index=True)
+    shapely.prepare(shell)
+    apart = shapely.contains_properly(shell, merged)
+    if not apart.all():
+        # Only what reaches the edge is cut out: to cut out thousands of voids takes long, and memory.
+        shell = shapely.difference(shell, shapely.disjoint_subset_union_all(merged[~apart]))
+        if shapely.get_type_id(shell) != shapely.GeometryType.POLYGON:
+            return shapely.difference(shell, shapely.disjoint_subset_union_all(merged[apart]))
+    # All other voids lie inside and apart: their outlines are the holes, and what a ring of voids encloses is left
+    # standing.
+    rings, void = shapely.get_rings(merged[apart], return_index=True)
     outside = np.diff(void, prepend=-1) > 0
-    whole, inner = shapely.polygons(shapely.get_exterior_ring(shell), rings[outside]), rings[~outside]
+    holes = np.concatenate([shapely.get_rings(shell)[1:], rings[outside]])
+    whole, inner = shapely.polygons(shapely.get_exterior_ring(shell), holes), rings[~outside]
     if not len(inner):
         return whole
     islands: Shapes = np.asarray(shapely.polygons(inner), dtype=np.object_)

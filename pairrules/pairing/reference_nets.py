@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 
 import numpy as np
 
@@ -11,6 +11,9 @@ from pairrules.board.board import Board
 from pairrules.board.columns import Floats
 from pairrules.pairing.net_patterns import matches
 from pairrules.pairing.net_roles import is_ground_name
+
+_SHARE = 1000
+"""Rings that are worked on at once: a board has ten thousands."""
 
 
 def reference_nets(board: Board, globs: tuple[str, ...] | None) -> tuple[int, ...]:
@@ -55,17 +58,16 @@ def _areas_mm2(board: Board) -> Floats:
     return np.array([math.fsum(of_net) for of_net in pieces], dtype=np.float64)
 
 
-def _rings_mm2(rings: Sequence[Floats]) -> list[float]:
+def _rings_mm2(rings: Sequence[Floats]) -> Iterator[float]:
     """Area within each closed line. Source: the shoelace formula, ½ |Σ (x_i y_{i+1} − x_{i+1} y_i)| (Gauss)."""
-    size = np.array([len(ring) for ring in rings], dtype=np.int64)
-    if not len(size):
-        return []
-    first = np.cumsum(size) - size
-    at = np.concatenate(rings)
-    # About its own first corner, which keeps the digits of a small ring far from the origin.
-    x, y = (at - np.repeat(at.take(first, axis=0), size, axis=0)).T
-    following = np.arange(1, len(at) + 1)
-    following[first + size - 1] = first
-    cross = x * y.take(following) - x.take(following) * y
-    found: list[float] = (np.abs(np.add.reduceat(cross, first)) / 2).tolist()
-    return found
+    for start in range(0, len(rings), _SHARE):
+        some = rings[start : start + _SHARE]
+        size = np.array([len(ring) for ring in some], dtype=np.int64)
+        first = np.cumsum(size) - size
+        at = np.concatenate(some)
+        # About its own first corner, which keeps the digits of a small ring far from the origin.
+        x, y = (at - np.repeat(at.take(first, axis=0), size, axis=0)).T
+        following = np.arange(1, len(at) + 1)
+        following[first + size - 1] = first
+        cross = x * y.take(following) - x.take(following) * y
+        yield from (np.abs(np.add.reduceat(cross, first)) / 2).tolist()
