@@ -29,7 +29,7 @@ ROOT = "IPC-2581"
 
 _OUTLINES = {"Cutout", "Polygon"}
 _FEW = 8
-"""Outlines of no more corners are read with their record."""
+"""Outlines of no more corners are read with their record; but for voids, of which a plane has ten thousands."""
 
 
 @dataclass(slots=True)
@@ -152,7 +152,8 @@ class _Walk:
 
     def outline(self, record: Element, holder: Element, element: Element) -> None:
         """An outline within a record has closed: keep its corners and drop its steps, unless it is drawn as a line."""
-        if element.tag in _OUTLINES and len(element.steps) > _FEW and holder.tag != "Outline":
+        long = element.tag == "Cutout" or (element.tag in _OUTLINES and len(element.steps) > _FEW)
+        if long and holder.tag != "Outline":
             factor = self.dictionary if local(record).startswith("Entry") else self.content.factor
             if factor:
                 self.content.shapes.keep_outline(element, factor)

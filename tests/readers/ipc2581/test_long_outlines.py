@@ -9,7 +9,8 @@ import numpy as np
 import pytest
 
 from pairrules.errors import BoardError
-from pairrules.readers.ipc2581 import file_content
+from pairrules.readers.ipc2581 import parsing
+from pairrules.readers.ipc2581.features import Shapes
 from tests.readers.ipc2581.documents import document, feature, read
 
 
@@ -35,13 +36,20 @@ def _round(tag: str, radius: float, arcs: int) -> str:
 def test_the_same_as_step_by_step(units: str, monkeypatch: pytest.MonkeyPatch) -> None:
     drawn = feature(f"<Contour>{_ring('Polygon', 4, 40)}{_ring('Cutout', 1, 30)}{_round('Cutout', 2, 12)}</Contour>")
     quick = read(document(drawn, units=units)).areas
-    monkeypatch.setattr(file_content, "_FEW", 10**9)
+    monkeypatch.setattr(Shapes, "keep_outline", lambda *_: None)
     slow = read(document(drawn, units=units)).areas
     assert len(quick) == len(slow) == 1
     assert np.array_equal(quick[0].outline, slow[0].outline)
     assert [len(hole) for hole in quick[0].holes] == [len(hole) for hole in slow[0].holes]
     assert len(quick[0].holes[0]) == 30
     assert all(np.array_equal(a, b) for a, b in zip(quick[0].holes, slow[0].holes, strict=True))
+
+
+def test_voids_do_not_count_against_what_a_record_may_hold(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(parsing, "MOST_IN_RECORD", 400)
+    voids = "".join(_round("Cutout", 0.01 * i, 2) for i in range(1, 301))
+    (area,) = read(document(feature(f"<Contour>{_ring('Polygon', 4, 40)}{voids}</Contour>"))).areas
+    assert len(area.holes) == 300
 
 
 def test_a_style_among_the_corners_still_counts() -> None:
