@@ -16,7 +16,6 @@ import numpy as np
 
 from pairrules.fields.boundary import INTERFACE, Bools, Complexes, Floats, Ints, Pieces, Region
 
-_POWER = 3.0
 _OF_COPPER = 0.75  # β at copper corners in one dielectric
 _OF_EDGE = 0.25  # β at the edges of strips and planes
 _OF_EDGE_BETWEEN = 0.3  # the same where dielectrics meet

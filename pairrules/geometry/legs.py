@@ -24,9 +24,6 @@ class Legs:
     first: Ints
     leg: Ints
 
-    def __len__(self) -> int:
-        return len(self.first) - 1
-
     def before(self, length: Floats) -> Floats:
         """The sum of `length` (k,) over the rows before each, within its leg.
 
@@ -34,7 +31,8 @@ class Legs:
         """
         found = np.zeros(len(length))
         for begin, end in pairwise(self.first.tolist()):
-            np.cumsum(length[begin : end - 1], out=found[begin + 1 : end])
+            if end > begin:
+                np.cumsum(length[begin : end - 1], out=found[begin + 1 : end])
         return found
 
     def spans(self, piece: Ints) -> list[tuple[int, int]]:
