@@ -9,7 +9,8 @@ from itertools import pairwise
 import numpy as np
 
 from pairrules.board.columns import Floats, Ints
-from pairrules.geometry.pair_geometry import Pieces
+from pairrules.geometry.curves import Curves
+from pairrules.geometry.pair_geometry import TRACK, Pieces
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -39,6 +40,36 @@ class Legs:
         """Where each leg's rows begin and end in a column that is sorted by `piece`."""
         cuts = np.searchsorted(piece, self.first).tolist()
         return list(pairwise(cuts))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class LegTracks:
+    """The tracks among the pieces of legs, those of no length left out.
+
+    row: (k,) of the pieces. curves, length, layer, leg: theirs. before: [mm] of track before each on its leg.
+    """
+
+    row: Ints
+    curves: Curves
+    length: Floats
+    layer: Ints
+    leg: Ints
+    before: Floats
+
+
+def tracks_of(legs: Legs) -> LegTracks:
+    """The tracks of legs."""
+    pieces = legs.pieces
+    is_track = (pieces.kind == TRACK) & (pieces.length > 0)
+    row = np.flatnonzero(is_track)
+    return LegTracks(
+        row=row,
+        curves=Curves(start=pieces.start, end=pieces.end, centre=pieces.centre, sweep=pieces.sweep).take(row),
+        length=pieces.length[row],
+        layer=pieces.layer[row],
+        leg=legs.leg[row],
+        before=legs.before(np.where(is_track, pieces.length, 0.0))[row],
+    )
 
 
 def laid_out(legs: Sequence[Pieces]) -> Legs:

@@ -14,8 +14,8 @@ from pairrules.geometry.copper_outlines import centre_lines
 from pairrules.geometry.curves import Curves, parts
 from pairrules.geometry.facing_edges import Facing, Nearest, cut_further, enters, facing, nearest_facing
 from pairrules.geometry.foreign_copper import ForeignCopper
-from pairrules.geometry.legs import laid_out
-from pairrules.geometry.pair_geometry import TRACK, Pieces
+from pairrules.geometry.legs import laid_out, tracks_of
+from pairrules.geometry.pair_geometry import Pieces
 
 __all__ = ["STEP", "STEP_MM", "ForeignCopper", "NeighbourProfile", "neighbours", "neighbours_of_legs"]
 
@@ -106,15 +106,12 @@ def neighbours_of_legs(
     """
     copper = ForeignCopper(board) if copper is None else copper
     together = laid_out(legs)
-    pieces = together.pieces
-    is_track = (pieces.kind == TRACK) & (pieces.length > 0)
-    row = np.flatnonzero(is_track)
-    length, before = pieces.length[row], together.before(np.where(is_track, pieces.length, 0.0))[row]
-    curves = Curves(start=pieces.start, end=pieces.end, centre=pieces.centre, sweep=pieces.sweep).take(row)
-    layer, half, leg = pieces.layer[row], pieces.width[row] / 2, together.leg[row]
-    reach = np.array(within_mm)[leg] + half
+    own = tracks_of(together)
+    row, curves, length, layer, before = own.row, own.curves, own.length, own.layer, own.before
+    half = together.pieces.width[row] / 2
+    reach = np.array(within_mm)[own.leg] + half
 
-    which, edges, net = _edges_near(copper, curves, layer, reach, leg, own_nets)
+    which, edges, net = _edges_near(copper, curves, layer, reach, own.leg, own_nets)
     faces = facing(curves.take(which), length[which], edges, reach[which])
     faces = Facing(row=which[faces.row], edge=faces.edge, begin=faces.begin, end=faces.end, side=faces.side)
     found = nearest_facing(curves, length, edges, faces)
@@ -142,19 +139,19 @@ def neighbours_of_legs(
     s_to = before[track] + np.where(end == 1.0, length[track], end * length[track])
     profiles = []
     for number, span in enumerate(together.spans(row[track])):
-        own = slice(*span)
+        part = slice(*span)
         profiles.append(
             NeighbourProfile(
-                s_from=s_from[own],
-                s_to=s_to[own],
-                piece=row[track[own]] - together.first[number],
-                layer=layer[track[own]],
-                start=stretches.start[own],
-                end=stretches.end[own],
-                left_gap=least[own, 0],
-                left_net=nets[opens[own], 0],
-                right_gap=least[own, 1],
-                right_net=nets[opens[own], 1],
+                s_from=s_from[part],
+                s_to=s_to[part],
+                piece=row[track[part]] - together.first[number],
+                layer=layer[track[part]],
+                start=stretches.start[part],
+                end=stretches.end[part],
+                left_gap=least[part, 0],
+                left_net=nets[opens[part], 0],
+                right_gap=least[part, 1],
+                right_net=nets[opens[part], 1],
             )
         )
     return profiles

@@ -13,8 +13,8 @@ from pairrules.board.columns import Bools, Floats, Ints, freeze
 from pairrules.geometry.copper_outlines import centre_lines
 from pairrules.geometry.curve_edges import crossings, nearest_to_edges
 from pairrules.geometry.curves import Curves, parts, points
-from pairrules.geometry.legs import laid_out
-from pairrules.geometry.pair_geometry import TRACK, Pieces
+from pairrules.geometry.legs import laid_out, tracks_of
+from pairrules.geometry.pair_geometry import Pieces
 from pairrules.geometry.reference_copper import NO_NET, UNKNOWN, ReferenceCopper
 from pairrules.geometry.ring_runs import RingRuns
 
@@ -101,12 +101,8 @@ def reference_covers(legs: Sequence[Pieces], board: Board, reference: tuple[int,
     """
     copper = reference if isinstance(reference, ReferenceCopper) else ReferenceCopper(board, reference)
     together = laid_out(legs)
-    pieces = together.pieces
-    is_track = (pieces.kind == TRACK) & (pieces.length > 0)
-    row = np.flatnonzero(is_track)
-    length, before = pieces.length[row], together.before(np.where(is_track, pieces.length, 0.0))[row]
-    curves = Curves(start=pieces.start, end=pieces.end, centre=pieces.centre, sweep=pieces.sweep).take(row)
-    layer = pieces.layer[row]
+    own = tracks_of(together)
+    row, curves, length, layer, before = own.row, own.curves, own.length, own.layer, own.before
 
     track, t_from, t_to = _cut(copper, curves, layer, length)
     middle = points(curves.take(track), (t_from + t_to) / 2)
@@ -124,23 +120,23 @@ def reference_covers(legs: Sequence[Pieces], board: Board, reference: tuple[int,
     bare = (nets[0] == NO_NET) & (nets[1] == NO_NET)
     covers = []
     for leg, (begin, end) in enumerate(together.spans(row[track])):
-        own = slice(begin, end)
-        missing = _missing(copper, layer[track[own]], [net[own] for net in nets])
+        part = slice(begin, end)
+        missing = _missing(copper, layer[track[part]], [net[part] for net in nets])
         covers.append(
             Cover(
-                s_from=s_from[own],
-                s_to=s_to[own],
-                piece=row[track[own]] - together.first[leg],
-                layer=layer[track[own]],
-                start=stretches.start[own],
-                end=stretches.end[own],
-                above=nets[0][own],
-                below=nets[1][own],
-                edge_above=edges[0][0][own],
-                edge_below=edges[1][0][own],
-                edge_above_at=edges[0][1][own],
-                edge_below_at=edges[1][1][own],
-                uncovered_mm=None if missing else float((s_to - s_from)[own][bare[own]].sum()),
+                s_from=s_from[part],
+                s_to=s_to[part],
+                piece=row[track[part]] - together.first[leg],
+                layer=layer[track[part]],
+                start=stretches.start[part],
+                end=stretches.end[part],
+                above=nets[0][part],
+                below=nets[1][part],
+                edge_above=edges[0][0][part],
+                edge_below=edges[1][0][part],
+                edge_above_at=edges[0][1][part],
+                edge_below_at=edges[1][1][part],
+                uncovered_mm=None if missing else float((s_to - s_from)[part][bare[part]].sum()),
                 missing=missing,
             )
         )
