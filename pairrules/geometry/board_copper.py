@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Container, Iterable
+from concurrent.futures import ThreadPoolExecutor
 from functools import cached_property
 
 from pairrules.board.board import Board
@@ -19,6 +21,22 @@ class BoardCopper:
     def __init__(self, board: Board, reference: tuple[int, ...]) -> None:
         self.board = board
         self.reference_nets = tuple(sorted(set(reference)))
+
+    def make_ready(self, layers: Iterable[int], *, beside: Container[int], cuts: bool, threads: int) -> None:
+        """Make the copper of layers ready, some at a time: the geometry library lets other threads run meanwhile.
+
+        Parameters: beside: layers whose reference copper is asked for. cuts: whether what cuts meet is, on all of them.
+        """
+        reference, indexes = self.reference, self.layers
+
+        def ready(layer: int) -> None:
+            if layer in beside and reference.known(layer):
+                reference.layer(layer)
+            if cuts:
+                indexes.layer(layer)
+
+        with ThreadPoolExecutor(threads) as pool:
+            list(pool.map(ready, layers))
 
     @cached_property
     def index(self) -> CopperIndex:

@@ -7,9 +7,12 @@ from dataclasses import dataclass, field
 from datetime import date
 from functools import cached_property
 
+import numpy as np
+
 from pairrules.balance.electrical import electricals
 from pairrules.balance.pair_electrical import PairElectrical
 from pairrules.balance.section_store import Store
+from pairrules.balance.stack_heights import lacking
 from pairrules.board.board import Board
 from pairrules.checks.electrical_figures import ps_per_mm
 from pairrules.checks.held_limits import held_limits
@@ -72,6 +75,15 @@ class PairStage:
 
     def __getstate__(self) -> dict[str, object]:
         return {name: value for name, value in self.__dict__.items() if name not in {"copper", "drawn"}}
+
+    def make_ready(self, links: Sequence[Link], threads: int) -> None:
+        """Make what links need of the board's copper ready, in so many threads; the rest is made when asked for."""
+        board = self.board
+        nets = {hop.net for link in links for hop in (*link.hops_plus, *link.hops_minus)}
+        own = set(board.tracks.layer[np.isin(board.tracks.net, sorted(nets))].tolist())
+        beside = {layer + step for layer in own for step in (-1, 1)} & set(range(len(board.copper)))
+        cuts = not lacking(board.stackup)
+        self.copper.make_ready(sorted(own | beside), beside=beside, cuts=cuts, threads=threads)
 
     def judge(self, links: Sequence[Link]) -> list[Judged]:
         """Measure links, solve their sections, let every rule with a limit judge."""

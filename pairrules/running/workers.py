@@ -47,7 +47,7 @@ def judge_links(
     shares = [links[i : i + size] for i in range(0, every, size)]
     if jobs > 1 and every > _MANY:
         # What they need of the board's copper is then at hand when the workers fork, once for all.
-        found += stage.judge(shares.pop(0))
+        stage.make_ready(links, threads=jobs)
     if jobs == 1 or len(shares) < 2:
         for share in shares:
             if progress is not None:

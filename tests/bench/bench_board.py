@@ -56,6 +56,7 @@ def whole(path: str, *, jobs: int | None = 1, solved: bool = True) -> dict[str, 
     if not solved:
         unknown = PairElectrical(missing={"sections": "not asked for"})
         pair_stage.electricals = lambda _, pairs, **__: [unknown for _ in pairs]  # type: ignore[assignment]
+        pair_stage.lacking = lambda _: "not asked for"  # type: ignore[assignment]
     pairs = _Clock()
     judge = workers.judge_links
 

@@ -63,3 +63,16 @@ def test_a_board_that_costs_its_worker_its_life_does_not_stop_the_others(tmp_pat
         "free memory or take fewer --jobs, then run again\n"
     )
     assert [line.split()[-2:] for line in told.stdout.splitlines()[-4:]][1] == ["not", "judged"]
+
+
+FEW_ARE_MANY = "from pairrules.running import workers\nworkers._MANY = 1\nimport pairrules.cli as c\nc.main()"
+
+
+@pytest.mark.parametrize("form", ["json", "listing"])
+def test_copper_made_ready_in_threads_changes_nothing(form: str) -> None:
+    demo = str(ROOT / "fixtures" / "demo" / "tide-gauge-buoy.json")
+    asked = ("check", demo, "--no-cache", "--format", form)
+    alone = run(*asked, "--jobs", "1")
+    assert alone.returncode == 1
+    for jobs in (("--jobs", "2"), ("--jobs", "3"), ()):
+        assert run(*asked, *jobs, code=FEW_ARE_MANY).stdout == alone.stdout
