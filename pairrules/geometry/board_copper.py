@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Container, Iterable
-from concurrent.futures import ThreadPoolExecutor
 from functools import cached_property
 
 from pairrules.board.board import Board
@@ -27,6 +26,8 @@ class BoardCopper:
 
         Parameters: beside: layers whose reference copper is asked for. cuts: whether what cuts meet is, on all of them.
         """
+        from concurrent.futures import ThreadPoolExecutor
+
         reference, indexes = self.reference, self.layers
 
         def ready(layer: int) -> None:

@@ -52,19 +52,18 @@ def kept_check(
     Where it has to be done, sections that earlier runs solved are taken from the same folder, and new ones go there.
     """
     digest = None if kept is None else _digest(path)
+    asked: dict[str, Any] = {
+        "pairs": pairs,
+        "step": step,
+        "today": today,
+        "settings_of": settings_of,
+        "jobs": jobs,
+        "progress": progress,
+    }
     if kept is None or not digest:
         from pairrules.pipeline import check
 
-        return check(
-            path,
-            settings,
-            pairs=pairs,
-            step=step,
-            today=today,
-            settings_of=settings_of,
-            jobs=jobs,
-            progress=progress,
-        )
+        return check(path, settings, **asked)
     day = (today or date.today()).isoformat()
     tool = _tool()
     key = _key(tool, digest, path, settings, pairs, step, settings_of)
@@ -77,17 +76,7 @@ def kept_check(
 
     sections = KeptSections(SectionFile(kept.folder), f"{__version__} {tool}")
     rests_on = _state(files_asked_for(settings_of or path, settings))
-    result = check(
-        path,
-        settings,
-        pairs=pairs,
-        step=step,
-        today=today,
-        settings_of=settings_of,
-        jobs=jobs,
-        store=sections,
-        progress=progress,
-    )
+    result = check(path, settings, **asked, store=sections)
     sections.save()
     if result.board.sha256 == digest and rests_on == _state(path for path, _ in rests_on):
         entry = {"rests_on": rests_on, "day": day if result.waivers else "", "result": to_plain(result)}

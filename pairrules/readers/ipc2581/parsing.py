@@ -1,7 +1,7 @@
 """Hands the elements of an XML file to a walk through it, record by record, and holds no more of it than one record.
 
-The parser is the standard library's Expat: it calls for every element without building a tree, which for a board of
-millions of corners takes half of what a tree takes. Nothing outside the file is ever opened: a DOCTYPE is refused where
+The parser is the standard library's Expat: it calls for every element and builds no tree, of whose millions of corners
+each would have to be asked again. Nothing outside the file is ever opened: a DOCTYPE is refused where
 it begins, and without one there are no entities. Source: the Python manual, `xml.parsers.expat`.
 """
 
